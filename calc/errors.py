@@ -1,0 +1,49 @@
+"""The ways in which input can be wrong, each with what was given and what is allowed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+
+@dataclass(frozen=True)
+class Problem:
+    """One thing that is wrong with an input, and where.
+
+    ``where`` is a path inside the document such as ``machine.nameplate.current``;
+    ``line`` counts from 1 and is None where the input has no lines.
+    """
+
+    file: str
+    where: str
+    given: str
+    allowed: str
+    line: int | None = None
+
+    def __str__(self) -> str:
+        """Say it in one line: file, line, field, what was given, what is allowed."""
+        place = self.file if self.line is None else f"{self.file}, line {self.line}"
+        field = f": {self.where}" if self.where else ""
+        given = f": {self.given}" if self.given else ""
+        return f"{place}{field}{given}; {self.allowed}"
+
+
+class PlatesideError(Exception):
+    """Base of every error that Plateside raises on purpose."""
+
+
+class InputError(PlatesideError):
+    """The input is wrong; ``problems`` says where, what was given and what is allowed."""
+
+    def __init__(self, problems: list[Problem]) -> None:
+        self.problems = problems
+        super().__init__("\n".join(str(problem) for problem in problems))
+
+
+class RangeError(PlatesideError, ValueError):
+    """A quantity handed to a formula lies outside what the formula allows."""
+
+    def __init__(self, name: str, given: object, allowed: str) -> None:
+        self.name = name
+        self.given = given
+        self.allowed = allowed
+        super().__init__(f"{name} is {given}; it must be {allowed}")

@@ -1,0 +1,1 @@
+"""What happened: the durable log of cases, its search, history and merge."""

@@ -1,0 +1,19 @@
+"""plateside: puts its four layers first on the import path.
+
+In a checkout they are the folders beside this one. In a wheel they lie in
+``plateside/layers``, where no other package called ``rules`` or ``calc`` can
+overwrite them or be overwritten.
+"""
+
+import os
+import sys
+from pathlib import Path
+
+__version__ = "0.1.0"
+
+# One diagnosis works on small matrices: BLAS threads only cost start-up time and key latency.
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
+
+_here = Path(__file__).resolve().parent
+_installed = _here / "layers"
+sys.path.insert(0, str(_installed if _installed.is_dir() else _here.parent))

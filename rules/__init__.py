@@ -1,0 +1,1 @@
+"""What the trade knows: faults, readings and limits as data, and the inference that weighs readings."""

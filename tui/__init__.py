@@ -1,0 +1,1 @@
+"""What a person sees: the command line, the screens, and the composing of a case."""
