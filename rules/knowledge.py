@@ -195,6 +195,8 @@ class Limit(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     where: dict[str, str] = {}
     """Facts of machine or reading: ``mount: rigid``, ``power: "15..300 kW"``, ``insulation_class: F`` …"""
     bands: tuple[LimitBand, ...]
+    shuts: tuple[str, ...] = ("any",)
+    """States that stay shut while a band of verdict ``stop`` stands."""
     clause: str = ""
     looked_up: bool = False
     """False: from memory."""
@@ -215,6 +217,10 @@ class GateRule(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Named checks in ``rules/gate.py``; all must hold on the recorded entries."""
     found_running_clears: bool = False
     """A machine found running shows this by running, unless it tripped or was repaired."""
+    overload_trip_clears: bool = False
+    """Not asked after an overload trip with no breaker, fuse or earth trip on record."""
+    suspects: dict[str, float] = {}
+    """Faults, and the odds from which one of them shuts the guarded states."""
 
 
 class Knowledge(msgspec.Struct, frozen=True, kw_only=True):
