@@ -1,0 +1,196 @@
+"""Opening a casebook file: journal, version, migrations, and errors in words."""
+
+from __future__ import annotations
+
+import sqlite3
+import time
+from collections.abc import Iterator
+from contextlib import closing, contextmanager
+from datetime import UTC, datetime
+from pathlib import Path
+from typing import Final, NamedTuple
+from urllib.parse import quote
+
+from casebook import heads, place, schema
+from casebook.errors import (
+    CasebookBusy,
+    CasebookError,
+    DamagedCasebook,
+    DiskFull,
+    NewerCasebook,
+    NoPermission,
+    NotACasebook,
+)
+from casebook.rows import stamp
+
+_REBUILD_BATCH: Final = 500
+
+
+class Opened(NamedTuple):
+    """A connection that is ready for use, and what the person should know about it."""
+
+    connection: sqlite3.Connection
+    read_only: bool
+    notes: tuple[str, ...]
+
+
+def connect(path: Path, *, group: bool, read_only: bool, timeout_s: float) -> Opened:
+    """Open or start a casebook. Raises ``CasebookError`` with what to do."""
+    if read_only or (path.exists() and not place.is_writable(path)):
+        return _open_to_read(path, timeout_s=timeout_s, asked=read_only)
+    place.prepare(path, group=group)
+    with translated(path):
+        connection = _connection(path, "mode=rw", timeout_s)
+        try:
+            version = _check_version(connection, path)
+            notes = [_choose_journal(connection, path, timeout_s), place.privacy_note(path)]
+            connection.execute("PRAGMA synchronous = FULL")
+            connection.execute("PRAGMA recursive_triggers = ON")  # REPLACE must not slip past the triggers
+            if version < schema.VERSION:
+                _migrate(connection, path)
+        except BaseException:
+            connection.close()
+            raise
+    return Opened(connection, False, tuple(note for note in notes if note))
+
+
+def _connection(path: Path, options: str, timeout_s: float) -> sqlite3.Connection:
+    return sqlite3.connect(
+        f"file:{quote(str(path.resolve()))}?{options}",
+        uri=True,
+        timeout=timeout_s,
+        isolation_level=None,
+        check_same_thread=False,
+    )
+
+
+def _check_version(connection: sqlite3.Connection, path: Path) -> int:
+    """Return the version of the file's tables; 0 is a new file."""
+    mark = connection.execute("PRAGMA application_id").fetchone()[0]
+    version = int(connection.execute("PRAGMA user_version").fetchone()[0])
+    empty = connection.execute("SELECT count(*) FROM sqlite_master").fetchone()[0] == 0
+    if mark != schema.APPLICATION_ID and not (mark == 0 and empty):
+        raise NotACasebook(f"{path} is a database, but no casebook")
+    if version > schema.VERSION:
+        raise NewerCasebook(
+            f"{path} has tables of version {version}; this Plateside knows them up to {schema.VERSION}"
+        )
+    return version
+
+
+def _choose_journal(connection: sqlite3.Connection, path: Path, timeout_s: float) -> str:
+    """Use a write-ahead log where it can work; return why not, where it cannot."""
+    shared = place.shared_file_system(path)
+    if shared:
+        _set_journal(connection, "DELETE", timeout_s)
+        return f"{path.name} lies on a shared file system ({shared}): one person at a time, and slower"
+    if _set_journal(connection, "WAL", timeout_s) != "wal":
+        _set_journal(connection, "DELETE", timeout_s)
+        return f"the file system of {path.name} cannot share memory: one person at a time, and slower"
+    return ""
+
+
+def _set_journal(connection: sqlite3.Connection, mode: str, timeout_s: float) -> str:
+    """Set the journal; wait while another process opens the file at the same moment."""
+    deadline = time.monotonic() + timeout_s
+    while True:
+        try:
+            now = str(connection.execute("PRAGMA journal_mode").fetchone()[0])
+            if now == mode.lower():
+                return now
+            return str(connection.execute(f"PRAGMA journal_mode = {mode}").fetchone()[0])
+        except sqlite3.OperationalError as error:
+            busy = (error.sqlite_errorcode & 0xFF) in {sqlite3.SQLITE_BUSY, sqlite3.SQLITE_LOCKED}
+            if not busy or time.monotonic() > deadline:
+                raise
+            time.sleep(0.02)
+
+
+def _migrate(connection: sqlite3.Connection, path: Path) -> None:
+    """Bring the tables to this program's version; each step and its record are one transaction."""
+    for step in schema.MIGRATIONS:
+        connection.execute("BEGIN IMMEDIATE")
+        try:
+            if connection.execute("PRAGMA user_version").fetchone()[0] < step.version:
+                _apply(connection, step)
+            connection.execute("COMMIT")
+        except BaseException:
+            if connection.in_transaction:
+                connection.execute("ROLLBACK")
+            raise
+
+
+def _apply(connection: sqlite3.Connection, step: schema.Migration) -> None:
+    for statement in step.statements:
+        connection.execute(statement)
+    if step.rebuild:
+        rebuild(connection)
+    connection.execute(
+        "INSERT INTO migration VALUES (?, ?, ?)", (step.version, step.name, stamp(datetime.now(UTC)))
+    )
+    connection.execute(f"PRAGMA user_version = {step.version:d}")
+    connection.execute(f"PRAGMA application_id = {schema.APPLICATION_ID:d}")
+
+
+def rebuild(connection: sqlite3.Connection) -> None:
+    """Make every derived row anew from the entries, inside the caller's transaction."""
+    connection.execute("DELETE FROM case_head")
+    connection.execute("DELETE FROM outcome")
+    last = ""
+    ask = "SELECT DISTINCT case_id FROM entry WHERE case_id > ? ORDER BY case_id LIMIT ?"
+    while cases := [row[0] for row in connection.execute(ask, (last, _REBUILD_BATCH))]:
+        heads.refresh(connection, cases)
+        last = cases[-1]
+
+
+def _open_to_read(path: Path, *, timeout_s: float, asked: bool) -> Opened:
+    """Open without any right to write."""
+    if not path.exists():
+        raise CasebookError(f"there is no casebook {path}")
+    place.refuse_other_files(path)
+    why = "opened to read only" if asked else f"{path.name} may not be written by you: read only"
+    with translated(path):
+        connection = _connection(path, "mode=ro", timeout_s)
+        try:
+            version = _check_version(connection, path)
+        except sqlite3.OperationalError:
+            connection.close()
+            connection = _connection(path, "immutable=1", timeout_s)
+            version = _check_version(connection, path)
+        if version != schema.VERSION:
+            connection.close()
+            raise CasebookError(
+                f"{path} has an older version of the casebook's tables",
+                advice="Open it once where it may be written, or merge a copy of it",
+            )
+    return Opened(connection, True, (why,))
+
+
+@contextmanager
+def translated(path: Path) -> Iterator[None]:
+    """Turn what SQLite says into what a person can act on."""
+    try:
+        yield
+    except sqlite3.Error as error:
+        raise _in_words(error, path) from error
+
+
+def _in_words(error: sqlite3.Error, path: Path) -> CasebookError:
+    code = (getattr(error, "sqlite_errorcode", None) or 0) & 0xFF
+    if code in {sqlite3.SQLITE_BUSY, sqlite3.SQLITE_LOCKED}:
+        return CasebookBusy(f"{path.name} is held by another program")
+    if code == sqlite3.SQLITE_FULL:
+        return DiskFull(f"the disk that holds {path.name} is full")
+    if code in {sqlite3.SQLITE_READONLY, sqlite3.SQLITE_PERM, sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_AUTH}:
+        return NoPermission(f"{path} may not be written, or not be opened, by you")
+    if code == sqlite3.SQLITE_NOTADB:
+        return NotACasebook(f"{path} is no casebook")
+    if code in {sqlite3.SQLITE_CORRUPT}:
+        return DamagedCasebook(f"{path} is damaged ({error})")
+    return CasebookError(f"{path} could not be used ({error})")
+
+
+def file_version(path: Path) -> int:
+    """Return the version of the tables in a file, without changing it."""
+    with translated(path), closing(_connection(path, "mode=ro", 1.0)) as connection:
+        return _check_version(connection, path)
