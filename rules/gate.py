@@ -1,0 +1,207 @@
+"""The gate before energised states. It starts shut, and everything asks this one function.
+
+The lines are data (``gates.yaml``), the checks that clear them look at recorded entries
+only (``gate_checks.py``). Odds never clear a line; they may shut one. Two conditions hold
+beneath all data: a complaint that means stop, and insulation below 1 Mohm.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from typing import Final, Literal
+
+import msgspec
+
+from calc.quantities import ENERGISED_STATES, RUNNING_STATES, STATES
+from calc.sheet import CaseSheet
+from rules.answer import Energise, GateLine
+from rules.facts import facts_of, meets
+from rules.findings import crossings
+from rules.gate_checks import CHECKS, Checked, Evidence
+from rules.gate_record import below_floor, has_run, has_tripped, is_overload_trip, means_stop, typed
+from rules.knowledge import GateRule, Knowledge
+
+NOT_ENERGISED: Final = frozenset(STATES) - ENERGISED_STATES
+DECISIVE: Final = frozenset({"standby", "starting", "loaded"})
+"""States that a machine passes through when it is put back to work: while one is shut, the gate is."""
+
+NEVER_ARRANGED: Final = frozenset({"stalled"})
+"""Lines that guard nothing else are no part of the list that a person works through."""
+
+SAYS_SHUT: Final = "The gate is shut. Site rules and licensed practice decide."
+SAYS_NOTHING_FORBIDS: Final = (
+    "No recorded finding forbids energising; site rules and licensed practice decide."
+)
+
+Situation = Literal["found_running", "ran_until_overload_trip", "overload_trip", "stands"]
+
+
+class ShutLine(msgspec.Struct, frozen=True):
+    """A line that is not cleared, and the states that it keeps shut."""
+
+    line: GateLine
+    states: frozenset[str]
+    wants: tuple[str, ...] = ()
+    """What is still to be read or answered: all of these."""
+
+
+class GateState(msgspec.Struct, frozen=True):
+    """What the gate keeps shut, and why."""
+
+    energise: Energise
+    shut: tuple[ShutLine, ...]
+    every_state: bool = False
+    """Whether nothing energised at all is left: the gate itself could not be judged."""
+
+    def forbids(self, state: str) -> bool:
+        """Whether a state stays shut. A state that is not known to be without power stays shut too."""
+        if state in NOT_ENERGISED:
+            return False
+        return self.every_state or state not in ENERGISED_STATES or any(state in s.states for s in self.shut)
+
+    def lines_for(self, state: str) -> tuple[GateLine, ...]:
+        """Return the lines that keep a state shut."""
+        return tuple(shut.line for shut in self.shut if state in shut.states)
+
+
+def gate(sheet: CaseSheet, knowledge: Knowledge, *, suspects: Mapping[str, float] | None = None) -> GateState:
+    """Judge every line of the gate on what a sheet records.
+
+    Parameters
+    ----------
+    sheet : CaseSheet
+        Any sheet, also a broken one: what cannot be judged stays shut, nothing is raised.
+    knowledge : Knowledge
+        Its ``gates`` hold the lines. Without any the gate stays shut.
+    suspects : mapping of str to float, optional
+        Odds of faults. They may shut a line, they never clear one.
+
+    Returns
+    -------
+    GateState
+        ``forbids(state)`` for one state, ``energise`` for the whole list.
+
+    """
+    lines = [_floor_line(sheet, knowledge)]
+    try:
+        crossed = tuple(crossings(sheet, knowledge))
+        situation = situation_of(sheet, knowledge)
+        for rule in knowledge.gates.values():
+            lines += _judged(rule, Evidence(sheet, knowledge, rule, crossed), situation, suspects or {})
+    except Exception as error:
+        lines.append(_broken(error))
+    if len(lines) == 1:
+        lines.append(_broken("no gate lines are known"))
+    return _state(lines)
+
+
+def situation_of(sheet: CaseSheet, knowledge: Knowledge) -> Situation:
+    """Return how the machine was found: running, tripped by overload, or standing."""
+    entry = knowledge.complaints.get(sheet.complaint)
+    runs = "unknown" if entry is None else entry.runs
+    if has_tripped(sheet, knowledge):
+        if not is_overload_trip(sheet):
+            return "stands"
+        return "ran_until_overload_trip" if has_run(sheet) else "overload_trip"
+    if sheet.complaint == "after_repair" or runs == "no":
+        return "stands"
+    return "found_running" if runs == "yes" or has_run(sheet) else "stands"
+
+
+def _floor_line(sheet: CaseSheet, knowledge: Knowledge) -> ShutLine:
+    """Judge the two conditions that no rule file can lift."""
+    needs = "no complaint that means stop, and no insulation below 1 Mohm on record"
+    checked = Checked("cleared")
+    try:
+        low = below_floor(sheet)
+        if means_stop(sheet, knowledge):
+            checked = Checked("forbids", f"the complaint means stop: {sheet.complaint}")
+        elif low is not None:
+            checked = Checked("forbids", f"{low.measure} read {typed(low)}")
+    except Exception as error:
+        checked = Checked("forbids", f"the sheet could not be judged: {type(error).__name__}")
+    return _line("nothing_means_stop", needs, checked, (), ENERGISED_STATES)
+
+
+def _judged(
+    rule: GateRule, seen: Evidence, situation: Situation, suspects: Mapping[str, float]
+) -> Iterator[ShutLine]:
+    """Yield the line of a rule, split where its exceptions clear only some of the guarded states."""
+    facts = facts_of(seen.sheet)
+    of_kind = "any" in rule.kinds or seen.sheet.machine.kind in rule.kinds
+    if not of_kind or not meets(rule.where, facts):
+        return
+    checked = _check(rule, seen, suspects)
+    states = frozenset(rule.guards) & ENERGISED_STATES
+    if checked.only:
+        states &= frozenset(checked.only)
+    excepted = _excepted(rule, situation) & states if checked.status == "needed" else frozenset()
+    if excepted == states and states:
+        yield _line(rule.id, rule.name, Checked("cleared", _WHY[situation]), rule.asks, states)
+    else:
+        yield _line(rule.id, rule.name, checked, rule.asks, states - excepted)
+
+
+def _check(rule: GateRule, seen: Evidence, suspects: Mapping[str, float]) -> Checked:
+    """Return the gravest answer of a rule's checks; a check that nobody knows clears nothing."""
+    for fault, odds in rule.suspects.items():
+        stands_at = suspects.get(fault, 0.0)
+        if not stands_at < odds:
+            return Checked("forbids", f"{_name(seen, fault)} stands at {stands_at:.0%}")
+    answers = [CHECKS[name](seen) if name in CHECKS else Checked("needed") for name in rule.clears]
+    for status in ("forbids", "needed"):
+        for answer in answers:
+            if answer.status == status:
+                return answer
+    if not answers and not rule.suspects:
+        return Checked("needed")
+    return answers[0] if answers else Checked("cleared", "no such suspect")
+
+
+def _excepted(rule: GateRule, situation: Situation) -> frozenset[str]:
+    """Return the states for which the way the machine was found stands in for the line."""
+    if rule.found_running_clears and situation in {"found_running", "ran_until_overload_trip"}:
+        return RUNNING_STATES | {"starting"} if situation == "found_running" else RUNNING_STATES
+    if rule.overload_trip_clears and situation in {"overload_trip", "ran_until_overload_trip"}:
+        return RUNNING_STATES | {"starting"}
+    return frozenset()
+
+
+_WHY: Final[dict[Situation, str]] = {
+    "found_running": "the machine was found running",
+    "ran_until_overload_trip": "readings of the running machine are on record",
+    "overload_trip": "not asked after an overload trip; look for its cause",
+    "stands": "",
+}
+
+
+def _name(seen: Evidence, fault: str) -> str:
+    entry = seen.knowledge.faults.get(fault)
+    return entry.name if entry else fault.replace("_", " ")
+
+
+def _line(name: str, needs: str, checked: Checked, asks: tuple[str, ...], states: frozenset[str]) -> ShutLine:
+    line = GateLine(id=name, needs=needs, status=checked.status, because=checked.because, asks=asks)
+    wants = (checked.wants or asks[:1]) if checked.status == "needed" else ()
+    return ShutLine(line, states, wants)
+
+
+def _broken(error: object) -> ShutLine:
+    said = error if isinstance(error, str) else f"the sheet could not be judged: {type(error).__name__}"
+    return _line(
+        "unjudged", "a sheet that can be judged", Checked("forbids", str(said)), (), ENERGISED_STATES
+    )
+
+
+def _state(lines: list[ShutLine]) -> GateState:
+    shut = tuple(one for one in lines if one.line.status != "cleared" and one.states)
+    deciding = [one for one in shut if one.states & DECISIVE]
+    needs = [ask.partition("@")[0] for one in deciding for ask in one.wants]
+    energise = Energise(
+        gate="shut" if deciding else "no_finding_forbids",
+        needs=tuple(dict.fromkeys(needs)),
+        because=tuple(one.line.because for one in deciding if one.line.status == "forbids"),
+        lines=tuple(one.line for one in lines if one.states - NEVER_ARRANGED),
+        says=SAYS_SHUT if deciding else SAYS_NOTHING_FORBIDS,
+    )
+    return GateState(energise, shut)

@@ -1,0 +1,38 @@
+"""Which band of a limit a value falls into."""
+
+from __future__ import annotations
+
+import math
+from typing import Final
+
+from rules.amounts import amount
+from rules.facts import Facts, meets
+from rules.knowledge import Limit, LimitBand
+
+NORMAL: Final = LimitBand(verdict="normal")
+
+
+def band_of(limit: Limit, value: float) -> LimitBand:
+    """Return the first band, from the top, that holds a value (in the inner unit).
+
+    ``below`` and ``above`` leave their own boundary out: 5 Mohm is not below 5 Mohm. A
+    value that no band holds, or that was not read, is normal.
+    """
+    if math.isnan(value):
+        return NORMAL
+    for band in limit.bands:
+        under = band.below is None or value < amount(band.below)
+        over = band.above is None or value > amount(band.above)
+        if under and over:
+            return band
+    return NORMAL
+
+
+def concerns(limit: Limit, facts: Facts) -> bool:
+    """Whether a limit speaks about a machine, a state and a reading at all."""
+    if limit.status == "retired":
+        return False
+    kind, state = facts("kind"), facts("state")
+    of_kind = "any" in limit.kinds or kind in limit.kinds
+    in_state = "any" in limit.states or state in limit.states
+    return of_kind and in_state and meets(limit.where, facts)

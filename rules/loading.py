@@ -1,0 +1,205 @@
+"""Load all of ``rules/``, and a shop's own folders, into one :class:`~rules.knowledge.Knowledge`.
+
+A rule file is a mapping of section names to lists of entries (``faults: [...]``); a
+plain list takes its section from the folder or the name of the file. What is wrong is
+collected over all files and raised as one :class:`~calc.errors.InputError`.
+"""
+
+from __future__ import annotations
+
+import dataclasses
+from collections.abc import Iterator, Sequence
+from pathlib import Path
+from typing import Final
+
+import msgspec
+
+from calc.errors import InputError, Problem
+from rules import cache, plain_yaml
+from rules.decoding import decode, did_you_mean
+from rules.knowledge import (
+    Complaint,
+    Entry,
+    Fault,
+    GateRule,
+    Hazard,
+    Knowledge,
+    Limit,
+    Observation,
+    ReadingRule,
+)
+from rules.loosening import loosened_by
+from rules.plain_yaml import Document, spell
+from rules.validators import Mistaken, all_mistakes
+
+SHIPPED: Final = Path(__file__).resolve().parent
+
+SECTIONS: Final[dict[str, type[Entry]]] = {
+    "faults": Fault,
+    "observations": Observation,
+    "complaints": Complaint,
+    "readings": ReadingRule,
+    "limits": Limit,
+    "hazards": Hazard,
+    "gates": GateRule,
+}
+_ALSO_CALLED: Final = {"cautions": "hazards"}
+
+Entries = dict[str, dict[str, Entry]]
+
+
+@dataclasses.dataclass(frozen=True)
+class Place:
+    """Where an entry was written."""
+
+    folder: int
+    document: Document
+    path: plain_yaml.Path
+
+
+Places = dict[tuple[str, str], Place]
+
+
+def load_knowledge(*, extra_folders: Sequence[Path] = ()) -> Knowledge:
+    """Return everything that the rule files say.
+
+    Parameters
+    ----------
+    extra_folders : sequence of Path
+        A shop's own rules. Each adds entries, or overrides shipped ones by id; where it
+        loosens a limit, a caution or the gate, ``Knowledge.loosened`` says so.
+
+    Raises
+    ------
+    InputError
+        With every problem of every file: file, line, entry and field, given, allowed.
+
+    """
+    texts, problems = read_texts(extra_folders)
+    if not problems:
+        key = cache.key_of(texts)
+        if (kept := cache.read(key)) is not None:
+            return kept
+        knowledge, problems = build(texts, extra_folders=extra_folders)
+        if not problems:
+            cache.write(key, knowledge)
+            return knowledge
+    raise InputError(problems)
+
+
+Texts = list[tuple[int, Path, str]]
+"""Folder (0 is the shipped one), file, and the text in it."""
+
+
+def read_texts(extra_folders: Sequence[Path]) -> tuple[Texts, list[Problem]]:
+    """Read every rule file; folders and files that cannot be read are problems."""
+    texts: Texts = []
+    problems: list[Problem] = []
+    for number, folder in enumerate((SHIPPED, *extra_folders)):
+        if not folder.is_dir():
+            problems.append(Problem(str(folder), "", "no such folder", "a folder of rule files"))
+            continue
+        for file in _rule_files(folder, shipped=number == 0):
+            try:
+                texts.append((number, file, file.read_text(encoding="utf-8")))
+            except OSError as error:
+                problems.append(Problem(str(file), "", error.strerror or "unreadable", "a readable file"))
+            except UnicodeDecodeError:
+                problems.append(Problem(str(file), "", "not UTF-8", "text in UTF-8"))
+    return texts, problems
+
+
+def _rule_files(folder: Path, *, shipped: bool) -> Iterator[Path]:
+    if not shipped:
+        yield from sorted({*folder.rglob("*.yaml"), *folder.rglob("*.yml")})
+        return
+    yield from sorted(folder.glob("*.yaml"))
+    for section in sorted(SECTIONS):
+        yield from sorted((folder / section).rglob("*.yaml"))
+
+
+def build(texts: Texts, *, extra_folders: Sequence[Path] = ()) -> tuple[Knowledge, list[Problem]]:
+    """Decode and check rule texts; return what could be decoded, and every problem."""
+    entries: Entries = {section: {} for section in SECTIONS}
+    places: Places = {}
+    problems: list[Problem] = []
+    loosened: list[str] = []
+    for number, file, text in texts:
+        document, found = plain_yaml.read_document(text, file=str(file))
+        problems += found
+        for section, entry, path in _decoded(document, file, problems):
+            known = entries[section].get(entry.id)
+            if known is not None and places[section, entry.id].folder == number:
+                problems.append(
+                    _at(document, path, f"{entry.id}: id", "given twice", "each id once in a folder")
+                )
+            elif known is not None:
+                loosened += loosened_by(known, entry)
+            entries[section][entry.id] = entry
+            places[section, entry.id] = Place(number, document, path)
+    knowledge = msgspec.convert(
+        {**entries, "loosened": loosened, "folders": [str(folder) for folder in extra_folders]}, Knowledge
+    )
+    problems += [_problem(mistaken, places) for mistaken in all_mistakes(knowledge)]
+    return knowledge, problems
+
+
+def _decoded(
+    document: Document, file: Path, problems: list[Problem]
+) -> Iterator[tuple[str, Entry, plain_yaml.Path]]:
+    """Yield the entries of a document that could be decoded; note what is wrong with the others."""
+    for section, base, plain in _sections(document, file, problems):
+        if not isinstance(plain, list):
+            given = "nothing" if plain is None else "no list"
+            problems.append(_at(document, base, section, given, "a list of entries"))
+            continue
+        for index, part in enumerate(plain):
+            path = (*base, index)
+            entry, mistakes = decode(part, SECTIONS[section])
+            name = part.get("id") if isinstance(part, dict) else None
+            label = str(name) if name else f"{section}[{index + 1}]"
+            for mistake in mistakes:
+                where = f"{label}: {spell(mistake.path)}" if mistake.path else label
+                problems.append(_at(document, (*path, *mistake.path), where, mistake.given, mistake.allowed))
+            if entry is not None:
+                yield section, entry, path
+
+
+def _sections(
+    document: Document, file: Path, problems: list[Problem]
+) -> Iterator[tuple[str, plain_yaml.Path, object]]:
+    if isinstance(document.plain, dict):
+        for key, plain in document.plain.items():
+            section = _ALSO_CALLED.get(key, key)
+            if section in SECTIONS:
+                yield section, (key,), plain
+            else:
+                allowed = did_you_mean(key, {*SECTIONS, *_ALSO_CALLED})
+                problems.append(_at(document, (key,), key, "unknown section", allowed))
+        return
+    names = [file.stem, *(parent.name for parent in file.parents)]
+    sections = [_ALSO_CALLED.get(name, name) for name in names]
+    section = next((name for name in sections if name in SECTIONS), None)
+    if section is not None and isinstance(document.plain, list):
+        yield section, (), document.plain
+    elif document.plain is None:
+        problems.append(_at(document, (), "", "no entries", "a list of entries under faults, limits, …"))
+    else:
+        allowed = f"sections: {', '.join(sorted(SECTIONS))}"
+        problems.append(_at(document, (), "", "no section", allowed))
+
+
+def _at(document: Document, path: plain_yaml.Path, where: str, given: str, allowed: str) -> Problem:
+    return Problem(document.file, where, given, allowed, document.line(path))
+
+
+def _problem(mistaken: Mistaken, places: Places) -> Problem:
+    """Give a check's complaint its file and line."""
+    place = places.get((mistaken.section, mistaken.entry))
+    where = ": ".join(part for part in (mistaken.entry, spell(mistaken.path)) if part)
+    if place is None:
+        return mistaken.issue(file=str(SHIPPED), where=where, given=mistaken.given, allowed=mistaken.allowed)
+    line = place.document.line((*place.path, *mistaken.path))
+    return mistaken.issue(
+        file=place.document.file, where=where, given=mistaken.given, allowed=mistaken.allowed, line=line
+    )
