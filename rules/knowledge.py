@@ -47,6 +47,8 @@ class Refinement(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_field
     id: str
     name: str
     share: float
+    shares: dict[str, float] = {}
+    """Per machine kind, where it differs from ``share``; 0 means that it does not occur there."""
     observations: dict[str, float] = {}
     complaints: dict[str, float] = {}
     readings: dict[str, Spread] = {}
@@ -81,6 +83,10 @@ class Fault(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Chance of each complaint given this fault; what is not listed shares what is left."""
     observations: dict[str, float] = {}
     """Chance of "yes"; what is not listed has the observation's base rate."""
+    complaints_by_kind: dict[str, dict[str, float]] = {}
+    """Per machine kind, the complaints to use instead."""
+    observations_by_kind: dict[str, dict[str, float]] = {}
+    """Per machine kind, observations whose chance differs from ``observations``."""
     readings: dict[str, Spread] = {}
     """Readings that no circuit predicts: ``measure`` or ``measure@state``."""
     within: tuple[Refinement, ...] = ()
@@ -94,6 +100,20 @@ class Fault(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     cautions: tuple[str, ...] = ()
     status: Literal["draft", "checked", "retired"] = "draft"
     examples: tuple[Example, ...] = ()
+
+    def complaint_chances(self, kind: str) -> dict[str, float]:
+        """Return the chance of each complaint on a machine kind."""
+        return self.complaints_by_kind.get(kind, self.complaints)
+
+    def observation_chances(self, kind: str) -> dict[str, float]:
+        """Return the chance of "yes" of each observation on a machine kind."""
+        return {**self.observations, **self.observations_by_kind.get(kind, {})}
+
+    def refinement_shares(self, kind: str) -> dict[str, float]:
+        """Return the share of each refinement on a machine kind; they add up to one."""
+        shares = {part.id: part.shares.get(kind, part.share) for part in self.within}
+        total = sum(shares.values())
+        return {id: share / total for id, share in shares.items()} if total > 0 else {}
 
 
 class Observation(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
