@@ -109,12 +109,14 @@ def make_seen(reading: Reading, twin: Twin, instrument: InstrumentError) -> Seen
     transform = twin.transform(reading.measure)
     numbers = np.array([[_finite(reading.values[i], transform) for i in present]])
     y = project(numbers, transform)[0]
-    sigma = _sigma(reading, present, numbers[0], y, twin, ask, transform, instrument)
+    sigma = _sigma(
+        reading=reading, present=present, numbers=numbers[0], y=y, twin=twin, instrument=instrument
+    )
     return Seen(ask=ask, y=y, sigma=sigma, transform=transform, present=present)
 
 
 def _finite(value: Value, transform: Transform) -> float:
-    """An open circuit is read as the model says it: 1e9; the transform's cap does the rest."""
+    """Return a number for any value; an open circuit is 1e9, and the transform's cap does the rest."""
     if math.isinf(value.number):
         return 1e9
     if value.kind == "range" and value.high is not None:
@@ -123,23 +125,27 @@ def _finite(value: Value, transform: Transform) -> float:
 
 
 def _sigma(
+    *,
     reading: Reading,
     present: Sequence[int],
     numbers: Floats,
     y: Floats,
     twin: Twin,
-    ask: Ask,
-    transform: Transform,
     instrument: InstrumentError,
 ) -> Floats:
     """One sigma of level and contrasts in the transformed space."""
-    model = twin.model_error(ask)
+    transform = twin.transform(reading.measure)
+    model = twin.model_error(context(reading))
     floor = max(transform.floor, 1e-12)
     size = float(np.mean(np.abs(numbers)))
     step = max(reading.values[i].resolution for i in present)
-    leads = instrument.lead_ohm if reading.method not in {"four_wire", "volt_drop"} else 0.0
-    absolute = math.sqrt(step * step / 12.0 + instrument.floor**2 + leads**2)
-    between = math.sqrt(step * step / 12.0 + instrument.floor**2)
+    # A meter that shows finer digits than its usual floor is a finer meter, and its leads were taken off.
+    meter_floor = min(instrument.floor, 3.0 * step) if step > 0.0 else instrument.floor
+    leads = min(instrument.lead_ohm, 30.0 * step) if step > 0.0 else instrument.lead_ohm
+    if reading.method in {"four_wire", "volt_drop"}:
+        leads = 0.0
+    absolute = math.sqrt(step * step / 12.0 + meter_floor**2 + leads**2)
+    between = math.sqrt(step * step / 12.0 + meter_floor**2)
     if transform.kind == "linear":
         worth = 1.0 / transform.scale
         share = instrument.share * size * worth

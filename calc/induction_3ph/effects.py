@@ -1,0 +1,216 @@
+"""Effects that the three-phase model understands, and the discrete ways in which each shows.
+
+Severity of an effect is spread evenly in its logarithm between two ends; meaning and unit
+stand beside each default. Attributes can be merged, so two effects may act at once.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from calc.twin import Mode, Severity
+
+OPEN = 200.0  # a series resistance of 200 pu carries half a percent of rated current: open
+
+DEFAULTS: dict[str, float] = {
+    "level": 0.0,  # relative change of the supply voltage
+    "level_sd": 0.026,
+    "unbalance_sd": 0.0042,
+    "no_supply": 0.0,
+    "frequency_change": 0.0,
+    "line_r": 0.0,  # pu, in one line
+    "line": 0.0,
+    "line_place": 0.0,  # 0 before the volt meter, 1 between it and the ohm meter, 2 where both see the motor
+    "phase": 0.0,
+    "phase_r": 0.0,  # pu, inside the winding
+    "turns": 0.0,  # shorted fraction of one phase
+    "reversed": 0.0,
+    "path_r": 0.0,  # resistance of a path between two lines, pu; 0: none
+    "earth_ohm": 0.0,  # resistance from one phase to earth; 0: none
+    "impedance": 1.0,  # all winding impedances times
+    "bars": 0.0,  # broken fraction of the rotor bars
+    "load": 0.0,  # torque over rated where it is set; 0: the latent decides
+    "load_low": 0.28,
+    "load_high": 1.06,
+    "stall": 0.0,
+    "hot": 1.0,
+    "friction": 0.0,  # extra torque over rated
+    "bearing_k": 0.0,  # heat of a bearing over its usual temperature, K
+    "delta": 0.0,
+}
+
+_LINES = (0, 1, 2)
+
+
+def _each(effect: str, count: int, **attributes: float) -> tuple[Mode, ...]:
+    return tuple(
+        Mode(effect=effect, variant=f"{'UVW'[i]}", weight=1.0 / count, fixed={"phase": float(i), **attributes})
+        for i in range(count)
+    )
+
+
+def _severe(
+    modes: tuple[Mode, ...], attribute: str, severity: tuple[float, float]
+) -> tuple[Mode, ...]:
+    step = (Severity(attribute, *severity),)
+    return tuple(
+        Mode(effect=m.effect, variant=m.variant, weight=m.weight, fixed=m.fixed, severity=step) for m in modes
+    )
+
+
+def _one(
+    effect: str, attribute: str, severity: tuple[float, float], sign: float = 1.0, **fixed: float
+) -> tuple[Mode, ...]:
+    low, high = severity
+    ends = Severity(attribute, sign * low, sign * high)
+    return (Mode(effect=effect, fixed=fixed, severity=(ends,)),)
+
+
+def _with_stall(modes: tuple[Mode, ...], share: float) -> tuple[Mode, ...]:
+    """Add the variant in which the shaft stands, with a share of the weight."""
+    running = tuple(
+        Mode(effect=m.effect, variant=m.variant, weight=m.weight * (1.0 - share), fixed=m.fixed, severity=m.severity)
+        for m in modes
+    )
+    standing = tuple(
+        Mode(
+            effect=m.effect,
+            variant=f"{m.variant} standing".strip(),
+            weight=m.weight * share,
+            fixed={**m.fixed, "stall": 1.0},
+            severity=m.severity,
+        )
+        for m in modes
+    )
+    return running + standing
+
+
+def _lines(effect: str, places: dict[int, float], **fixed: float) -> tuple[Mode, ...]:
+    names = {0: "before the volt meter", 1: "between volt meter and ohm meter", 2: "at the motor"}
+    return tuple(
+        Mode(
+            effect=effect,
+            variant=f"L{line + 1}, {names[place]}",
+            weight=weight / 3.0,
+            fixed={"line": float(line), "line_place": float(place), **fixed},
+        )
+        for place, weight in places.items()
+        for line in _LINES
+    )
+
+
+def _series_resistance(severity: tuple[float, float]) -> tuple[Mode, ...]:
+    in_lines = _severe(_lines("series_resistance", {0: 0.34, 1: 0.33, 2: 0.18}), "line_r", severity)
+    inside = _severe(_each("series_resistance", 3), "phase_r", severity)
+    return in_lines + tuple(
+        Mode(effect=m.effect, variant=f"joint of phase {m.variant}", weight=0.15 / 3, fixed=m.fixed, severity=m.severity)
+        for m in inside
+    )
+
+
+def _open_line(_severity: tuple[float, float]) -> tuple[Mode, ...]:
+    return _with_stall(_lines("open_line", {0: 0.5, 1: 0.5}, line_r=OPEN), 0.5)
+
+
+def _open_phase(_severity: tuple[float, float]) -> tuple[Mode, ...]:
+    return _with_stall(_each("open_phase", 3, phase_r=OPEN), 0.4)
+
+
+def _turn_short(severity: tuple[float, float]) -> tuple[Mode, ...]:
+    return _with_stall(_severe(_each("turn_short", 3), "turns", severity), 0.06)
+
+
+def _broken_bars(severity: tuple[float, float]) -> tuple[Mode, ...]:
+    return _one("broken_bars", "bars", severity)
+
+
+def _off_frequency(severity: tuple[float, float]) -> tuple[Mode, ...]:
+    fixed = {"level_sd": 0.05}
+    low = _one("off_frequency", "frequency_change", severity, -1.0, **fixed)
+    high = _one("off_frequency", "frequency_change", severity, 1.0, **fixed)
+    return tuple(
+        Mode(effect=m.effect, variant=v, weight=0.5, fixed=m.fixed, severity=m.severity)
+        for m, v in ((low[0], "low"), (high[0], "high"))
+    )
+
+
+def _friction(severity: tuple[float, float]) -> tuple[Mode, ...]:
+    steps = (Severity("friction", *severity), Severity("bearing_k", 2.0, 45.0))
+    return (Mode(effect="friction", severity=steps),)
+
+
+def _other_connection(_severity: tuple[float, float]) -> tuple[Mode, ...]:
+    ways = (
+        ("star for delta", 0.45, {"impedance": 3.0, "delta": 0.0}),
+        ("delta for star", 0.35, {"impedance": 1 / 3.0, "delta": 1.0}),
+        ("high range on low voltage", 0.1, {"impedance": 4.0}),
+        ("low range on high voltage", 0.1, {"impedance": 0.25}),
+    )
+    modes = tuple(Mode(effect="other_connection", variant=name, weight=w, fixed=fixed) for name, w, fixed in ways)
+    return _with_stall(modes, 0.3)
+
+
+_MAKERS: dict[str, tuple[Callable[[tuple[float, float]], tuple[Mode, ...]], tuple[float, float]]] = {
+    "none": (lambda _s: (Mode(effect="none"),), (1.0, 1.0)),
+    # fraction below rated
+    "low_voltage": (lambda s: _with_stall(_one("low_voltage", "level", s, -1.0), 0.12), (0.08, 0.30)),
+    # fraction above rated
+    "high_voltage": (lambda s: _one("high_voltage", "level", s), (0.08, 0.20)),
+    # one sigma of each component of V2/V1
+    "voltage_unbalance": (lambda s: _one("voltage_unbalance", "unbalance_sd", s), (0.012, 0.05)),
+    "open_line": (_open_line, (1.0, 1.0)),
+    # pu of rated impedance, in one line or joint
+    "series_resistance": (_series_resistance, (0.01, 0.6)),
+    # relative change of frequency, both ways
+    "off_frequency": (_off_frequency, (0.03, 0.22)),
+    "no_supply": (lambda _s: (Mode(effect="no_supply", fixed={"no_supply": 1.0, "stall": 1.0}),), (1.0, 1.0)),
+    # shorted fraction of one phase
+    "turn_short": (_turn_short, (0.003, 0.15)),
+    # resistance of the path between two lines, pu
+    "phase_short": (lambda s: _severe(_each("phase_short", 3), "path_r", s), (0.5, 50.0)),
+    # resistance to earth, ohm
+    "earth_path": (lambda s: _severe(_each("earth_path", 3), "earth_ohm", s), (0.3, 1e5)),
+    "open_phase": (_open_phase, (1.0, 1.0)),
+    "other_connection": (_other_connection, (1.0, 1.0)),
+    "reversed_phase": (lambda _s: _each("reversed_phase", 3, reversed=1.0, stall=1.0), (1.0, 1.0)),
+    # fraction of bars
+    "broken_bars": (_broken_bars, (0.015, 0.25)),
+    # torque over rated
+    "excess_load": (lambda s: _with_stall(_one("excess_load", "load", s), 0.06), (1.12, 2.0)),
+    "light_load": (lambda s: _one("light_load", "load", s), (0.01, 0.28)),
+    "stall": (lambda _s: (Mode(effect="stall", fixed={"stall": 1.0}),), (1.0, 1.0)),
+    # temperature rise times
+    "hot": (lambda s: _one("hot", "hot", s), (1.25, 3.0)),
+    # extra torque over rated
+    "friction": (_friction, (0.003, 0.1)),
+}
+
+EFFECTS = tuple(_MAKERS)
+
+
+def modes(effect: str, severity: tuple[float, float] | None, connection: str | None) -> tuple[Mode, ...]:
+    """Enumerate the ways of an effect on a winding linked in star, delta, or unknown (both, half each).
+
+    Raises
+    ------
+    KeyError
+        If the model knows no such effect.
+    """
+    make, default = _MAKERS[effect]
+    found = make(severity or default)
+    inside = effect in {"turn_short", "open_phase", "reversed_phase", "series_resistance"}
+    if connection in {"star", "delta"} or not inside:
+        return tuple(_linked(m, connection == "delta", 1.0) for m in found)
+    return tuple(_linked(m, delta, 0.5) for m in found for delta in (False, True))
+
+
+def _linked(mode: Mode, delta: bool, share: float) -> Mode:
+    fixed = {"delta": 1.0 if delta else 0.0, **mode.fixed}
+    word = "" if share == 1.0 else (" in delta" if delta else " in star")
+    return Mode(
+        effect=mode.effect,
+        variant=f"{mode.variant}{word}".strip(),
+        weight=mode.weight * share,
+        fixed=fixed,
+        severity=mode.severity,
+    )

@@ -1,0 +1,121 @@
+"""The three-phase network as symmetrical components: terminals, lines, and a winding with faults.
+
+Unitary Fortescue components are used: v012 = F v_abc with F unitary, so that a resistance in
+one phase or line is a rank-one matrix r e e^H, with e the phase's unit vector in components,
+and every such fault is one Sherman-Morrison step (C. L. Fortescue, AIEE Trans. 37 (1918);
+J. Sherman and W. J. Morrison, Ann. Math. Stat. 21 (1950)). All arrays are rows first.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from calc.twin import Floats
+
+Phasors = NDArray[np.complex128]
+
+ALPHA = np.exp(2j * np.pi / 3.0)
+FORTESCUE: Phasors = np.array([[1, 1, 1], [1, ALPHA, ALPHA**2], [1, ALPHA**2, ALPHA]]) / np.sqrt(3.0)
+INVERSE: Phasors = FORTESCUE.conj().T
+_TURN = np.exp(1j * np.pi / 6.0)
+# A delta winding sees the line voltages: positive sequence turned +30 degrees, negative -30.
+_DELTA: Phasors = np.array([_TURN, np.conj(_TURN)])
+
+
+@dataclass(frozen=True)
+class WindingFault:
+    """What is wrong inside the winding; zeros where nothing is. Arrays of shape (rows,).
+
+    ``series`` is a resistance in one phase (200 pu is open), ``shunt`` an admittance across
+    one phase, ``reversed_`` 1 where a phase is reversed. ``phase`` counts from 0.
+    """
+
+    phase: NDArray[np.int64]
+    series: Floats
+    shunt: Phasors
+    reversed_: Floats
+
+
+def winding_admittance(
+    y0: Phasors, y1: Phasors, y2: Phasors, fault: WindingFault, delta: Floats
+) -> Phasors:
+    """Admittance of the winding between its line terminals, positive and negative sequence.
+
+    Parameters
+    ----------
+    y0, y1, y2 : ndarray of complex
+        Sequence admittances of the healthy winding, star-equivalent, shape (rows,). [pu]
+    fault : WindingFault
+        Asymmetry inside the winding.
+    delta : ndarray
+        1.0 where the winding is linked in delta, 0.0 in star.
+
+    Returns
+    -------
+    ndarray of complex
+        Shape (rows, 2, 2).
+    """
+    rows = len(y1)
+    full = np.zeros((rows, 3, 3), dtype=np.complex128)
+    full[:, 0, 0], full[:, 1, 1], full[:, 2, 2] = y0, y1, y2
+    unit = FORTESCUE[:, fault.phase].T
+    if np.any(fault.series > 0.0):
+        full = _with_series(full, unit, fault.series)
+    if np.any(fault.shunt != 0.0):
+        full = full + fault.shunt[:, None, None] * unit[:, :, None] * unit.conj()[:, None, :]
+    if np.any(fault.reversed_ > 0.0):
+        flip = np.eye(3) - 2.0 * fault.reversed_[:, None, None] * unit[:, :, None] * unit.conj()[:, None, :]
+        full = flip @ full @ flip
+    inner = full[:, 1:, 1:]
+    star = inner - full[:, 1:, 0:1] * full[:, 0:1, 1:] / full[:, 0:1, 0:1]
+    turned = _DELTA.conj()[None, :, None] * inner * _DELTA[None, None, :]
+    return np.asarray(np.where(delta[:, None, None] > 0.5, turned, star))
+
+
+def _with_series(admittance: Phasors, unit: Phasors, resistance: Floats) -> Phasors:
+    """Put a resistance in series with the element whose unit vector is given."""
+    column = np.einsum("rij,rj->ri", admittance, unit)
+    row = np.einsum("ri,rij->rj", unit.conj(), admittance)
+    gain = resistance / (1.0 + resistance * np.einsum("ri,ri->r", unit.conj(), column))
+    return np.asarray(admittance - gain[:, None, None] * column[:, :, None] * row[:, None, :])
+
+
+def line_unit(line: NDArray[np.int64]) -> Phasors:
+    """Positive and negative component of one line's unit vector, shape (rows, 2)."""
+    return np.asarray(FORTESCUE[1:, line].T)
+
+
+def with_line_resistance(admittance: Phasors, line: NDArray[np.int64], resistance: Floats) -> Phasors:
+    """Put a resistance into one line before a (rows, 2, 2) admittance. [pu]"""
+    return _with_series(admittance, line_unit(line), resistance)
+
+
+def with_path_between_lines(admittance: Phasors, missing: NDArray[np.int64], conductance: Floats) -> Phasors:
+    """Put a conductance between the two lines other than ``missing``. [pu, star-equivalent]"""
+    span = line_unit((missing + 1) % 3) - line_unit((missing + 2) % 3)
+    return np.asarray(admittance + conductance[:, None, None] * span[:, :, None] * span.conj()[:, None, :])
+
+
+def to_lines(components: Phasors) -> Phasors:
+    """Three line phasors from positive and negative components (rows, 2); no zero sequence."""
+    return np.asarray(components @ INVERSE[:, 1:].T)
+
+
+def line_to_line(phase_values: Phasors) -> Floats:
+    """Magnitudes U-V, V-W, W-U from three phasors, scaled so that a balanced unit set gives 1."""
+    return np.asarray(np.abs(phase_values - np.roll(phase_values, -1, axis=1)) / np.sqrt(3.0))
+
+
+def terminal_resistance(phases: Floats, delta: Floats) -> Floats:
+    """Resistance between terminals U-V, V-W, W-U from three phase resistances, shape (rows, 3).
+
+    Star: the sum of two phases. Delta (phases given star-equivalent, a third of the winding's own):
+    the phase between the terminals in parallel with the other two in series.
+    """
+    star = phases + np.roll(phases, -1, axis=1)
+    own = 3.0 * phases
+    others = own.sum(axis=1, keepdims=True) - own
+    return np.asarray(np.where(delta[:, None] > 0.5, own * others / (own + others), star))

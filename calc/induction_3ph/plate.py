@@ -1,0 +1,321 @@
+"""From the nameplate of a three-phase induction motor to its equivalent circuit, row by row.
+
+The plate is inverted in closed form, so that every row of latents is a machine that
+meets it: output, volts and amps as printed; losses, slip and locked-rotor current within
+their tolerances; what is left of the losses split by latents. Everything is per unit of
+rated line voltage and plate current, star-equivalent.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from calc.nameplate import (
+    poles_from_speed,
+    synchronous_speed_rpm,
+    typical_efficiency,
+    typical_locked_rotor_ratio,
+    typical_power_factor,
+)
+from calc.sheet import Machine, Nameplate, Value
+from calc.tables import code_letter_kva_per_hp
+from calc.twin import Floats
+
+HORSEPOWER_W = 745.69987
+COPPER_K = 235.0  # IEC 60034-1: inferred zero-resistance temperature, degC below zero
+
+LATENTS = (
+    "losses",
+    "current",
+    "slip",
+    "locked",
+    "core_share",
+    "friction_share",
+    "leakage",
+    "deep_bar",
+    "saturation",
+    "rise",
+    "size",
+    "resistance",
+    "level",
+    "unbalance_a",
+    "unbalance_b",
+    "frequency",
+    "sag",
+    "load",
+    "ambient",
+    "severity_1",
+    "severity_2",
+)
+INDEX = {name: place for place, name in enumerate(LATENTS)}
+
+# Typical rise by resistance at rated load, K, and its spread; most class F windings run at a class B rise
+# (common practice).
+_RISE_K = {"A": 48.0, "E": 55.0, "B": 58.0, "F": 65.0, "H": 75.0}
+
+
+@dataclass(frozen=True)
+class Base:
+    """What the plate gives as plain numbers, with how sure each is."""
+
+    power_w: float
+    voltage_v: float
+    current_a: float
+    frequency_hz: float
+    poles: int
+    slip: float
+    slip_spread: float
+    loss_share: float
+    loss_spread: float
+    size_spread: float
+    current_spread: float
+    power_factor: float | None
+    power_factor_spread: float
+    locked_ratio: float
+    locked_spread: float
+    rise_k: float
+    connection: str | None
+    service_factor: float
+
+    @property
+    def apparent_va(self) -> float:
+        """Rated apparent power. [VA]"""
+        return math.sqrt(3.0) * self.voltage_v * self.current_a
+
+    @property
+    def impedance_ohm(self) -> float:
+        """Base impedance per star-equivalent phase. [ohm]"""
+        return self.voltage_v / math.sqrt(3.0) / self.current_a
+
+    @property
+    def synchronous_rpm(self) -> float:
+        """Synchronous speed at rated frequency. [r/min]"""
+        return 120.0 * self.frequency_hz / self.poles
+
+
+@dataclass(frozen=True)
+class Circuit:
+    """Equivalent circuits, one per row, per unit of the plate; resistances hot at rated load."""
+
+    r1: Floats
+    x1: Floats
+    r2: Floats
+    x2: Floats
+    xm: Floats
+    gc: Floats
+    saturation: Floats
+    r2_locked: Floats
+    x_locked: Floats
+    p_out: Floats
+    p_friction: Floats
+    p_stray: Floats
+    losses: Floats
+    slip: Floats
+    flux: Floats
+    rise_k: Floats
+    size: Floats
+
+
+def read_base(machine: Machine) -> Base:
+    """Take the plate apart; what it does not say gets a typical value and a wide spread."""
+    plate = machine.nameplate
+    frequency = plate.number("frequency") or _supply(machine.supply.nominal_frequency) or 50.0
+    voltage = plate.number("voltage") or _supply(machine.supply.nominal_voltage) or 400.0
+    power, current, size_spread = _size(plate, voltage)
+    poles = _poles(plate, frequency)
+    efficiency = plate.number("efficiency")
+    typical = typical_efficiency(power_w=power, poles=poles, frequency_hz=frequency)
+    eta = _share(efficiency) if efficiency else typical
+    pf = plate.number("power_factor")
+    current_spread = 0.022
+    if plate.current is None:
+        pf_guess = pf if pf else typical_power_factor(power_w=power, poles=poles)
+        current = power / (math.sqrt(3.0) * voltage * eta * pf_guess)
+        current_spread = 0.03 if pf and efficiency else 0.08
+    slip, slip_spread = _slip(plate, frequency, poles, power)
+    ratio, ratio_spread = _locked(plate, power, voltage, current, poles)
+    rise_k = _RISE_K.get((plate.insulation_class or "F").upper()[:1], 65.0)
+    return Base(
+        power_w=power,
+        voltage_v=voltage,
+        current_a=current,
+        frequency_hz=frequency,
+        poles=poles,
+        slip=slip,
+        slip_spread=slip_spread,
+        loss_share=1.0 / eta - 1.0,
+        loss_spread=0.07 if efficiency else 0.26,
+        size_spread=size_spread,
+        current_spread=current_spread,
+        power_factor=pf,
+        power_factor_spread=0.012 + 0.04 * (1.0 - pf) if pf else 1.0,
+        locked_ratio=ratio,
+        locked_spread=ratio_spread,
+        rise_k=rise_k,
+        connection=_connection(plate.connection),
+        service_factor=max(plate.number("service_factor") or 1.0, 1.0),
+    )
+
+
+def _supply(value: Value | None) -> float | None:
+    return value.number if value is not None and value.is_read else None
+
+
+def _share(percent_or_share: float) -> float:
+    share = percent_or_share / 100.0 if percent_or_share > 1.0 else percent_or_share
+    return min(max(share, 0.3), 0.985)
+
+
+def _connection(word: str | None) -> str | None:
+    return {"double_star": "star", "double_delta": "delta"}.get(word or "", word)
+
+
+def _size(plate: Nameplate, voltage: float) -> tuple[float, float, float]:
+    """Output, current, and the spread of the size where the plate tells neither."""
+    power, current = plate.number("power"), plate.number("current")
+    if power and current:
+        return power, current, 0.0
+    if power:
+        return power, 0.0, 0.0
+    if current:
+        apparent = math.sqrt(3.0) * voltage * current
+        return 0.72 * apparent if apparent > 3e3 else 0.6 * apparent, current, 0.0
+    return 7500.0, 0.0, 1.3
+
+
+def _poles(plate: Nameplate, frequency: float) -> int:
+    poles = plate.number("poles")
+    if poles:
+        return int(poles)
+    speed = plate.number("speed")
+    return poles_from_speed(speed_rpm=speed, frequency_hz=frequency) if speed else 4
+
+
+def _slip(plate: Nameplate, frequency: float, poles: int, power: float) -> tuple[float, float]:
+    """Rated slip, and its relative spread: the tolerance of IEC 60034-1 and the plate's rounding."""
+    typical = 0.045 * max(power / 1000.0, 0.1) ** -0.28
+    speed = plate.number("speed")
+    if not speed or plate.speed is None:
+        return typical, 0.35
+    synchronous = synchronous_speed_rpm(frequency_hz=frequency, poles=poles)
+    slip = 1.0 - speed / synchronous
+    step = max(plate.speed.resolution, 1.0) / synchronous
+    if slip < 0.25 * step:
+        return typical, 0.35
+    tolerance = 0.13 if power < 1000.0 else 0.085
+    return slip, min(math.hypot(tolerance, 0.3 * step / slip), 0.4)
+
+
+def _locked(
+    plate: Nameplate, power: float, voltage: float, current: float, poles: int
+) -> tuple[float, float]:
+    """Locked-rotor current over rated current, and its relative spread."""
+    ratio = plate.number("locked_rotor_current_ratio")
+    if ratio:
+        return ratio, 0.07
+    if plate.code_letter:
+        span = code_letter_kva_per_hp(plate.code_letter)
+        if span:
+            middle = math.sqrt(span[0] * span[1])
+            amps = middle * power / HORSEPOWER_W * 1000.0 / (math.sqrt(3.0) * voltage)
+            return amps / current, 0.08
+    return typical_locked_rotor_ratio(power_w=power, poles=poles), 0.19
+
+
+def circuit(base: Base, z: Floats) -> Circuit:
+    """Invert the plate for each row of latents.
+
+    Parameters
+    ----------
+    base : Base
+        The plate as numbers.
+    z : ndarray
+        Latents, shape (rows, len(LATENTS)).
+
+    Returns
+    -------
+    Circuit
+        Arrays of shape (rows,), per unit.
+
+    Notes
+    -----
+    Power balance at rated load: P_in = P_out / eta; P_gap = (P_out + P_fw + P_stray) / (1 - s);
+    rotor copper s P_gap; stator copper and core share the rest. R2/s follows from the air-gap
+    power by the quadratic of the series rotor branch, X_m from the reactive power left over.
+    The iterative nameplate methods reach the same circuit (facts 7.10); this one needs no iteration.
+    """
+    column = {name: z[:, place] for name, place in INDEX.items()}
+    current = np.exp(base.current_spread * column["current"])
+    p_out = np.full(len(z), base.power_w / base.apparent_va)
+    losses = p_out * base.loss_share * np.exp(base.loss_spread * column["losses"])
+    p_in = p_out + losses
+    current = np.maximum(current, p_in / 0.955)
+    slip = np.minimum(base.slip * np.exp(base.slip_spread * column["slip"]), 0.35)
+    friction = losses * 0.11 * np.exp(0.45 * column["friction_share"])
+    stray = losses * 0.09
+    p_gap = (p_out + friction + stray) / (1.0 - slip)
+    # What is left for stator copper and core; a plate whose slip eats all the losses keeps a tenth of them.
+    rest = losses - slip * p_gap - friction - stray
+    rest = 0.5 * (rest + np.sqrt(rest * rest + (0.25 * losses) ** 2))
+    core_share = 1.0 / (1.0 + np.exp(0.35 - 0.6 * column["core_share"]))
+    r1 = rest * (1.0 - core_share) / current**2 * np.exp(0.12 * column["resistance"])
+    core = rest * core_share
+    x_locked, r2_locked, x_run = _leakage(base, column, slip, p_gap, current, r1)
+    x1 = 0.5 * x_run
+    x2 = x_run - x1
+    angle = np.arccos(np.clip(p_in / current, 0.2, 0.999))
+    phasor = current * np.exp(-1j * angle)
+    e_gap = 1.0 - phasor * (r1 + 1j * x1)
+    flux = np.abs(e_gap)
+    r2 = slip * _rotor_ratio(flux, p_gap, x2)
+    rotor = e_gap / (r2 / slip + 1j * x2)
+    reactive = np.imag(e_gap * np.conj(phasor - rotor))
+    xm = flux**2 / np.maximum(reactive, 0.12)
+    return Circuit(
+        r1=r1,
+        x1=x1,
+        r2=r2,
+        x2=x2,
+        xm=xm,
+        gc=core / flux**2,
+        saturation=0.10 * np.exp(0.7 * column["saturation"]),
+        r2_locked=r2_locked,
+        x_locked=x_locked,
+        p_out=p_out,
+        p_friction=friction,
+        p_stray=stray,
+        losses=losses,
+        slip=slip,
+        flux=flux,
+        rise_k=base.rise_k * np.exp(0.22 * column["rise"]),
+        size=np.exp(base.size_spread * column["size"]),
+    )
+
+
+def _leakage(
+    base: Base,
+    column: dict[str, Floats],
+    slip: Floats,
+    p_gap: Floats,
+    current: Floats,
+    r1: Floats,
+) -> tuple[Floats, Floats, Floats]:
+    """Locked leakage reactance and rotor resistance, and the unsaturated leakage when running."""
+    ratio = base.locked_ratio * np.exp(base.locked_spread * column["locked"])
+    impedance = 1.0 / ratio
+    r2_hot = slip * p_gap / current**2
+    r2_locked = r2_hot * (1.0 + 0.6 * np.exp(0.6 * column["deep_bar"]))
+    resistive = np.minimum(0.85 * r1 + r2_locked, 0.85 * impedance)
+    r2_locked = np.maximum(resistive - 0.85 * r1, 0.1 * resistive)
+    x_locked = np.sqrt(impedance**2 - resistive**2)
+    x_run = x_locked * (1.0 + 0.25 * np.exp(0.6 * column["leakage"]))
+    return x_locked, r2_locked, np.minimum(x_run, 0.45)
+
+
+def _rotor_ratio(flux: Floats, p_gap: Floats, x2: Floats) -> Floats:
+    """R2/s that takes the air-gap power at this flux: the larger root of the series branch."""
+    half = flux**2 / (2.0 * p_gap)
+    return np.asarray(half * (1.0 + np.sqrt(np.maximum(1.0 - (x2 / half) ** 2, 0.0))))

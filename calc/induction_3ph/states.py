@@ -1,0 +1,252 @@
+"""Currents, voltages, speed and power of the three-phase motor in one state, for many rows."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+
+from calc.induction_3ph.network import (
+    FORTESCUE,
+    Phasors,
+    WindingFault,
+    line_to_line,
+    line_unit,
+    to_lines,
+    winding_admittance,
+    with_line_resistance,
+    with_path_between_lines,
+)
+from calc.induction_3ph.plate import COPPER_K, INDEX, Base, Circuit
+from calc.twin import Floats
+
+ROOT3 = np.sqrt(3.0)
+
+
+@dataclass(frozen=True)
+class Supply:
+    """What arrives at the motor before any fault in a line; arrays of shape (rows,). [pu]"""
+
+    positive: Floats
+    negative: Phasors
+    frequency: Floats
+    regulation: Floats
+
+
+@dataclass(frozen=True)
+class StateResult:
+    """One state of every row, per unit; ``slip`` is 1 where the shaft stands."""
+
+    current: Floats
+    voltage: Floats
+    power: Floats
+    apparent: Floats
+    slip: Floats
+    stalled: Floats
+    copper: Floats
+
+
+def supply(base: Base, z: Floats, rows: Mapping[str, Floats], nominal: float, inverter: bool) -> Supply:
+    """Build the supply of each row: level, unbalance, frequency, regulation."""
+    level = nominal * (1.0 + rows["level"] + rows["level_sd"] * z[:, INDEX["level"]])
+    sway = 0.0012 * z[:, INDEX["frequency"]]
+    frequency = 1.0 + rows["frequency_change"] + sway
+    if inverter:
+        frequency = np.clip(0.85 + 0.22 * z[:, INDEX["frequency"]], 0.15, 2.0)
+        level = level * np.minimum(frequency, 1.0)
+    level = np.maximum(level, 0.05)
+    negative = level * rows["unbalance_sd"] * (z[:, INDEX["unbalance_a"]] + 1j * z[:, INDEX["unbalance_b"]])
+    regulation = 0.0135 * np.exp(0.6 * z[:, INDEX["sag"]])
+    return Supply(positive=level, negative=negative, frequency=frequency, regulation=regulation)
+
+
+def hot_r1(circuit: Circuit, ambient: Floats, temperature: Floats) -> Floats:
+    """Stator resistance at a winding temperature (IEC 60034-2-1: copper, 235)."""
+    return circuit.r1 * (COPPER_K + temperature) / (COPPER_K + 30.0 + circuit.rise_k) + 0.0 * ambient
+
+
+def solve(
+    circuit: Circuit,
+    rows: Mapping[str, Floats],
+    feed: Supply,
+    torque: Floats,
+    *,
+    standing: bool,
+    r1: Floats,
+) -> StateResult:
+    """Solve one state.
+
+    Parameters
+    ----------
+    circuit : Circuit
+        Equivalent circuits. [pu]
+    rows : mapping
+        Attributes of the modes.
+    feed : Supply
+        Voltages and frequency.
+    torque : ndarray
+        Total torque demanded, over the rated air-gap torque. [pu of p_gap rated]
+    standing : bool
+        Whether the shaft stands in this state whatever the mode (start, stall).
+    r1 : ndarray
+        Stator resistance at the temperature of the state. [pu]
+
+    Returns
+    -------
+    StateResult
+        Arrays with one entry, or three, per row.
+
+    Notes
+    -----
+    With x = R2/s and the Thevenin circuit of stator and magnetising branch, the air-gap power p
+    demanded gives p x^2 + (2 p Rth - Vth^2) x + p (Rth^2 + X^2) + Vth^2 rho = 0, where rho is the
+    braking of the negative sequence that a fault in series forces; no root means a stall.
+    """
+    scale = rows["impedance"]
+    standing_rows = np.maximum(rows["stall"], 1.0 if standing else 0.0)
+    f = feed.frequency
+    drop = feed.regulation * np.where(standing_rows > 0.5, 5.5, 0.6)
+    live = 1.0 - rows["no_supply"]
+    v1 = np.maximum(feed.positive * (1.0 - drop), 0.02) * live + 1e-6
+    v2 = feed.negative * live
+    bars = (1.0 + rows["bars"]) / (1.0 - np.minimum(rows["bars"], 0.8))
+    r1 = r1 * scale
+    x1, x2 = circuit.x1 * f * scale, circuit.x2 * f * scale
+    r2 = circuit.r2 * bars * scale
+    xm = _magnetising(circuit, v1, f, scale) * f * scale
+    gc = circuit.gc / scale
+    r2_back = 0.5 * (circuit.r2 + circuit.r2_locked) * bars * scale
+    x_back = 0.5 * circuit.x_locked * f * scale
+    y2 = _admittance(r1, x_back, r2_back / 1.9, x_back, xm, gc)
+    y0 = 1.0 / (r1 + 1j * 0.6 * x1)
+    slip, pulls = _slip(rows, r1, x1, r2, x2, xm, v1, v2, y0, y2, torque * f, r2_back)
+    stalled = np.maximum(standing_rows, 0.0)
+    slip = np.where(stalled > 0.5, 1.0, slip)
+    # At standstill the leakage saturates and the bars are deep.
+    r2_used = np.where(stalled > 0.5, circuit.r2_locked * bars * scale, r2)
+    x_half = 0.5 * circuit.x_locked * f * scale
+    x1_used = np.where(stalled > 0.5, x_half, x1)
+    x2_used = np.where(stalled > 0.5, x_half, x2)
+    y1 = _admittance(r1, x1_used, r2_used / slip, x2_used, xm, gc)
+    y2 = np.where(stalled > 0.5, y1, y2)
+    current, voltage = _network(rows, y0, y1, y2, v1, v2, r1, x1_used)
+    power = np.real((voltage * current.conj()).sum(axis=1)) / 3.0
+    apparent = np.abs(voltage * current).sum(axis=1) / 3.0
+    amps = _earth(rows, current, voltage)
+    return StateResult(
+        current=amps,
+        voltage=line_to_line(_seen_voltage(rows, voltage, current)),
+        power=power,
+        apparent=apparent,
+        slip=slip,
+        stalled=np.maximum(stalled, 1.0 - pulls),
+        copper=(np.abs(current) ** 2).sum(axis=1) / 3.0 * r1,
+    )
+
+
+def _magnetising(circuit: Circuit, v1: Floats, f: Floats, scale: Floats) -> Floats:
+    """Magnetising reactance at this flux: the current grows as 1 - g + g phi^6 beyond the rated flux."""
+    winding = np.where(scale < 0.9, 1.0 / np.sqrt(scale), np.where(scale > 1.1, 1.0 / np.sqrt(scale), 1.0))
+    phi = np.minimum(v1 * winding / f * (0.97 / np.maximum(circuit.flux, 0.5)), 2.0)
+    g = np.minimum(circuit.saturation, 0.8)
+    return circuit.xm / (1.0 - g + g * phi**6)
+
+
+def _admittance(
+    r1: Floats, x1: Floats, r2: Floats, x2: Floats, xm: Floats, gc: Floats
+) -> Phasors:
+    """Input admittance of the T circuit."""
+    inner = gc - 1j / xm + 1.0 / (r2 + 1j * x2)
+    return np.asarray(1.0 / (r1 + 1j * x1 + 1.0 / inner))
+
+
+def _slip(
+    rows: Mapping[str, Floats],
+    r1: Floats,
+    x1: Floats,
+    r2: Floats,
+    x2: Floats,
+    xm: Floats,
+    v1: Floats,
+    v2: Phasors,
+    y0: Phasors,
+    y2: Phasors,
+    p: Floats,
+    r2_back: Floats,
+) -> tuple[Floats, Floats]:
+    """Slip at the demanded air-gap power, and 1.0 where the motor can pull it."""
+    inside = rows["phase_r"] > 0.0
+    series = np.maximum(rows["line_r"], rows["phase_r"])
+    y_zero = np.where(inside & (rows["delta"] > 0.5), y0, 0.0)
+    z_series = (series / 3.0) / (1.0 + (series / 3.0) * (y_zero + y2))
+    rho = np.abs(z_series * y2) ** 2 * 0.5 * r2_back
+    v_eff = np.abs(v1 - z_series * y2 * v2)
+    z_a = r1 + 1j * x1 + z_series
+    v_th = v_eff * xm / np.abs(z_a + 1j * xm)
+    z_th = z_a * 1j * xm / (z_a + 1j * xm)
+    back = np.abs(v2 * y2) ** 2 * 0.5 * r2_back
+    p = p + back
+    x = np.imag(z_th) + x2
+    r_th = np.real(z_th)
+    b = v_th**2 - 2.0 * p * r_th
+    c = p * (r_th**2 + x**2) + v_th**2 * rho
+    disc = b * b - 4.0 * p * c
+    pulls = np.where((disc > 0.0) & (b > 0.0), 1.0, 0.0)
+    root = (np.maximum(b, 1e-9) + np.sqrt(np.maximum(disc, 0.0))) / (2.0 * p)
+    root = np.maximum(root, np.sqrt(r_th**2 + x**2))
+    return np.minimum(r2 / root, 1.0), pulls
+
+
+def _network(
+    rows: Mapping[str, Floats],
+    y0: Phasors,
+    y1: Phasors,
+    y2: Phasors,
+    v1: Floats,
+    v2: Phasors,
+    r1: Floats,
+    x1: Floats,
+) -> tuple[Phasors, Phasors]:
+    """Line currents and phase voltages at the motor's lines, before any resistance in a line."""
+    turns = rows["turns"]
+    fault = WindingFault(
+        phase=rows["phase"].astype(np.int64),
+        series=rows["phase_r"],
+        # The shorted turns are an ideal transformer's secondary behind their own resistance and leakage.
+        shunt=np.where(turns > 0.0, turns / (r1 + 1j * turns * x1), 0.0),
+        reversed_=rows["reversed"],
+    )
+    admittance = winding_admittance(y0, y1, y2, fault, rows["delta"])
+    if np.any(rows["path_r"] > 0.0):
+        path = np.where(rows["path_r"] > 0.0, 1.0 / np.maximum(rows["path_r"], 1e-3), 0.0)
+        admittance = with_path_between_lines(admittance, fault.phase, path)
+    line = rows["line"].astype(np.int64)
+    if np.any(rows["line_r"] > 0.0):
+        admittance = with_line_resistance(admittance, line, rows["line_r"])
+    volts = np.stack([v1 * ROOT3, v2 * ROOT3], axis=1)
+    amps = np.einsum("rij,rj->ri", admittance, volts)
+    return to_lines(amps), to_lines(volts)
+
+
+def _earth(rows: Mapping[str, Floats], current: Phasors, voltage: Phasors) -> Floats:
+    """Line current magnitudes with what flows to earth from one phase."""
+    if np.any(rows["earth_pu"] > 0.0):
+        line = rows["phase"].astype(np.int64)
+        leak = np.where(rows["earth_pu"] > 0.0, 0.5 / np.maximum(rows["earth_pu"], 1e-3), 0.0)
+        index = np.arange(len(line))
+        current = current.copy()
+        current[index, line] += leak * voltage[index, line]
+    return np.abs(current)
+
+
+def _seen_voltage(rows: Mapping[str, Floats], voltage: Phasors, current: Phasors) -> Phasors:
+    """Phase voltages where the volt meter sits: behind a resistance that lies before it."""
+    before = (rows["line_r"] > 0.0) & (rows["line_place"] < 0.5)
+    if not np.any(before):
+        return voltage
+    line = rows["line"].astype(np.int64)
+    unit = line_unit(line)
+    through = np.einsum("ri,ri->r", unit.conj(), current @ FORTESCUE[1:].T)
+    drop = np.where(before, rows["line_r"], 0.0) * through
+    return np.asarray(voltage - to_lines(drop[:, None] * unit))

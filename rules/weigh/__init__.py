@@ -1,0 +1,1 @@
+"""The inference: how readings, observations and the complaint are weighed against every fault."""

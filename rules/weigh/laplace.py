@@ -1,0 +1,262 @@
+"""Fit every mode of every fault to the readings at once, and the evidence of each fit.
+
+Per mode: the most probable latents by damped Gauss-Newton steps on whitened latents, and the
+evidence by Laplace's method, log p(y | mode) = -phi(z*) - 1/2 log det(I + J'WJ) + constants
+(D. J. C. MacKay, "Information Theory, Inference, and Learning Algorithms", 2003, ch. 27).
+Each reading has a multivariate Student t error of NU degrees of freedom, so that one bad reading
+cannot decide (K. L. Lange, R. J. A. Little and J. M. G. Taylor, JASA 84 (1989)). Deterministic.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from calc.observe import Seen
+from calc.twin import Ask, Floats, Mode, Twin, attribute_rows
+
+NU = 5.0
+STARTS = (-0.9, 1.0)  # severity latents where a fit begins
+ROUNDS = 5
+PRUNE_NATS = 18.0
+REACH = 4.5  # no latent goes further out than this
+_STEPS = (1.0, 0.4, 0.12)
+
+
+@dataclass(frozen=True)
+class Fit:
+    """Fits of all modes; arrays are modes first, components of all readings second."""
+
+    z: Floats
+    """Most probable latents, (modes, dim)."""
+    evidence: Floats
+    """Log evidence of each mode, constants included, (modes,)."""
+    predicted: Floats
+    """Transformed prediction at the fit, (modes, m)."""
+    slope: Floats
+    """Derivative of the transformed prediction by the latents, (modes, m, dim)."""
+    covariance: Floats
+    """Posterior covariance of the latents, (modes, dim, dim)."""
+    log_likelihood: Floats
+    """Log density of each reading at the fit, (modes, readings)."""
+    stretch: Floats
+    """Half the squared distance of the latents from typical, plate misfit included, (modes,)."""
+    freedom: Floats
+    """Half the log determinant: what the data took away from the latents' freedom, (modes,)."""
+    alive: NDArray[np.bool_]
+    """False where a mode was given up early as hopeless; its evidence is then a bound."""
+
+
+@dataclass(frozen=True)
+class Frame:
+    """The readings of a sheet laid side by side: which columns belong to which reading."""
+
+    seen: tuple[Seen, ...]
+    y: Floats
+    sigma: Floats
+    groups: tuple[slice, ...]
+    constant: float
+
+    @property
+    def asks(self) -> list[Ask]:
+        """What is asked of the model, one per reading."""
+        return [one.ask for one in self.seen]
+
+
+def frame(seen: Sequence[Seen]) -> Frame:
+    """Lay readings side by side."""
+    groups, start, constant = [], 0, 0.0
+    for one in seen:
+        size = len(one.y)
+        groups.append(slice(start, start + size))
+        start += size
+        constant += t_constant(size) - float(np.log(one.sigma).sum())
+    y = np.concatenate([one.y for one in seen]) if seen else np.zeros(0)
+    sigma = np.concatenate([one.sigma for one in seen]) if seen else np.zeros(0)
+    return Frame(seen=tuple(seen), y=y, sigma=sigma, groups=tuple(groups), constant=constant)
+
+
+def t_constant(size: int) -> float:
+    """Log normalising constant of a multivariate t of NU degrees of freedom and unit scale."""
+    return math.lgamma((NU + size) / 2.0) - math.lgamma(NU / 2.0) - 0.5 * size * math.log(NU * math.pi)
+
+
+class Fitter:
+    """Fits modes of one twin to one frame of readings."""
+
+    def __init__(self, twin: Twin, data: Frame) -> None:
+        self.twin = twin
+        self.data = data
+        self.dim = twin.dim
+
+    def predict(self, modes: Sequence[Mode], z: Floats) -> tuple[Floats, Floats]:
+        """Transformed predictions (modes, k, m) and plate misfits (modes, k, p) for z of (modes, k, dim)."""
+        count, per_mode, dim = z.shape
+        flat = z.reshape(-1, dim)
+        rows = attribute_rows(modes, z, self.twin.defaults)
+        answers = self.twin.predict(flat, rows, self.data.asks)
+        parts = [one.project(answer) for one, answer in zip(self.data.seen, answers, strict=True)]
+        y = np.concatenate(parts, axis=1) if parts else np.zeros((len(flat), 0))
+        plate = self.twin.plate_misfit(flat)
+        return y.reshape(count, per_mode, -1), plate.reshape(count, per_mode, -1)
+
+    def residual(self, y: Floats) -> Floats:
+        """Read minus predicted, over sigma."""
+        return np.asarray((self.data.y - y) / self.data.sigma)
+
+    def reading_cost(self, r: Floats) -> Floats:
+        """Negative log density of each reading without its constant, (..., readings)."""
+        costs = [
+            0.5 * (NU + r[..., g].shape[-1]) * np.log1p((r[..., g] ** 2).sum(axis=-1) / NU) for g in self.data.groups
+        ]
+        return np.stack(costs, axis=-1) if costs else np.zeros((*r.shape[:-1], 0))
+
+    def weights(self, r: Floats) -> Floats:
+        """Weight of each component in the next step: 1 for an ordinary reading, less for a strange one."""
+        w = np.empty_like(r)
+        for g in self.data.groups:
+            size = g.stop - g.start
+            w[..., g] = (NU + size) / (NU + (r[..., g] ** 2).sum(axis=-1, keepdims=True))
+        return w
+
+    def active(self, modes: Sequence[Mode]) -> NDArray[np.int64]:
+        """Latents that change any reading asked for, or the plate's misfit, in any mode."""
+        base = np.full((len(modes), self.dim + 1, self.dim), 0.3)
+        base[:, 1:] += 1.1 * np.eye(self.dim)
+        y, plate = self.predict(modes, base)
+        moved = np.abs(y[:, 1:] - y[:, :1]) / self.data.sigma
+        reach = moved.max(axis=(0, 2), initial=0.0)
+        if plate.shape[2]:
+            reach = np.maximum(reach, np.abs(plate[:, 1:] - plate[:, :1]).max(axis=(0, 2)))
+        return np.flatnonzero(reach > 0.02)
+
+    def objective(self, z: Floats, y: Floats, plate: Floats) -> Floats:
+        """Half the squared latents and plate misfit, and the cost of all readings: (modes, k)."""
+        prior = 0.5 * (z**2).sum(axis=-1) + 0.5 * (plate**2).sum(axis=-1)
+        return np.asarray(prior + self.reading_cost(self.residual(y)).sum(axis=-1))
+
+    def slopes(
+        self, modes: Sequence[Mode], z: Floats, active: NDArray[np.int64], step: float
+    ) -> tuple[Floats, Floats, Floats, Floats]:
+        """Prediction, its derivatives by the active latents, plate misfit and its derivatives."""
+        grid = np.repeat(z[:, None, :], len(active) + 1, axis=1)
+        # Step inwards, so that a bounded severity is not pushed past its end.
+        way = np.where(z[:, active] > 0.0, -step, step)
+        place = np.arange(len(active))
+        grid[:, place + 1, active] += way
+        y, plate = self.predict(modes, grid)
+        dy = (y[:, 1:] - y[:, :1]) / way[:, :, None]
+        dp = (plate[:, 1:] - plate[:, :1]) / way[:, :, None]
+        return y[:, 0], dy.transpose(0, 2, 1), plate[:, 0], dp.transpose(0, 2, 1)
+
+    def normal(self, dy: Floats, dp: Floats, w: Floats) -> tuple[Floats, Floats]:
+        """Whitened slopes and the curvature I + J'WJ on the active latents."""
+        j = dy / self.data.sigma[None, :, None]
+        curvature = np.einsum("mia,mi,mib->mab", j, w, j) + np.einsum("mia,mib->mab", dp, dp)
+        return j, curvature + np.eye(dy.shape[2])
+
+
+def fit_modes(twin: Twin, modes: Sequence[Mode], data: Frame, keep: int = 0) -> Fit:
+    """Fit every mode; ``keep`` names a mode (healthy) that is never given up.
+
+    Returns
+    -------
+    Fit
+        One row per mode, in the order given.
+    """
+    fitter = Fitter(twin, data)
+    active = fitter.active(modes)
+    owner = [i for i, mode in enumerate(modes) for _ in (STARTS if mode.severity else (0.0,))]
+    starts = [s for mode in modes for s in (STARTS if mode.severity else (0.0,))]
+    every = [modes[i] for i in owner]
+    z = np.zeros((len(every), twin.dim))
+    z[:, twin.dim - 2 :] = np.array(starts)[:, None]
+    value = np.full(len(every), np.inf)
+    chosen = np.arange(len(every))
+    for turn in range(ROUNDS):
+        step, heat = (0.5, 9.0) if turn == 0 else (0.12, 1.0)
+        value_now, z_now = _improve(fitter, [every[i] for i in chosen], z[chosen], active, step, heat)
+        z[chosen], value[chosen] = z_now, value_now
+        if turn == 1:
+            chosen = _prune(value, owner, keep)
+    best = _best_start(value, owner, len(modes))
+    return _finish(fitter, modes, z[best], value[best], active, chosen, best)
+
+
+def _improve(
+    fitter: Fitter, modes: Sequence[Mode], z: Floats, active: NDArray[np.int64], step: float, heat: float
+) -> tuple[Floats, Floats]:
+    """One damped Gauss-Newton step of all modes; the first is taken with the variance times ``heat``."""
+    y, dy, plate, dp = fitter.slopes(modes, z, active, step)
+    r = fitter.residual(y)
+    w = fitter.weights(r / math.sqrt(heat)) / heat
+    j, curvature = fitter.normal(dy, dp, w)
+    pull = np.einsum("mia,mi->ma", j, w * r) - np.einsum("mia,mi->ma", dp, plate) - z[:, active]
+    move = np.linalg.solve(curvature, pull[:, :, None])[:, :, 0]
+    length = np.linalg.norm(move, axis=1, keepdims=True)
+    move *= np.minimum(1.0, 4.0 / np.maximum(length, 1e-9))
+    tries = np.repeat(z[:, None, :], len(_STEPS) + 1, axis=1)
+    for k, share in enumerate(_STEPS):
+        tries[:, k, active] = np.clip(z[:, active] + share * move, -REACH, REACH)
+    y_try, plate_try = fitter.predict(modes, tries)
+    value = fitter.objective(tries, y_try, plate_try)
+    pick = np.argmin(value, axis=1)
+    row = np.arange(len(z))
+    return value[row, pick], tries[row, pick]
+
+
+def _prune(value: Floats, owner: Sequence[int], keep: int) -> NDArray[np.int64]:
+    """Keep the better start of each mode, and of those the ones within reach of the best."""
+    best = _best_start(value, owner, max(owner) + 1)
+    near = value[best] < value[best].min() + PRUNE_NATS
+    near[keep] = True
+    return best[near]
+
+
+def _best_start(value: Floats, owner: Sequence[int], count: int) -> NDArray[np.int64]:
+    best = np.full(count, -1)
+    for place, mode in enumerate(owner):
+        if best[mode] < 0 or value[place] < value[best[mode]]:
+            best[mode] = place
+    return best
+
+
+def _finish(
+    fitter: Fitter,
+    modes: Sequence[Mode],
+    z: Floats,
+    value: Floats,
+    active: NDArray[np.int64],
+    chosen: NDArray[np.int64],
+    best: NDArray[np.int64],
+) -> Fit:
+    """Evidence, covariance and per-reading densities at the fits."""
+    y, dy, plate, dp = fitter.slopes(modes, z, active, 0.12)
+    r = fitter.residual(y)
+    cost = fitter.reading_cost(r)
+    _, curvature = fitter.normal(dy, dp, fitter.weights(r))
+    freedom = 0.5 * np.linalg.slogdet(curvature)[1]
+    stretch = 0.5 * (z**2).sum(axis=1) + 0.5 * (plate**2).sum(axis=1)
+    covariance = np.repeat(np.eye(fitter.dim)[None], len(modes), axis=0)
+    covariance[:, active[:, None], active[None, :]] = np.linalg.inv(curvature)
+    slope = np.zeros((len(modes), len(fitter.data.y), fitter.dim))
+    slope[:, :, active] = dy
+    constants = np.array(
+        [t_constant(g.stop - g.start) - np.log(fitter.data.sigma[g]).sum() for g in fitter.data.groups]
+    )
+    alive = np.isin(best, chosen)
+    return Fit(
+        z=z,
+        evidence=-value - freedom + fitter.data.constant,
+        predicted=y,
+        slope=slope,
+        covariance=covariance,
+        log_likelihood=-cost + constants,
+        stretch=stretch,
+        freedom=freedom,
+        alive=alive,
+    )

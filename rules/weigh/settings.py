@@ -1,0 +1,36 @@
+"""How evidence is weighed: the typed form of ``weighing.yaml``."""
+
+from __future__ import annotations
+
+from functools import cache
+from importlib.resources import files
+
+import msgspec
+import yaml
+
+
+class Family(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
+    """Readings that go together on one machine."""
+
+    correlation: float
+    measures: tuple[str, ...]
+
+
+class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
+    """Numbers of the weighing; the YAML file says what each does."""
+
+    soft_power: float
+    impossible_state: float
+    standing_reading: float
+    unlisted_complaint: float
+    other_odds: float
+    other_soft_nats: float
+    spread_nu: float
+    families: dict[str, Family]
+
+
+@cache
+def weighing() -> Weighing:
+    """Load ``weighing.yaml`` once."""
+    text = (files("rules.weigh") / "weighing.yaml").read_text(encoding="utf-8")
+    return msgspec.convert(yaml.safe_load(text), Weighing)
