@@ -1,27 +1,30 @@
 """Compose one case: read, weigh, log. No terminal, no printing.
 
-Every method that changes something writes one entry to the casebook and returns
-only when that is on disk. The screens and the plain dialogue both stand on this.
+Every method that changes something writes to the casebook and returns only when
+that is on disk. The screens and the plain dialogue both stand on this.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
+
+import msgspec
 
 from calc.quantities import ENERGISED_STATES
+from casebook import bodies
+from rules.findings import findings
 from tui.typed import Understood, understand
+from tui.words import number_range
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
-    from calc.sheet import CaseSheet
-    from rules.answer import Diagnosis
+    from calc.sheet import CaseSheet, Machine
+    from casebook.book import Casebook
+    from casebook.fold import Case
+    from rules.answer import Band, Diagnosis, FaultOdds
     from rules.knowledge import Knowledge
-    from tui.book import Book, CaseView
-
-Raw = dict[str, Any]
-"""Part of a case sheet as its YAML would hold it: ids, and values as they were typed."""
 
 
 @dataclass(frozen=True)
@@ -32,157 +35,170 @@ class Weighed:
     moved: Mapping[str, float]
 
 
-@dataclass(frozen=True)
-class Closing:
-    """What a closed case teaches: what it really was, how that is known, and what was done."""
-
-    found: tuple[str, ...]
-    confirmed: str = "believed"
-    """``teardown``, ``repair``, ``measured`` or ``believed``: only the first two teach the odds."""
-    done: str = ""
-    parts: str = ""
-    minutes: float | None = None
-    retest: tuple[str, ...] = ()
-    note: str = ""
-
-
 class Visit:
     """One case on one machine, from the complaint to the closed entry."""
 
-    def __init__(self, book: Book, case: str, *, person: str, knowledge: Knowledge) -> None:
+    def __init__(self, book: Casebook, case: str, *, person: str, knowledge: Knowledge) -> None:
         self.book = book
-        self.case = case
         self.person = person
         self.knowledge = knowledge
-        self.view: CaseView = book.view(case)
+        self.case: Case = book.case(case)
         self._weighed: Weighed | None = None
-        self._weighed_at = -1
+        self._weighed_sheet: CaseSheet | None = None
 
     @classmethod
-    def new(
-        cls, book: Book, *, person: str, knowledge: Knowledge, machine: Raw, complaint: str, kit: Sequence[str] | None
-    ) -> Visit:
-        """Open a case: the machine as a sheet would hold it, one complaint, and the kit that is carried."""
-        sheet = {"format": 1, "machine": machine, "complaint": complaint}
-        if kit is not None:
-            sheet["kit"] = list(kit)
-        book.check(sheet)
-        return cls(book, book.open_case(sheet, person=person), person=person, knowledge=knowledge)
+    def new(cls, book: Casebook, sheet: CaseSheet, *, person: str, knowledge: Knowledge) -> Visit:
+        """Open a case with what a sheet says: machine, complaint, kit, and readings if there are any."""
+        return cls(book, book.log_sheet(sheet, person), person=person, knowledge=knowledge)
 
     # what stands
 
     @property
     def sheet(self) -> CaseSheet:
-        """The case so far as typed sheet."""
-        return self.book.check(self.view.sheet)
+        """The case so far, corrections applied."""
+        return self.case.sheet
 
     @property
-    def kind(self) -> str:
-        """The machine kind."""
-        return str(self.view.sheet["machine"]["kind"])
+    def isolation(self) -> bodies.Isolation | None:
+        """The isolation record that holds now, or None."""
+        last = self.case.isolation[-1].what if self.case.isolation else None
+        return last if last is not None and last.isolated else None
 
-    def refresh(self) -> CaseView:
+    def refresh(self) -> Case:
         """Read the case again, with what others have added to it."""
-        self.view = self.book.view(self.case)
-        return self.view
+        self.case = self.book.case(self.case.id)
+        return self.case
 
     # what is typed
 
     def understand(self, measure: str, state: str, text: str, **context: str) -> Understood:
         """Read typed text for one measure; nothing is stored. The echo says in words what was understood.
 
+        ``context`` holds what goes with it as typed: ``temperature="24"``, ``method="four_wire"``.
         Raises InputError where the text is no such reading.
         """
-        return understand(self.sheet.machine, self.knowledge, measure=measure, state=state, text=text, context=context)
+        return understand(self.case.machine, self.knowledge, measure, state, text, context)
 
-    def record(self, reading: Understood) -> str:
-        """Store a reading that was echoed, with the band and the limits that are shown beside it."""
-        return self._put("reading", {**reading.raw, "shown": self._shown(reading)})
+    def record(self, understood: Understood) -> str:
+        """Store a reading that was echoed, with the band and the limit that stood beside it."""
+        return self._put(self._taken(understood))
 
-    def observe(self, observation: str, seen: bool) -> str:
-        """Store one answer to an observation."""
-        return self._put("observation", {"observation": observation, "seen": seen})
+    def observe(self, observation: str, answer: bool | None) -> str:
+        """Store one answer to an observation; None takes an earlier one back."""
+        return self._put(bodies.Observed(observation=observation, answer=answer))
 
-    def set_machine(self, machine: Raw) -> str:
-        """Store the machine again, as it now reads: nameplate, supply, starter, load."""
-        self.book.check({**self.view.sheet, "machine": machine})
-        return self._put("nameplate", {"machine": machine})
+    def set_machine(self, machine: Machine) -> None:
+        """Store what is now known of the machine; blanks outside the plate change nothing."""
+        facts = msgspec.structs.replace(bodies.facts_of_machine(machine), kind=machine.kind, tag=machine.tag)
+        self._put(bodies.NameplateRead(nameplate=machine.nameplate), facts)
 
     def set_complaint(self, complaint: str) -> str:
-        """Store another complaint."""
-        self.book.check({**self.view.sheet, "complaint": complaint})
-        return self._put("complaint", {"complaint": complaint})
+        """Store another complaint, as a correction of the first line."""
+        first = self.case.lines[0]
+        opened = bodies.Opened(kind=self.case.machine.kind, complaint=complaint, tag=self.case.machine.tag)
+        return self.correct(first.entry.id, opened)
 
     def set_kit(self, kit: Sequence[str]) -> str:
         """Store what this technician carries."""
-        return self._put("kit", {"kit": list(kit)})
+        return self._put(bodies.KitCarried(kit=tuple(kit)))
 
     def skip(self, key: str, why: str = "") -> str:
-        """Remember that a reading or an observation cannot be taken now; it is not proposed again."""
-        return self._put("skipped", {"key": key, "why": why})
+        """Remember that ``measure@state``, or an observation, cannot be taken here."""
+        measure, at, state = key.partition("@")
+        if at:
+            return self._put(bodies.Skipped(measure=measure, state=state, why=why))
+        return self._put(bodies.Skipped(observation=key, why=why))
 
     def note(self, text: str) -> str:
         """Store a remark."""
-        return self._put("note", {"text": text})
+        return self._put(bodies.Note(text=text))
 
-    def correct(self, entry: str, reading: Understood | None = None, *, why: str = "") -> str:
-        """Take back an earlier entry, or put another reading in its place. The earlier one stays in the log."""
-        body: Raw = {"corrects": entry, "why": why}
-        if reading is not None:
-            body["body"] = {**reading.raw, "shown": self._shown(reading)}
-        return self._put("correction", body)
+    def correct(self, entry: str, instead: bodies.Body | Understood | None, *, why: str = "") -> str:
+        """Put something else in the place of an entry, or strike it out (None); the log keeps both."""
+        body = self._taken(instead) if isinstance(instead, Understood) else instead
+        made = self.book.correct(self.case.id, entry, body, person=self.person, why=why)
+        self.refresh()
+        return made.id
 
     # what protects
 
-    def isolate(self, person: str, *, proved_dead: bool, tester_proved: bool, note: str = "") -> str:
-        """Store the isolation record: who isolated and locked out, and whether it was proved dead."""
-        body = {"person": person, "proved_dead": proved_dead, "tester_proved": tester_proved, "note": note}
-        return self._put("isolation", body)
+    def isolate(self, record: bodies.Isolation) -> str:
+        """Store who isolated and locked out what and how it was proved dead; or that this was lifted."""
+        return self._put(record)
 
-    def acknowledge(self, state: str, hazards: Sequence[str]) -> str:
-        """Store that the hazards of a state were read and accepted."""
-        return self._put("acknowledged", {"state": state, "hazards": list(hazards)})
+    def acknowledge(self, state: str, hazards: Sequence[str], shown: str) -> str:
+        """Store that the hazards of a state were read, in the words that were shown."""
+        return self._put(bodies.HazardAcknowledged(hazards=tuple(hazards), about=state, shown=shown))
 
     def wants_first(self, state: str, hazards: Sequence[str]) -> str:
         """Return what must come before a reading in a state: ``isolation``, ``acknowledge``, or nothing."""
-        if state == "isolated" and not self.view.isolated:
-            return "isolation"
-        new = set(hazards) - set(self.view.acknowledged.get(state, ()))
-        return "acknowledge" if state in ENERGISED_STATES and new else ""
+        if state == "isolated":
+            record = self.isolation
+            return "" if record is not None and record.proved_dead else "isolation"
+        if state not in ENERGISED_STATES:
+            return ""
+        here = [logged.what for logged in self.case.hazards if logged.what.about == state]
+        known = {hazard for acknowledged in here for hazard in acknowledged.hazards}
+        return "acknowledge" if set(hazards) - known else ""
 
     # what it means
 
     def weigh(self) -> Weighed:
-        """Return the answer to the case as it stands; worked out again only after something was added."""
-        stamp = len(self.view.entries)
-        if self._weighed is None or self._weighed_at != stamp:
+        """Return the answer to the case as it stands; worked out again only when the sheet has changed."""
+        sheet = self.sheet
+        if self._weighed is None or sheet != self._weighed_sheet:
             before = self._weighed.diagnosis if self._weighed else None
-            now = weigh(self.sheet, self.knowledge, name=self.view.number)
-            self._weighed, self._weighed_at = Weighed(now, moved(before, now)), stamp
+            now = weigh(sheet, self.knowledge, name=self.case.number)
+            self._weighed, self._weighed_sheet = Weighed(now, moved(before, now)), sheet
         return self._weighed
 
-    def close(self, closing: Closing) -> str:
-        """Close the case with what was found, and with the odds as they stood."""
-        odds = {fault.id: round(fault.probability, 4) for fault in self.weigh().diagnosis.faults[:8]}
-        return self._put("closed", {**closing.__dict__, "odds_shown": odds})
+    def is_proposed(self, key: str) -> bool:
+        """Whether something may still be proposed: it was not put aside as impossible here."""
+        return key not in {logged.what.key for logged in self.case.skipped}
+
+    def conclude(self, fault: FaultOdds, *, decision: str = "", note: str = "") -> str:
+        """Store what the technician concludes before it is confirmed."""
+        return self._put(
+            bodies.Concluded(fault=fault.id, probability=fault.probability, decision=decision, note=note)
+        )
+
+    def keep_shown(self) -> str:
+        """Store what the screen says now, as evidence for a time when rules and limits have changed."""
+        return self._put(bodies.Shown.of(self.weigh().diagnosis))
+
+    def close(self, closing: bodies.Closed) -> str:
+        """Close the case with what was found; what the screen said at that moment is kept with it."""
+        return self._put(bodies.Shown.of(self.weigh().diagnosis), closing)
 
     def reopen(self, why: str) -> str:
-        """Open a closed case again."""
-        return self._put("reopened", {"why": why})
+        """Go on with a closed case."""
+        return self._put(bodies.Reopened(why=why))
 
-    def _put(self, kind: str, body: Raw) -> str:
-        """Write one entry; it is on disk when this returns."""
-        entry = self.book.put(self.case, kind, body, person=self.person)
+    def _put(self, *entries: bodies.Body) -> str:
+        """Write entries, all or none; they are on disk when this returns the id of the last."""
+        made = self.book.record(self.case.id, *entries, person=self.person)
         self.refresh()
-        return entry
+        return made[-1].id
 
-    def _shown(self, reading: Understood) -> Raw:
-        """Return what the screen says beside a reading now, so that it can be read when limits have changed."""
-        if self._weighed is None:
-            return {"echo": reading.echo}
-        bands = [band for band in self._weighed.diagnosis.expected if f"{band.measure}@{band.state}" == reading.key]
-        shown = {"echo": reading.echo}
-        return {**shown, "band": [bands[0].low, bands[0].high, bands[0].unit]} if bands else shown
+    def _taken(self, understood: Understood) -> bodies.ReadingTaken:
+        """Return a reading as it is logged: with the band that was shown and the limit that it crosses."""
+        reading = understood.reading
+        bands = self._weighed.diagnosis.expected if self._weighed else ()
+        band = next((band for band in bands if f"{band.measure}@{band.state}" == reading.key), None)
+        alone = msgspec.structs.replace(self.sheet, readings=(reading,))
+        crossed = next(iter(findings(alone, self.knowledge)), None)
+        return bodies.ReadingTaken(
+            reading=reading,
+            expected=band_text(band) if band else "",
+            limit=crossed.says if crossed else "",
+            source=crossed.source if crossed else "",
+        )
+
+
+def recall(book: Casebook, tag: str) -> Machine | None:
+    """Return the machine with a tag as its newest case knows it; None where the casebook does not know it."""
+    cases = book.machine_cases(tag)
+    return cases[-1].machine if cases else None
 
 
 def weigh(sheet: CaseSheet, knowledge: Knowledge, *, name: str = "") -> Diagnosis:
@@ -194,8 +210,13 @@ def weigh(sheet: CaseSheet, knowledge: Knowledge, *, name: str = "") -> Diagnosi
 
 def moved(before: Diagnosis | None, now: Diagnosis) -> dict[str, float]:
     """Return by how much each fault's probability moved from one answer to the next."""
-    earlier = {fault.id: fault.probability for fault in before.faults} if before else {}
     later = {fault.id: fault.probability for fault in now.faults}
-    if not earlier:
+    if before is None:
         return dict.fromkeys(later, 0.0)
+    earlier = {fault.id: fault.probability for fault in before.faults}
     return {fault: later.get(fault, 0.0) - earlier.get(fault, 0.0) for fault in earlier | later}
+
+
+def band_text(band: Band) -> str:
+    """Return a band as text, such as ``13.1 to 15.0 A (90 %)``."""
+    return f"{number_range(band.low, band.high)} {band.unit}".rstrip() + f" ({100 * band.coverage:.0f} %)"

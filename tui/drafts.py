@@ -61,11 +61,11 @@ class Drafts:
             return [path.stem for path in sorted(files, key=lambda path: -path.stat().st_mtime)]
         return []
 
-    def remember(self, key: str, value: Any) -> None:  # noqa: ANN401 - whatever JSON holds
+    def remember(self, key: str, value: object) -> None:
         """Keep an answer that is asked only once, such as the kit."""
         self.save("remembered", {**self.load("remembered"), key: value})
 
-    def recall(self, key: str) -> Any:  # noqa: ANN401 - whatever JSON holds
+    def recall(self, key: str) -> object:
         """Return a remembered answer, or None."""
         return self.load("remembered").get(key)
 

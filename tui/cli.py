@@ -1,0 +1,96 @@
+"""The command line: finds the command, and turns every way of failing into a message and an exit status."""
+
+from __future__ import annotations
+
+import importlib
+import os
+import sys
+from typing import TYPE_CHECKING
+
+from tui import parser
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+    from collections.abc import Sequence
+
+DONE, FAILED, WRONG_INPUT, INTERRUPTED = 0, 1, 2, 130
+
+
+def main(argv: Sequence[str] | None = None) -> int:
+    """Run one command; return 0 done, 1 could not be done, 2 the input is wrong."""
+    try:
+        arguments = parser.build().parse_args(argv)
+        status = run(arguments)
+        sys.stdout.flush()
+    except BrokenPipeError:
+        return _reader_left()
+    except KeyboardInterrupt:
+        return INTERRUPTED
+    except SystemExit as leaving:  # argparse has said what it had to say
+        return leaving.code if isinstance(leaving.code, int) else FAILED
+    return status
+
+
+def run(arguments: Namespace) -> int:
+    """Run a parsed command line; what goes wrong is told in one line each."""
+    if arguments.version:
+        print(f"plateside {_version()}")
+        return DONE
+    from calc.errors import InputError, PlatesideError
+
+    try:
+        return _command(arguments)
+    except InputError as error:
+        return _told(str(error), WRONG_INPUT)
+    except PlatesideError as error:
+        return _told(str(error), FAILED)
+    except BrokenPipeError:
+        raise
+    except OSError as error:
+        return _told(_os_words(error), FAILED)
+    except Exception as error:  # nothing unexpected may reach a person as a traceback
+        return _told(unexpected(error), FAILED)
+
+
+def unexpected(error: Exception) -> str:
+    """Keep the details of a mistake of the program in a log file; return the one line to show."""
+    from tui import mishaps
+
+    return mishaps.keep(error)
+
+
+def _command(arguments: Namespace) -> int:
+    """Load the module of the command and run it."""
+    modules = {command.word: command.module for command in parser.COMMANDS}
+    name = modules.get(arguments.command, "visit")
+    status: int = importlib.import_module(f"tui.commands.{name}").run(arguments)
+    return status
+
+
+def _version() -> str:
+    """Return the version of the program."""
+    import plateside
+
+    return plateside.__version__
+
+
+def _told(text: str, status: int) -> int:
+    """Write a message to standard error; return the exit status."""
+    from tui.output import warn
+
+    sys.stdout.flush()
+    warn(text)
+    return status
+
+
+def _os_words(error: OSError) -> str:
+    """Return what the operating system refused, in words."""
+    place = f"{error.filename}: " if error.filename else ""
+    return f"{place}{error.strerror or error}"
+
+
+def _reader_left() -> int:
+    """Leave in silence when whoever reads standard output has gone."""
+    devnull = os.open(os.devnull, os.O_WRONLY)
+    os.dup2(devnull, sys.stdout.fileno())
+    return DONE

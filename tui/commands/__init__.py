@@ -1,0 +1,1 @@
+"""One module per command: ``run(arguments)`` does it and returns the exit status."""

@@ -1,0 +1,57 @@
+"""``plateside cases``: list cases, or search them."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import msgspec
+
+from casebook.book import open_casebook
+from tui import cli, places
+from tui.columns import columns
+from tui.harmless import harmless
+from tui.output import say, say_json, warn
+from tui.words import plain
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+
+    from casebook.store import CaseRow
+
+HEAD = ("case", "last entry", "machine", "complaint", "status", "fault")
+ROOM = (9, 10, 17, 16, 6, 12)  # eighty columns with the gaps between
+
+
+def run(arguments: Namespace) -> int:
+    """Print the cases that hold every word, newest first."""
+    path = places.casebook_path(arguments)
+    if not path.exists():
+        warn(f"there is no casebook {path} yet; `plateside log SHEET` or `plateside` starts one")
+        return cli.FAILED
+    with open_casebook(path) as book:
+        rows = book.search(" ".join(arguments.words), limit=max(1, arguments.limit))
+        for row in rows if arguments.json else ():
+            say_json(msgspec.to_builtins(row))
+    if arguments.json:
+        return cli.DONE
+    if not rows:
+        warn("no case holds all of these words" if arguments.words else "the casebook is empty")
+        return cli.DONE
+    say(columns([_cells(row) for row in rows], head=HEAD))
+    return cli.DONE
+
+
+def _cells(row: CaseRow) -> list[str]:
+    """Return one case as cells that fit into eighty columns."""
+    fault = row.found or (f"{row.suspect}?" if row.suspect else "")
+    texts = (
+        row.number,
+        f"{row.last_utc.astimezone():%Y-%m-%d}",
+        row.tag or "-",
+        row.complaint,
+        row.status,
+        fault,
+    )
+    return [
+        harmless(plain(text) if place > 2 else text, limit=ROOM[place]) for place, text in enumerate(texts)
+    ]

@@ -1,0 +1,33 @@
+"""``plateside demo``: the screens on a throw-away casebook of an invented plant."""
+
+from __future__ import annotations
+
+import tempfile
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from calc.errors import PlatesideError
+from tui import cli, places
+from tui.commands import visit
+from tui.output import say
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+
+
+def run(arguments: Namespace) -> int:
+    """Build the plant's casebook; start the screens on it, or only write it where ``--build`` says."""
+    from tui.demo.build import build
+
+    knowledge = places.knowledge(arguments)
+    if arguments.build:
+        target = Path(arguments.build).expanduser()
+        if target.exists():
+            raise PlatesideError(f"{target} exists already; name a new file")
+        say(f"{target}: {build(target, knowledge)} cases of the invented Tern Point cannery")
+        return cli.DONE
+    visit.need_terminal(plain=arguments.plain)
+    with tempfile.TemporaryDirectory(prefix="plateside-demo-", ignore_cleanup_errors=True) as folder:
+        path = Path(folder) / "tern-point.db"
+        build(path, knowledge)
+        return visit.start(path, arguments)

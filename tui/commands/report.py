@@ -1,0 +1,25 @@
+"""``plateside report``: the printed sheet of one case, or the tag for the repair shop."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from casebook.book import open_casebook
+from tui import cli, page, places, report
+from tui.compose import weigh
+from tui.output import say
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+
+
+def run(arguments: Namespace) -> int:
+    """Print the sheet of one case as text or as HTML."""
+    knowledge = places.knowledge(arguments)
+    with open_casebook(places.casebook_path(arguments)) as book:
+        case = book.case(arguments.case)
+    diagnosis = weigh(case.sheet, knowledge, name=case.number)
+    build = page.shop_tag if arguments.tag else page.sheet_page
+    sheet = build(case, diagnosis, knowledge)
+    say(report.as_html(sheet) if arguments.html else report.as_text(sheet))
+    return cli.DONE

@@ -1,0 +1,310 @@
+"""The printed sheet of one case, as content: what was read, what it means, what was found. No layout."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+from calc.quantities import MEASURES
+from calc.units import find_unit
+from tui.answer_text import NO_MODEL, NOTHING_FORBIDS, condition
+from tui.compose import band_text
+from tui.words import (
+    complaint_name,
+    fault_name,
+    kind_name,
+    measure_name,
+    percent,
+    plain,
+    question,
+    reading_text,
+    value_text,
+)
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Sequence
+
+    from calc.sheet import Machine, Reading, Value
+    from casebook.fold import Case
+    from rules.answer import Band, Diagnosis
+    from rules.knowledge import Knowledge
+
+DEFERRAL = (
+    "This sheet records readings and what they make likely. It replaces no standard, no local code and no "
+    "site rule; limits are quoted with their source, the edition at hand decides. Work on and near "
+    "electrical equipment, and the decision to energise, belong to qualified persons under licensed practice."
+)
+CONTEXT = (
+    "temperature",
+    "test_voltage",
+    "speed",
+    "at",
+    "links",
+    "method",
+    "after_stop",
+    "position",
+    "direction",
+)
+
+
+@dataclass(frozen=True)
+class Scale:
+    """A reading beside its band, in the unit of the band."""
+
+    low: float
+    high: float
+    read: tuple[float, ...]
+
+
+@dataclass(frozen=True)
+class Row:
+    """One line of a table; ``scale`` may be drawn beside it."""
+
+    cells: tuple[str, ...]
+    scale: Scale | None = None
+
+
+@dataclass(frozen=True)
+class Block:
+    """A titled part of the sheet: a table, or sentences."""
+
+    title: str
+    head: tuple[str, ...] = ()
+    rows: tuple[Row, ...] = ()
+    sentences: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True)
+class Page:
+    """The whole sheet."""
+
+    title: str
+    facts: tuple[tuple[str, str], ...]
+    blocks: tuple[Block, ...]
+    deferral: str = DEFERRAL
+    warning: str = field(default="")
+
+
+def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
+    """Return the printed sheet of a case."""
+    blocks = [
+        Block("Energising", sentences=tuple(_gate(diagnosis))),
+        Block("Limits crossed", ("verdict", "finding", "source"), tuple(_findings(diagnosis))),
+        Block("Read", ("reading", "state", "read", "expected", "noted"), tuple(_readings(case, diagnosis))),
+        Block("Seen", sentences=tuple(_seen(case, knowledge))),
+        Block("Likely faults", ("odds", "fault", "part"), tuple(_faults(diagnosis, knowledge))),
+        Block("Why", sentences=tuple(_reasons(diagnosis))),
+        Block("To confirm and to do", sentences=tuple(_to_do(diagnosis, knowledge))),
+        Block("Found and done", sentences=tuple(_closing(case, knowledge))),
+        Block("Isolation", sentences=tuple(_isolation(case))),
+        Block("Cautions", sentences=diagnosis.cautions),
+        Block("Remarks", sentences=tuple(_remarks(case, diagnosis, knowledge))),
+    ]
+    stop = knowledge.complaints.get(case.complaint)
+    return Page(
+        title=f"{case.number}  {case.tag or '(no tag)'}",
+        facts=tuple(_facts(case, knowledge)),
+        blocks=tuple(block for block in blocks if block.rows or block.sentences),
+        warning=f"STOP: {stop.first}" if stop is not None and stop.stop else "",
+    )
+
+
+def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
+    """Return the tag that goes with the motor to the repair shop."""
+    closed = case.closed.what if case.closed else None
+    suspects = [fault_name(fault.id, knowledge) for fault in diagnosis.faults[:2] if fault.id != "healthy"]
+    found = fault_name(closed.found, knowledge) if closed else ", ".join(suspects)
+    how = f" ({closed.confirmed})" if closed else " (suspected)"
+    retest = closed.retest if closed else ()
+    blocks = [
+        Block("Fault", sentences=(found + how,) if found else ()),
+        Block("Readings", ("reading", "state", "read", "noted"), tuple(_tag_rows(case))),
+        Block("Seen", sentences=tuple(_seen(case, knowledge))),
+        Block("Please return with", sentences=tuple(_retest(diagnosis, retest, knowledge))),
+    ]
+    return Page(
+        title=f"REPAIR TAG  {case.tag or '(no tag)'}  {case.number}",
+        facts=tuple(_facts(case, knowledge)),
+        blocks=tuple(block for block in blocks if block.rows or block.sentences),
+    )
+
+
+def _facts(case: Case, knowledge: Knowledge) -> Iterable[tuple[str, str]]:
+    """Yield the head of the sheet."""
+    yield "Machine", kind_name(case.machine.kind)
+    yield "Complaint", complaint_name(case.complaint, knowledge)
+    yield "Nameplate", plate_text(case.machine)
+    yield "Opened", f"{case.lines[0].entry.time_local:%Y-%m-%d %H:%M} by {case.lines[0].entry.person}"
+    closed = case.closed
+    yield "Closed", f"{closed.entry.time_local:%Y-%m-%d %H:%M} by {closed.person}" if closed else "open"
+    yield "Written by", ", ".join(case.persons)
+
+
+def plate_text(machine: Machine) -> str:
+    """Return a nameplate in one line, as typed."""
+    plate = machine.nameplate
+    said: list[str] = []
+    for name in plate.__struct_fields__:
+        value = getattr(plate, name)
+        if name == "ratings" or value is None:
+            continue
+        text = value if isinstance(value, str) else value_text(value)
+        said.append(
+            text if name in {"power", "voltage", "current", "frequency", "speed"} else f"{plain(name)} {text}"
+        )
+    return ", ".join(said) or "not readable"
+
+
+def _gate(diagnosis: Diagnosis) -> Iterable[str]:
+    """Yield the gate: what it needs, what forbids."""
+    energise = diagnosis.energise
+    if energise.gate != "shut":
+        yield energise.says or NOTHING_FORBIDS
+        return
+    yield energise.says or "The gate is shut."
+    marks = {"forbids": "forbids: ", "needed": "still needed: ", "cleared": "cleared: "}
+    for line in energise.lines:
+        yield marks[line.status] + line.needs + (f" ({line.because})" if line.because else "")
+
+
+def _findings(diagnosis: Diagnosis) -> Iterable[Row]:
+    for finding in diagnosis.findings:
+        yield Row((finding.verdict, finding.says, finding.source))
+
+
+def _readings(case: Case, diagnosis: Diagnosis) -> Iterable[Row]:
+    bands = {f"{band.measure}@{band.state}": band for band in diagnosis.expected}
+    for logged in case.readings:
+        reading, band = logged.what.reading, bands.get(logged.what.reading.key)
+        shown = logged.what.expected or (" ".join((band_text(band), condition(band))).strip() if band else "")
+        cells = (
+            measure_name(reading.measure),
+            plain(reading.state),
+            reading_text(reading),
+            shown,
+            context_text(reading),
+        )
+        yield Row(cells, _scale(reading, band))
+
+
+def _tag_rows(case: Case) -> Iterable[Row]:
+    for logged in case.readings:
+        reading = logged.what.reading
+        cells = (
+            measure_name(reading.measure),
+            plain(reading.state),
+            reading_text(reading),
+            context_text(reading),
+        )
+        yield Row(cells)
+
+
+def context_text(reading: Reading) -> str:
+    """Return what was noted with a reading."""
+    said = []
+    for name in CONTEXT:
+        value: Value | str | None = getattr(reading, name)
+        if value is not None:
+            said.append(plain(value) if isinstance(value, str) else value_text(value))
+    return ", ".join([*said, *([reading.note] if reading.note else [])])
+
+
+def _scale(reading: Reading, band: Band | None) -> Scale | None:
+    """Return a reading beside its band, both in the band's unit."""
+    measure = MEASURES.get(reading.measure)
+    unit = find_unit(band.unit, dimension=measure.dimension) if band and measure else None
+    if band is None or unit is None:
+        return None
+    read = tuple(
+        (value.number - float(unit.offset)) / float(unit.factor) for value in reading.values if value.is_read
+    )
+    return Scale(low=band.low, high=band.high, read=read) if read else None
+
+
+def _seen(case: Case, knowledge: Knowledge) -> Iterable[str]:
+    for name, answer in case.observations.items():
+        yield f"{question(name, knowledge)}: {'yes' if answer else 'no'}"
+
+
+def _faults(diagnosis: Diagnosis, knowledge: Knowledge) -> Iterable[Row]:
+    for fault in diagnosis.faults[:5]:
+        yield Row((percent(fault.probability), fault.name or fault_name(fault.id, knowledge), fault.part))
+
+
+def _reasons(diagnosis: Diagnosis) -> Iterable[str]:
+    if not diagnosis.faults:
+        yield NO_MODEL
+        return
+    for reason in sorted(diagnosis.faults[0].reasons, key=lambda reason: -abs(reason.weight))[:5]:
+        yield f"{'for' if reason.weight >= 0 else 'against'}: {reason.text}"
+
+
+def _to_do(diagnosis: Diagnosis, knowledge: Knowledge) -> Iterable[str]:
+    """Yield how the first suspect is confirmed and mended, and what to read again after."""
+    first = diagnosis.faults[0].id.split("+") if diagnosis.faults else []
+    for fault in first:
+        known = knowledge.faults.get(fault)
+        if known is None or fault == "healthy":
+            continue
+        yield from (text for text in (known.confirm, known.remedy) if text)
+    yield from (f"read again after repair: {text}" for text in _retest(diagnosis, (), knowledge))
+
+
+def _retest(diagnosis: Diagnosis, named: Sequence[str], knowledge: Knowledge) -> list[str]:
+    """Return the readings to repeat after repair, in words."""
+    first = diagnosis.faults[0].id.split("+") if diagnosis.faults else []
+    keys = named or [
+        key for fault in first if fault in knowledge.faults for key in knowledge.faults[fault].retest
+    ]
+    words = []
+    for key in dict.fromkeys(keys):
+        measure, _, state = key.partition("@")
+        words.append(f"{measure_name(measure)}, {plain(state)}" if state else plain(key))
+    return words
+
+
+def _closing(case: Case, knowledge: Knowledge) -> Iterable[str]:
+    """Yield what was concluded, found and done."""
+    for repair in case.repairs:
+        yield f"done: {repair.what.done}" + (
+            f"; parts: {', '.join(repair.what.parts)}" if repair.what.parts else ""
+        )
+    if case.closed is None:
+        if case.conclusion is not None:
+            yield f"concluded: {fault_name(case.conclusion.what.fault, knowledge)}"
+        return
+    closed = case.closed.what
+    how = {"teardown": "confirmed by teardown", "repair": "confirmed by repair"}.get(
+        closed.confirmed, "believed, not confirmed"
+    )
+    yield f"found: {fault_name(closed.found, knowledge)} ({how})"
+    if closed.done:
+        yield f"done: {closed.done}"
+    if closed.parts:
+        yield f"parts: {', '.join(closed.parts)}"
+    if closed.minutes is not None:
+        yield f"minutes: {closed.minutes:g}"
+    if closed.note:
+        yield closed.note
+
+
+def _isolation(case: Case) -> Iterable[str]:
+    """Yield every isolation record with its person and time."""
+    for logged in case.isolation:
+        record = logged.what
+        said = [
+            text
+            for told, text in ((record.locked_out, "locked out"), (record.proved_dead, "proved dead"))
+            if told
+        ]
+        points = f" at {record.points}" if record.points else ""
+        act = "isolated" if record.isolated else "isolation lifted"
+        yield f"{logged.entry.time_local:%Y-%m-%d %H:%M} {record.by}: {', '.join([act + points, *said])}"
+
+
+def _remarks(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Iterable[str]:
+    yield from diagnosis.plate_remarks
+    yield from (slip.text for slip in diagnosis.slips)
+    yield from diagnosis.notes
+    yield from knowledge.loosened
+    yield from (f"{logged.person}: {logged.what.text}" for logged in case.notes)

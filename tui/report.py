@@ -1,0 +1,110 @@
+"""The printed sheet as text, and as one HTML page that needs nothing but itself."""
+
+from __future__ import annotations
+
+import math
+from html import escape
+from typing import TYPE_CHECKING
+
+from tui.columns import WIDTH, columns, paragraph
+from tui.harmless import UNSEEN
+
+if TYPE_CHECKING:
+    from tui.page import Block, Page, Scale
+
+POLICY = "default-src 'none'; style-src 'unsafe-inline'"
+STYLE = """
+body{font:11pt/1.35 sans-serif;color:#111;background:#fff;margin:1.5em auto;max-width:52em;padding:0 1em}
+h1{font-size:1.35em;border-bottom:2px solid #111;margin:0 0 .5em}
+h2{font-size:1em;margin:1em 0 .2em;border-bottom:1px solid #999}
+table{border-collapse:collapse;width:100%}
+th,td{text-align:left;vertical-align:top;padding:.1em .6em .1em 0;border-bottom:1px solid #ddd}
+th{font-weight:normal;color:#555}
+dl{display:grid;grid-template-columns:8em 1fr;margin:0}
+dt{color:#555}dd{margin:0}
+ul{margin:.2em 0;padding-left:1.2em}
+.stop{border:3px solid #111;padding:.4em .6em;font-weight:bold;margin:.6em 0}
+footer{margin-top:1.5em;font-size:.85em;border-top:1px solid #999}
+@media print{body{margin:0;max-width:none}}
+"""
+
+
+def as_text(page: Page) -> list[str]:
+    """Return the sheet as lines of eighty columns."""
+    lines = [*paragraph(page.title), "=" * min(WIDTH, len(page.title))]
+    lines += paragraph(page.warning, first="! ") if page.warning else []
+    for label, value in page.facts:
+        lines += paragraph(value, first=f"{label + ':':<12}")
+    for block in page.blocks:
+        lines += ["", block.title, "-" * len(block.title), *_block_text(block)]
+    return [*lines, "", *paragraph(page.deferral)]
+
+
+def as_html(page: Page) -> str:
+    """Return the sheet as one HTML page: no scripts, no linked fonts, pictures inline."""
+    facts = "".join(f"<dt>{_html(label)}</dt><dd>{_html(value)}</dd>" for label, value in page.facts)
+    warning = f'<p class="stop">{_html(page.warning)}</p>' if page.warning else ""
+    blocks = "\n".join(
+        f"<section><h2>{_html(block.title)}</h2>{_block_html(block)}</section>" for block in page.blocks
+    )
+    return (
+        '<!DOCTYPE html>\n<html lang="en"><head><meta charset="utf-8">'
+        f'<meta http-equiv="Content-Security-Policy" content="{POLICY}">'
+        f"<title>{_html(page.title)}</title><style>{STYLE}</style></head>\n<body><h1>{_html(page.title)}</h1>"
+        f"{warning}<dl>{facts}</dl>\n{blocks}\n<footer>{_html(page.deferral)}</footer></body></html>\n"
+    )
+
+
+def _block_text(block: Block) -> list[str]:
+    """Return a block as lines: a table where it fits, else each row as a paragraph."""
+    table = columns([row.cells for row in block.rows], head=block.head) if block.rows else []
+    if any(len(line) > WIDTH for line in table):
+        table = []
+        for row in block.rows:
+            first, *others = row.cells
+            table += paragraph("; ".join([first, *(cell for cell in others if cell)]), rest="    ")
+    return table + [line for sentence in block.sentences for line in paragraph(sentence, rest="    ")]
+
+
+def _block_html(block: Block) -> str:
+    """Return a block as a table or a list."""
+    if not block.rows:
+        return "<ul>" + "".join(f"<li>{_html(sentence)}</li>" for sentence in block.sentences) + "</ul>"
+    drawn = any(row.scale for row in block.rows)
+    head = "".join(f"<th>{_html(cell)}</th>" for cell in block.head) + ("<th></th>" if drawn else "")
+    body = "".join(
+        "<tr>"
+        + "".join(f"<td>{_html(cell)}</td>" for cell in row.cells)
+        + (f"<td>{scale_svg(row.scale) if row.scale else ''}</td>" if drawn else "")
+        + "</tr>"
+        for row in block.rows
+    )
+    return f"<table><thead><tr>{head}</tr></thead><tbody>{body}</tbody></table>"
+
+
+def scale_svg(scale: Scale, *, width: int = 120, height: int = 14) -> str:
+    """Return a reading on a line: the band as a box, each value as a stroke."""
+    read = [value for value in scale.read if math.isfinite(value)]
+    ends = [scale.low, scale.high, *read]
+    low, high = min(ends), max(ends)
+    span = (high - low) or 1.0
+    low, span = low - 0.1 * span, 1.2 * span
+
+    def x(value: float) -> float:
+        return round((value - low) / span * width, 1)
+
+    wide = max(1.0, x(scale.high) - x(scale.low))
+    box = f'<rect x="{x(scale.low)}" y="3" width="{wide:.1f}" height="8" fill="#ddd"/>'
+    strokes = "".join(
+        f'<path d="M{x(value)} 0V{height}" stroke="#111" stroke-width="1.6"/>' for value in read
+    )
+    return (
+        f'<svg width="{width}" height="{height}" viewBox="0 0 {width} {height}" role="img" '
+        'aria-label="reading in band">'
+        f'<path d="M0 7H{width}" stroke="#999"/>{box}{strokes}</svg>'
+    )
+
+
+def _html(text: str) -> str:
+    """Return text as HTML text."""
+    return escape(UNSEEN.sub(" ", text))

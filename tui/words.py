@@ -1,0 +1,94 @@
+"""Ids and values in words. An id that is not known is shown as its own words."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from calc.quantities import KINDS, MEASURES
+
+if TYPE_CHECKING:
+    from calc.sheet import CaseSheet, Reading, Value
+    from rules.knowledge import Knowledge
+
+
+def plain(identifier: str) -> str:
+    """Return an id as words."""
+    return identifier.replace("_", " ")
+
+
+def measure_name(measure: str) -> str:
+    """Return a measure in words."""
+    return MEASURES[measure].label if measure in MEASURES else plain(measure)
+
+
+def kind_name(kind: str) -> str:
+    """Return a machine kind in words."""
+    return KINDS.get(kind, plain(kind))
+
+
+def complaint_name(complaint: str, knowledge: Knowledge) -> str:
+    """Return a complaint in words."""
+    known = knowledge.complaints.get(complaint)
+    return known.name if known else plain(complaint)
+
+
+def question(observation: str, knowledge: Knowledge) -> str:
+    """Return an observation as the question that it answers."""
+    known = knowledge.observations.get(observation)
+    return known.name if known else plain(observation)
+
+
+def fault_name(fault: str, knowledge: Knowledge) -> str:
+    """Return a fault, or two at once, in words."""
+    return " and ".join(_one_fault(part, knowledge) for part in fault.split("+"))
+
+
+def _one_fault(fault: str, knowledge: Knowledge) -> str:
+    """Return one fault or refinement in words."""
+    if fault in knowledge.faults:
+        return knowledge.faults[fault].name
+    inner = [part.name for known in knowledge.faults.values() for part in known.within if part.id == fault]
+    return inner[0] if inner else plain(fault)
+
+
+def key_words(key: str, knowledge: Knowledge) -> str:
+    """Return ``measure@state``, or an observation, in words."""
+    measure, at, state = key.partition("@")
+    return f"{measure_name(measure)}, {plain(state)}" if at else question(key, knowledge)
+
+
+def value_text(value: Value) -> str:
+    """Return a value as it was typed; one that was not read as a dash."""
+    return value.text if value.is_read else "-"
+
+
+def reading_text(reading: Reading) -> str:
+    """Return the values of a reading as typed, the unit once where it is the same for all."""
+    texts = [value_text(value) for value in reading.values]
+    parts = [text.split(" ", 1) for text in texts if text != "-"]
+    units = {part[1] for part in parts if len(part) > 1}
+    if len(units) == 1 and len(texts) > 1 and all(len(part) > 1 for part in parts):
+        return " / ".join(text.split(" ", 1)[0] for text in texts) + f" {units.pop()}"
+    return " / ".join(texts)
+
+
+def heading(sheet: CaseSheet, knowledge: Knowledge) -> str:
+    """Return a case in one line: the machine, its kind, the complaint."""
+    tag = sheet.machine.tag or "(no tag)"
+    return f"{tag}: {kind_name(sheet.machine.kind)}, {complaint_name(sheet.complaint, knowledge)}"
+
+
+def percent(probability: float) -> str:
+    """Return a probability in percent, three places wide; never 0 or 100, which nobody knows."""
+    rounded = round(100 * probability)
+    return f"{'<1' if rounded < 1 else '>99' if rounded > 99 else rounded:>3} %"
+
+
+def number(value: float) -> str:
+    """Return a number with three significant digits; whole from 1000 on."""
+    return f"{value:.0f}" if abs(value) >= 999.5 else f"{value:#.3g}".rstrip(".")
+
+
+def number_range(low: float, high: float) -> str:
+    """Return two numbers as a range."""
+    return f"{number(low)} to {number(high)}"
