@@ -23,7 +23,7 @@ _KEPT = 4
 def key_of(texts: list[tuple[int, Path, str]]) -> str:
     """Return the sha256 of all texts, their files, the program's version and the modules that check them."""
     digest = hashlib.sha256(_version().encode())
-    for module in sorted(Path(__file__).parent.glob("*.py")):
+    for module in sorted(Path(__file__).parent.rglob("*.py")):
         digest.update(module.read_bytes())
     for number, file, text in texts:
         for part in (str(number).encode(), os.fsencode(file), text.encode()):

@@ -118,8 +118,13 @@ def _rule_files(folder: Path, *, shipped: bool) -> Iterator[Path]:
         yield from sorted((folder / section).rglob("*.yaml"))
 
 
-def build(texts: Texts, *, extra_folders: Sequence[Path] = ()) -> tuple[Knowledge, list[Problem]]:
-    """Decode and check rule texts; return what could be decoded, and every problem."""
+def build(
+    texts: Texts, *, extra_folders: Sequence[Path] = (), thorough: bool = False
+) -> tuple[Knowledge, list[Problem]]:
+    """Decode and check rule texts; return what could be decoded, and every problem.
+
+    With ``thorough`` also what can be loaded but is left to do: examples, effects, words.
+    """
     entries: Entries = {section: {} for section in SECTIONS}
     places: Places = {}
     problems: list[Problem] = []
@@ -140,7 +145,7 @@ def build(texts: Texts, *, extra_folders: Sequence[Path] = ()) -> tuple[Knowledg
     knowledge = msgspec.convert(
         {**entries, "loosened": loosened, "folders": [str(folder) for folder in extra_folders]}, Knowledge
     )
-    problems += [_problem(mistaken, places) for mistaken in all_mistakes(knowledge)]
+    problems += [_problem(mistaken, places) for mistaken in all_mistakes(knowledge, thorough=thorough)]
     return knowledge, problems
 
 

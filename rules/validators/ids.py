@@ -1,0 +1,217 @@
+"""Checks that every id which an entry names is known."""
+
+from __future__ import annotations
+
+import importlib
+from collections.abc import Iterator
+
+from calc.quantities import KINDS, MEASURES, STATES
+from rules.derived import QUANTITIES
+from rules.facts import NAMES as FACTS
+from rules.gate_checks import CHECKS
+from rules.knowledge import Knowledge
+from rules.validators.base import Issue, Mistaken, Use, named, unknown, uses
+
+
+class UnknownKind(Issue):
+    """A machine kind that the case sheet does not have."""
+
+
+class KindCheck:
+    """Machine kinds are those of the case sheet, or ``any`` where a list may say so."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown machine kinds."""
+        lists = uses(
+            knowledge,
+            "observations.kinds", "complaints.kinds", "readings.kinds", "limits.kinds", "hazards.kinds",
+            "gates.kinds", "faults.effects",
+        )  # fmt: skip
+        yield from unknown(UnknownKind, lists, {*KINDS, "any"})
+        plain = uses(knowledge, "faults.odds", "faults.complaints_by_kind", "faults.observations_by_kind")
+        yield from unknown(UnknownKind, plain, KINDS)
+        yield from unknown(UnknownKind, _within(knowledge, "shares"), KINDS)
+
+
+class UnknownState(Issue):
+    """A state of the machine that the case sheet does not have."""
+
+
+class StateCheck:
+    """States are those of the case sheet, or ``any`` where a list may say so."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown states."""
+        lists = uses(knowledge, "observations.states", "limits.states", "limits.shuts")
+        yield from unknown(UnknownState, lists, {*STATES, "any"})
+        plain = uses(knowledge, "readings.states", "gates.guards", "hazards.states")
+        yield from unknown(UnknownState, plain, STATES)
+
+
+class UnknownMeasure(Issue):
+    """A measure that the case sheet does not have, or a quantity that nobody derives."""
+
+
+class MeasureCheck:
+    """Measures, ``measure@state`` and the quantities of limits are known."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown measures, states after ``@``, and quantities."""
+        for rule in knowledge.readings.values():
+            yield from unknown(UnknownMeasure, [Use("readings", rule.id, ("id",), rule.id)], MEASURES)
+        for limit in knowledge.limits.values():
+            use = Use("limits", limit.id, ("quantity",), limit.quantity)
+            yield from unknown(UnknownMeasure, [use], {*MEASURES, *QUANTITIES})
+        for use in _readings_named(knowledge):
+            measure, at, state = use.name.partition("@")
+            yield from unknown(UnknownMeasure, [Use(use.section, use.entry, use.path, measure)], MEASURES)
+            if at:
+                yield from unknown(UnknownState, [Use(use.section, use.entry, use.path, state)], STATES)
+
+
+def _readings_named(knowledge: Knowledge) -> Iterator[Use]:
+    yield from uses(knowledge, "faults.readings", "faults.retest", "hazards.measures")
+    yield from _within(knowledge, "readings")
+    yield from (use for use in uses(knowledge, "gates.asks") if "@" in use.name)
+
+
+def _within(knowledge: Knowledge, field: str) -> Iterator[Use]:
+    for fault in knowledge.faults.values():
+        for index, part in enumerate(fault.within):
+            yield from named("faults", fault.id, ("within", index, field), getattr(part, field))
+
+
+def _by_kind(knowledge: Knowledge, field: str) -> Iterator[Use]:
+    for fault in knowledge.faults.values():
+        for kind, names in getattr(fault, field).items():
+            yield from named("faults", fault.id, (field, kind), names)
+
+
+class UnknownObservation(Issue):
+    """An observation that has no entry."""
+
+
+class ObservationCheck:
+    """Observations that faults and gate lines name have an entry."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown observations."""
+        yield from unknown(UnknownObservation, uses(knowledge, "faults.observations"), knowledge.observations)
+        yield from unknown(UnknownObservation, _within(knowledge, "observations"), knowledge.observations)
+        by_kind = _by_kind(knowledge, "observations_by_kind")
+        yield from unknown(UnknownObservation, by_kind, knowledge.observations)
+        asked = (use for use in uses(knowledge, "gates.asks") if "@" not in use.name)
+        yield from unknown(UnknownObservation, asked, knowledge.observations)
+
+
+class UnknownComplaint(Issue):
+    """A complaint that has no entry."""
+
+
+class ComplaintCheck:
+    """Complaints that faults name have an entry."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown complaints."""
+        yield from unknown(UnknownComplaint, uses(knowledge, "faults.complaints"), knowledge.complaints)
+        yield from unknown(UnknownComplaint, _within(knowledge, "complaints"), knowledge.complaints)
+        by_kind = _by_kind(knowledge, "complaints_by_kind")
+        yield from unknown(UnknownComplaint, by_kind, knowledge.complaints)
+
+
+class UnknownFault(Issue):
+    """A fault that has no entry."""
+
+
+class FaultCheck:
+    """Faults that cautions and gate lines name have an entry."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown faults."""
+        yield from unknown(
+            UnknownFault, uses(knowledge, "hazards.faults", "gates.suspects"), knowledge.faults
+        )
+
+
+class UnknownHazard(Issue):
+    """A hazard that has no caution."""
+
+
+class HazardCheck:
+    """Every hazard that an entry names has its caution."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield hazards without an entry."""
+        yield from unknown(
+            UnknownHazard, uses(knowledge, "faults.cautions", "observations.hazards"), knowledge.hazards
+        )
+        for rule in knowledge.readings.values():
+            for state, how in rule.states.items():
+                found = named("readings", rule.id, ("states", state, "hazards"), how.hazards)
+                yield from unknown(UnknownHazard, found, knowledge.hazards)
+
+
+class UnknownGateLine(Issue):
+    """A gate line that has no entry."""
+
+
+class GateLineCheck:
+    """What must be shown before energising is a line of the gate."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown gate lines."""
+        yield from unknown(UnknownGateLine, uses(knowledge, "faults.before_energising"), knowledge.gates)
+
+
+class UnknownGateCheck(Issue):
+    """A check of the gate that the program does not have."""
+
+
+class GateCheckCheck:
+    """The checks that gate lines call for exist."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown checks."""
+        yield from unknown(UnknownGateCheck, uses(knowledge, "gates.clears"), CHECKS)
+
+
+class UnknownFact(Issue):
+    """A fact of machine or reading that conditions cannot ask for."""
+
+
+class FactCheck:
+    """Conditions ask for facts that the case sheet has."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown facts in ``where`` and ``when``."""
+        yield from unknown(UnknownFact, uses(knowledge, "limits.where", "gates.where", "hazards.when"), FACTS)
+
+
+class UnknownEffect(Issue):
+    """An effect that the machine model does not have."""
+
+
+class EffectCheck:
+    """Effects are those that the model of the kind offers; a kind without a model is not checked."""
+
+    def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
+        """Yield unknown effects."""
+        for fault in knowledge.faults.values():
+            for kind, effects in fault.effects.items():
+                offered = effects_of(kind)
+                if offered is None:
+                    continue
+                for index, effect in enumerate(effects):
+                    use = Use("faults", fault.id, ("effects", kind, index, "name"), effect.name)
+                    yield from unknown(UnknownEffect, [use], offered)
+
+
+def effects_of(kind: str) -> frozenset[str] | None:
+    """Return the effects that the model of a machine kind offers, or None where there is no model."""
+    folder = "dc" if kind.startswith("dc_") else kind
+    try:
+        module = importlib.import_module(f"calc.{folder}.effects")
+    except ImportError:
+        return None
+    offered = getattr(module, "EFFECTS", None)
+    return None if offered is None else frozenset(offered)
