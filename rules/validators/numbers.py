@@ -105,12 +105,9 @@ class SharesCheck:
             for index, part in enumerate(fault.within):
                 yield from _chances("faults", fault.id, ("within", index), {"share": part.share})
                 yield from _chances("faults", fault.id, ("within", index, "shares"), part.shares)
-            for kind in fault.odds:
-                total = sum(part.shares.get(kind, part.share) for part in fault.within)
-                if total > 1.0 + _TOLERANCE:
-                    given = f"together {total:g} on {kind}"
-                    yield Mistaken(BadShares, "faults", fault.id, ("within",), given, "1 at most")
-                    break
+            total = sum(part.share for part in fault.within)
+            if total > 1.0 + _TOLERANCE:
+                yield Mistaken(BadShares, "faults", fault.id, ("within",), f"together {total:g}", "1 at most")
 
 
 class BadSeverity(Issue):
