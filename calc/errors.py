@@ -47,3 +47,9 @@ class RangeError(PlatesideError, ValueError):
         self.given = given
         self.allowed = allowed
         super().__init__(f"{name} is {given}; it must be {allowed}")
+
+
+def clip(text: object, length: int = 60) -> str:
+    """Show input in a message: control characters escaped, cut to a length."""
+    shown = "".join(c if c.isprintable() else f"\\u{ord(c):04x}" for c in str(text)[: length + 1])
+    return shown if len(shown) <= length else shown[: length - 1] + "…"

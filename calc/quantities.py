@@ -43,6 +43,7 @@ DC_KINDS: Final = frozenset(kind for kind in KINDS if kind.startswith("dc_") and
 # dimension -> inner unit, as people write it
 INNER_UNIT: Final = {
     "power": "W",
+    "apparent_power": "VA",
     "voltage": "V",
     "current": "A",
     "frequency": "Hz",
