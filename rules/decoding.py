@@ -9,14 +9,17 @@ from __future__ import annotations
 import difflib
 import math
 from collections.abc import Iterable, Iterator
-from typing import TypeVar
+from typing import TypeAlias, TypeVar
 
 import msgspec
 from msgspec import inspect
 
-from rules.plain_yaml import Path
+from calc.safe_yaml import Step
 
 T = TypeVar("T")
+
+Steps: TypeAlias = tuple[Step, ...]
+"""Where a part stands inside an entry: ``("bands", 1, "verdict")``."""
 
 _WORDS = {"yes": "true", "on": "true", "no": "false", "off": "false"}
 
@@ -24,7 +27,7 @@ _WORDS = {"yes": "true", "on": "true", "no": "false", "off": "false"}
 class Mistake(msgspec.Struct, frozen=True):
     """One thing that is wrong inside an entry: where, what was given, what is allowed."""
 
-    path: Path
+    path: Steps
     given: str
     allowed: str
 
@@ -61,7 +64,7 @@ def _plain_bools(plain: object, info: inspect.Type) -> object:
     return plain
 
 
-def _walk(plain: object, info: inspect.Type, path: Path) -> Iterator[Mistake]:
+def _walk(plain: object, info: inspect.Type, path: Steps) -> Iterator[Mistake]:
     """Yield every mistake in plain data beside its type."""
     if isinstance(info, inspect.StructType):
         yield from _walk_struct(plain, info, path)
@@ -77,7 +80,7 @@ def _walk(plain: object, info: inspect.Type, path: Path) -> Iterator[Mistake]:
         yield from _walk_scalar(plain, info, path)
 
 
-def _walk_struct(plain: object, info: inspect.StructType, path: Path) -> Iterator[Mistake]:
+def _walk_struct(plain: object, info: inspect.StructType, path: Steps) -> Iterator[Mistake]:
     if not isinstance(plain, dict):
         yield Mistake(path, _show(plain), "a mapping of fields")
         return
@@ -93,7 +96,7 @@ def _walk_struct(plain: object, info: inspect.StructType, path: Path) -> Iterato
 
 
 def _walk_tuple(
-    plain: object, info: inspect.VarTupleType | inspect.TupleType, path: Path
+    plain: object, info: inspect.VarTupleType | inspect.TupleType, path: Steps
 ) -> Iterator[Mistake]:
     if not isinstance(plain, list):
         yield Mistake(path, _show(plain), "a list")
@@ -109,7 +112,7 @@ def _walk_tuple(
         yield from _walk(part, kind, (*path, index))
 
 
-def _walk_scalar(plain: object, info: inspect.Type, path: Path) -> Iterator[Mistake]:
+def _walk_scalar(plain: object, info: inspect.Type, path: Steps) -> Iterator[Mistake]:
     if isinstance(info, inspect.AnyType):
         return
     if isinstance(info, inspect.UnionType):

@@ -15,8 +15,10 @@ from typing import Final
 import msgspec
 
 from calc.errors import InputError, Problem
-from rules import cache, plain_yaml
-from rules.decoding import decode, did_you_mean
+from calc.safe_yaml import Document, Limits, load_document
+from calc.safe_yaml import where as spell
+from rules import cache
+from rules.decoding import Steps, decode, did_you_mean
 from rules.knowledge import (
     Complaint,
     Entry,
@@ -29,7 +31,6 @@ from rules.knowledge import (
     ReadingRule,
 )
 from rules.loosening import loosened_by
-from rules.plain_yaml import Document, spell
 from rules.validators import Mistaken, all_mistakes
 
 SHIPPED: Final = Path(__file__).resolve().parent
@@ -43,6 +44,7 @@ SECTIONS: Final[dict[str, type[Entry]]] = {
     "hazards": Hazard,
     "gates": GateRule,
 }
+RULE_LIMITS: Final = Limits(bytes=2_000_000, depth=20, nodes=100_000)
 _ALSO_CALLED: Final = {"cautions": "hazards"}
 
 Entries = dict[str, dict[str, Entry]]
@@ -54,7 +56,7 @@ class Place:
 
     folder: int
     document: Document
-    path: plain_yaml.Path
+    path: Steps
 
 
 Places = dict[tuple[str, str], Place]
@@ -130,8 +132,11 @@ def build(
     problems: list[Problem] = []
     loosened: list[str] = []
     for number, file, text in texts:
-        document, found = plain_yaml.read_document(text, file=str(file))
-        problems += found
+        try:
+            document = load_document(text, file=str(file), limits=RULE_LIMITS)
+        except InputError as error:
+            problems += error.problems
+            continue
         for section, entry, path in _decoded(document, file, problems):
             known = entries[section].get(entry.id)
             if known is not None and places[section, entry.id].folder == number:
@@ -149,9 +154,7 @@ def build(
     return knowledge, problems
 
 
-def _decoded(
-    document: Document, file: Path, problems: list[Problem]
-) -> Iterator[tuple[str, Entry, plain_yaml.Path]]:
+def _decoded(document: Document, file: Path, problems: list[Problem]) -> Iterator[tuple[str, Entry, Steps]]:
     """Yield the entries of a document that could be decoded; note what is wrong with the others."""
     for section, base, plain in _sections(document, file, problems):
         if not isinstance(plain, list):
@@ -170,11 +173,9 @@ def _decoded(
                 yield section, entry, path
 
 
-def _sections(
-    document: Document, file: Path, problems: list[Problem]
-) -> Iterator[tuple[str, plain_yaml.Path, object]]:
-    if isinstance(document.plain, dict):
-        for key, plain in document.plain.items():
+def _sections(document: Document, file: Path, problems: list[Problem]) -> Iterator[tuple[str, Steps, object]]:
+    if isinstance(document.data, dict):
+        for key, plain in document.data.items():
             section = _ALSO_CALLED.get(key, key)
             if section in SECTIONS:
                 yield section, (key,), plain
@@ -184,17 +185,17 @@ def _sections(
         return
     names = [file.stem, *(parent.name for parent in file.parents)]
     sections = [_ALSO_CALLED.get(name, name) for name in names]
-    section = next((name for name in sections if name in SECTIONS), None)
-    if section is not None and isinstance(document.plain, list):
-        yield section, (), document.plain
-    elif document.plain is None:
+    named = next((name for name in sections if name in SECTIONS), None)
+    if named is not None and isinstance(document.data, list):
+        yield named, (), document.data
+    elif document.data is None:
         problems.append(_at(document, (), "", "no entries", "a list of entries under faults, limits, …"))
     else:
         allowed = f"sections: {', '.join(sorted(SECTIONS))}"
         problems.append(_at(document, (), "", "no section", allowed))
 
 
-def _at(document: Document, path: plain_yaml.Path, where: str, given: str, allowed: str) -> Problem:
+def _at(document: Document, path: Steps, where: str, given: str, allowed: str) -> Problem:
     return Problem(document.file, where, given, allowed, document.line(path))
 
 

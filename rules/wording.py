@@ -8,7 +8,7 @@ from typing import Final
 
 import msgspec
 
-from rules.plain_yaml import Path
+from rules.decoding import Steps
 
 _NEVER: Final = re.compile(
     r"""
@@ -33,7 +33,7 @@ def unwanted(text: str) -> tuple[str, ...]:
     return tuple(found.group(0) for found in _NEVER.finditer(text))
 
 
-def texts_in(part: object, path: Path = ()) -> Iterator[tuple[Path, str]]:
+def texts_in(part: object, path: Steps = ()) -> Iterator[tuple[Steps, str]]:
     """Yield every text inside a rule or an answer, with its path."""
     if isinstance(part, str):
         yield path, part

@@ -8,9 +8,8 @@ from typing import Final, Protocol
 import msgspec
 
 from calc.errors import Problem
-from rules.decoding import did_you_mean
+from rules.decoding import Steps, did_you_mean
 from rules.knowledge import Entry, Knowledge
-from rules.plain_yaml import Path
 
 SECTIONS: Final = ("faults", "observations", "complaints", "readings", "limits", "hazards", "gates")
 
@@ -25,7 +24,7 @@ class Mistaken(msgspec.Struct, frozen=True):
     issue: type[Issue]
     section: str
     entry: str
-    path: Path
+    path: Steps
     given: str
     allowed: str
 
@@ -42,7 +41,7 @@ class Use(msgspec.Struct, frozen=True):
 
     section: str
     entry: str
-    path: Path
+    path: Steps
     name: str
 
 
@@ -61,7 +60,9 @@ def uses(knowledge: Knowledge, *fields: str) -> Iterator[Use]:
             yield from named(section, entry.id, (name,), getattr(entry, name))
 
 
-def named(section: str, entry: str, path: Path, names: Iterable[str] | Mapping[str, object]) -> Iterator[Use]:
+def named(
+    section: str, entry: str, path: Steps, names: Iterable[str] | Mapping[str, object]
+) -> Iterator[Use]:
     """Yield a use for every name of a list, or for every key of a mapping."""
     for index, name in enumerate(names):
         part: str | int = name if isinstance(names, Mapping) else index

@@ -6,9 +6,9 @@ import math
 from collections.abc import Iterator, Mapping
 
 from rules.amounts import is_amount
+from rules.decoding import Steps
 from rules.facts import PLATE, span
 from rules.knowledge import Fault, Knowledge, Spread
-from rules.plain_yaml import Path
 from rules.validators.base import Issue, Mistaken, every_entry
 
 _TOLERANCE = 1e-9
@@ -74,7 +74,7 @@ class ChanceCheck:
                     yield Mistaken(BadChance, "faults", fault.id, path, given, "1 at most")
 
 
-def _chances_of(fault: Fault) -> Iterator[tuple[Path, dict[str, float]]]:
+def _chances_of(fault: Fault) -> Iterator[tuple[Steps, dict[str, float]]]:
     yield ("complaints",), fault.complaints
     yield ("observations",), fault.observations
     for kind, chances in fault.complaints_by_kind.items():
@@ -86,7 +86,7 @@ def _chances_of(fault: Fault) -> Iterator[tuple[Path, dict[str, float]]]:
         yield ("within", index, "observations"), part.observations
 
 
-def _chances(section: str, entry: str, path: Path, chances: Mapping[str, float]) -> Iterator[Mistaken]:
+def _chances(section: str, entry: str, path: Steps, chances: Mapping[str, float]) -> Iterator[Mistaken]:
     for name, chance in chances.items():
         if not 0.0 <= chance <= 1.0:
             yield Mistaken(BadChance, section, entry, (*path, name), f"{chance:g}", "between 0 and 1")
@@ -122,7 +122,7 @@ class SeverityCheck:
         for fault in knowledge.faults.values():
             for kind, effects in fault.effects.items():
                 for index, effect in enumerate(effects):
-                    path: Path = ("effects", kind, index)
+                    path: Steps = ("effects", kind, index)
                     if effect.severity is not None and not 0.0 < effect.severity[0] <= effect.severity[1]:
                         given = f"{effect.severity[0]:g} to {effect.severity[1]:g}"
                         allowed = "a value above zero and a higher one"
@@ -153,7 +153,7 @@ class AmountCheck:
                 )
 
 
-Amount = tuple[str, str, Path, str]
+Amount = tuple[str, str, Steps, str]
 
 
 def _amounts(knowledge: Knowledge) -> Iterator[Amount]:
@@ -200,7 +200,7 @@ class SpreadCheck:
                     yield Mistaken(BadSpread, "faults", fault.id, path, *wrong)
 
 
-def _spreads(fault: Fault) -> Iterator[tuple[Path, Spread]]:
+def _spreads(fault: Fault) -> Iterator[tuple[Steps, Spread]]:
     for name, spread in fault.readings.items():
         yield ("readings", name), spread
     for index, part in enumerate(fault.within):
