@@ -77,6 +77,11 @@ def _number(value: Value | None) -> float | None:
     return value.number if value is not None and value.is_read else None
 
 
+def contrasts_matrix(count: int) -> Floats:
+    """Rows that make the contrasts of ``count`` values: (count - 1, count)."""
+    return _matrix(count)[1:]
+
+
 def _matrix(count: int) -> Floats:
     return {1: _ONE, 2: _TWO, 3: _THREE}[count]
 

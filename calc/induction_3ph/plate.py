@@ -13,16 +13,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from calc.nameplate import (
-    poles_from_speed,
-    synchronous_speed_rpm,
-    typical_efficiency,
-    typical_locked_rotor_ratio,
-    typical_power_factor,
-)
+from calc.errors import RangeError
+from calc.lookup import code_letter_kva_per_hp
+from calc.nameplate import synchronous_speed_rpm
 from calc.sheet import Machine, Nameplate, Value
-from calc.tables import code_letter_kva_per_hp
 from calc.twin import Floats
+from calc.typical import typical_efficiency, typical_locked_rotor_ratio, typical_power_factor
 
 HORSEPOWER_W = 745.69987
 COPPER_K = 235.0  # IEC 60034-1: inferred zero-resistance temperature, degC below zero
@@ -191,7 +187,10 @@ def _poles(plate: Nameplate, frequency: float) -> int:
     if poles:
         return int(poles)
     speed = plate.number("speed")
-    return poles_from_speed(speed_rpm=speed, frequency_hz=frequency) if speed else 4
+    if not speed:
+        return 4
+    # The plate speed lies a little under the synchronous one; twelve poles and more are rare.
+    return min(max(2 * math.floor(60.0 * frequency / speed + 1e-9), 2), 24)
 
 
 def _slip(plate: Nameplate, frequency: float, poles: int, power: float) -> tuple[float, float]:
@@ -217,12 +216,21 @@ def _locked(
     if ratio:
         return ratio, 0.07
     if plate.code_letter:
-        span = code_letter_kva_per_hp(plate.code_letter)
+        span = _code_letter(plate.code_letter)
         if span:
             middle = math.sqrt(span[0] * span[1])
             amps = middle * power / HORSEPOWER_W * 1000.0 / (math.sqrt(3.0) * voltage)
             return amps / current, 0.08
     return typical_locked_rotor_ratio(power_w=power, poles=poles), 0.19
+
+
+def _code_letter(letter: str) -> tuple[float, float] | None:
+    """Locked-rotor kVA per hp of a code letter; the last letter has no upper end, A no lower one."""
+    try:
+        low, high = code_letter_kva_per_hp(letter)
+    except (KeyError, RangeError):
+        return None
+    return max(low, 2.5), high if high is not None else 1.12 * low
 
 
 def circuit(base: Base, z: Floats) -> Circuit:

@@ -16,6 +16,26 @@ class Family(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=Tr
     measures: tuple[str, ...]
 
 
+class ProposalSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
+    """Numbers of the choice of the next reading."""
+
+    hypotheses: int
+    draws: int
+    overhead_minutes: float
+    hazard_cost: float
+    least_bits: float
+    least_chance: float
+    part_weight: float
+
+
+class SlipSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
+    """When a reading is called a likely slip."""
+
+    least_share: float
+    strange_sigmas: float
+    mended_sigmas: float
+
+
 class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Numbers of the weighing; the YAML file says what each does."""
 
@@ -27,6 +47,8 @@ class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=
     other_soft_nats: float
     spread_nu: float
     families: dict[str, Family]
+    proposal: ProposalSettings
+    slip: SlipSettings
 
 
 @cache

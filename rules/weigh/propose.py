@@ -1,0 +1,297 @@
+"""The next reading worth taking: information about fault and repair, per minute and hazard.
+
+For every reading and observation that is possible, allowed by the gate and within the kit, the
+leading hypotheses predict what it would show. The mutual information between that and the fault
+(and, with half the weight, the part of the machine) is estimated by fixed quasi-random draws from
+the mixture, and divided by minutes and hazard (D. V. Lindley, Ann. Math. Stat. 27 (1956) 986).
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from functools import cache
+from statistics import NormalDist
+
+import numpy as np
+from numpy.typing import NDArray
+
+from calc.observe import InstrumentError
+from calc.quantities import MEASURES
+from calc.sheet import CaseSheet
+from calc.twin import Ask, Floats, attribute_rows
+from rules.answer import NextItem
+from rules.gate import GateState
+from rules.knowledge import Fault, Knowledge, Observation, ReadingRule
+from rules.weigh import wording
+from rules.weigh.instruments import instrument_errors
+from rules.weigh.posterior import OTHER, Hypothesis, Posterior
+from rules.weigh.predict import Outlook, outlooks
+from rules.weigh.settings import ProposalSettings, weighing
+from rules.weigh.soft import answer_chance, shape, spread_of
+
+_KIT_ALWAYS = frozenset({"eyes"})
+
+
+@dataclass(frozen=True)
+class Leading:
+    """The hypotheses that carry nearly all of the probability, as a mixture."""
+
+    hypotheses: tuple[Hypothesis, ...]
+    share: Floats
+    faults: tuple[str, ...]
+    label: NDArray[np.int64]
+    part: NDArray[np.int64]
+    possible: Mapping[str, Floats]
+
+
+def propose(
+    posterior: Posterior, knowledge: Knowledge, gate: GateState, limit: int = 12
+) -> tuple[NextItem, ...]:
+    """Return what is worth taking next, best first; empty when nothing is worth its minutes."""
+    s = weighing().proposal
+    lead = leading(posterior, s)
+    meters = instrument_errors(knowledge)
+    items = [
+        *_readings(posterior, knowledge, gate, lead, meters, s),
+        *_observations(posterior, knowledge, gate, lead, s),
+    ]
+    worth = [(score, item) for score, item in items if item.gain_bits >= s.least_bits]
+    worth.sort(key=lambda pair: (-pair[0], pair[1].key))
+    return tuple(item for _, item in worth[:limit])
+
+
+def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
+    """Pick the hypotheses that matter and what states they allow."""
+    share = posterior.share()
+    order = np.argsort(-share, kind="stable")[: s.hypotheses]
+    chosen = tuple(posterior.hypotheses[i] for i in order)
+    weights = share[order]
+    faults = tuple(dict.fromkeys(h.fault for h in chosen))
+    parts = {f.id: f.part for f in posterior.faults}
+    names = tuple(dict.fromkeys(parts[h.fault] for h in chosen))
+    places = [h.place for h in chosen]
+    modes = [posterior.modes[p] for p in places]
+    z = posterior.fit.z[places]
+    rows = attribute_rows(modes, z[:, None, :], posterior.twin.defaults)
+    return Leading(
+        hypotheses=chosen,
+        share=weights / weights.sum(),
+        faults=faults,
+        label=np.array([faults.index(h.fault) for h in chosen]),
+        part=np.array([names.index(parts[h.fault]) for h in chosen]),
+        possible=posterior.twin.possible(z, rows),
+    )
+
+
+def _readings(
+    posterior: Posterior,
+    knowledge: Knowledge,
+    gate: GateState,
+    lead: Leading,
+    meters: Mapping[str, InstrumentError],
+    s: ProposalSettings,
+) -> list[tuple[float, NextItem]]:
+    sheet, twin = posterior.sheet, posterior.twin
+    taken = {r.key for r in sheet.readings}
+    chances: dict[str, float] = {}
+    for state, flags in lead.possible.items():
+        chances[state] = float(lead.share @ flags)
+    candidates = []
+    for rule in knowledge.readings.values():
+        if not _suits(rule, sheet, twin.kind):
+            continue
+        for state, how in rule.states.items():
+            key = f"{rule.id}@{state}"
+            chance = state_chance(sheet, state, chances)
+            if key in taken or not how.proposed or gate.forbids(state) or chance < s.least_chance:
+                continue
+            candidates.append((rule, state, chance))
+    asks = [Ask(rule.id, state, **_context(sheet, rule.id, state)) for rule, state, _ in candidates]
+    covered = [ask for ask in asks if twin.covers(ask)]
+    modes = [posterior.modes[h.place] for h in lead.hypotheses]
+    z = posterior.fit.z[[h.place for h in lead.hypotheses]]
+    looks = {look.ask.key: look for look in outlooks(twin, modes, z, covered, dict(meters))}
+    found = []
+    for (rule, state, chance), ask in zip(candidates, asks, strict=True):
+        gain = _gain(posterior, knowledge, lead, looks.get(ask.key), rule, state, meters, s)
+        how = rule.states[state]
+        score = chance * gain / ((how.minutes + s.overhead_minutes) * _hazard(how.hazards, s))
+        item = NextItem(
+            measure=rule.id,
+            state=state,
+            gain_bits=round(gain / math.log(2.0), 4),
+            minutes=how.minutes,
+            leads=how.leads,
+            hazards=how.hazards,
+            why=wording.why(posterior, lead.faults, lead.share, lead.label),
+            expect=wording.expect(looks.get(ask.key), lead, posterior, knowledge, rule.id, state),
+        )
+        found.append((score, item))
+    return found
+
+
+def state_chance(sheet: CaseSheet, state: str, chances: Mapping[str, float]) -> float:
+    """Chance that the machine can be in a state: what was recorded in it shows that it can."""
+    if any(r.state == state for r in sheet.readings):
+        return 1.0
+    return chances.get(state, 0.0)
+
+
+def _suits(rule: ReadingRule, sheet: CaseSheet, kind: str) -> bool:
+    measure = MEASURES.get(rule.id)
+    if measure is None or not measure.suits(kind) or not ("any" in rule.kinds or kind in rule.kinds):
+        return False
+    return sheet.kit is None or bool((set(sheet.kit) | _KIT_ALWAYS) & set(rule.instruments))
+
+
+def _context(sheet: CaseSheet, measure: str, state: str) -> dict[str, float | None]:
+    if state == "isolated" and measure.endswith("resistance"):
+        noted = [r.temperature.number for r in sheet.readings if r.temperature and r.state == "isolated"]
+        return {"temperature_c": noted[-1] if noted else None}
+    if state == "spun":
+        return {"speed_rpm": sheet.machine.nameplate.number("speed")}
+    return {}
+
+
+def _hazard(hazards: Sequence[str], s: ProposalSettings) -> float:
+    return 1.0 + s.hazard_cost * len(hazards)
+
+
+def _gain(
+    posterior: Posterior,
+    knowledge: Knowledge,
+    lead: Leading,
+    look: Outlook | None,
+    rule: ReadingRule,
+    state: str,
+    meters: Mapping[str, InstrumentError],
+    s: ProposalSettings,
+) -> float:
+    """Information of one reading about fault and part. [nats]"""
+    if look is not None:
+        covariance = posterior.fit.covariance[[h.place for h in lead.hypotheses]]
+        spread = look.slope @ covariance @ look.slope.transpose(0, 2, 1) + np.diag(look.error**2)
+        return information(look.mean, spread, lead, s)
+    by_id = {f.id: f for f in posterior.faults}
+    healthy = knowledge.faults.get("healthy")
+    shapes = []
+    for h in lead.hypotheses:
+        spread = spread_of(by_id[h.fault], healthy, rule.id, state)
+        if spread is None:
+            return 0.0
+        shapes.append(shape(spread))
+    error = meters[rule.id].share if shapes[0][0] else meters[rule.id].floor
+    mean = np.array([[centre] for _, centre, _ in shapes])
+    variance = np.array([[[sigma**2 + error**2]] for _, _, sigma in shapes])
+    family = _family_factor(posterior, rule.id)
+    return family * information(mean, variance, lead, s)
+
+
+def _family_factor(posterior: Posterior, measure: str) -> float:
+    """A reading whose family was read already brings less that is new."""
+    for family in weighing().families.values():
+        if measure in family.measures and any(r.measure in family.measures for r in posterior.sheet.readings):
+            return 1.0 - family.correlation**2 + 0.05
+    return 1.0
+
+
+@cache
+def _draws(count: int, dims: int) -> Floats:
+    """Fixed quasi-random normal draws: a Kronecker sequence of square roots of primes."""
+    primes = (2, 3, 5, 7, 11, 13)[:dims]
+    n = np.arange(1, count + 1)[:, None]
+    uniform = (0.5 + n * np.sqrt(np.array(primes))) % 1.0
+    inverse = np.vectorize(NormalDist().inv_cdf)
+    return np.asarray(inverse(np.clip(uniform, 1e-4, 1.0 - 1e-4)))
+
+
+def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings) -> float:
+    """Mutual information of a reading with the fault, and with half the weight with the part. [nats]
+
+    Parameters
+    ----------
+    mean : ndarray
+        Predicted reading per hypothesis, (h, m).
+    spread : ndarray
+        Its covariance per hypothesis, (h, m, m).
+    """
+    count, dims = mean.shape
+    root = np.linalg.cholesky(spread + 1e-12 * np.eye(dims))
+    draws = _draws(s.draws, dims)
+    samples = mean[:, None, :] + np.einsum("hij,dj->hdi", root, draws)
+    gap = samples[:, :, None, :] - mean[None, None, :, :]
+    inverse = np.linalg.inv(root)
+    white = np.einsum("kij,hdkj->hdki", inverse, gap)
+    log_det = np.log(np.diagonal(root, axis1=1, axis2=2)).sum(axis=1)
+    # Student-like tails keep far hypotheses from looking infinitely telling.
+    log_density = -0.5 * (4.0 + dims) * np.log1p((white**2).sum(axis=-1) / 4.0) - log_det
+    top = log_density.max(axis=2, keepdims=True)
+    weighted = lead.share * np.exp(log_density - top)
+    total = weighted.sum(axis=2)
+    gain = 0.0
+    for labels, factor in ((lead.label, 1.0), (lead.part, s.part_weight)):
+        indicator = (labels[:, None] == labels[None, :]).astype(float)
+        same = np.einsum("hdk,hk->hd", weighted, indicator)
+        prior = indicator @ lead.share
+        per_hypothesis = np.log(np.maximum(same, 1e-300) / total / prior[:, None]).mean(axis=1)
+        gain += factor * float(lead.share @ per_hypothesis)
+    return max(gain, 0.0)
+
+
+def _observations(
+    posterior: Posterior, knowledge: Knowledge, gate: GateState, lead: Leading, s: ProposalSettings
+) -> list[tuple[float, NextItem]]:
+    sheet = posterior.sheet
+    found = []
+    by_id = {f.id: f for f in posterior.faults}
+    for known in knowledge.observations.values():
+        if known.id in sheet.observations or not known.proposed:
+            continue
+        if not ("any" in known.kinds or sheet.machine.kind in known.kinds):
+            continue
+        chance = _can_see(known, sheet, gate, lead)
+        if chance < s.least_chance:
+            continue
+        gain = _binary_gain(known, [by_id[h.fault] for h in lead.hypotheses], lead, s)
+        score = chance * gain / ((known.minutes + s.overhead_minutes) * _hazard(known.hazards, s))
+        item = NextItem(
+            observation=known.id,
+            gain_bits=round(gain / math.log(2.0), 4),
+            minutes=known.minutes,
+            leads=known.how or known.name,
+            hazards=known.hazards,
+            why=wording.why(posterior, lead.faults, lead.share, lead.label),
+        )
+        found.append((score, item))
+    return found
+
+
+def _can_see(known: Observation, sheet: CaseSheet, gate: GateState, lead: Leading) -> float:
+    """Chance that the machine is in a state in which this can be seen, and is allowed to be."""
+    if "any" in known.states or "isolated" in known.states:
+        return 1.0
+    chances = [
+        state_chance(sheet, state, {state: float(lead.share @ lead.possible.get(state, np.zeros(len(lead.share))))})
+        for state in known.states
+        if not gate.forbids(state)
+    ]
+    return max(chances, default=0.0)
+
+
+def _binary_gain(known: Observation, faults: Sequence[Fault], lead: Leading, s: ProposalSettings) -> float:
+    power = weighing().soft_power
+    yes = np.array([answer_chance(known, fault, True) for fault in faults])
+    gain = 0.0
+    for chance in (yes, 1.0 - yes):
+        total = float(lead.share @ chance)
+        for labels, factor in ((lead.label, 1.0), (lead.part, s.part_weight)):
+            indicator = (labels[:, None] == labels[None, :]).astype(float)
+            prior = indicator @ lead.share
+            same = indicator @ (lead.share * chance)
+            gain += factor * float(lead.share @ (chance * np.log(np.maximum(same / prior, 1e-12) / total)))
+    return power * max(gain, 0.0)
+
+
+__all__ = ["OTHER", "Leading", "information", "leading", "propose", "state_chance"]

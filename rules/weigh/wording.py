@@ -1,0 +1,130 @@
+"""Readings and predictions in words and figures, for reasons and proposals."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import NDArray
+
+from calc.observe import contrasts_matrix
+from calc.quantities import MEASURES
+from calc.sheet import Reading
+from calc.twin import Floats, Transform
+from rules.knowledge import Knowledge
+from rules.weigh.predict import Outlook, in_usual_unit
+from rules.weigh.soft import shape, spread_of
+
+if TYPE_CHECKING:
+    from rules.weigh.posterior import Posterior
+    from rules.weigh.propose import Leading
+
+_OPEN_OHM = 1e6
+
+
+def values_of(y: Floats, transform: Transform) -> Floats:
+    """Bring level and contrasts of one reading back to its values in the inner unit."""
+    level, contrasts = y[0], y[1:]
+    matrix = contrasts_matrix(len(y))
+    spread = contrasts @ matrix if len(contrasts) else np.zeros(1)
+    if transform.kind == "linear":
+        return np.asarray((level + spread) * transform.scale)
+    if transform.kind == "log_mean":
+        mean = max(math.exp(level) - transform.floor, 0.0)
+        return np.asarray(np.maximum(mean * (1.0 + spread), 0.0))
+    return np.asarray(np.maximum(np.exp(level + spread) - transform.floor, 0.0))
+
+
+def figure(number: float) -> str:
+    """Three significant digits, without a power of ten."""
+    if not math.isfinite(number):
+        return "open"
+    if number == 0.0:
+        return "0"
+    digits = max(0, 2 - math.floor(math.log10(abs(number))))
+    return f"{number:.{min(digits, 6)}f}"
+
+
+def amount_text(measure: str, values: Sequence[float], cap: float = math.inf) -> str:
+    """Values of a measure in its usual unit, such as ``15.2 15.9 14.8 A``."""
+    entry = MEASURES[measure]
+    shown = [
+        "open" if entry.dimension == "resistance" and value > min(_OPEN_OHM * 1e3, 0.9 * cap) else
+        figure(in_usual_unit(measure, value))
+        for value in values
+    ]  # fmt: skip
+    return f"{' '.join(shown)} {entry.usual_unit}".strip()
+
+
+def reading_text(reading: Reading) -> str:
+    """A reading as it was typed."""
+    return " / ".join(value.text if value.is_read else "-" for value in reading.values)
+
+
+def title(key: str) -> str:
+    """A reading or observation in words: ``line current, loaded``."""
+    measure, _, state = key.rstrip("'").partition("@")
+    entry = MEASURES.get(measure)
+    if entry is None:
+        return key.replace("_", " ")
+    return f"{entry.label}, {state.replace('_', ' ')}"
+
+
+def range_text(look: Outlook, row: int, sigma: float) -> str:
+    """Where nine in ten such readings would lie under one hypothesis (level only)."""
+    from rules.weigh.predict import untransform  # noqa: PLC0415
+
+    edges = untransform(look.mean[row, 0] + np.array([-1.645, 1.645]) * sigma, look.transform)
+    low, high = (figure(in_usual_unit(look.ask.measure, float(x))) for x in edges)
+    return f"{low} to {high} {MEASURES[look.ask.measure].usual_unit}".strip()
+
+
+def expect(
+    look: Outlook | None,
+    lead: Leading,
+    posterior: Posterior,
+    knowledge: Knowledge,
+    measure: str,
+    state: str,
+) -> str:
+    """What the leading two faults would show in a reading."""
+    names = {f.id: f.name for f in posterior.faults}
+    parts = []
+    shown: set[str] = set()
+    for row, hypothesis in enumerate(lead.hypotheses):
+        if hypothesis.fault in shown or len(shown) == 2:
+            continue
+        shown.add(hypothesis.fault)
+        if look is not None:
+            values = values_of(look.mean[row], look.transform)
+            text = amount_text(measure, [float(v) for v in values], look.transform.cap)
+        else:
+            text = _spread_text(posterior, knowledge, hypothesis.fault, measure, state)
+        parts.append(f"{names[hypothesis.fault]}: {text}")
+    return "; ".join(parts)
+
+
+def _spread_text(
+    posterior: Posterior, knowledge: Knowledge, fault: str, measure: str, state: str
+) -> str:
+    by_id = {f.id: f for f in posterior.faults}
+    spread = spread_of(by_id[fault], knowledge.faults.get("healthy"), measure, state)
+    if spread is None:
+        return "nothing known"
+    logarithmic, centre, sigma = shape(spread)
+    edges = [centre - 1.645 * sigma, centre + 1.645 * sigma]
+    low, high = (math.exp(x) if logarithmic else x for x in edges)
+    unit = MEASURES[measure].usual_unit
+    return f"{figure(in_usual_unit(measure, low))} to {figure(in_usual_unit(measure, high))} {unit}".strip()
+
+
+def why(
+    posterior: Posterior, faults: Sequence[str], share: Floats, label: NDArray[np.int64]
+) -> str:
+    """Which suspects a proposal tells apart."""
+    names = {f.id: f.name for f in posterior.faults}
+    weight = [(float(share[label == i].sum()), fault) for i, fault in enumerate(faults)]
+    first = [names[fault] for _, fault in sorted(weight, reverse=True)[:3]]
+    return "tells apart: " + "; ".join(first)
