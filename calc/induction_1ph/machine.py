@@ -1,0 +1,191 @@
+"""One motor per row: physical quantities from per-unit ones, and what they make of a state.
+
+Resistances are kept at 20 °C and brought to the temperature of the state.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, fields, replace
+
+import numpy as np
+
+from calc.induction_1ph import priors
+from calc.induction_1ph.circuit import Currents, Phasors, Rotor, Windings, solve_currents
+from calc.induction_1ph.plate import Plate
+from calc.twin import Floats
+
+OPEN_OHM = 1e9
+_COPPER_K = 234.5
+
+
+@dataclass(frozen=True)
+class Motor:
+    """Quantities of a motor, each of shape (rows,); ohms at 20 °C, farads, watts, volts."""
+
+    voltage_v: Floats
+    angular_frequency: Floats
+    main_ohm: Floats
+    main_reactance_ohm: Floats
+    auxiliary_ohm: Floats
+    auxiliary_reactance_ohm: Floats
+    rotor_ohm: Floats
+    magnetising_ohm: Floats
+    core_ohm: Floats
+    turns_ratio: Floats
+    power_w: Floats
+    friction_w: Floats
+    slip: Floats
+    run_f: Floats
+
+    def column(self) -> Motor:
+        """Return the same with shape (rows, 1), to be spread over slips."""
+        return replace(self, **{f.name: getattr(self, f.name)[:, None] for f in fields(self)})
+
+
+@dataclass(frozen=True)
+class Setting:
+    """How a motor stands in one state; shapes as the motor's.
+
+    ``leakage`` and ``rotor_rise`` are factors on leakage reactance and rotor resistance,
+    ``winding_ohm`` one on all impedances: the winding linked for another voltage.
+    """
+
+    temperature_c: Floats
+    auxiliary_extra_ohm: Phasors
+    main_extra_ohm: Floats
+    supply_v: Floats
+    source_ohm: Floats
+    turn_share: Floats
+    leakage: Floats
+    rotor_rise: Floats
+    winding_ohm: Floats
+
+    def column(self) -> Setting:
+        """Return the same with shape (rows, 1), to be spread over slips."""
+        return replace(self, **{f.name: getattr(self, f.name)[:, None] for f in fields(self)})
+
+
+def motor(plate: Plate, values: Mapping[str, Floats], *, base_current_a: Floats) -> Motor:
+    """Turn per-unit quantities into a motor.
+
+    Parameters
+    ----------
+    plate : Plate
+        Rated values.
+    values : mapping
+        Per-unit quantities by the names of ``priors.MEDIAN_AND_SPREAD``, with ``slip``,
+        ``current``, ``power`` (factors on the plate's) and ``run`` [F]; each (rows,).
+    base_current_a : ndarray
+        Rated current of each row's design. [A]
+
+    """
+    ohm = plate.voltage_v / (base_current_a * values["current"])
+    power = plate.power_w * values["power"]
+    main_reactance = values["leakage"] * ohm
+    main = values["main_resistance"] * ohm
+    return Motor(
+        voltage_v=np.full_like(ohm, plate.voltage_v),
+        angular_frequency=np.full_like(ohm, 2.0 * np.pi * plate.frequency_hz),
+        main_ohm=main,
+        main_reactance_ohm=main_reactance,
+        auxiliary_ohm=main * values["auxiliary_resistance"],
+        auxiliary_reactance_ohm=main_reactance * values["auxiliary_leakage"],
+        rotor_ohm=values["rotor_resistance"] * ohm,
+        magnetising_ohm=values["magnetising"] * ohm,
+        core_ohm=values["core"] * ohm,
+        turns_ratio=values["turns_ratio"],
+        power_w=power,
+        friction_w=values["friction"] * power,
+        slip=values["slip"],
+        run_f=values["run"],
+    )
+
+
+def copper_factor(temperature_c: Floats) -> Floats:
+    """Resistance at a temperature over that at 20 °C: (234.5 + t) / 254.5 for copper (IEEE 112)."""
+    return np.asarray((_COPPER_K + temperature_c) / (_COPPER_K + 20.0))
+
+
+def capacitor_ohm(farad: Floats, angular_frequency: Floats, *, loss_factor: float) -> Phasors:
+    """Impedance of a capacitor with its losses; 1e9 ohm where there is none.
+
+    ``loss_factor`` is series resistance over reactance.
+    """
+    reactance = 1.0 / np.maximum(angular_frequency * farad, 1e-9)
+    ohm = np.minimum(reactance, OPEN_OHM)
+    return np.asarray(ohm * (loss_factor - 1j))
+
+
+def in_parallel(one: Phasors, other: Phasors) -> Phasors:
+    """Two impedances side by side; either may be zero (shorted)."""
+    total = one + other
+    return np.asarray(one * other / np.where(total == 0.0, 1.0, total))
+
+
+def saturated_ohm(machine: Motor, emf_v: Floats) -> Floats:
+    """Magnetising reactance at an induced voltage [V]; ``magnetising_ohm`` holds at rated voltage."""
+    e = np.minimum(emf_v / machine.voltage_v, 1.6)
+    share = priors.SATURATION_SHARE
+    factor = (1.0 + share) / (1.0 + share * e**priors.SATURATION_POWER)
+    return np.asarray(machine.magnetising_ohm * factor, dtype=np.float64)
+
+
+def run_at(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) -> tuple[Currents, Floats]:
+    """Currents of a motor in a setting at a slip, and the voltage left at its terminals.
+
+    Parameters
+    ----------
+    machine, setting : Motor, Setting
+        Same shape.
+    slip : ndarray
+        Slip. [1]
+    emf_v : ndarray
+        Induced voltage that the iron is magnetised for. [V]
+
+    Returns
+    -------
+    Currents
+        At the terminal voltage that the source impedance leaves.
+    ndarray
+        That voltage. [V]
+
+    """
+    windings, rotor = _at_one_volt(machine, setting, slip, emf_v)
+    one_volt = solve_currents(windings, rotor, slip)
+    drop = 1.0 / (1.0 + setting.source_ohm * (one_volt.main + one_volt.auxiliary))
+    volt = np.asarray(setting.supply_v * np.abs(drop))
+    currents = Currents(
+        main=one_volt.main * volt,
+        auxiliary=one_volt.auxiliary * volt,
+        forward_emf=one_volt.forward_emf * volt,
+        backward_emf=one_volt.backward_emf * volt,
+        torque_w=one_volt.torque_w * volt**2,
+    )
+    return currents, volt
+
+
+def _at_one_volt(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) -> tuple[Windings, Rotor]:
+    """Windings and rotor of a setting, fed with one volt."""
+    linked = setting.winding_ohm
+    warm = copper_factor(setting.temperature_c) * linked
+    main_x = machine.main_reactance_ohm * setting.leakage * linked
+    rotor = Rotor(
+        magnetising_ohm=saturated_ohm(machine, emf_v / np.sqrt(linked)) * linked,
+        core_ohm=machine.core_ohm * linked,
+        rotor_ohm=machine.rotor_ohm * warm * setting.rotor_rise,
+        rotor_reactance_ohm=main_x,
+        backward_ratio=1.0 + (priors.BACKWARD_RESISTANCE - 1.0) * (1.0 - slip) / setting.rotor_rise,
+    )
+    main_ohm = machine.main_ohm * warm
+    auxiliary_x = machine.auxiliary_reactance_ohm * setting.leakage * linked
+    unit = np.ones_like(slip) + 0j
+    windings = Windings(
+        main_ohm=main_ohm * (1.0 - setting.turn_share) + 1j * main_x + setting.main_extra_ohm,
+        auxiliary_ohm=machine.auxiliary_ohm * warm + 1j * auxiliary_x + setting.auxiliary_extra_ohm,
+        turns_ratio=machine.turns_ratio,
+        main_volt=unit,
+        auxiliary_volt=unit,
+        shunt_siemens=setting.turn_share / (main_ohm + 1j * priors.LOOP_LEAKAGE * main_x),
+    )
+    return windings, rotor

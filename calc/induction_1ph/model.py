@@ -1,0 +1,200 @@
+"""The twin of a single-phase induction motor."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+
+import numpy as np
+
+from calc.induction_1ph import priors
+from calc.induction_1ph.circuit import square
+from calc.induction_1ph.effects import DEFAULTS, VARIANTS, enumerate_modes
+from calc.induction_1ph.machine import run_at
+from calc.induction_1ph.plate import HAS_START_CAPACITOR, SPLIT_PHASE, Plate, read_plate
+from calc.induction_1ph.plate_fit import NDIndex, fit_plate, rated_setting
+from calc.induction_1ph.readings import COVERED, error_of, predict_one, transform_of
+from calc.induction_1ph.states import Attributes, Site, Standing, at_standstill, turning
+from calc.quantities import RUNNING_STATES
+from calc.sheet import Machine, Reading
+from calc.twin import Ask, Floats, Mode, ModelError, Transform
+
+_SITE = ("lock", "supply", "source", "load", "rise", "ambient")
+_BIG = 4.5
+
+
+def fit(machine: Machine, *, readings: Sequence[Reading] = ()) -> SinglePhaseTwin:
+    """Fit the single-phase model to a nameplate.
+
+    Parameters
+    ----------
+    machine : Machine
+        Any subset of plate fields, down to none.
+    readings : sequence of Reading
+        Context only: which capacitors were measured, which voltage class.
+
+    Returns
+    -------
+    SinglePhaseTwin
+        Implements ``calc.twin.Twin``.
+
+    """
+    return SinglePhaseTwin(read_plate(machine, readings))
+
+
+class SinglePhaseTwin:
+    """A single-phase motor as its plate describes it; every design that the plate allows at once.
+
+    Latents: what the plate leaves open of the circuit, start capacitor, leakage at
+    standstill, supply level and impedance, load, temperature rise, ambient, two severities.
+    """
+
+    kind = "induction_1ph"
+
+    def __init__(self, plate: Plate) -> None:
+        self.plate = plate
+        self._fit = fit_plate(plate)
+        self.designs = self._fit.known.designs
+        has_start = [design in HAS_START_CAPACITOR for design in self.designs]
+        names = (*(("start",) if any(has_start) else ()), *_SITE)
+        self._places = {name: self._fit.size + index for index, name in enumerate(names)}
+        self._dim = self._fit.size + len(names) + 2
+        self._has_start = np.array(has_start, dtype=np.float64)
+        self._has_switch = np.array(
+            [design in HAS_START_CAPACITOR or design == SPLIT_PHASE for design in self.designs],
+            dtype=np.float64,
+        )
+        self._start = [self._start_capacitor(design) for design in self.designs]
+        self._rated_loss_w = self._rated_losses()
+
+    @property
+    def dim(self) -> int:
+        """Number of latents; the last two are severities."""
+        return self._dim
+
+    @property
+    def defaults(self) -> Mapping[str, float]:
+        """Attributes of a healthy machine."""
+        return DEFAULTS
+
+    @property
+    def effects(self) -> tuple[str, ...]:
+        """Effects that some design of this machine can show."""
+        return tuple(effect for effect in VARIANTS if self.modes(effect))
+
+    def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
+        """Enumerate the ways of an effect over the designs that the plate allows.
+
+        Empty where no such design has the part. Raises KeyError for an unknown effect.
+        """
+        picked = [i for i, weight in enumerate(self._fit.weights) if weight >= _LEAST_SHARE]
+        weights = [float(weight) for weight in self._fit.weights]
+        return enumerate_modes(effect, self.designs, weights, severity, picked)
+
+    def covers(self, ask: Ask) -> bool:
+        """Whether the model predicts this reading."""
+        return ask.state in COVERED.get(ask.measure, frozenset())
+
+    def predict(self, z: Floats, attributes: Attributes, asks: Sequence[Ask]) -> list[Floats]:
+        """Predict readings: one array of shape (rows, 1) per reading asked for, in inner units."""
+        site = self.site(z, attributes)
+        states = {ask.state for ask in asks}
+        solved = {state: self._solve(site, attributes, state) for state in states}
+        return [predict_one(self.plate, site, attributes, ask, solved[ask.state])[:, None] for ask in asks]
+
+    def plate_misfit(self, z: Floats) -> Floats:
+        """No residuals: the latents span only what the plate leaves open."""
+        return np.zeros((len(z), 0))
+
+    def possible(self, z: Floats, attributes: Attributes) -> Mapping[str, Floats]:
+        """For each state, whether such a motor can be in it: shape (rows,), 1.0 or 0.0."""
+        stands, trips, live = attributes["stands"], attributes["trips"], attributes["live"]
+        site = self.site(z, attributes)
+        turns = (trips < 0.5) & (live > 0.5)
+        free = turns & (stands < 1.5)
+        carries = turns & (stands < 0.5)
+        carries &= ~turning(site, attributes, "loaded").running.stalled
+        always = np.ones(len(z))
+        flags = {
+            "starting": trips < 1.5,
+            "stalled": (stands > 0.5) & (trips < 1.5),
+            "no_load": free,
+            "light_load": turns & (stands < 0.5),
+            "loaded": carries,
+            "coasting": free,
+        }
+        found = {state: flag.astype(np.float64) for state, flag in flags.items()}
+        return {"isolated": always, "standby": always, "spun": 0.0 * always, **found}
+
+    def transform(self, measure: str) -> Transform:
+        """How a measure enters the comparison on this machine."""
+        return transform_of(measure, self.plate, self._amps())
+
+    def model_error(self, ask: Ask) -> ModelError:
+        """How far the model may be off for this reading, in transformed units."""
+        return error_of(ask, self.plate)
+
+    def site(self, z: Floats, attributes: Attributes) -> Site:
+        """Motor and surroundings of rows of latents, with the design that the attributes name."""
+        z = np.clip(z, -_BIG, _BIG)
+        design = attributes["design"].astype(np.intp)
+        machine = self._fit.motors(z[:, : self._fit.size], design)
+        ohm = self.plate.voltage_v / self._fit.known.base_current_a[design]
+        start = np.array([median for median, _ in self._start])
+        spread = np.array([sigma for _, sigma in self._start])
+        lock = np.array([priors.LOCKED_LEAKAGE[name] for name in self.designs])
+        return Site(
+            machine=machine,
+            has_run=self._fit.known.has_run[design],
+            has_start=self._has_start[design],
+            has_switch=self._has_switch[design],
+            start_f=start[design] * np.exp(spread[design] * self._latent(z, "start")),
+            supply_v=self.plate.supply_v * (1.0 + priors.SUPPLY[1] * self._latent(z, "supply")),
+            source_ohm=ohm * self._spread(z, "source", priors.SOURCE_PER_UNIT),
+            lock=lock[design, 0] * np.exp(lock[design, 1] * self._latent(z, "lock")),
+            load=self._spread(z, "load", priors.LOAD),
+            rise_k=self._spread(z, "rise", (self.plate.rise_k, priors.RISE_SPREAD)),
+            ambient_c=self.plate.ambient_c + priors.AMBIENT_SPREAD_K * self._latent(z, "ambient"),
+            rated_loss_w=self._rated_loss_w[design],
+        )
+
+    def _latent(self, z: Floats, name: str) -> Floats:
+        place = self._places.get(name)
+        return np.zeros(len(z)) if place is None else z[:, place]
+
+    def _spread(self, z: Floats, name: str, spread: priors.Spread) -> Floats:
+        return np.asarray(spread[0] * np.exp(spread[1] * self._latent(z, name)))
+
+    def _solve(self, site: Site, attributes: Attributes, state: str) -> Standing | None:
+        if state in RUNNING_STATES:
+            return turning(site, attributes, state)
+        return at_standstill(site, attributes) if state in {"starting", "stalled"} else None
+
+    def _amps(self) -> float:
+        return float(self._fit.known.base_current_a @ self._fit.weights)
+
+    def _start_capacitor(self, design: str) -> tuple[float, float]:
+        """Median and spread of the start capacitor of a design. [F]"""
+        plate = self.plate
+        if design not in HAS_START_CAPACITOR:
+            return 1e-12, 0.0
+        if plate.start_f is not None:
+            return plate.start_f, plate.start_sigma
+        ratio, sigma = priors.START_VAR_PER_WATT[design]
+        rated = plate.power_w / (2.0 * np.pi * plate.frequency_hz * plate.voltage_v**2)
+        return ratio * rated, sigma
+
+    def _rated_losses(self) -> Floats:
+        """Losses of the base point of each design at rated load. [W]"""
+        design: NDIndex = np.arange(len(self.designs), dtype=np.intp)
+        machine = self._fit.motors(np.zeros((len(design), self._fit.size)), design)
+        setting = rated_setting(self.plate, machine, self._fit.known.has_run)
+        slip = np.minimum(machine.slip, 0.5)
+        currents, volt = run_at(machine, setting, slip, 0.92 * machine.voltage_v)
+        line = currents.main + currents.auxiliary
+        output = (currents.torque_w * (1.0 - slip)) - machine.friction_w
+        floor = 0.05 * np.sqrt(square(line)) * volt
+        return np.asarray(np.maximum(volt * line.real - output, floor))
+
+
+_LEAST_SHARE = 0.02
+"""A design that the plate makes less likely than this is not looked at."""

@@ -1,0 +1,191 @@
+"""What a motor does in each state: standing, starting, without load, with its load."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from calc.induction_1ph import priors
+from calc.induction_1ph.circuit import Phasors
+from calc.induction_1ph.machine import OPEN_OHM, Motor, Setting, capacitor_ohm, in_parallel, run_at
+from calc.induction_1ph.slip import Running, run_loaded
+from calc.twin import Floats
+
+Attributes = Mapping[str, Floats]
+
+
+@dataclass(frozen=True)
+class Site:
+    """Motor, supply, load and warmth of each row; all of shape (rows,).
+
+    ``load`` is in rated torque, ``lock`` the factor on leakage at standstill, ``rise_k`` the
+    rise of the winding at rated losses, ``rated_loss_w`` those losses.
+    """
+
+    machine: Motor
+    has_run: Floats
+    has_start: Floats
+    has_switch: Floats
+    start_f: Floats
+    supply_v: Floats
+    source_ohm: Floats
+    lock: Floats
+    load: Floats
+    rise_k: Floats
+    ambient_c: Floats
+    rated_loss_w: Floats
+
+
+@dataclass(frozen=True)
+class Standing:
+    """One state of each row: the solved circuit, currents at the terminals, and heat."""
+
+    running: Running
+    line: Phasors
+    capacitor_v: Floats
+    input_w: Floats
+    winding_c: Floats
+
+
+def capacitances(site: Site, attributes: Attributes) -> tuple[Floats, Floats]:
+    """Run and start capacitor as a meter reads them: 0 F where open, shorted or not fitted."""
+    gone = (1.0 - attributes["run_open"]) * (1.0 - attributes["run_shorted"])
+    run = site.machine.run_f * site.has_run * gone * (1.0 - attributes["run_lost"])
+    gone = (1.0 - attributes["start_open"]) * (1.0 - attributes["start_shorted"])
+    start = site.start_f * site.has_start * gone * (1.0 - attributes["start_lost"])
+    return run, start
+
+
+def auxiliary_path(site: Site, attributes: Attributes, *, at_start: bool) -> tuple[Phasors, Phasors]:
+    """Impedance in series with the auxiliary winding, and of the capacitor that a meter sees. [ohm]
+
+    The start branch (start capacitor, or nothing but the switch) lies across the run
+    capacitor; the switch is closed in a start and open in running, unless it is stuck.
+    """
+    omega = site.machine.angular_frequency
+    run_f, start_f = capacitances(site, attributes)
+    run = capacitor_ohm(run_f, omega, loss_factor=priors.RUN_LOSS_FACTOR)
+    run = run * (1.0 - attributes["run_shorted"] * site.has_run)
+    start = capacitor_ohm(start_f, omega, loss_factor=priors.START_LOSS_FACTOR)
+    start = start * (1.0 - attributes["start_shorted"]) * site.has_start
+    closed = 1.0 - attributes["switch_open"] if at_start else attributes["switch_closed"]
+    closed = closed * site.has_switch
+    switch = OPEN_OHM * (1.0 - closed)
+    path = in_parallel(run, start + switch)
+    # A start capacitor behind an open switch carries no voltage; a run capacitor has the branch's.
+    seen = np.where(site.has_run > 0.0, path, start * site.has_start * closed)
+    return path + OPEN_OHM * attributes["auxiliary_open"], np.asarray(seen)
+
+
+def settle(site: Site, attributes: Attributes, *, warm_c: Floats, at_start: bool) -> Setting:
+    """Return the setting of a state: what is in circuit, at which supply."""
+    one = np.ones_like(site.load)
+    path, _ = auxiliary_path(site, attributes, at_start=at_start)
+    return Setting(
+        temperature_c=warm_c,
+        auxiliary_extra_ohm=path,
+        main_extra_ohm=OPEN_OHM * attributes["main_open"],
+        supply_v=supply(site, attributes),
+        source_ohm=site.source_ohm,
+        turn_share=attributes["turns_shorted"],
+        leakage=one,
+        rotor_rise=one,
+        winding_ohm=attributes["winding_ohm"],
+    )
+
+
+def supply(site: Site, attributes: Attributes) -> Floats:
+    """Voltage behind the source impedance. [V]"""
+    changed = (1.0 - attributes["volts_lost"]) * (1.0 + attributes["volts_over"])
+    # Where the fault sets the level, the site's own spread is not counted twice.
+    rated = site.machine.voltage_v
+    own = np.where(attributes["set_volts"] > 0.0, rated + 0.3 * (site.supply_v - rated), site.supply_v)
+    return np.asarray(own * changed * attributes["live"])
+
+
+def at_standstill(site: Site, attributes: Attributes) -> Standing:
+    """Locked rotor with the start circuit as it is; a motor that starts is taken to have run before."""
+    was_running = (attributes["stands"] < 0.5) & (attributes["live"] > 0.5)
+    warm = np.where(was_running, priors.RESTART_HEAT * site.rise_k, 5.0)
+    setting = settle(site, attributes, warm_c=site.ambient_c + warm, at_start=True)
+    setting = _locked(site, setting)
+    slip = np.ones_like(site.load)
+    currents, volt = run_at(site.machine, setting, slip, 0.5 * setting.supply_v)
+    stalled = np.ones(len(slip), dtype=np.bool_)
+    return _standing(
+        site, attributes, Running(slip=slip, currents=currents, voltage_v=volt, stalled=stalled), True
+    )
+
+
+def _locked(site: Site, setting: Setting) -> Setting:
+    rise = np.full_like(site.lock, priors.LOCKED_ROTOR_RESISTANCE)
+    return replace(setting, leakage=site.lock, rotor_rise=rise)
+
+
+def torque_asked(site: Site, attributes: Attributes, state: str) -> Floats:
+    """Load and friction in a running state, as synchronous watts."""
+    machine = site.machine
+    rated = machine.power_w / (1.0 - machine.slip)
+    load = np.where(attributes["load_set"] > 0.0, attributes["load_set"], site.load)
+    share = {"loaded": 1.0, "light_load": priors.LIGHT_LOAD, "no_load": 0.0}[state]
+    coupled = 1.0 if share else 0.0
+    drag = attributes["friction"] * np.where(attributes["load_drags"] > 0.0, coupled, 1.0)
+    return np.asarray((share * load + drag) * rated + machine.friction_w)
+
+
+def turning(site: Site, attributes: Attributes, state: str) -> Standing:
+    """Running in ``no_load``, ``light_load`` or ``loaded``; a motor that cannot is at standstill."""
+    asked = torque_asked(site, attributes, state)
+    share = asked / site.machine.power_w
+    heat = priors.IDLE_HEAT + (1.0 - priors.IDLE_HEAT) * np.minimum(share, 2.0) ** 2
+    warm = site.ambient_c + site.rise_k * attributes["rise"] * heat
+    setting = settle(site, attributes, warm_c=np.minimum(warm, 220.0), at_start=False)
+    limit = 1.5 if state == "no_load" else 0.5
+    stands = (attributes["stands"] > limit) | (attributes["live"] < 0.5)
+    running = run_loaded(site.machine, setting, asked, stands)
+    found = _standing(site, attributes, running, False)
+    if not running.stalled.any():
+        return found
+    return _merge(running.stalled, at_standstill(site, attributes), found)
+
+
+def _standing(site: Site, attributes: Attributes, running: Running, at_start: bool) -> Standing:
+    currents, volt = running.currents, running.voltage_v
+    earth = 0.4 * volt / attributes["earth_ohm"]
+    line = currents.main + currents.auxiliary + earth
+    _, seen = auxiliary_path(site, attributes, at_start=at_start)
+    given = volt * line.real
+    output = (currents.torque_w - site.machine.friction_w) * (1.0 - running.slip)
+    share = np.clip((given - output - volt * earth) / site.rated_loss_w, 0.0, 6.0)
+    winding = site.ambient_c + site.rise_k * attributes["rise"] * share
+    return Standing(
+        running=running,
+        line=np.asarray(line),
+        capacitor_v=np.abs(currents.auxiliary * seen),
+        input_w=np.asarray(given),
+        winding_c=np.asarray(np.minimum(winding, 350.0)),
+    )
+
+
+def _merge(pick: np.ndarray[tuple[int], np.dtype[np.bool_]], yes: Standing, no: Standing) -> Standing:
+    """Rows of one state where picked, of another elsewhere."""
+    currents = yes.running.currents
+    other = no.running.currents
+    mixed = {
+        name: np.where(pick, getattr(currents, name), getattr(other, name))
+        for name in ("main", "auxiliary", "forward_emf", "backward_emf", "torque_w")
+    }
+    return Standing(
+        running=Running(
+            slip=np.where(pick, 1.0, no.running.slip),
+            currents=replace(currents, **mixed),
+            voltage_v=np.where(pick, yes.running.voltage_v, no.running.voltage_v),
+            stalled=no.running.stalled,
+        ),
+        line=np.where(pick, yes.line, no.line),
+        capacitor_v=np.where(pick, yes.capacitor_v, no.capacitor_v),
+        input_w=np.where(pick, yes.input_w, no.input_w),
+        winding_c=np.where(pick, yes.winding_c, no.winding_c),
+    )
