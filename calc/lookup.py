@@ -1,4 +1,4 @@
-"""The tables beside this module, read once when they are first asked for."""
+"""The tables beside this module, each with its source in its head, read once when first asked for."""
 
 from __future__ import annotations
 
@@ -7,7 +7,7 @@ from functools import cache
 from pathlib import Path
 from typing import Final
 
-from calc.errors import InputError, Problem
+from calc.errors import InputError, Problem, RangeError
 from calc.safe_yaml import Plain, read_document
 
 TABLES: Final = Path(__file__).with_name("tables")
@@ -35,7 +35,7 @@ def code_letters() -> tuple[str, ...]:
     return tuple(row["letter"] for row in rows("code_letters"))
 
 
-def code_letter_kva_per_hp(letter: str) -> tuple[float, float | None]:
+def code_letter_kva_per_hp(letter: str) -> tuple[float, float]:
     """Return the span of locked-rotor kVA per horsepower that a code letter stands for.
 
     Parameters
@@ -45,17 +45,22 @@ def code_letter_kva_per_hp(letter: str) -> tuple[float, float | None]:
 
     Returns
     -------
-    tuple of float and (float or None)
-        Lowest value, and the value below which it stays (None for V, which has no end). [kVA/hp]
+    tuple of float
+        Lowest value, and the value below which it stays. [kVA/hp]
 
     Raises
     ------
-    KeyError
+    RangeError
         If there is no such letter.
+
+    Notes
+    -----
+    A has no lower end and V no upper one in the standard; both get the width of
+    their neighbour here (2.80 and 25.1), so that a middle can be taken.
 
     References
     ----------
-    NEMA MG 1, 10.37.2 (``tables/code_letters.csv``).
+    .. [1] NEMA MG 1, 10.37.2 (``code_letters.csv``).
 
     Examples
     --------
@@ -63,9 +68,14 @@ def code_letter_kva_per_hp(letter: str) -> tuple[float, float | None]:
     (5.6, 6.3)
 
     """
-    lows = [float(row["low_kva_per_hp"]) for row in rows("code_letters")]
-    try:
-        place = code_letters().index(letter)
-    except ValueError:
-        raise KeyError(letter) from None
-    return lows[place], lows[place + 1] if place + 1 < len(lows) else None
+    for row in rows("code_letters"):
+        if row["letter"] == letter:
+            return float(row["low_kva_per_hp"]), float(row["high_kva_per_hp"])
+    raise RangeError("letter", letter, f"one of {', '.join(code_letters())}")
+
+
+def curve(name: str, poles: int) -> tuple[tuple[float, ...], tuple[float, ...]]:
+    """Return one column of a table by size: the powers in W, rising, and the values for a number of poles."""
+    columns = [int(key) for key in rows(name)[0] if key.isdigit()]
+    column = str(min(columns, key=lambda known: abs(known - poles)))
+    return tuple(1000.0 * float(r["kw"]) for r in rows(name)), tuple(float(r[column]) for r in rows(name))

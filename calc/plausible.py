@@ -14,9 +14,9 @@ from typing import Final
 from calc.errors import clip
 from calc.fields import Fields
 from calc.lookup import table
-from calc.nameplate import synchronous_speed_rpm
 from calc.quantities import DC_KINDS, MEASURES
 from calc.sheet import Machine, Nameplate, Reading, Value
+from calc.typical import synchronous_speed_rpm
 from calc.values import parse_value
 from calc.vocabulary import CHECKED, PLATE_DIMENSION
 
