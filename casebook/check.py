@@ -56,7 +56,7 @@ def _check_body(entry: Entry) -> None:
         raise BadEntry("body", f"{len(entry.body_json)} characters", f"at most {MAX_BODY} bytes of JSON")
     try:
         data = msgspec.json.decode(entry.body_json)
-    except (msgspec.DecodeError, RecursionError, UnicodeError) as error:
+    except (msgspec.DecodeError, RecursionError, ValueError) as error:
         raise BadEntry("body", entry.body_json, f"JSON ({error})") from error
     if not isinstance(data, dict):
         raise BadEntry("body", entry.body_json, "a JSON object")

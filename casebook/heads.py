@@ -6,6 +6,7 @@ import sqlite3
 import time
 from collections.abc import Iterable
 from datetime import datetime
+from itertools import pairwise
 from typing import Any, Final
 
 from casebook.entry import Entry, canonical_json
@@ -24,7 +25,7 @@ _HEAD: Final = (
     " machine_key, kind, complaint, suspect, found, confirmed, persons, plate, words)"
     " VALUES (?,?,?,?,?,?,?,?,?,?,?,?,?,?,?,?,?,?)"
 )
-_OUTCOME: Final = "INSERT INTO outcome VALUES (?,?,?,?,?,?,?,?,?,?)"
+_OUTCOME: Final = "INSERT INTO outcome VALUES (?,?,?,?,?,?,?,?,?,?,?)"
 _PLACES_PER_MICROSECOND: Final = 256
 
 
@@ -35,7 +36,8 @@ def entries_of_case(connection: sqlite3.Connection, case: str) -> tuple[Entry, .
 
 def refresh(connection: sqlite3.Connection, cases: Iterable[str]) -> None:
     """Make the derived rows of some cases anew, inside the caller's transaction."""
-    folded = [fold_case(entries_of_case(connection, case)) for case in cases]
+    held = [entries_of_case(connection, case) for case in cases]
+    folded = [fold_case(entries) for entries in held if entries]
     # Oldest first: the full-text index takes rows in rising order most cheaply.
     for case in sorted(folded, key=lambda case: (case.last_utc, case.id)):
         _replace(connection, case)
@@ -94,19 +96,27 @@ def suspect(case: Case) -> str:
     return faults[0].id if faults else ""
 
 
+def worked_minutes(case: Case, *, away_minutes: float = 60.0) -> float:
+    """Return the minutes spent on a case: from line to line, gaps longer than ``away_minutes`` left out."""
+    times = [line.entry.time_utc for line in case.lines]
+    gaps = [abs((later - earlier).total_seconds()) / 60 for earlier, later in pairwise(times)]
+    return sum(gap for gap in gaps if gap <= away_minutes)
+
+
 def _outcome(case: Case) -> tuple[object, ...]:
     assert case.closed is not None
     closed = case.closed.what
     odds = {fault.id: fault.probability for fault in case.shown.what.faults} if case.shown else {}
     return (
         case.id,
+        stamp(case.closed.time_utc),
         case.machine.kind,
         case.machine.nameplate.number("power"),
         case.complaint,
         closed.found,
         closed.confirmed,
         len(case.readings),
-        (case.last_utc - case.opened_utc).total_seconds() / 60,
+        worked_minutes(case),
         canonical_json(odds),
         canonical_json(case.observations),
     )

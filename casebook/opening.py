@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+import os
+import shutil
 import sqlite3
 import time
 from collections.abc import Iterator
-from contextlib import closing, contextmanager
+from contextlib import contextmanager
 from datetime import UTC, datetime
 from pathlib import Path
+from tempfile import TemporaryDirectory
 from typing import Final, NamedTuple
 from urllib.parse import quote
 
@@ -32,12 +35,14 @@ class Opened(NamedTuple):
     connection: sqlite3.Connection
     read_only: bool
     notes: tuple[str, ...]
+    private: TemporaryDirectory[str] | None = None
+    """The folder of a private copy, where reading needs one; to be removed after use."""
 
 
 def connect(path: Path, *, group: bool, read_only: bool, timeout_s: float) -> Opened:
     """Open or start a casebook. Raises ``CasebookError`` with what to do."""
     if read_only or (path.exists() and not place.is_writable(path)):
-        return _open_to_read(path, timeout_s=timeout_s, asked=read_only)
+        return _open_to_read(path, asked=read_only)
     place.prepare(path, group=group)
     with translated(path):
         connection = _connection(path, "mode=rw", timeout_s)
@@ -47,7 +52,7 @@ def connect(path: Path, *, group: bool, read_only: bool, timeout_s: float) -> Op
             connection.execute("PRAGMA synchronous = FULL")
             connection.execute("PRAGMA recursive_triggers = ON")  # REPLACE must not slip past the triggers
             if version < schema.VERSION:
-                _migrate(connection, path)
+                notes.append(_migrate(connection, path, version))
         except BaseException:
             connection.close()
             raise
@@ -106,8 +111,12 @@ def _set_journal(connection: sqlite3.Connection, mode: str, timeout_s: float) ->
             time.sleep(0.02)
 
 
-def _migrate(connection: sqlite3.Connection, path: Path) -> None:
-    """Bring the tables to this program's version; each step and its record are one transaction."""
+def _migrate(connection: sqlite3.Connection, path: Path, version: int) -> str:
+    """Bring the tables to this program's version; each step and its record are one transaction.
+
+    A file that holds anything is copied first; returns the sentence that says so.
+    """
+    copied = _copy_before(connection, path) if version else ""
     for step in schema.MIGRATIONS:
         connection.execute("BEGIN IMMEDIATE")
         try:
@@ -118,6 +127,31 @@ def _migrate(connection: sqlite3.Connection, path: Path) -> None:
             if connection.in_transaction:
                 connection.execute("ROLLBACK")
             raise
+    return copied
+
+
+def _copy_before(connection: sqlite3.Connection, path: Path) -> str:
+    moment = datetime.now(UTC).strftime("%Y%m%dT%H%M%SZ")
+    target = path.with_name(
+        f"{path.stem}-before-version-{schema.VERSION}-{moment}-{os.getpid()}{path.suffix}"
+    )
+    copy_whole(connection, target)
+    return f"the tables were brought up to date; the casebook as it was is in {target.name}"
+
+
+def copy_whole(connection: sqlite3.Connection, target: Path) -> None:
+    """Write a consistent copy to a new file that only its owner can read."""
+    try:
+        os.close(os.open(target, os.O_CREAT | os.O_EXCL | os.O_RDWR, 0o600))
+    except FileExistsError as error:
+        raise CasebookError(f"{target} exists", advice="Name a new file; nothing is written over") from error
+    except OSError as error:
+        raise CasebookError(f"{target} cannot be written: {error.strerror}") from error
+    try:
+        connection.execute("VACUUM INTO ?", (str(target),))
+    except BaseException:
+        target.unlink(missing_ok=True)
+        raise
 
 
 def _apply(connection: sqlite3.Connection, step: schema.Migration) -> None:
@@ -143,27 +177,54 @@ def rebuild(connection: sqlite3.Connection) -> None:
         last = cases[-1]
 
 
-def _open_to_read(path: Path, *, timeout_s: float, asked: bool) -> Opened:
-    """Open without any right to write."""
+def _open_to_read(path: Path, *, asked: bool) -> Opened:
+    """Open without any right to write; an older file, or one with a journal, as a private copy."""
     if not path.exists():
         raise CasebookError(f"there is no casebook {path}")
     place.refuse_other_files(path)
     why = "opened to read only" if asked else f"{path.name} may not be written by you: read only"
     with translated(path):
-        connection = _connection(path, "mode=ro", timeout_s)
-        try:
-            version = _check_version(connection, path)
-        except sqlite3.OperationalError:
+        connection = _try_to_read(path, "mode=ro")
+        if connection is None and not _journal_holds_entries(path):
+            # Without a right to write in the folder SQLite cannot share the file with writers.
+            connection, why = _try_to_read(path, "immutable=1"), f"{why}, as it is now"
+        if connection is not None and _check_version(connection, path) == schema.VERSION:
+            return Opened(connection, True, (why,))
+        if connection is not None:
             connection.close()
-            connection = _connection(path, "immutable=1", timeout_s)
-            version = _check_version(connection, path)
-        if version != schema.VERSION:
-            connection.close()
-            raise CasebookError(
-                f"{path} has an older version of the casebook's tables",
-                advice="Open it once where it may be written, or merge a copy of it",
-            )
-    return Opened(connection, True, (why,))
+        return _open_private_copy(path, f"{why}, as it is now")
+
+
+def _try_to_read(path: Path, options: str) -> sqlite3.Connection | None:
+    connection = _connection(path, options, 5.0)
+    try:
+        connection.execute("SELECT count(*) FROM sqlite_master").fetchone()
+    except sqlite3.OperationalError:
+        connection.close()
+        return None
+    return connection
+
+
+def _journal_holds_entries(path: Path) -> bool:
+    journal = Path(f"{path}-wal")
+    return journal.exists() and journal.stat().st_size > 0
+
+
+def _open_private_copy(path: Path, why: str) -> Opened:
+    folder = TemporaryDirectory(prefix="plateside-")
+    copy = Path(folder.name) / "copy.db"
+    try:
+        shutil.copyfile(path, copy)
+        if _journal_holds_entries(path):
+            shutil.copyfile(f"{path}-wal", f"{copy}-wal")
+        opened = connect(copy, group=False, read_only=False, timeout_s=5.0)
+        opened.connection.execute("PRAGMA query_only = ON")
+    except BaseException as error:
+        folder.cleanup()
+        if isinstance(error, OSError):
+            raise CasebookError(f"{path.name} could not be copied to be read: {error.strerror}") from error
+        raise
+    return Opened(opened.connection, True, (why,), folder)
 
 
 @contextmanager
@@ -188,9 +249,3 @@ def _in_words(error: sqlite3.Error, path: Path) -> CasebookError:
     if code in {sqlite3.SQLITE_CORRUPT}:
         return DamagedCasebook(f"{path} is damaged ({error})")
     return CasebookError(f"{path} could not be used ({error})")
-
-
-def file_version(path: Path) -> int:
-    """Return the version of the tables in a file, without changing it."""
-    with translated(path), closing(_connection(path, "mode=ro", 1.0)) as connection:
-        return _check_version(connection, path)

@@ -5,7 +5,7 @@ A second one (a server database, say) implements ``Store`` and passes the same t
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from contextlib import AbstractContextManager
 from datetime import datetime
 from pathlib import Path
@@ -61,10 +61,21 @@ class Outcome(msgspec.Struct, frozen=True, kw_only=True):
     found: str
     confirmed: str
     readings: int
+    closed_utc: datetime
+    minutes: float
     power_w: float | None = None
-    minutes: float | None = None
     odds: dict[str, float] = {}
     observations: dict[str, bool] = {}
+
+
+class TakenIn(msgspec.Struct, frozen=True, kw_only=True):
+    """One merge: which file, and what came of it."""
+
+    taken_utc: datetime
+    source: str
+    entries: int
+    new: int
+    refused: int
 
 
 class Store(Protocol):
@@ -76,8 +87,14 @@ class Store(Protocol):
     def atomic(self) -> AbstractContextManager[None]:
         """All that is added inside is kept, or nothing; may be nested."""
 
-    def add(self, entries: Iterable[Entry]) -> int:
-        """Add entries, those already there left alone; return how many were new, safely on disk."""
+    def add(self, entries: Iterable[Entry], *, fold_later: bool = False) -> int:
+        """Add entries, those already there left alone; return how many were new, safely on disk.
+
+        With ``fold_later`` lists and search learn of them at the next ``catch_up``.
+        """
+
+    def catch_up(self, progress: Callable[[int, int], None] | None = None) -> None:
+        """Bring lists and search up to date after ``fold_later``; ``progress(done, of)``."""
 
     def case_entries(self, case: str) -> tuple[Entry, ...]:
         """Return the entries of one case in the order in which they came."""
@@ -85,8 +102,8 @@ class Store(Protocol):
     def all_entries(self) -> Iterator[Entry]:
         """Yield every entry in the order in which they came, without holding them all."""
 
-    def held_ids(self, ids: Iterable[str]) -> set[str]:
-        """Return which of these entry ids are there."""
+    def held(self, ids: Iterable[str]) -> dict[str, Entry]:
+        """Return those of these entry ids that are there, with their entries."""
 
     def last_id(self, case: str) -> str | None:
         """Return the id of a case's last entry in reading order."""
@@ -106,8 +123,14 @@ class Store(Protocol):
     def machine_cases(self, tag: str) -> tuple[str, ...]:
         """Return the ids of a machine's cases, oldest activity first."""
 
-    def outcomes(self) -> Iterator[Outcome]:
-        """Yield what each closed case teaches."""
+    def outcomes(self, kind: str = "") -> Iterator[Outcome]:
+        """Yield what each closed case teaches, of one machine kind or of all."""
+
+    def note_taken_in(self, taken: TakenIn) -> None:
+        """Remember that a file was merged."""
+
+    def taken_in(self, *, limit: int = 20) -> list[TakenIn]:
+        """Return the merges into this file, newest first."""
 
     def changed_since(self, token: int) -> Changes:
         """Return what came in since a token of an earlier answer; cheap when nothing did."""
