@@ -70,7 +70,7 @@ class Currents:
 
 
 def half_field_ohm(rotor: Rotor, slip: Floats, *, backward: bool) -> tuple[Phasors, Phasors]:
-    """Impedance of one field as one winding sees it, and the rotor's own admittance.
+    """Return the impedance of one field as one winding sees it, and the rotor's own admittance.
 
     Parameters
     ----------
@@ -90,12 +90,12 @@ def half_field_ohm(rotor: Rotor, slip: Floats, *, backward: bool) -> tuple[Phaso
     against = 2.0 - slip if backward else slip
     ohm = rotor.rotor_ohm * rotor.backward_ratio if backward else rotor.rotor_ohm
     rotor_siemens = against / (ohm + 1j * against * rotor.rotor_reactance_ohm)
-    magnetising = 1.0 / rotor.core_ohm - 1j / rotor.magnetising_ohm
-    return 0.5 / (magnetising + rotor_siemens), np.asarray(rotor_siemens, dtype=np.complex128)
+    half = 0.5 / (1.0 / rotor.core_ohm - 1j / rotor.magnetising_ohm + rotor_siemens)
+    return np.asarray(half, dtype=np.complex128), np.asarray(rotor_siemens, dtype=np.complex128)
 
 
 def solve_currents(windings: Windings, rotor: Rotor, slip: Floats) -> Currents:
-    """Currents and torque of both windings at a slip.
+    r"""Return currents and torque of both windings at a slip.
 
     Parameters
     ----------
@@ -116,7 +116,7 @@ def solve_currents(windings: Windings, rotor: Rotor, slip: Floats) -> Currents:
     -----
     .. math::
 
-        V_m = (Z_m + Z_f + Z_b) I_m - j a (Z_f - Z_b) I_a \\\\
+        V_m = (Z_m + Z_f + Z_b) I_m - j a (Z_f - Z_b) I_a \\
         V_a = j a (Z_f - Z_b) I_m + (Z_a + a^2 (Z_f + Z_b)) I_a
 
     Shorted turns are a shunt behind the main winding's impedance; source and impedance

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
+from typing import Final
 
 from calc.induction_1ph.plate import HAS_RUN_CAPACITOR, HAS_START_CAPACITOR, SPLIT_PHASE
 from calc.twin import Mode, Severity
@@ -44,7 +45,7 @@ DEFAULTS: dict[str, float] = {
 
 @dataclass(frozen=True)
 class Variant:
-    """One way of an effect, before designs and severity: attributes, weight, and the designs that can show it."""
+    """One way of an effect: attributes, weight, severities, and the parts that a design must have."""
 
     name: str
     weight: float
@@ -71,13 +72,26 @@ def _one(attribute: str, low: float, high: float) -> tuple[Severity, ...]:
     return (Severity(attribute, low, high),)
 
 
-def _start_dead(*flags: str, **needs: bool) -> tuple[Variant, ...]:
-    """Ways of a dead start circuit on a motor with a switch: it stands, or was helped and runs."""
-    fixed = dict.fromkeys(flags, 1.0)
+def _start_dead(flag: str) -> tuple[Variant, ...]:
+    """Ways of a dead start circuit: it stands, or was helped and runs."""
     return (
-        Variant("stands", 0.72, {**fixed, "stands": 2.0}, **needs),
-        Variant("stands coupled", 0.2, {**fixed, "stands": 1.0}, **needs),
-        Variant("runs", 0.08, fixed, **needs),
+        Variant("stands", 0.72, {flag: 1.0, "stands": 2.0}),
+        Variant("stands coupled", 0.2, {flag: 1.0, "stands": 1.0}),
+        Variant("runs", 0.08, {flag: 1.0}),
+    )
+
+
+def _only(variants: tuple[Variant, ...], part: str) -> tuple[Variant, ...]:
+    """Restrict variants to the designs that have a part: ``run``, ``start``, ``switch``, ``run alone``."""
+    return tuple(
+        replace(
+            variant,
+            needs_run=part in {"run", "run alone"},
+            needs_start=part == "start",
+            needs_switch=part == "switch",
+            only_run=part == "run alone",
+        )
+        for variant in variants
     )
 
 
@@ -89,18 +103,18 @@ VARIANTS: dict[str, tuple[Variant, ...]] = {
     ),
     "high_voltage": (Variant("", 1.0, {"set_volts": 1.0}, _one("volts_over", 0.08, 0.20)),),
     "no_supply": (Variant("", 1.0, {"live": 0.0, "stands": 2.0}),),
-    "start_capacitor_open": _start_dead("start_open", needs_start=True),
-    "start_capacitor_shorted": _start_dead("start_shorted", needs_start=True),
+    "start_capacitor_open": _only(_start_dead("start_open"), "start"),
+    "start_capacitor_shorted": _only(_start_dead("start_shorted"), "start"),
     "start_capacitor_weak": (
         Variant("starts", 0.6, {}, _one("start_lost", 0.3, 0.9), needs_start=True),
         Variant("stands coupled", 0.4, {"stands": 1.0}, _one("start_lost", 0.3, 0.9), needs_start=True),
     ),
     "run_capacitor_open": (
-        *_start_dead("run_open", needs_run=True, only_run=True),
+        *_only(_start_dead("run_open"), "run alone"),
         Variant("runs", 1.0, {"run_open": 1.0}, needs_run=True, needs_switch=True),
     ),
     "run_capacitor_shorted": (
-        *_start_dead("run_shorted", needs_run=True, only_run=True),
+        *_only(_start_dead("run_shorted"), "run alone"),
         Variant("stands", 0.4, {"run_shorted": 1.0, "stands": 2.0}, needs_run=True, needs_switch=True),
         Variant(
             "stands coupled", 0.3, {"run_shorted": 1.0, "stands": 1.0}, needs_run=True, needs_switch=True
@@ -112,7 +126,7 @@ VARIANTS: dict[str, tuple[Variant, ...]] = {
         Variant("stands coupled", 0.15, {"stands": 1.0}, _one("run_lost", 0.25, 0.7), needs_run=True),
         Variant("stands", 0.05, {"stands": 2.0}, _one("run_lost", 0.4, 0.8), needs_run=True),
     ),
-    "start_switch_open": _start_dead("switch_open", needs_switch=True),
+    "start_switch_open": _only(_start_dead("switch_open"), "switch"),
     "start_switch_closed": (
         Variant("trips", 0.75, {"switch_closed": 1.0, "trips": 1.0}, needs_switch=True),
         Variant("runs", 0.25, {"switch_closed": 1.0}, needs_switch=True),
@@ -155,6 +169,10 @@ VARIANTS: dict[str, tuple[Variant, ...]] = {
 }
 
 
+_NOT_FITTED: Final = 1e-6
+"""Weight of an effect of a part that no design of this motor has."""
+
+
 def enumerate_modes(
     effect: str,
     designs: Sequence[str],
@@ -162,7 +180,9 @@ def enumerate_modes(
     severity: tuple[float, float] | None,
     picked: Sequence[int],
 ) -> tuple[Mode, ...]:
-    """List the modes of an effect on each design, their weights adding to 1; none where no design has the part.
+    """List the modes of an effect on each design that has the part.
+
+    The weights add up to the chance that the motor has the part at all.
 
     Parameters
     ----------
@@ -197,8 +217,10 @@ def enumerate_modes(
                     severity=_ranged(variant.severity, severity),
                 )
             )
-    whole = sum(mode.weight for mode in modes)
-    return tuple(replace(mode, weight=mode.weight / whole) for mode in modes)
+    if modes:
+        return tuple(modes)
+    likeliest = float(max(picked, key=lambda index: shares[index]))
+    return (Mode(effect=effect, variant="not fitted", weight=_NOT_FITTED, fixed={"design": likeliest}),)
 
 
 def _ranged(usual: tuple[Severity, ...], asked: tuple[float, float] | None) -> tuple[Severity, ...]:

@@ -179,13 +179,15 @@ def _at_one_volt(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) 
     )
     main_ohm = machine.main_ohm * warm
     auxiliary_x = machine.auxiliary_reactance_ohm * setting.leakage * linked
-    unit = np.ones_like(slip) + 0j
+    unit = np.ones(slip.shape, dtype=np.complex128)
+    shorted_ohm = np.asarray(main_ohm + 1j * priors.LOOP_LEAKAGE * main_x, dtype=np.complex128)
+    series_ohm = main_ohm * (1.0 - setting.turn_share) + 1j * main_x + setting.main_extra_ohm
     windings = Windings(
-        main_ohm=main_ohm * (1.0 - setting.turn_share) + 1j * main_x + setting.main_extra_ohm,
+        main_ohm=np.asarray(series_ohm, dtype=np.complex128),
         auxiliary_ohm=machine.auxiliary_ohm * warm + 1j * auxiliary_x + setting.auxiliary_extra_ohm,
         turns_ratio=machine.turns_ratio,
         main_volt=unit,
         auxiliary_volt=unit,
-        shunt_siemens=setting.turn_share / (main_ohm + 1j * priors.LOOP_LEAKAGE * main_x),
+        shunt_siemens=setting.turn_share / shorted_ohm,
     )
     return windings, rotor

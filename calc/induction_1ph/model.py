@@ -78,13 +78,14 @@ class SinglePhaseTwin:
 
     @property
     def effects(self) -> tuple[str, ...]:
-        """Effects that some design of this machine can show."""
-        return tuple(effect for effect in VARIANTS if self.modes(effect))
+        """Effects that :meth:`modes` knows."""
+        return tuple(VARIANTS)
 
     def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
         """Enumerate the ways of an effect over the designs that the plate allows.
 
-        Empty where no such design has the part. Raises KeyError for an unknown effect.
+        The weights add up to the chance that the motor has the part. Raises KeyError for an
+        unknown effect.
         """
         picked = [i for i, weight in enumerate(self._fit.weights) if weight >= _LEAST_SHARE]
         weights = [float(weight) for weight in self._fit.weights]
@@ -173,7 +174,7 @@ class SinglePhaseTwin:
         return float(self._fit.known.base_current_a @ self._fit.weights)
 
     def _start_capacitor(self, design: str) -> tuple[float, float]:
-        """Median and spread of the start capacitor of a design. [F]"""
+        """Median [F] and spread of the start capacitor of a design."""
         plate = self.plate
         if design not in HAS_START_CAPACITOR:
             return 1e-12, 0.0
@@ -184,7 +185,7 @@ class SinglePhaseTwin:
         return ratio * rated, sigma
 
     def _rated_losses(self) -> Floats:
-        """Losses of the base point of each design at rated load. [W]"""
+        """Losses [W] of the base point of each design at rated load."""
         design: NDIndex = np.arange(len(self.designs), dtype=np.intp)
         machine = self._fit.motors(np.zeros((len(design), self._fit.size)), design)
         setting = rated_setting(self.plate, machine, self._fit.known.has_run)

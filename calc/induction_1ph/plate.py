@@ -25,7 +25,8 @@ VOLT_AMPERES_PER_WATT = {
     CAPACITOR_START_RUN: (1.42, 0.12),
 }
 
-# How often each design carries the capacitors that are known of: (run, start) -> design -> share. Common practice.
+# How often each design carries the capacitors that are known of. Common practice.
+# (run, start) -> design -> share
 DESIGN_SHARES: dict[tuple[bool, bool], dict[str, float]] = {
     (True, True): {CAPACITOR_START_RUN: 1.0},
     (True, False): {CAPACITOR_RUN: 0.85, CAPACITOR_START_RUN: 0.15},
@@ -38,7 +39,8 @@ DESIGN_SHARES: dict[tuple[bool, bool], dict[str, float]] = {
     },
 }
 
-# Temperature rise of the winding at rated load in service, K: well below the limits of IEC 60034-1. Common practice.
+# Temperature rise of the winding at rated load in service, K: well below the limits of IEC 60034-1.
+# Common practice.
 RISE_K = {"A": 46.0, "E": 50.0, "B": 54.0, "F": 57.0, "H": 68.0}
 _DEFAULT_RISE_K = 55.0
 _DEFAULT_SLIP = 0.035
@@ -148,7 +150,7 @@ def _site_voltage(machine: Machine, voltage_v: float) -> float:
 
 
 def _share(number: float | None) -> float | None:
-    """A power factor or an efficiency; per cent come as such or as a ratio."""
+    """Return a power factor or an efficiency as a ratio, told in per cent or as such."""
     if number is None or not math.isfinite(number):
         return None
     ratio = number / 100.0 if number > 1.5 else number
@@ -156,7 +158,7 @@ def _share(number: float | None) -> float | None:
 
 
 def _voltage_class(readings: Sequence[Reading]) -> float:
-    """115 V or 230 V, by what was read at the terminals; 230 V where nothing was."""
+    """Return 115 V or 230 V, by what was read at the terminals; 230 V where nothing was."""
     read = [r.numbers[0] for r in readings if r.measure == "supply_voltage" and r.values[0].is_read]
     live = sorted(v for v in read if 50.0 < v < 1000.0)
     return 115.0 if live and live[len(live) // 2] < 160.0 else 230.0
@@ -178,7 +180,10 @@ def _poles(plate: Nameplate, frequency_hz: float, speed_rpm: float | None) -> in
 
 
 def _slip(speed: Value | None, frequency_hz: float, poles: int, power_w: float | None) -> tuple[float, float]:
-    """Rated slip and its spread: half the IEC 60034-1 tolerance (±30 % below 1 kW, ±20 % above) and rounding."""
+    """Rated slip and its spread: a quarter of the IEC 60034-1 tolerance, and rounding.
+
+    The tolerance is ±30 % of the slip below 1 kW, ±20 % above.
+    """
     synchronous = 120.0 * frequency_hz / poles
     if speed is None or not speed.is_read or not 0.5 < speed.number / synchronous < 0.9995:
         return _DEFAULT_SLIP, 0.35

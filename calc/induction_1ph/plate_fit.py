@@ -45,7 +45,7 @@ _FAR = 6.0
 
 @dataclass(frozen=True)
 class Base:
-    """What is known of the quantities of one or more designs, a row each: medians and spreads in the logarithm."""
+    """What is known of one or more designs, a row each: medians, and spreads in the logarithm."""
 
     designs: tuple[str, ...]
     median: Floats
@@ -137,7 +137,7 @@ def motors_of(plate: Plate, known: Base, u: Floats, design: NDIndex) -> Motor:
 
 
 def residuals(plate: Plate, known: Base, u: Floats, design: NDIndex) -> Floats:
-    """What the plate says against what the motors do at rated slip, in sigmas, shape (rows, m).
+    """Return what the motors do at rated slip less what the plate says, in sigmas, shape (rows, m).
 
     Output always; current, power factor and losses where they are on the plate.
     """

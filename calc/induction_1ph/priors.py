@@ -60,7 +60,7 @@ MEDIAN_AND_SPREAD: dict[str, dict[str, Spread]] = {
     },
 }
 
-# Reactive power of a capacitor at rated voltage over rated output; the examples of textbooks give 0.6 to 1.7 (run).
+# Reactive power of a capacitor at rated voltage over rated output; textbook examples give 0.6 to 1.7 (run).
 RUN_VAR_PER_WATT: Spread = (0.54, 0.27)
 START_VAR_PER_WATT: dict[str, Spread] = {
     CAPACITOR_START: (5.4, 0.30),

@@ -10,7 +10,7 @@ from calc.induction_1ph import priors
 from calc.induction_1ph.machine import OPEN_OHM, copper_factor
 from calc.induction_1ph.plate import Plate
 from calc.induction_1ph.states import Attributes, Site, Standing, capacitances, supply, torque_asked
-from calc.quantities import RUNNING_STATES
+from calc.quantities import MEASURES, RUNNING_STATES
 from calc.twin import Ask, Floats, ModelError, Transform
 
 _LIVE = frozenset({"standby", "starting", "stalled"}) | RUNNING_STATES
@@ -38,7 +38,7 @@ COVERED: dict[str, frozenset[str]] = {
     "starting_time": frozenset({"starting"}),
 }
 
-# One sigma of the model itself, in transformed units: measure -> (running without load, running with load, otherwise).
+# One sigma of the model itself, in transformed units: running without load, with load, otherwise.
 _MODEL_ERROR: dict[str, tuple[float, float, float]] = {
     "supply_voltage": (0.004, 0.004, 0.01),
     "supply_frequency": (0.001, 0.001, 0.001),
@@ -63,29 +63,35 @@ _KELVIN_SCALE = 10.0
 
 
 def transform_of(measure: str, plate: Plate, amps: float) -> Transform:
-    """Return the transform of a measure: logarithms with a floor for what scales, linear for what is near a point."""
-    if measure in {"line_current", "main_current", "auxiliary_current"}:
-        return Transform("log", floor=0.01 * amps)
-    if measure in {"main_resistance", "auxiliary_resistance"}:
-        ohm = plate.voltage_v / amps
-        return Transform("log", floor=1e-4 * ohm, cap=1e3 * ohm)
-    if measure in {"run_capacitance", "start_capacitance"}:
-        return Transform(
-            "log", floor=0.02 * plate.power_w / (plate.voltage_v**2 * 2.0 * np.pi * plate.frequency_hz)
-        )
-    if measure in {"capacitor_voltage", "supply_voltage"}:
-        return Transform("log", floor=0.01 * plate.voltage_v)
-    if measure == "input_power":
-        return Transform("log", floor=0.01 * plate.power_w)
-    if measure == "speed":
-        return Transform("linear", scale=plate.synchronous_rpm)
-    if measure == "supply_frequency":
-        return Transform("linear", scale=plate.frequency_hz)
-    if measure == "power_factor":
-        return Transform("linear")
-    if measure == "starting_time":
-        return Transform("log", floor=0.05)
-    return Transform("linear", scale=_KELVIN_SCALE)
+    """Return the transform of a measure: logarithms with a floor, or linear where values lie close."""
+    if measure in _LINEAR:
+        scales = {"speed": plate.synchronous_rpm, "supply_frequency": plate.frequency_hz, "power_factor": 1.0}
+        return Transform("linear", scale=scales.get(measure, _KELVIN_SCALE))
+    ohm = plate.voltage_v / amps
+    unit = {
+        "current": amps,
+        "voltage": plate.voltage_v,
+        "power": plate.power_w,
+        "capacitance": plate.power_w / (plate.voltage_v**2 * 2.0 * np.pi * plate.frequency_hz),
+        "resistance": ohm,
+        "time": 1.0,
+    }[MEASURES[measure].dimension]
+    cap = 1e3 * ohm if measure in {"main_resistance", "auxiliary_resistance"} else np.inf
+    return Transform("log", floor=_FLOOR[MEASURES[measure].dimension] * unit, cap=cap)
+
+
+_LINEAR = frozenset({"speed", "supply_frequency", "power_factor"}) | {
+    measure for measure in COVERED if measure.endswith("_temperature")
+}
+# Below this share of the rated value a reading is as good as none.
+_FLOOR = {
+    "current": 0.01,
+    "voltage": 0.01,
+    "power": 0.01,
+    "capacitance": 0.02,
+    "resistance": 1e-4,
+    "time": 0.05,
+}
 
 
 def error_of(ask: Ask, plate: Plate) -> ModelError:
@@ -150,7 +156,7 @@ def _power_factor(site: Site, solved: Standing) -> Floats:
 
 
 def frame_c(site: Site, solved: Standing) -> Floats:
-    """Frame temperature after hours in a state. [°C]"""
+    """Frame temperature [°C] after hours in a state."""
     return np.asarray(site.ambient_c + priors.FRAME_RISE * (solved.winding_c - site.ambient_c))
 
 
@@ -174,7 +180,7 @@ _RUNNING: dict[str, Callable[[Site, Standing], Floats]] = {
 
 
 def _starting_time(site: Site, attributes: Attributes, solved: Standing) -> Floats:
-    """Time to speed from the torque at standstill and at pull-out, less half the load's. [s]"""
+    """Time [s] to speed, from the torque at standstill and at pull-out less half the load's."""
     rated = site.machine.power_w
     pull_out = priors.PULL_OUT * rated * np.square(solved.running.voltage_v / site.machine.voltage_v)
     load = torque_asked(site, attributes, "loaded")

@@ -76,7 +76,7 @@ def _bracket(
     emf = 0.93 * setting.supply_v[:, None]
     currents, _ = run_at(machine.column(), setting.column(), slips, emf)
     gaps = currents.torque_w - load_w[:, None]
-    carried = (gaps >= 0.0).any(axis=1)
+    carried = np.asarray((gaps >= 0.0).any(axis=1), dtype=np.bool_)
     index = np.argmax(gaps >= 0.0, axis=1)
     rows = np.arange(len(index))
     before = np.maximum(index - 1, 0)

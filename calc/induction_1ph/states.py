@@ -59,7 +59,7 @@ def capacitances(site: Site, attributes: Attributes) -> tuple[Floats, Floats]:
 
 
 def auxiliary_path(site: Site, attributes: Attributes, *, at_start: bool) -> tuple[Phasors, Phasors]:
-    """Impedance in series with the auxiliary winding, and of the capacitor that a meter sees. [ohm]
+    """Impedance [ohm] in series with the auxiliary winding, and of the capacitor that a meter sees.
 
     The start branch (start capacitor, or nothing but the switch) lies across the run
     capacitor; the switch is closed in a start and open in running, unless it is stuck.
@@ -97,7 +97,7 @@ def settle(site: Site, attributes: Attributes, *, warm_c: Floats, at_start: bool
 
 
 def supply(site: Site, attributes: Attributes) -> Floats:
-    """Voltage behind the source impedance. [V]"""
+    """Voltage [V] behind the source impedance."""
     changed = (1.0 - attributes["volts_lost"]) * (1.0 + attributes["volts_over"])
     # Where the fault sets the level, the site's own spread is not counted twice.
     rated = site.machine.voltage_v
@@ -136,7 +136,7 @@ def torque_asked(site: Site, attributes: Attributes, state: str) -> Floats:
 
 
 def turning(site: Site, attributes: Attributes, state: str) -> Standing:
-    """Running in ``no_load``, ``light_load`` or ``loaded``; a motor that cannot is at standstill."""
+    """Run in ``no_load``, ``light_load`` or ``loaded``; a motor that cannot is at standstill."""
     asked = torque_asked(site, attributes, state)
     share = asked / site.machine.power_w
     heat = priors.IDLE_HEAT + (1.0 - priors.IDLE_HEAT) * np.minimum(share, 2.0) ** 2
