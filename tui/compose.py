@@ -15,7 +15,7 @@ from calc.quantities import ENERGISED_STATES
 from casebook import bodies
 from rules.findings import findings
 from tui.typed import Understood, understand
-from tui.words import number_range
+from tui.words import number_range, reading_text
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -64,6 +64,37 @@ class Visit:
         last = self.case.isolation[-1].what if self.case.isolation else None
         return last if last is not None and last.isolated else None
 
+    @property
+    def kind(self) -> str:
+        """The machine kind."""
+        return self.case.machine.kind
+
+    @property
+    def number(self) -> str:
+        """The case number as people say it."""
+        return self.book.number(self.case.id)
+
+    @property
+    def skipped(self) -> frozenset[str]:
+        """What was put aside as impossible here: ``measure@state``, or observations."""
+        return frozenset(logged.what.key for logged in self.case.skipped)
+
+    def acknowledged(self, state: str) -> frozenset[str]:
+        """Return the hazards that were read and acknowledged for a state."""
+        here = [logged.what for logged in self.case.hazards if logged.what.about == state]
+        return frozenset(hazard for record in here for hazard in record.hazards)
+
+    def correctable(self) -> list[tuple[str, str, str]]:
+        """Return what can be corrected, newest first: entry id, ``measure@state`` or observation, text."""
+        found = [
+            (one.entry, one.what.reading.key, reading_text(one.what.reading)) for one in self.case.readings
+        ]
+        found += [
+            (one.entry, name, "yes" if one.what.answer else "no") for name, one in self.case.observed.items()
+        ]
+        found.sort(key=lambda one: one[0].time_utc, reverse=True)
+        return [(entry.id, key, text) for entry, key, text in found]
+
     def refresh(self) -> Case:
         """Read the case again, with what others have added to it."""
         self.case = self.book.case(self.case.id)
@@ -77,7 +108,7 @@ class Visit:
         ``context`` holds what goes with it as typed: ``temperature="24"``, ``method="four_wire"``.
         Raises InputError where the text is no such reading.
         """
-        return understand(self.case.machine, self.knowledge, measure, state, text, context)
+        return understand(self.case.machine, measure, state, text, context)
 
     def record(self, understood: Understood) -> str:
         """Store a reading that was echoed, with the band and the limit that stood beside it."""
@@ -113,7 +144,7 @@ class Visit:
         """Store a remark."""
         return self._put(bodies.Note(text=text))
 
-    def correct(self, entry: str, instead: bodies.Body | Understood | None, *, why: str = "") -> str:
+    def correct(self, entry: str, instead: bodies.Body | Understood | None = None, *, why: str = "") -> str:
         """Put something else in the place of an entry, or strike it out (None); the log keeps both."""
         body = self._taken(instead) if isinstance(instead, Understood) else instead
         made = self.book.correct(self.case.id, entry, body, person=self.person, why=why)
@@ -137,9 +168,7 @@ class Visit:
             return "" if record is not None and record.proved_dead else "isolation"
         if state not in ENERGISED_STATES:
             return ""
-        here = [logged.what for logged in self.case.hazards if logged.what.about == state]
-        known = {hazard for acknowledged in here for hazard in acknowledged.hazards}
-        return "acknowledge" if set(hazards) - known else ""
+        return "acknowledge" if set(hazards) - self.acknowledged(state) else ""
 
     # what it means
 
@@ -148,13 +177,9 @@ class Visit:
         sheet = self.sheet
         if self._weighed is None or sheet != self._weighed_sheet:
             before = self._weighed.diagnosis if self._weighed else None
-            now = weigh(sheet, self.knowledge, name=self.case.number)
+            now = weigh(sheet, self.knowledge, name=self.number)
             self._weighed, self._weighed_sheet = Weighed(now, moved(before, now)), sheet
         return self._weighed
-
-    def is_proposed(self, key: str) -> bool:
-        """Whether something may still be proposed: it was not put aside as impossible here."""
-        return key not in {logged.what.key for logged in self.case.skipped}
 
     def conclude(self, fault: FaultOdds, *, decision: str = "", note: str = "") -> str:
         """Store what the technician concludes before it is confirmed."""

@@ -18,7 +18,7 @@ DIGITS = 6  # significant, of every number that is written
 
 def as_json(diagnosis: Diagnosis) -> dict[str, Any]:
     """Return one answer as plain objects; every number is finite, or null."""
-    answer = {
+    answer: dict[str, Json] = {
         "sheet": diagnosis.sheet,
         "model": diagnosis.model,
         "expected": [_band(band) for band in diagnosis.expected],
@@ -32,8 +32,7 @@ def as_json(diagnosis: Diagnosis) -> dict[str, Any]:
         "plate_remarks": list(diagnosis.plate_remarks),
         "notes": list(diagnosis.notes),
     }
-    finite: dict[str, Any] = _finite(answer)
-    return finite
+    return {key: _finite(value) for key, value in answer.items()}
 
 
 def error_json(sheet: str, error: Exception) -> dict[str, Any]:
@@ -48,7 +47,7 @@ def vars_of(problem: InputError | object) -> dict[str, Any]:
     return {name: getattr(problem, name) for name in ("file", "line", "where", "given", "allowed")}
 
 
-def _band(band: Band) -> dict[str, Any]:
+def _band(band: Band) -> Json:
     """Return one band; its condition stands as text with a unit."""
     plain = {
         name: getattr(band, name) for name in ("measure", "state", "low", "mid", "high", "unit", "coverage")
@@ -60,7 +59,7 @@ def _band(band: Band) -> dict[str, Any]:
     return plain
 
 
-def _fault(fault: FaultOdds) -> dict[str, Any]:
+def _fault(fault: FaultOdds) -> Json:
     """Return one fault with what speaks for and against it; keys that are empty are left out."""
     plain = {"id": fault.id, "probability": fault.probability, "name": fault.name, "part": fault.part}
     more = {
@@ -70,7 +69,7 @@ def _fault(fault: FaultOdds) -> dict[str, Any]:
     return {key: value for key, value in (plain | more).items() if value not in ("", [])}
 
 
-def _next(item: NextItem) -> dict[str, Any]:
+def _next(item: NextItem) -> Json:
     """Return one item of what to read next, with the measure and state, or the observation."""
     plain: dict[str, Any] = msgspec.to_builtins(item)
     unused = ("measure", "state") if item.observation else ("observation",)

@@ -59,7 +59,7 @@ def _report(parser: argparse.ArgumentParser) -> None:
 
 def _merge(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
-        "files", nargs="+", metavar="FILE", help="another casebook, or entries exported as JSON lines"
+        "files", nargs="+", metavar="FILE", help="another casebook, exported JSON lines, or a case sheet"
     )
 
 
@@ -72,6 +72,11 @@ def _export(parser: argparse.ArgumentParser) -> None:
 
 def _copy(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("file", metavar="FILE", help="where the copy goes; it must not exist yet")
+
+
+def _salvage(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("file", metavar="DAMAGED", help="the casebook that cannot be read in full")
+    parser.add_argument("target", metavar="NEW", help="where to save what can be read; it must not exist yet")
 
 
 def _check_rules(parser: argparse.ArgumentParser) -> None:
@@ -94,6 +99,7 @@ COMMANDS = (
     Command("merge", "take in another casebook, or exported entries", "merge", _merge),
     Command("export", "cases as YAML sheets, JSON lines or CSV", "export", _export),
     Command("copy", "a whole copy of the casebook, taken while others write", "copy", _copy),
+    Command("salvage", "save what can be read of a damaged casebook", "salvage", _salvage),
     Command("check-rules", "check the rules, and a shop's own with them", "check_rules", _check_rules),
 )
 

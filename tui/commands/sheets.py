@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 import sys
-from pathlib import Path
 from typing import TYPE_CHECKING
+
+from calc.safe_yaml import SHEET_LIMITS
+from calc.sheet_io import read_sheet, sheet_from_text
 
 if TYPE_CHECKING:
     from calc.sheet import CaseSheet
@@ -14,8 +16,7 @@ STDIN = "-"
 
 def read(name: str) -> CaseSheet:
     """Return a sheet from a file, or from standard input for ``-``; InputError says what is wrong with it."""
-    from calc import sheet_io
-
-    if name == STDIN:
-        return sheet_io.read_sheet_text(sys.stdin.buffer.read(), file="standard input")
-    return sheet_io.read_sheet(Path(name))
+    if name != STDIN:
+        return read_sheet(name)
+    given = sys.stdin.buffer.read(SHEET_LIMITS.bytes + 1)
+    return sheet_from_text(given.decode("utf-8", "replace"), file="standard input")

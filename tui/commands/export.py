@@ -1,0 +1,57 @@
+"""``plateside export``: cases as YAML sheets, every entry as JSON Lines, or the readings as CSV."""
+
+from __future__ import annotations
+
+import sys
+from typing import TYPE_CHECKING
+
+from calc.errors import PlatesideError
+from calc.sheet_io import sheet_to_yaml
+from casebook.book import Casebook, open_casebook
+from casebook.exchange import export_csv, export_lines, sheet_for_export
+from tui import cli, places
+from tui.output import say
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+    from collections.abc import Iterator
+
+    from casebook.fold import Case
+
+PAGE = 500
+
+
+def run(arguments: Namespace) -> int:
+    """Write the named cases, or all, to standard output."""
+    path = places.casebook_path(arguments)
+    if not path.exists():
+        raise PlatesideError(f"there is no casebook {path}")
+    with open_casebook(path) as book:
+        if arguments.json_lines:
+            export_lines(book, sys.stdout.buffer, arguments.cases or None)
+        elif arguments.csv:
+            sys.stdout.reconfigure(newline="")  # type: ignore[union-attr]  # the writer ends its own lines
+            export_csv(_cases(book, arguments.cases), sys.stdout)
+        else:
+            _sheets(book, arguments.cases)
+    return cli.DONE
+
+
+def _sheets(book: Casebook, names: list[str]) -> None:
+    """Write cases as YAML documents, one after the other."""
+    for place, case in enumerate(_cases(book, names)):
+        if place:
+            say("---")
+        say(f"# {book.number(case.id)}")
+        say(sheet_to_yaml(sheet_for_export(case)).rstrip("\n"))
+
+
+def _cases(book: Casebook, names: list[str]) -> Iterator[Case]:
+    """Yield the named cases in their order, or all, newest first, without holding them all."""
+    if names:
+        yield from [book.case(name) for name in names]
+        return
+    before: int | None = None
+    while rows := book.cases(limit=PAGE, before=before):
+        yield from (book.case(row.id) for row in rows)
+        before = rows[-1].place

@@ -1,0 +1,106 @@
+"""The visit as plain questions and answers: the same engine, the same casebook, no full screen."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from calc.errors import InputError, PlatesideError
+from casebook.book import Casebook, open_casebook
+from tui import people
+from tui.answer_text import (
+    answer_lines,
+    fault_lines,
+    finding_lines,
+    gate_lines,
+    next_lines,
+    stop_lines,
+    titled,
+)
+from tui.compose import Visit
+from tui.drafts import Drafts
+from tui.output import say
+from tui.plain_intake import ask_case
+from tui.plain_steps import STEPS, answer_proposal, proposals
+from tui.talk import Left, ask, tell
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+    from rules.knowledge import Knowledge
+
+HELP = (
+    "Type the values that are asked for, as the meter shows them:",
+    "  15.2 15.9 14.8, 0.42, 1.2k, >5G, open; - is a value that was not read.",
+    "Or one of these words:",
+    "  skip [WHY]                put the proposed item aside",
+    "  read MEASURE STATE        take another reading",
+    "  seen OBSERVATION yes/no   say what was seen, heard or smelt",
+    "  why, all, gate            the reasons; the whole answer; what stands before energising",
+    "  isolate, note TEXT        the isolation record; a remark",
+    "  correct                   correct or strike out an entry",
+    "  close, leave              close the case with what was found; leave it open",
+)
+
+
+def converse(path: Path, knowledge: Knowledge) -> int:
+    """Hold one visit; every answer that is accepted is in the casebook. Returns the exit status."""
+    with open_casebook(path) as book:
+        for note in book.notes:
+            tell(note)
+        try:
+            _visit(book, Drafts(path), knowledge)
+        except Left:
+            say("Left. What was accepted is in the casebook.")
+    return 0
+
+
+def _visit(book: Casebook, drafts: Drafts, knowledge: Knowledge) -> None:
+    """Ask who and which case, then go on until the case is closed or left."""
+    person = ask("Your name", str(drafts.recall("person") or people.login_name()))
+    drafts.remember("person", person)
+    visit = ask_case(book, drafts, person, knowledge)
+    say(f"Case {visit.number}. Type help for the words that are understood.")
+    show(visit)
+    while visit.case.status == "open":
+        try:
+            changed = _one(visit, ask(">"))
+        except InputError as error:
+            changed = False
+            for problem in error.problems:
+                tell(f"{problem.given}; {problem.allowed}")
+        except PlatesideError as error:
+            changed = False
+            tell(str(error))
+        if changed and visit.case.status == "open":
+            show(visit)
+    say(f"Case {visit.number} is closed. `plateside report {visit.number}` prints its sheet.")
+
+
+def show(visit: Visit) -> None:
+    """Say what stands now: the gate, the limits crossed, the likely faults, the next reading."""
+    answer = visit.weigh().diagnosis
+    say(stop_lines(visit.sheet, visit.knowledge))
+    say(gate_lines(answer.energise))
+    say(titled("Limits crossed", finding_lines(answer.findings)))
+    say(titled("Likely faults", fault_lines(answer, visit.knowledge)))
+    say(titled("Next", next_lines(proposals(visit), visit.knowledge)))
+
+
+def _one(visit: Visit, line: str) -> bool:
+    """Do what one line says; return whether the case has changed."""
+    word, _, rest = line.partition(" ")
+    step = STEPS.get(word.lower())
+    if step is not None:
+        return step(visit, rest.strip())
+    match word.lower():
+        case "leave" | "quit" | "exit":
+            raise Left
+        case "help" | "?":
+            say(HELP)
+        case "all":
+            say(answer_lines(visit.weigh().diagnosis, visit.sheet, visit.knowledge))
+        case "":
+            say(titled("Next", next_lines(proposals(visit), visit.knowledge)))
+        case _:
+            return answer_proposal(visit, line)
+    return False

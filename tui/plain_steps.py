@@ -1,0 +1,223 @@
+"""What each word of the plain visit does. Every step returns whether the case has changed."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from calc.quantities import MEASURES, STATES
+from casebook import bodies
+from tui.answer_text import gate_lines, reason_lines
+from tui.output import say
+from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell
+from tui.words import fault_name, measure_name, plain
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from rules.answer import NextItem
+    from tui.compose import Visit
+
+
+CONFIRMED = {
+    "teardown": "seen when it was taken apart",
+    "repair": "the repair cured it",
+    "believed": "believed, not confirmed",
+}
+
+
+def proposals(visit: Visit) -> tuple[NextItem, ...]:
+    """Return what is proposed next, without what was put aside here."""
+    return tuple(item for item in visit.weigh().diagnosis.next if item.key not in visit.skipped)
+
+
+def answer_proposal(visit: Visit, line: str) -> bool:
+    """Take a line as the answer to the first proposal."""
+    items = proposals(visit)
+    if not items:
+        tell("Nothing is proposed; `read` takes another reading, `help` lists the words.")
+        return False
+    first = items[0]
+    if first.observation:
+        return _observe(visit, first.observation, line)
+    return take(visit, str(first.measure), str(first.state), line, first.hazards)
+
+
+def take(visit: Visit, measure: str, state: str, text: str, hazards: tuple[str, ...]) -> bool:
+    """Take one reading: what must come first, what was understood, then into the casebook."""
+    understood = visit.understand(measure, state, text)
+    if not _first(visit, state, hazards):
+        return False
+    tell(understood.echo)
+    if understood.asks and not ask_yes(f"{understood.asks}. Is it so?"):
+        return False
+    visit.record(understood)
+    return True
+
+
+def _first(visit: Visit, state: str, hazards: tuple[str, ...]) -> bool:
+    """Ask for the isolation record or the acknowledgement that a state needs; return whether it is there."""
+    wanted = visit.wants_first(state, hazards)
+    if wanted == "isolation":
+        isolate(visit, "")
+        return visit.wants_first(state, hazards) == ""
+    if wanted == "acknowledge":
+        texts = [visit.knowledge.hazards[one].precaution for one in hazards if one in visit.knowledge.hazards]
+        for text in texts:
+            tell(f"! {text}")
+        if not ask_yes("Read, and taken care of?"):
+            return False
+        visit.acknowledge(state, hazards, " ".join(texts))
+    return True
+
+
+def isolate(visit: Visit, _: str) -> bool:
+    """Ask for the isolation record."""
+    by = ask("Isolated by", visit.person)
+    points = ask("Where (points of isolation)")
+    locked = ask_yes("Locked out and tagged?")
+    before = ask_yes("Tester proved before?")
+    dead = ask_yes("Every line to every other and to earth proved dead?")
+    after = ask_yes("Tester proved after?")
+    visit.isolate(
+        bodies.Isolation(
+            by=by,
+            points=points,
+            locked_out=locked,
+            proved_dead=dead and before and after,
+            tester_proved_before=before,
+            tester_proved_after=after,
+        )
+    )
+    if not (locked and before and dead and after):
+        tell("This is no complete isolation record; no isolated reading is taken on it.")
+    return True
+
+
+def skip(visit: Visit, why: str) -> bool:
+    """Put the first proposal aside."""
+    items = proposals(visit)
+    if items:
+        visit.skip(items[0].key, why)
+    return bool(items)
+
+
+def read(visit: Visit, rest: str) -> bool:
+    """Take a reading that is not the proposed one: ``read MEASURE STATE``."""
+    words = rest.split()
+    fitting = {one.id: one.label for one in MEASURES.values() if one.suits(visit.kind)}
+    measures = match(words[0], fitting) if words else []
+    states = match(words[1], dict(STATES)) if len(words) > 1 else []
+    measure = (
+        measures[0]
+        if len(measures) == 1
+        else ask_choice("Which reading", {m: fitting[m] for m in measures or fitting})
+    )
+    rule = visit.knowledge.readings.get(measure)
+    allowed = {one: f"{plain(one)}: {STATES[one]}" for one in STATES if rule is None or one in rule.states}
+    known = [state for state in states if state in allowed]
+    state = known[0] if known else ask_choice("In which state", allowed)
+    hazards = rule.states[state].hazards if rule is not None else ()
+    if rule is not None:
+        tell(rule.states[state].leads)
+    values = " ".join(words[2:]) or ask(f"{measure_name(measure)}, {plain(state)}")
+    return bool(values) and take(visit, measure, state, values, hazards)
+
+
+def seen(visit: Visit, rest: str) -> bool:
+    """Answer any observation: ``seen OBSERVATION yes``."""
+    name, _, answer = rest.rpartition(" ")
+    if answer.lower() not in YES + NO:
+        name, answer = rest, ""
+    fitting = {
+        one.id: one.name
+        for one in visit.knowledge.observations.values()
+        if "any" in one.kinds or visit.kind in one.kinds
+    }
+    found = match(name, fitting)
+    observation = (
+        found[0] if len(found) == 1 else ask_choice("What", {one: fitting[one] for one in found or fitting})
+    )
+    return _observe(visit, observation, answer or ask(f"{fitting[observation]} yes/no"))
+
+
+def _observe(visit: Visit, observation: str, answer: str) -> bool:
+    """Store one answer if it is yes or no."""
+    if answer.lower() not in YES + NO:
+        tell("Answer yes or no, or skip.")
+        return False
+    visit.observe(observation, answer.lower() in YES)
+    return True
+
+
+def why(visit: Visit, _: str) -> bool:
+    """Say what speaks for and against the first faults."""
+    for fault in visit.weigh().diagnosis.faults[:3]:
+        say(fault.name or fault_name(fault.id, visit.knowledge))
+        say(reason_lines(fault, most=8))
+    return False
+
+
+def gate(visit: Visit, _: str) -> bool:
+    """Say what stands before energising, and what cleared each line."""
+    answer = visit.weigh().diagnosis.energise
+    say(gate_lines(answer))
+    for line in answer.lines:
+        if line.status == "cleared":
+            tell(f"  cleared  {line.needs}: {line.because}")
+    return False
+
+
+def note(visit: Visit, text: str) -> bool:
+    """Store a remark."""
+    if text:
+        visit.note(text)
+    return False
+
+
+def correct(visit: Visit, _: str) -> bool:
+    """Correct a reading or an observation, or strike it out."""
+    entries = visit.correctable()
+    if not entries:
+        tell("There is nothing to correct.")
+        return False
+    chosen = ask_choice("Which entry", {entry: f"{plain(key)}: {text}" for entry, key, text in entries})
+    key = next(key for entry, key, _ in entries if entry == chosen)
+    text = ask("The right values, or `strike`")
+    measure, at, state = key.partition("@")
+    if text.lower() == "strike":
+        visit.correct(chosen, None)
+    elif at:
+        visit.correct(chosen, visit.understand(measure, state, text))
+    elif text.lower() in YES + NO:
+        visit.correct(chosen, bodies.Observed(observation=key, answer=text.lower() in YES))
+    else:
+        return False
+    return True
+
+
+def close(visit: Visit, _: str) -> bool:
+    """Ask what was found and done, and close the case."""
+    faults = {"healthy": "nothing wrong"} | {
+        one.id: one.name for one in visit.knowledge.faults.values() if visit.kind in one.odds
+    }
+    likely = [fault.id for fault in visit.weigh().diagnosis.faults if fault.id in faults]
+    ordered = {one: faults[one] for one in [*likely, *(one for one in faults if one not in likely)]}
+    found = ask_choice("What was found", ordered)
+    how = ask_choice("How is that known", CONFIRMED)
+    minutes = ask("Minutes")
+    visit.close(
+        bodies.Closed(
+            found=found,
+            confirmed="teardown" if how == "teardown" else "repair" if how == "repair" else "believed",
+            done=ask("What was done"),
+            parts=tuple(part.strip() for part in ask("Parts, with commas").split(",") if part.strip()),
+            minutes=float(minutes) if minutes.isdecimal() else None,
+        )
+    )
+    return True
+
+
+STEPS: dict[str, Callable[[Visit, str], bool]] = {
+    "skip": skip, "read": read, "seen": seen, "why": why, "gate": gate,
+    "isolate": isolate, "note": note, "correct": correct, "close": close,
+}  # fmt: skip

@@ -1,0 +1,71 @@
+"""Questions and answers in plain lines, for dumb terminals, pipes and screen readers."""
+
+from __future__ import annotations
+
+import sys
+from typing import TYPE_CHECKING
+
+from tui.columns import paragraph
+from tui.output import say
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Mapping
+
+YES, NO = ("y", "yes"), ("n", "no")
+
+
+class Left(Exception):  # noqa: N818 - nothing is wrong when a person leaves
+    """The person has left: end of input."""
+
+
+def ask(prompt: str, default: str = "") -> str:
+    """Ask for one line; Enter alone gives the default. Raises Left at the end of input."""
+    shown = f"{prompt} [{default}]: " if default else f"{prompt}: "
+    sys.stdout.write(shown)
+    sys.stdout.flush()
+    line = sys.stdin.readline()
+    if not line:
+        say()
+        raise Left
+    return line.strip() or default
+
+
+def ask_yes(prompt: str) -> bool:
+    """Ask until the answer is yes or no."""
+    while True:
+        answer = ask(f"{prompt} yes/no").lower()
+        if answer in YES + NO:
+            return answer in YES
+        say("Answer yes or no.")
+
+
+def ask_choice(prompt: str, choices: Mapping[str, str]) -> str:
+    """Show numbered choices and return the id of the one that is named by number, id or unique beginning."""
+    ids = list(choices)
+    say(f"{place:>3}  {choices[one]}" for place, one in enumerate(ids, 1))
+    while True:
+        answer = ask(prompt)
+        found = (
+            [ids[int(answer) - 1]]
+            if answer.isdecimal() and 0 < int(answer) <= len(ids)
+            else match(answer, choices)
+        )
+        if len(found) == 1:
+            return found[0]
+        tell(f"Which one: {', '.join(found)}?" if found else "Give a number from the list, or its name.")
+
+
+def match(text: str, choices: Mapping[str, str] | Iterable[str]) -> list[str]:
+    """Return the ids that a text names: exactly, else by beginning, else by a word of the name."""
+    wanted = text.lower().replace(" ", "_").replace("-", "_")
+    ids = list(choices)
+    if not wanted or wanted in ids:
+        return [wanted] if wanted else []
+    names = {one: choices[one] if isinstance(choices, dict) else one for one in ids}
+    begins = [one for one in ids if one.startswith(wanted)]
+    return begins or [one for one in ids if text.lower() in names[one].lower()]
+
+
+def tell(text: str) -> None:
+    """Say one sentence, wrapped."""
+    say(paragraph(text))
