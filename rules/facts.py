@@ -2,18 +2,21 @@
 
 A ``where`` maps the name of a fact to what it must be: a word (``mount: rigid``), several
 (``starter: direct | star_delta``), or a span of a quantity (``power: 15..300 kW``, above
-15 kW up to and including 300 kW; either end may be left out). An unknown fact meets nothing.
+15 kW up to and including 300 kW; ``..15 kW`` and ``300.. kW`` have one end). A fact that
+nobody knows meets ``unknown`` only, as in ``mount: flexible | unknown``.
 """
 
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Callable, Mapping
 from functools import lru_cache
 from typing import Final
 
 from calc.sheet import CaseSheet, Reading, Value
 from rules.amounts import amount, is_amount
+from rules.derived.machine import poles_of
 
 Fact = str | float | None
 Facts = Callable[[str], Fact]
@@ -45,6 +48,9 @@ def facts_of(sheet: CaseSheet, reading: Reading | None = None) -> Facts:
 
     def fact(name: str) -> Fact:
         found: object = None
+        if name == "poles":
+            poles = poles_of(sheet)
+            return None if poles is None else float(poles)
         if name in PLATE or name in PLATE_WORDS:
             found = getattr(machine.nameplate, name)
         elif name in MACHINE_WORDS or name in MACHINE_FLAGS:
@@ -79,29 +85,37 @@ def meets(where: Mapping[str, str], facts: Facts) -> bool:
     return all(_matches(wanted, facts(name)) for name, wanted in where.items())
 
 
+_SPAN: Final = re.compile(r"(-?[0-9][0-9.]*?)?\.\.(-?[0-9][0-9.]*)?\s*(\S*)")
+
+
 @lru_cache(maxsize=1024)
 def span(text: str) -> tuple[float, float] | None:
     """Return both ends of a span such as ``15..300 kW`` in the inner unit, or None where it is none."""
-    low, dots, high = text.partition("..")
-    if not dots:
+    parts = _SPAN.fullmatch(text.strip())
+    if parts is None:
         return None
-    unit = text.rsplit(maxsplit=1)[-1] if " " in text else ""
-    ends = (low.strip(), high.removesuffix(unit).strip())
-    if not any(ends) or not all(is_amount(f"{end} {unit}".strip()) for end in ends if end):
+    low, high, unit = parts.groups()
+    ends = [f"{end} {unit}".strip() if end else "" for end in (low, high)]
+    if not any(ends) or not all(is_amount(end) for end in ends if end):
         return None
-    bottom, top = (amount(f"{end} {unit}".strip()) if end else math.nan for end in ends)
-    return (-math.inf if math.isnan(bottom) else bottom, math.inf if math.isnan(top) else top)
+    return (amount(ends[0]) if ends[0] else -math.inf, amount(ends[1]) if ends[1] else math.inf)
 
 
 def _matches(wanted: str, fact: Fact) -> bool:
+    """Whether a fact is one of the words, amounts or spans of ``a | b``; ``unknown`` is a missing fact."""
+    words = [word.strip() for word in wanted.split("|")]
     if fact is None:
-        return False
-    if isinstance(fact, float):
-        ends = span(wanted)
-        if ends is not None:
-            return ends[0] < fact <= ends[1]
-        return is_amount(wanted) and math.isclose(fact, amount(wanted), rel_tol=1e-6)
-    return fact in [word.strip() for word in wanted.split("|")]
+        return "unknown" in words
+    return any(_is(word, fact) for word in words)
+
+
+def _is(word: str, fact: str | float) -> bool:
+    if isinstance(fact, str):
+        return word == fact
+    ends = span(word)
+    if ends is not None:
+        return ends[0] < fact <= ends[1]
+    return is_amount(word) and math.isclose(fact, amount(word), rel_tol=1e-6)
 
 
 def _plain(found: object) -> Fact:

@@ -147,7 +147,8 @@ class AmountCheck:
             if not is_amount(text):
                 yield Mistaken(BadAmount, section, entry, path, text, "a number and a unit, such as 5 Mohm")
         for section, entry, path, text in _spans(knowledge):
-            if span(text) is None and not is_amount(text):
+            words = [word.strip() for word in text.split("|")]
+            if not all(word == "unknown" or is_amount(word) or span(word) for word in words):
                 yield Mistaken(
                     BadAmount, section, entry, path, text, "an amount or a span such as 15..300 kW"
                 )
