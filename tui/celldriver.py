@@ -20,7 +20,7 @@ class CellDriver(LinuxDriver):
     def start_application_mode(self) -> None:
         """Start on an unknown screen."""
         self.cells.forget()
-        super().start_application_mode()
+        super().start_application_mode()  # type: ignore[no-untyped-call]
 
     def write(self, data: str) -> None:
         """Send the difference between what is shown and ``data``."""
@@ -35,7 +35,7 @@ class CellDriver(LinuxDriver):
 
     def _difference(self, data: str) -> str:
         """Return what must be sent; frames are the writes that move the cursor first."""
-        difference = self.cells.difference(data, tuple(self._app.size))
+        difference = self.cells.difference(data, (self._app.size.width, self._app.size.height))
         return data if difference is None else difference
 
     def _send(self, data: str) -> None:

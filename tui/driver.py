@@ -139,6 +139,6 @@ def cell_driver() -> type[Driver] | None:
     """Return the driver for this platform; None where Textual's own must do."""
     if sys.platform == "win32":
         return None
-    from tui.celldriver import CellDriver  # noqa: PLC0415  (termios is not everywhere)
+    from tui.celldriver import CellDriver
 
     return CellDriver

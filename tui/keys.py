@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from typing import Final, NamedTuple
 
-from textual.binding import Binding
+from textual.binding import Binding, BindingType
 
 
 class Key(NamedTuple):
@@ -63,6 +63,10 @@ _UP_DOWN: Final = (
     Key("up", "cursor_up", "", "Up one line."),
     Key("down", "cursor_down", "", "Down one line."),
 )
+_PAGES: Final = (
+    Key("pagedown", "page_down", "", "Further down the page."),
+    Key("pageup", "page_up", "", "Further up the page."),
+)
 _DONE: Final = "f8"
 
 SCREENS: Final[dict[str, tuple[Key, ...]]] = {
@@ -113,8 +117,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
     "reasons": (
         Key("right,down", "next_fault", "next fault", "The next fault on the list."),
         Key("left,up", "last_fault", "fault before", "The fault before."),
-        Key("pagedown", "page_down", "", "Further down the page."),
-        Key("pageup", "page_up", "", "Further up the page."),
+        *_PAGES,
     ),
     "curves": (
         Key("right", "next_curve", "next curve", "The next curve."),
@@ -127,8 +130,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
             "isolation record",
             "Who isolated and locked out, when, and whether it is dead.",
         ),
-        Key("pagedown", "page_down", "", "Further down the page."),
-        Key("pageup", "page_up", "", "Further up the page."),
+        *_PAGES,
     ),
     "isolation": (
         Key("enter", "next_field", "next", "The next line; on the last one the record is stored."),
@@ -157,11 +159,11 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         Key(_DONE, "done", "close the case", "Close the case with what stands here."),
     ),
     "machine": (
-        Key("enter", "open", "open case", "Open the case under the bar."),
-        Key("f3", "edit", "edit plate", "Correct the plate; the log keeps both."),
-        Key("f4", "curves", "curves", "Curves and history."),
-        *_UP_DOWN,
+        Key("f3", "edit", "correct the plate", "Correct the plate; the log keeps both."),
+        Key("f4,ctrl+t", "curves", "curves", "Curves and history."),
+        *_PAGES,
     ),
+    "closed": (Key(_DONE, "reopen", "go on with it", "Open the case again."), *_PAGES),
     "person": (
         Key("enter", "next_field", "next", "The next line."),
         *_UP_DOWN,
@@ -173,10 +175,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         Key("n", "no", "no", "No."),
     ),
     "note": (Key("enter,f8", "done", "store", "Store the remark."),),
-    "help": (
-        Key("pagedown", "page_down", "", "Further down."),
-        Key("pageup", "page_up", "", "Further up."),
-    ),
+    "help": _PAGES,
 }
 
 
@@ -188,7 +187,7 @@ def keys_of(screen: str) -> tuple[Key, ...]:
     return (*help_key, *own, *(() if has_back else (BACK,)), *COMMON)
 
 
-def bindings(screen: str) -> list[Binding]:
+def bindings(screen: str) -> list[BindingType]:
     """Return the bindings of a screen."""
     return [Binding(key.keys, key.action, key.label, show=False) for key in keys_of(screen)]
 

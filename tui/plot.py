@@ -7,12 +7,13 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import TYPE_CHECKING, Final
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-LABEL_WIDTH: Final = 8
+LABEL_WIDTH: Final = 9
 _DOTS: Final = ((0x01, 0x08), (0x02, 0x10), (0x04, 0x20), (0x40, 0x80))
 _STEPS: Final = (1.0, 2.0, 2.5, 5.0, 10.0)
 
@@ -69,7 +70,8 @@ def plot(
 
 def _legend(curves: Sequence[Curve], bands: Sequence[Band]) -> str:
     """Return which mark is what."""
-    return "   ".join(f"{item.mark} {item.name}" for item in (*curves, *bands) if item.name)
+    items: list[Curve | Band] = [*curves, *bands]
+    return "   ".join(f"{item.mark} {item.name}" for item in items if item.name)
 
 
 class _Frame:
@@ -85,7 +87,8 @@ class _Frame:
         cls, curves: Sequence[Curve], bands: Sequence[Band], *, width: int, height: int
     ) -> _Frame | None:
         """Return a frame that holds everything finite."""
-        xs = [v for item in (*curves, *bands) for v in item.x if math.isfinite(v)]
+        items: list[Curve | Band] = [*curves, *bands]
+        xs = [v for item in items for v in item.x if math.isfinite(v)]
         ys = [v for curve in curves for v in curve.y if math.isfinite(v)]
         ys += [v for band in bands for v in (*band.low, *band.high) if math.isfinite(v)]
         if not xs or not ys:
@@ -113,13 +116,13 @@ class _Frame:
 
     def draw(self, curve: Curve) -> None:
         """Draw the points of a curve, and the way between them where it is joined."""
-        for column, row in _walk(curve, self.column, self.row, 1):
+        for column, row in _walk(curve, self.column, self.row):
             self.cells[row][column] = curve.mark
 
     def dots(self, curve: Curve) -> None:
         """Draw a curve in braille dots, two by four to a cell."""
         bits: dict[tuple[int, int], int] = {}
-        for x, y in _walk(curve, lambda v: self.column(v, 2), lambda v: self.row(v, 4), 1):
+        for x, y in _walk(curve, lambda v: self.column(v, 2), lambda v: self.row(v, 4)):
             cell = (y // 4, x // 2)
             bits[cell] = bits.get(cell, 0) | _DOTS[y % 4][x % 2]
         for (row, column), value in bits.items():
@@ -131,13 +134,13 @@ class _Frame:
         for index, cells in enumerate(self.cells):
             labelled = index in {0, self.height // 2, self.height - 1}
             value = self.y[1] - (self.y[1] - self.y[0]) * index / (self.height - 1)
-            label = f"{value:>{LABEL_WIDTH - 1}.4g} " if labelled else " " * LABEL_WIDTH
+            label = f"{_short(value):>{LABEL_WIDTH - 1}} " if labelled else " " * LABEL_WIDTH
             out.append(label + "|" + "".join(cells).rstrip())
         return out
 
     def foot(self, label: str, width: int) -> list[str]:
         """Return the x axis and its labels."""
-        left, right = f"{self.x[0]:.4g}", f"{self.x[1]:.4g}"
+        left, right = _short(self.x[0]), _short(self.x[1])
         room = self.width - len(left) - len(right)
         return [
             " " * LABEL_WIDTH + "+" + "-" * self.width,
@@ -145,7 +148,13 @@ class _Frame:
         ]
 
 
-def _walk(curve: Curve, column: _Scale, row: _Scale, step: int) -> list[tuple[int, int]]:
+def _short(value: float) -> str:
+    """Return a number in at most eight cells."""
+    text = f"{value:.4g}"
+    return text if len(text) < LABEL_WIDTH else f"{value:.1e}"[: LABEL_WIDTH - 1]
+
+
+def _walk(curve: Curve, column: _Scale, row: _Scale) -> list[tuple[int, int]]:
     """Return the cells of a curve in order, without leaving the way between two points open."""
     cells: list[tuple[int, int]] = []
     last: tuple[int, int] | None = None
@@ -156,13 +165,10 @@ def _walk(curve: Curve, column: _Scale, row: _Scale, step: int) -> list[tuple[in
         here = (column(x), row(y))
         if last is not None and curve.joined:
             many = max(abs(here[0] - last[0]), abs(here[1] - last[1]), 1)
-            for i in range(step, many):
-                cells.append(
-                    (
-                        last[0] + round((here[0] - last[0]) * i / many),
-                        last[1] + round((here[1] - last[1]) * i / many),
-                    )
-                )
+            across, down = here[0] - last[0], here[1] - last[1]
+            cells += [
+                (last[0] + round(across * i / many), last[1] + round(down * i / many)) for i in range(1, many)
+            ]
         cells.append(here)
         last = here
     return cells
@@ -170,7 +176,7 @@ def _walk(curve: Curve, column: _Scale, row: _Scale, step: int) -> list[tuple[in
 
 def _between(points: list[tuple[float, float, float]], x: float) -> tuple[float | None, float | None]:
     """Return a band's ends at x, straight between its points."""
-    for (x0, low0, high0), (x1, low1, high1) in zip(points, points[1:], strict=False):
+    for (x0, low0, high0), (x1, low1, high1) in pairwise(points):
         if min(x0, x1) <= x <= max(x0, x1) and all(map(math.isfinite, (low0, low1, high0, high1))):
             share = 0.0 if x1 == x0 else (x - x0) / (x1 - x0)
             return low0 + (low1 - low0) * share, high0 + (high1 - high0) * share

@@ -71,7 +71,7 @@ def fill(lines: Sequence[Content], height: int) -> list[Content]:
 class Ruled(Static):
     """A block of ruled lines."""
 
-    def __init__(self, *, id: str | None = None, classes: str | None = None) -> None:  # noqa: A002
+    def __init__(self, *, id: str | None = None, classes: str | None = None) -> None:
         super().__init__("", markup=False, id=id, classes=classes)
 
     def show(self, lines: Iterable[Content]) -> None:

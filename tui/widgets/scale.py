@@ -29,7 +29,7 @@ def scale(values: Sequence[float], low: float, high: float) -> str:
             continue
         at = column(value, low, high)
         mark = str(index + 1) if len(values) > 1 else "o"
-        cells[at] = "*" if cells[at] in "123o" else mark
+        cells[at] = "*" if cells[at] in "123o*" else mark
     return "".join(cells)
 
 

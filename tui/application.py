@@ -1,0 +1,156 @@
+"""The full-screen interface: one app, a stack of ruled pages, and how it is left."""
+
+from __future__ import annotations
+
+import asyncio
+import contextlib
+import os
+import signal
+from typing import TYPE_CHECKING, Any, Final
+
+from rich.text import Text
+from textual.app import App
+
+from tui import look, mishaps
+from tui.desk import Desk
+from tui.driver import cell_driver
+from tui.screens.casebook import CasebookPage
+from tui.screens.page import Page
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+    from pathlib import Path
+
+    from rich.console import RenderableType
+    from textual.filter import LineFilter
+
+TERMINATED: Final = 128 + signal.SIGTERM
+
+
+class PlatesideApp(App[int]):
+    """Casebook, worksheet and the pages around them."""
+
+    CSS_PATH = "app.tcss"
+    ENABLE_COMMAND_PALETTE = False
+    TITLE = "Plateside"
+
+    def __init__(
+        self, casebook: Path, *, rules: Sequence[Path] = (), ascii_only: bool = False, person: str = ""
+    ) -> None:
+        # ansi_color must be told to the constructor: later is too late for NO_COLOR
+        super().__init__(driver_class=cell_driver(), ansi_color=True)
+        self.register_theme(look.THEME)
+        self.theme = look.THEME.name
+        self.ascii_only = ascii_only
+        self.desk = Desk(casebook, rules=rules, person=person)
+        self.braille = bool(os.environ.get("PLATESIDE_BRAILLE")) and not ascii_only
+        self._plain = look.AsciiFilter()
+
+    def get_line_filters(self) -> Sequence[LineFilter]:
+        """Add the ASCII filter where the terminal needs it."""
+        filters = super().get_line_filters()
+        return [*filters, self._plain] if self.ascii_only else filters
+
+    async def on_mount(self) -> None:
+        """Show the casebook, then load what is heavy."""
+        with contextlib.suppress(NotImplementedError, RuntimeError, ValueError):  # only on a main thread
+            loop = asyncio.get_running_loop()
+            loop.add_signal_handler(signal.SIGTERM, self.on_terminate)
+            loop.add_signal_handler(signal.SIGHUP, self.on_hang_up)
+        await self.push_screen(CasebookPage())
+        self.call_after_refresh(self.load)
+
+    def load(self) -> None:
+        """Load rules and engine off the event loop."""
+        self.run_worker(self.desk.load, thread=True, exit_on_error=False, group="load")
+
+    def on_unmount(self) -> None:
+        """Let the casebook go."""
+        self.desk.close()
+
+    def redraw(self) -> None:
+        """Send the whole screen again, whatever the terminal shows now."""
+        cells = getattr(self._driver, "cells", None)
+        if cells is not None:
+            cells.forget()
+        self.screen.refresh(layout=True)
+
+    # leaving
+
+    def pages(self) -> list[Page[Any]]:
+        """Return the open pages, the lowest first."""
+        return [screen for screen in self.screen_stack if isinstance(screen, Page)]
+
+    def leave(self) -> None:
+        """Leave; ask first where something is typed and not stored."""
+        unsaved = [text for page in self.pages() if (text := page.unsaved())]
+        if not unsaved:
+            self.exit(0)
+            return
+        from tui.screens.ask import Ask
+
+        def answered(yes: bool | None) -> None:
+            if yes:
+                self.keep_drafts()
+                self.exit(0)
+
+        if not isinstance(self.screen, Ask):
+            self.push_screen(Ask(f"Leave? Typed and not stored: {'; '.join(unsaved)}"), answered)
+
+    def keep_drafts(self) -> None:
+        """Put what is typed and not stored on disk."""
+        for page in self.pages():
+            draft = page.draft()
+            if draft is not None:
+                with contextlib.suppress(OSError):
+                    self.desk.drafts.save(*draft)
+
+    def on_terminate(self) -> None:
+        """End as asked by the system: drafts first, then the terminal as it was."""
+        self.keep_drafts()
+        self.exit(TERMINATED, return_code=TERMINATED)
+
+    def on_hang_up(self) -> None:
+        """Keep the drafts and end at once: the line is gone."""
+        self.keep_drafts()
+        os._exit(0)
+
+    async def action_quit(self) -> None:
+        """Leave as every other way of leaving does."""
+        self.leave()
+
+    def action_help_quit(self) -> None:
+        """Leave, for hands that are used to Ctrl+C."""
+        self.leave()
+
+    # mishaps
+
+    def trouble(self, error: BaseException) -> str:
+        """Return in one line what went wrong; the details of a mistake of the program go to the log file."""
+        from calc.errors import PlatesideError
+
+        return str(error) if isinstance(error, PlatesideError) else mishaps.keep(error)
+
+    def _handle_exception(self, error: Exception) -> None:
+        """Say what could not be done, such as a full disk, and go on; end only on a mistake of the program."""
+        from calc.errors import PlatesideError
+
+        inner = getattr(error, "error", error)
+        if isinstance(inner, PlatesideError) and self.is_running:
+            page = self.pages()[-1]
+            page.say(str(inner))
+        else:
+            super()._handle_exception(error)
+
+    def panic(self, *renderables: RenderableType) -> None:
+        """End with one line, never with the details on the screen."""
+        self._fatal_error()
+
+    def _fatal_error(self) -> None:
+        """End with one line; the details go to the log file, what is typed into a draft."""
+        with contextlib.suppress(Exception):
+            self.keep_drafts()
+        error: BaseException = self._exception or RuntimeError("unknown")
+        error = getattr(error, "error", error)  # what a worker raised, not that it did
+        self._exit_renderables.append(Text(f"plateside: {mishaps.keep(error)}"))
+        self._close_messages_no_wait()

@@ -1,0 +1,104 @@
+"""Closing a case: what it really was, how that is known, and what was done."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Final
+
+from tui.keys import bindings
+from tui.look import STRONG
+from tui.screens.form import FormPage, Heard, Line, hear_choice, one_of
+from tui.widgets.ruled import rows
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from textual.content import Content
+
+CONFIRMED: Final = {
+    "believed": "believed only; it teaches the odds nothing",
+    "repair": "confirmed: the repair cured it",
+    "teardown": "confirmed: seen when taken apart",
+}
+RETEST_MOST: Final = 400
+
+
+class ClosingPage(FormPage[dict[str, str]]):
+    """Dismisses with what stands in the lines; ``found`` holds fault ids joined by +."""
+
+    KEYS = "closing"
+    BINDINGS = bindings("closing")
+
+    def __init__(
+        self, found: str, names: Mapping[str, str], retest: Sequence[str], typed: dict[str, str] | None = None
+    ) -> None:
+        super().__init__(typed)
+        self.found = found
+        self.names = names
+        self.retest = retest
+
+    def form_lines(self) -> list[Line]:
+        """Return the lines: all but the first may stay blank."""
+        return [
+            Line("found", "found", "what it really was; two faults joined by +", self.found, self.hear_found),
+            Line("confirmed", "known by", "believed, repair, teardown", "believed", hear_choice(CONFIRMED)),
+            Line("done", "done", "what was done"),
+            Line("parts", "parts", "parts that were fitted"),
+            Line("minutes", "minutes", "time spent", hear=hear_minutes),
+            Line("note", "remark", "for the next shift and the repair shop"),
+        ]
+
+    def head(self) -> list[Content]:
+        """Return the title and what to re-test."""
+        lines = rows(
+            "close", "What was found and done. Closing keeps the odds as they stood.", self.room, style=STRONG
+        )
+        if self.retest:
+            lines += rows("re-test", "; ".join(self.retest)[:RETEST_MOST], self.room, most=3)
+        return lines
+
+    def on_mount(self) -> None:
+        """Start at the first line: it is already filled in."""
+        self.fields[0].focus()
+
+    def hear_found(self, text: str) -> Heard:
+        """Return the names of the faults, or what is not understood."""
+        names = []
+        for part in text.split("+"):
+            fault = one_of(dict(self.names), part)
+            if fault is None:
+                return f"which fault is '{part.strip()}'? F9, then F8 picks from the list", False
+            names.append(self.names[fault])
+        return " and ".join(names), True
+
+    def action_done(self) -> None:
+        """Close where fault, how it is known and minutes are understood."""
+        values = self.values
+        for name, (heard, fine) in {
+            "found": self.hear_found(values["found"]),
+            "confirmed": hear_choice(CONFIRMED)(values["confirmed"]),
+            "minutes": hear_minutes(values["minutes"]),
+        }.items():
+            if not fine:
+                self.query_one(f"#line-{name}").focus()
+                self.say(heard)
+                return
+        values["found"] = "+".join(
+            one_of(dict(self.names), part) or "" for part in values["found"].split("+")
+        )
+        values["confirmed"] = one_of(CONFIRMED, values["confirmed"]) or "believed"
+        self.dismiss(values)
+
+
+def hear_minutes(text: str) -> Heard:
+    """Understand a number of minutes."""
+    if not text:
+        return "", True
+    try:
+        minutes = float(text.replace(",", "."))
+    except ValueError:
+        return "a number of minutes", False
+    return (
+        (f"{minutes:g} minutes", True)
+        if 0 <= minutes < 100000
+        else ("a number of minutes, zero or more", False)
+    )

@@ -1,0 +1,143 @@
+"""The machine's page: plate, how it stands, what to expect, what was read over time, its cases."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from textual import work
+
+from tui.keys import bindings
+from tui.look import STRONG
+from tui.plate_lines import plate_lines, typed_of
+from tui.screens.page import TextPage
+from tui.screens.worksheet_lines import band_number
+from tui.widgets.ruled import blank, pad, row, rows
+from tui.words import fault_name, kind_name, measure_name, plain, reading_text
+
+if TYPE_CHECKING:
+    from textual.content import Content
+
+    from casebook.fold import Case
+    from rules.answer import Band
+    from tui.compose import Visit
+
+COLUMN = 26
+HISTORY = (
+    "insulation_resistance",
+    "winding_resistance",
+    "line_current",
+    "vibration_velocity",
+    "bearing_temperature",
+)
+"""Readings that are worth following over the years."""
+
+
+class MachinePage(TextPage):
+    """Reads everything from the casebook; expected values come from the engine, off the event loop."""
+
+    KEYS = "machine"
+    BINDINGS = bindings("machine")
+
+    def __init__(self, tag: str, visit: Visit | None = None) -> None:
+        super().__init__()
+        self.tag = tag
+        self.visit = visit
+        self.cases: tuple[Case, ...] = ()
+        self.expected: tuple[Band, ...] = ()
+
+    def on_mount(self) -> None:
+        """Look the machine up, and ask the engine what to expect."""
+        book = self.plateside.desk.book
+        self.cases = book.machine_cases(self.tag) if self.tag else ()
+        if self.visit is None and self.cases:
+            self.visit = self.plateside.desk.visit(self.cases[-1].id)
+        self.expect()
+
+    @work(thread=True, exit_on_error=False)
+    def expect(self) -> None:
+        """Work out what the healthy machine should read."""
+        if self.visit is not None:
+            expected = self.visit.weigh().diagnosis.expected
+            self.app.call_from_thread(self.expected_now, expected)
+
+    def expected_now(self, expected: tuple[Band, ...]) -> None:
+        """Show what to expect."""
+        self.expected = expected
+        self.show()
+
+    def lines(self) -> list[Content]:
+        """Return the whole page."""
+        if self.visit is None:
+            return rows("machine", f"{self.tag or 'No tag'}: no case is stored.", self.room)
+        return [*self.plate(), *self.expectation(), *self.history(), *self.case_lines()]
+
+    def plate(self) -> list[Content]:
+        """Return the plate and how the machine stands, in the plate's words, as many abreast as fit."""
+        from tui.flow import sheet_of
+
+        assert self.visit is not None
+        machine = self.visit.sheet.machine
+        typed = typed_of(sheet_of(machine))
+        shown = [(line.word, typed[line.field]) for line in plate_lines(machine.kind) if line.field in typed]
+        out = rows(self.tag or "no tag", kind_name(machine.kind), self.room, style=STRONG)
+        abreast = max((self.room - 11) // COLUMN, 1)
+        for start in range(0, len(shown), abreast):
+            cells = [f"{word} {plain(text)}" for word, text in shown[start : start + abreast]]
+            out.append(
+                row("plate" if start == 0 else "", "".join(pad(cell, COLUMN - 1) + " " for cell in cells))
+            )
+        return out if shown else [*out, row("plate", "no plate is known")]
+
+    def expectation(self) -> list[Content]:
+        """Return what the healthy machine should read."""
+        out: list[Content] = [blank()]
+        for place, band in enumerate(self.expected):
+            what = f"{measure_name(band.measure)}, {plain(band.state)}"
+            text = f"{band_number(band.low)} to {band_number(band.high)} {band.unit}"
+            at = f" at {band.temperature_c:g} degC" if band.temperature_c is not None else ""
+            out.append(row("" if place else "expected", pad(what, 44), " ", text + at))
+        return (
+            out if len(out) > 1 else [*out, row("expected", "worked out now, or the kind has no model yet")]
+        )
+
+    def history(self) -> list[Content]:
+        """Return the readings that are followed over time, newest last."""
+        out: list[Content] = [blank()]
+        for measure in HISTORY:
+            for case in self.cases:
+                for logged in case.readings:
+                    reading = logged.what.reading
+                    if reading.measure == measure:
+                        at = f" at {reading.temperature.text}" if reading.temperature else ""
+                        day = logged.time_utc.astimezone().strftime("%Y-%m-%d")
+                        text = f"{day}  {pad(f'{measure_name(measure)}, {plain(reading.state)}', 40)} {reading_text(reading)}{at}"
+                        out.append(row("history" if len(out) == 1 else "", text))
+        return out if len(out) > 1 else []
+
+    def case_lines(self) -> list[Content]:
+        """Return the machine's cases, newest first."""
+        assert self.visit is not None
+        out: list[Content] = [blank()]
+        for case in reversed(self.cases):
+            day = case.opened_utc.astimezone().strftime("%Y-%m-%d")
+            text = f"{day}  {case.number}  {plain(case.complaint)}"
+            if case.closed is not None:
+                text += f": {fault_name(case.closed.what.found, self.visit.knowledge)} ({case.closed.what.confirmed})"
+            out += rows("cases" if case is self.cases[-1] else "", text, self.room, most=2)
+        return out
+
+    @work(exclusive=True)
+    async def action_edit(self) -> None:
+        """Correct the plate; only inside a case, where the log has a place for it."""
+        from tui.flow import edit_plate
+
+        if self.visit is not None and await edit_plate(self.plateside, self.visit):
+            self.show()
+            self.expect()
+
+    def action_curves(self) -> None:
+        """Show the curves of this machine."""
+        from tui.screens.curves import Curves
+
+        if self.visit is not None:
+            self.app.push_screen(Curves(self.visit))

@@ -1,0 +1,119 @@
+"""The nameplate in the plate's own words, checked while it is typed."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any
+
+from calc.errors import PlatesideError
+from calc.values import ValueTextError
+from tui.keys import bindings
+from tui.look import STRONG, WATCH
+from tui.plate_lines import Raw, hear, keep, machine_of, plate_lines
+from tui.screens.form import FormPage, Line
+from tui.widgets.ruled import rows
+from tui.words import kind_name
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from textual.content import Content
+
+    from tui.plate_lines import PlateLine
+
+REMARKS_SHOWN = 3
+
+
+class NameplatePage(FormPage[Raw]):
+    """Dismisses with the machine as a case sheet holds it. ``check`` finds contradictions in it."""
+
+    KEYS = "nameplate"
+    BINDINGS = bindings("nameplate")
+
+    def __init__(
+        self,
+        kind: str,
+        tag: str,
+        check: Callable[[Raw], list[str]],
+        typed: dict[str, str] | None = None,
+        extra: Raw | None = None,
+    ) -> None:
+        super().__init__(typed)
+        self.kind, self.tag, self.check = kind, tag, check
+        self.extra = extra or {}
+        """What the draft must also keep, such as the complaint."""
+
+    def form_lines(self) -> list[Line]:
+        """Return one line per word of the plate, then how the machine stands."""
+        return [
+            Line(line.field, line.word, line.hint, hear=self.hearer(line)) for line in plate_lines(self.kind)
+        ]
+
+    @staticmethod
+    def hearer(line: PlateLine) -> Callable[[str], tuple[str, bool]]:
+        """Return how one line is understood: what is kept, then what it is."""
+
+        def heard(text: str) -> tuple[str, bool]:
+            kept, fine = hear(line, text)
+            return (
+                f"{kept}: {line.hint.split(',')[0].split(';')[0]}" if fine and line.dimension else kept
+            ), fine
+
+        return heard
+
+    def head(self) -> list[Content]:
+        """Return the tag and the kind."""
+        return rows(
+            self.tag or "no tag",
+            f"Nameplate of a {kind_name(self.kind)}; blank lines are allowed",
+            self.room,
+            style=STRONG,
+        )
+
+    def remarks(self) -> list[Content]:
+        """Return the contradictions in what stands there now."""
+        machine = self.machine()
+        if machine is None:
+            return []
+        try:
+            found = self.check(machine)
+        except PlatesideError as error:
+            found = [str(error)]
+        lines: list[Content] = []
+        for text in found[:REMARKS_SHOWN]:
+            lines += rows("plate" if not lines else "", text, self.room, style=WATCH, most=2)
+        return lines
+
+    def machine(self) -> Raw | None:
+        """Return the machine from the lines that are understood; None where nothing is typed."""
+        typed: dict[str, str] = {}
+        for line in plate_lines(self.kind):
+            text = self.values.get(line.field, "")
+            if text and hear(line, text)[1]:
+                typed[line.field] = text
+        return machine_of(self.kind, self.tag, typed) if typed else None
+
+    def action_done(self) -> None:
+        """Keep the plate; point at the first line that is not understood."""
+        for line in plate_lines(self.kind):
+            text = self.values[line.field]
+            if text:
+                try:
+                    keep(line, text)
+                except ValueTextError as error:
+                    self.query_one(f"#line-{line.field}").focus()
+                    self.say(f"{line.word}: {error}")
+                    return
+        self.dismiss(machine_of(self.kind, self.tag, self.values))
+
+    def action_kind(self) -> None:
+        """Go back for another kind; what is typed is kept as a draft."""
+        self.dismiss({"kind": ""})
+
+    def draft(self) -> tuple[str, dict[str, Any]] | None:
+        """Keep tag, kind and every line."""
+        lines = {name: text for name, text in self.values.items() if text}
+        return (
+            ("new_case", {"tag": self.tag, "kind": self.kind, "lines": lines, **self.extra})
+            if lines
+            else None
+        )

@@ -1,0 +1,27 @@
+"""One remark for the log."""
+
+from __future__ import annotations
+
+from tui.keys import bindings
+from tui.screens.form import FormPage, Line
+
+
+class Note(FormPage[str]):
+    """Dismisses with the text."""
+
+    KEYS = "note"
+    BINDINGS = bindings("note")
+    WIDE_INPUT = 60
+
+    def __init__(self, word: str = "note", hint: str = "for the log") -> None:
+        super().__init__()
+        self.word, self.hint = word, hint
+
+    def form_lines(self) -> list[Line]:
+        """Return the one line."""
+        return [Line("text", self.word, self.hint)]
+
+    def action_done(self) -> None:
+        """Store what stands there."""
+        text = self.values["text"]
+        self.dismiss(text or None)

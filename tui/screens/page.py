@@ -1,0 +1,142 @@
+"""What every screen shares: the ruled page, the key line at its foot, and the keys that work everywhere."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any, ClassVar, TypeVar
+
+from textual.content import Content
+from textual.screen import Screen
+from textual.widgets import Static
+
+from tui.keys import key_line
+from tui.look import FAINT, WATCH
+from tui.widgets.ruled import INDENT, Ruled, fill, row
+
+if TYPE_CHECKING:
+    from textual.app import ComposeResult
+    from textual.events import Resize
+    from textual.widget import Widget
+
+    from tui.application import PlatesideApp
+
+Answer = TypeVar("Answer")
+
+NARROWEST, LOWEST = 40, 12
+"""What a terminal must at least have; below that the page says so."""
+
+
+class Page(Screen[Answer]):
+    """One ruled page. ``KEYS`` names its keys in ``tui.keys``; ``body`` yields what stands above the key line."""
+
+    KEYS: ClassVar[str] = "help"
+
+    def compose(self) -> ComposeResult:
+        """Yield the body and the key line."""
+        yield from self.body()
+        yield Static("", id="keys", markup=False)
+
+    def body(self) -> list[Widget]:
+        """Return the widgets above the key line."""
+        return []
+
+    @property
+    def plateside(self) -> PlatesideApp:
+        """The app, as what it is."""
+        from tui.application import PlatesideApp
+
+        assert isinstance(self.app, PlatesideApp)
+        return self.app
+
+    @property
+    def room(self) -> int:
+        """Cells in a line."""
+        return int(self.app.size.width)
+
+    def on_resize(self, _event: Resize) -> None:
+        """Lay the page out for the new size."""
+        self.show()
+
+    def show(self) -> None:
+        """Show what stands now, at the present size."""
+        self.show_keys()
+
+    def show_keys(self) -> None:
+        """Show the key line, or what the terminal lacks."""
+        size = self.app.size
+        if size.width < NARROWEST or size.height < LOWEST:
+            text = f"needs {NARROWEST} x {LOWEST}, has {size.width} x {size.height}"
+        else:
+            text = key_line(self.KEYS, self.room - INDENT)
+        self.query_one("#keys", Static).update(row("keys", (text, FAINT)))
+
+    def say(self, text: str) -> None:
+        """Say something on the key line; pages with a place for it say it there."""
+        self.query_one("#keys", Static).update(row("note", (text, WATCH)))
+
+    def unsaved(self) -> str:
+        """Return what is typed here and not stored, in words; nothing where there is none."""
+        return ""
+
+    def draft(self) -> tuple[str, dict[str, Any]] | None:
+        """Return the name and the fields of the draft to keep when the line drops."""
+        return None
+
+    # keys that work everywhere
+
+    def action_help(self) -> None:
+        """Show the keys of this screen."""
+        from tui.screens.help import Help
+
+        self.app.push_screen(Help(self.KEYS))
+
+    def action_back(self) -> None:
+        """Go back without an answer."""
+        self.dismiss(None)
+
+    def action_redraw(self) -> None:
+        """Draw everything again."""
+        self.plateside.redraw()
+
+    def action_leave(self) -> None:
+        """Leave Plateside, after asking where something is unsaved."""
+        self.plateside.leave()
+
+
+class TextPage(Page[None]):
+    """A page of lines that may be longer than the screen."""
+
+    offset_now = 0
+
+    def body(self) -> list[Widget]:
+        """Return the block of text."""
+        return [Ruled(id="text", classes="page")]
+
+    def lines(self) -> list[Content]:
+        """Return all lines of the page."""
+        raise NotImplementedError
+
+    @property
+    def height_now(self) -> int:
+        """Lines of text that fit."""
+        return max(int(self.app.size.height) - 1, 1)
+
+    def show(self) -> None:
+        """Show the lines from the present offset on."""
+        super().show()
+        lines, height = self.lines(), self.height_now
+        self.offset_now = max(0, min(self.offset_now, len(lines) - height))
+        shown = fill(lines[self.offset_now :], height)
+        left = len(lines) - self.offset_now - height
+        if left > 0:
+            shown[-1] = row("", (f"{left + 1} more lines: PgDn", FAINT))
+        self.query_one("#text", Ruled).show(shown)
+
+    def action_page_down(self) -> None:
+        """Go down by a page, less two lines."""
+        self.offset_now += max(self.height_now - 2, 1)
+        self.show()
+
+    def action_page_up(self) -> None:
+        """Go up by a page, less two lines."""
+        self.offset_now -= max(self.height_now - 2, 1)
+        self.show()

@@ -1,0 +1,133 @@
+"""Pick one line of a list; typing narrows it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+from textual.containers import Horizontal
+from textual.widgets import Input, OptionList, Static
+from textual.widgets.option_list import Option
+
+from tui.keys import bindings
+from tui.look import FAINT, PLAIN
+from tui.screens.page import Page
+from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Sequence
+
+    from textual.content import Content
+    from textual.widget import Widget
+
+
+@dataclass(frozen=True)
+class Choice:
+    """One line to pick: what comes back, what is shown, and words that find it."""
+
+    key: str
+    text: str
+    word: str = ""
+    more: str = ""
+    style: str = PLAIN
+
+    def matches(self, words: Sequence[str]) -> bool:
+        """Whether every typed word begins a word of the line."""
+        parts = (
+            f"{self.word} {self.text} {self.more} {self.key}".lower()
+            .replace("_", " ")
+            .replace("-", " ")
+            .split()
+        )
+        whole = f"{self.word} {self.text} {self.key}".lower()
+        return all(word in whole or any(part.startswith(word) for part in parts) for word in words)
+
+
+class Pick(Page[str]):
+    """Dismisses with the key of the picked line, with None on back.
+
+    ``fresh`` makes a line out of what was typed, such as a machine that is not known yet.
+    """
+
+    KEYS = "pick"
+    BINDINGS = bindings("pick")
+
+    def __init__(
+        self,
+        word: str,
+        title: str,
+        choices: Sequence[Choice],
+        *,
+        typed: str = "",
+        fresh: Callable[[str], Choice | None] = lambda _text: None,
+    ) -> None:
+        super().__init__()
+        self.word, self.title_text, self.choices = word, title, list(choices)
+        self.typed, self.fresh = typed, fresh
+        self.shown: list[Choice] = []
+
+    def body(self) -> list[Widget]:
+        """Return title, line to type, and list."""
+        return [
+            Ruled(id="title"),
+            Horizontal(
+                Static("", id="mark", markup=False), Input(self.typed, compact=True, id="typed"), id="entry"
+            ),
+            OptionList(id="list", markup=False, compact=True),
+        ]
+
+    def on_mount(self) -> None:
+        """Put the focus on the line to type."""
+        self.query_one(Input).cursor_blink = False
+        self.query_one("#list").can_focus = False
+        self.query_one(Input).focus()
+
+    def show(self) -> None:
+        """Show the title, and the lines that match what is typed."""
+        super().show()
+        self.query_one("#title", Ruled).show(rows(self.word, self.title_text, self.room, style="bold"))
+        self.query_one("#mark", Static).update(row("type"))
+        self.narrow(self.query_one(Input).value)
+
+    def on_input_changed(self, event: Input.Changed) -> None:
+        """Narrow the list as it is typed."""
+        self.narrow(event.value)
+
+    def narrow(self, text: str) -> None:
+        """Keep the lines that match; the best first, a fresh one last."""
+        words = text.lower().replace("-", " ").split()
+        self.shown = [choice for choice in self.choices if choice.matches(words)]
+        made = self.fresh(text.strip())
+        if made is not None and all(choice.key != made.key for choice in self.shown):
+            self.shown.append(made)
+        picker = self.query_one("#list", OptionList)
+        picker.clear_options()
+        picker.add_options([Option(self.line(choice)) for choice in self.shown])
+        if self.shown:
+            picker.highlighted = 0
+        elif text:
+            picker.add_option(Option(row("", ("nothing matches", FAINT)), disabled=True))
+
+    def line(self, choice: Choice) -> Content:
+        """Return a choice as one ruled line."""
+        room = self.room - INDENT
+        text = f"{choice.text}   {choice.more}" if choice.more else choice.text
+        return row(choice.word, (pad(text, room), choice.style))
+
+    def action_cursor_down(self) -> None:
+        """Move the bar down."""
+        self.query_one("#list", OptionList).action_cursor_down()
+
+    def action_cursor_up(self) -> None:
+        """Move the bar up."""
+        self.query_one("#list", OptionList).action_cursor_up()
+
+    def on_input_submitted(self, _event: Input.Submitted) -> None:
+        """Take the line under the bar."""
+        self.action_choose()
+
+    def action_choose(self) -> None:
+        """Answer with the line under the bar."""
+        at = self.query_one("#list", OptionList).highlighted
+        if at is not None and at < len(self.shown):
+            self.dismiss(self.shown[at].key)

@@ -1,0 +1,326 @@
+"""What the keys of the worksheet do, apart from typing."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from textual import work
+from textual.widgets import Input
+
+from calc.quantities import MEASURES, arity
+from casebook.bodies import Closed
+from rules.answer import NextItem
+from tui.look import FAINT, WATCH
+from tui.screens.closing import CONFIRMED, ClosingPage
+from tui.screens.gate import Gate, Hazards, IsolationPage, hazards_text, isolation_text
+from tui.screens.note import Note
+from tui.screens.page import Page
+from tui.screens.pick import Choice, Pick
+from tui.screens.reasons import Reasons
+from tui.screens.tick import Tick
+from tui.words import key_words, plain, question
+
+if TYPE_CHECKING:
+    from rules.answer import Diagnosis
+    from tui.compose import Visit
+
+
+class WorksheetKeys(Page[None]):
+    """Other reading, skip, reasons, gate, tick list, correct, curves, close."""
+
+    visit: Visit
+    chosen: NextItem | None
+    correcting: str
+    older: int
+
+    @property
+    def target(self) -> NextItem | None:
+        """What the typed line is for."""
+        raise NotImplementedError
+
+    @property
+    def proposals(self) -> list[NextItem]:
+        """What is proposed and was not skipped."""
+        raise NotImplementedError
+
+    @property
+    def diagnosis(self) -> Diagnosis | None:
+        """The answer that is shown."""
+        raise NotImplementedError
+
+    @property
+    def draft_name(self) -> str:
+        """The draft of this case and person."""
+        raise NotImplementedError
+
+    def say(self, text: str, style: str = WATCH) -> None:
+        """Say something above the line to type."""
+        raise NotImplementedError
+
+    def stored(self, words: str) -> None:
+        """Go on after something is on disk."""
+        raise NotImplementedError
+
+    def show_blocks(self) -> None:
+        """Show the blocks above the line to type."""
+        raise NotImplementedError
+
+    def weigh(self) -> None:
+        """Weigh what stands."""
+        raise NotImplementedError
+
+    def wanted_first(self) -> str:
+        """Return what must come before the reading."""
+        raise NotImplementedError
+
+    # other reading, skip
+
+    @work(exclusive=True, group="enter")
+    async def action_other(self) -> None:
+        """Pick another reading."""
+        await self.pick_other("")
+
+    async def pick_other(self, typed: str) -> None:
+        """Pick a reading from all that suit the machine; the proposed ones stand first."""
+        choices = other_choices(self)
+        key = await self.app.push_screen_wait(Pick("reading", "Which reading?", choices, typed=typed))
+        if key is None:
+            return
+        self.chosen = item_of(self, key)
+        with self.prevent(Input.Changed):
+            self.query_one(Input).value = ""
+        self.say("")
+        self.show_blocks()
+
+    @work(exclusive=True, group="enter")
+    async def action_skip(self) -> None:
+        """Remember that the reading cannot be taken."""
+        item = self.target
+        if item is None:
+            self.say("There is nothing to skip.", "")
+            return
+        self.visit.skip(item.key)
+        self.stored(f"cannot be taken now: {key_words(item.key, self.visit.knowledge)}")
+
+    def action_older(self) -> None:
+        """Show older readings."""
+        self.older = min(self.older + 3, max(len(self.visit.sheet.readings) - 1, 0))
+        self.show_blocks()
+
+    def action_newer(self) -> None:
+        """Show newer readings."""
+        self.older = max(self.older - 3, 0)
+        self.show_blocks()
+
+    # what protects
+
+    async def come_first(self, item: NextItem) -> bool:
+        """Ask for what must come before a reading; return whether it is there."""
+        first = self.wanted_first()
+        if first == "isolation":
+            return await self.isolate()
+        if first == "acknowledge":
+            page = Hazards(str(item.state), item.hazards, self.visit.knowledge)
+            if not await self.app.push_screen_wait(page):
+                return False
+            shown = hazards_text(item.hazards, self.visit.knowledge)
+            self.visit.acknowledge(str(item.state), item.hazards, shown)
+            self.show_blocks()
+        return True
+
+    async def isolate(self) -> bool:
+        """Ask for the isolation record and store it."""
+        page = IsolationPage(self.visit.person, self.visit.sheet.machine.tag or "")
+        record = await self.app.push_screen_wait(page)
+        if record is None:
+            return False
+        self.visit.isolate(record)
+        self.say("stored: isolation record", FAINT)
+        self.weigh()
+        return True
+
+    @work(exclusive=True, group="enter")
+    async def action_gate(self) -> None:
+        """Show the list before energising, and take the isolation record from there."""
+        if self.diagnosis is None:
+            return
+        page = Gate(self.diagnosis.energise, self.visit.knowledge, isolation_text(self.visit.case))
+        await self.app.push_screen_wait(page)
+        if page.wants_isolation:
+            await self.isolate()
+
+    # looking
+
+    def action_reasons(self) -> None:
+        """Show for and against."""
+        if self.diagnosis is not None:
+            self.app.push_screen(Reasons(self.diagnosis, self.visit.knowledge))
+
+    def action_curves(self) -> None:
+        """Show the curves of this machine and its history."""
+        from tui.screens.curves import Curves
+
+        self.app.push_screen(Curves(self.visit))
+
+    def action_machine(self) -> None:
+        """Show the machine's page."""
+        from tui.screens.machine import MachinePage
+
+        self.app.push_screen(MachinePage(self.visit.sheet.machine.tag or "", self.visit))
+
+    @work(exclusive=True, group="enter")
+    async def action_tick(self) -> None:
+        """Tick what was seen."""
+        knowledge, kind = self.visit.knowledge, self.visit.kind
+        proposed = [item.observation for item in self.proposals if item.observation]
+        fitting = [o for o in knowledge.observations.values() if {"any", kind} & set(o.kinds)]
+        fitting.sort(key=lambda o: proposed.index(o.id) if o.id in proposed else len(proposed))
+        questions = [(o.id, o.name) for o in fitting]
+        new = await self.app.push_screen_wait(Tick(questions, dict(self.visit.sheet.observations)))
+        for name, seen in (new or {}).items():
+            self.visit.observe(name, seen)
+        if new:
+            words = "; ".join(
+                f"{question(name, knowledge)} {'yes' if seen else 'no'}" for name, seen in new.items()
+            )
+            self.stored(words)
+
+    @work(exclusive=True, group="enter")
+    async def action_note(self) -> None:
+        """Store a remark."""
+        text = await self.app.push_screen_wait(Note())
+        if text:
+            self.visit.note(text)
+            self.say("stored: remark", FAINT)
+
+    # correct, close
+
+    @work(exclusive=True, group="enter")
+    async def action_correct(self) -> None:
+        """Pick something stored, then take it back or type it anew."""
+        stored = stored_choices(self.visit)
+        if not stored:
+            self.say("Nothing is stored yet that could be corrected.", "")
+            return
+        entry = await self.app.push_screen_wait(Pick("correct", "What was wrong?", list(stored.values())))
+        if entry is None:
+            return
+        keys = {entry: key for entry, key, _ in self.visit.correctable() if "@" in key}
+        ways = [
+            Choice("anew", "type it anew; the log keeps both"),
+            Choice("back", "take it back; the log keeps it"),
+        ]
+        fitting = ways if entry in keys else ways[1:]
+        way = await self.app.push_screen_wait(Pick("correct", stored[entry].text, fitting))
+        if way == "back":
+            self.visit.correct(entry)
+            self.stored(f"taken back: {stored[entry].text}")
+        elif way == "anew":
+            self.chosen, self.correcting = item_of(self, keys[entry]), entry
+            self.show_blocks()
+            self.say("Type the right values; Enter stores the correction.", "")
+
+    @work(exclusive=True, group="enter")
+    async def action_close(self) -> None:
+        """Close the case."""
+        await self.close_case()
+
+    async def close_case(self) -> None:
+        """Ask what was found and done, and close."""
+        knowledge, kind = self.visit.knowledge, self.visit.kind
+        odds = {fault.id: fault.probability for fault in self.diagnosis.faults} if self.diagnosis else {}
+        names = {f.id: f.name for f in knowledge.faults.values() if kind in f.odds or "any" in f.odds}
+        names |= {part.id: part.name for f in knowledge.faults.values() if f.id in names for part in f.within}
+        names |= {"other": "another fault than those listed"}
+        choices = found_choices(names, odds)
+        found = await self.app.push_screen_wait(Pick("found", "What was it really?", choices))
+        if found is None:
+            return
+        known = knowledge.faults.get(found)
+        retest = [key_words(key, knowledge) for key in known.retest] if known else []
+        answer = await self.app.push_screen_wait(ClosingPage(found, names, retest))
+        if answer is None:
+            return
+        self.visit.close(closing_of(answer, known.retest if known else ()))
+        self.plateside.desk.drafts.drop(self.draft_name)
+        self.dismiss(None)
+
+
+def closing_of(answer: dict[str, str], retest: tuple[str, ...]) -> Closed:
+    """Return what the closing page says as what is stored."""
+    minutes = answer["minutes"].replace(",", ".")
+    confirmed = answer["confirmed"]
+    assert confirmed in CONFIRMED
+    return Closed(
+        found=answer["found"],
+        confirmed=confirmed,  # type: ignore[arg-type]
+        done=answer["done"],
+        parts=tuple(part.strip() for part in answer["parts"].split(",") if part.strip()),
+        minutes=float(minutes) if minutes else None,
+        retest=retest,
+        note=answer["note"],
+    )
+
+
+def found_choices(names: dict[str, str], odds: dict[str, float]) -> list[Choice]:
+    """Return the faults to choose from, the likeliest first."""
+    pairs = {fault: " and ".join(names.get(part, plain(part)) for part in fault.split("+")) for fault in odds}
+    every = {**pairs, **{fault: name for fault, name in names.items() if fault not in pairs}}
+    ordered = sorted(every, key=lambda fault: -odds.get(fault, 0.0))
+    return [
+        Choice(f, every[f], word=f"{100 * odds[f]:.0f} %" if odds.get(f, 0) >= 0.01 else "") for f in ordered
+    ]
+
+
+def stored_choices(visit: Visit) -> dict[str, Choice]:
+    """Return what is stored and can be corrected, by entry, newest first."""
+    knowledge = visit.knowledge
+    return {
+        entry: Choice(entry, f"{key_words(key, knowledge)}: {text}", word=key.partition("@")[2] or "seen")
+        for entry, key, text in visit.correctable()
+    }
+
+
+def other_choices(page: WorksheetKeys) -> list[Choice]:
+    """Return all readings and questions that suit the machine, the proposed ones first."""
+    knowledge, kind = page.visit.knowledge, page.visit.kind
+    proposed = [item.key for item in page.proposals]
+    choices = {}
+    for rule in knowledge.readings.values():
+        for state in rule.states:
+            if rule.id in MEASURES and MEASURES[rule.id].suits(kind):
+                key = f"{rule.id}@{state}"
+                choices[key] = Choice(
+                    key,
+                    f"{MEASURES[rule.id].label}, {plain(state)}",
+                    word="proposed" if key in proposed else "",
+                )
+    for seen in knowledge.observations.values():
+        if {"any", kind} & set(seen.kinds):
+            choices[seen.id] = Choice(seen.id, seen.name, word="proposed" if seen.id in proposed else "")
+    order = {key: place for place, key in enumerate(proposed)}
+    return sorted(choices.values(), key=lambda choice: order.get(choice.key, len(order)))
+
+
+def item_of(page: WorksheetKeys, key: str) -> NextItem:
+    """Return a reading or question picked by hand: the proposal where there is one, else what the rules say of it."""
+    for item in page.proposals:
+        if item.key == key:
+            return item
+    measure, at, state = key.partition("@")
+    if not at:
+        return NextItem(observation=key)
+    rule = page.visit.knowledge.readings.get(measure)
+    how = rule.states.get(state) if rule else None
+    if how is None:
+        return NextItem(measure=measure, state=state)
+    return NextItem(measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards)
+
+
+def values_wanted(measure: str, kind: str) -> str:
+    """Return what belongs into the line for a measure, in words."""
+    known = MEASURES.get(measure)
+    if known is None:
+        return "a value with its unit"
+    many = "three values" if arity(measure, kind) == 3 else "one value"
+    return f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"

@@ -1,0 +1,270 @@
+"""The blocks of the worksheet as ruled lines: machine, gate, limits, faults, readings, next.
+
+Each function returns every line that there is to say, the most needed first;
+``share_out`` then gives each block its part of the screen.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Final
+
+from calc.quantities import MEASURES
+from calc.units import find_unit
+from tui.answer_text import NOTHING_FORBIDS
+from tui.look import FAINT, STOP, STRONG, VERDICT_STYLE, VERDICT_WORD, WATCH
+from tui.widgets.ruled import INDENT, pad, row, rows
+from tui.widgets.scale import WIDTH as SCALE_WIDTH
+from tui.widgets.scale import scale, side
+from tui.words import complaint_name, fault_name, key_words, percent, plain, question, reading_text
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from textual.content import Content
+
+    from calc.sheet import CaseSheet, Reading
+    from rules.answer import Band, Diagnosis, FaultOdds, Finding, NextItem
+    from rules.knowledge import Knowledge
+
+WIDE: Final = 110
+BAR: Final = 18
+MOVED: Final = 0.015
+"""A move of the odds that is worth a word."""
+LEAST: Final = 0.005
+"""Odds below this are not worth a line."""
+MARGIN_STATE: Final = {"light_load": "light ld", "no_load": "no load"}
+
+
+def machine_lines(sheet: CaseSheet, number: str, knowledge: Knowledge, room: int) -> list[Content]:
+    """Return tag, plate, how it stands, and the complaint."""
+    machine, plate = sheet.machine, sheet.machine.nameplate
+    shown = [
+        value.text for name in ("power", "voltage", "current", "speed") if (value := getattr(plate, name))
+    ]
+    stands = [plain(word) for word in (plate.connection, machine.starter, machine.load_type) if word]
+    what = complaint_name(sheet.complaint, knowledge)
+    text = f"{' '.join(shown)}{', ' if stands and shown else ''}{', '.join(stands)}" or "no plate"
+    tail = f"{what}   {number}"
+    gap = room - INDENT - len(text) - len(tail)
+    if gap >= 2:
+        return [row(machine.tag or "no tag", text, " " * gap, (tail, STRONG))]
+    return [
+        row(machine.tag or "no tag", pad(text, room - INDENT)),
+        row("", (pad(tail, room - INDENT), STRONG)),
+    ]
+
+
+def stop_lines(sheet: CaseSheet, knowledge: Knowledge, room: int) -> list[Content]:
+    """Return what comes before everything else where the complaint means stop."""
+    complaint = knowledge.complaints.get(sheet.complaint)
+    if complaint is None or not complaint.stop:
+        return []
+    return rows(
+        "STOP", complaint.first or "Isolate it, lock it out, prove it dead.", room, style=STOP, most=2
+    )
+
+
+def gate_lines(diagnosis: Diagnosis, room: int) -> list[Content]:
+    """Return the gate: shut with what forbids and what is needed, or that nothing recorded forbids."""
+    energise = diagnosis.energise
+    if energise.gate != "shut":
+        return rows("gate", energise.says or NOTHING_FORBIDS, room, most=2)
+    forbids = [line.because or line.needs for line in energise.lines if line.status == "forbids"]
+    needs = [line.needs for line in energise.lines if line.status == "needed"] or list(energise.needs)
+    if forbids:
+        return rows("gate", f"SHUT by: {'; '.join(forbids)}", room, style=STOP, most=2)
+    return rows("gate", f"SHUT. Needed: {'; '.join(needs)}", room, style=STRONG, most=2)
+
+
+def finding_lines(diagnosis: Diagnosis, knowledge: Knowledge, room: int) -> list[Content]:
+    """Return crossed limits, likely slips, and what a shop's own rules have loosened."""
+    order = {"stop": 0, "watch": 1, "remark": 2}
+    lines: list[Content] = []
+    for finding in sorted(diagnosis.findings, key=lambda finding: order[finding.verdict]):
+        text = f"{VERDICT_WORD[finding.verdict]}: {finding.says} ({finding.source})"
+        lines += rows("limit", text, room, style=VERDICT_STYLE[finding.verdict], most=2)
+    for slip in diagnosis.slips:
+        lines += rows("check", slip.text, room, style=WATCH, most=2)
+    for loosened in knowledge.loosened:
+        lines += rows("rules", f"LOOSENED: {loosened}", room, style=WATCH, most=2)
+    return lines
+
+
+def fault_lines(
+    diagnosis: Diagnosis, moved: Mapping[str, float], knowledge: Knowledge, room: int
+) -> list[Content]:
+    """Return the likely faults: name, a bar, the odds, and how they moved."""
+    if diagnosis.model == "none":
+        return rows("faults", "this kind of machine has no model yet: limits and gate only", room)
+    likely = [fault for fault in diagnosis.faults if fault.probability >= LEAST] or diagnosis.faults[:1]
+    words = ["faults", *[""] * (len(likely) - 1)]
+    return [
+        _fault_line(fault, moved.get(fault.id, 0.0), knowledge, room, word)
+        for fault, word in zip(likely, words, strict=False)
+    ]
+
+
+def _fault_line(fault: FaultOdds, moved: float, knowledge: Knowledge, room: int, word: str) -> Content:
+    """Return one fault in one line."""
+    bar = round(fault.probability * BAR)
+    before = fault.probability - moved
+    move = ""
+    if abs(moved) >= MOVED:
+        move = f"{'up' if moved > 0 else 'down'} from {percent(before).strip()}"
+    name_room = room - INDENT - BAR - 8 - 15
+    name = fault.name or fault_name(fault.id, knowledge)
+    return row(
+        word,
+        (pad(name, name_room), STRONG if word else ""),
+        " ",
+        "=" * bar,
+        ("." * (BAR - bar), FAINT),
+        f" {percent(fault.probability)} ",
+        (pad(move, 14), FAINT),
+    )
+
+
+@dataclass(frozen=True)
+class Read:
+    """A reading with the band and the findings that concern it."""
+
+    reading: Reading
+    band: Band | None
+    findings: tuple[Finding, ...]
+
+
+def readings_of(sheet: CaseSheet, diagnosis: Diagnosis) -> list[Read]:
+    """Return the readings, newest first, each with its band."""
+    out = []
+    for reading in reversed(sheet.readings):
+        bands = [
+            band
+            for band in diagnosis.expected
+            if (band.measure, band.state) == (reading.measure, reading.state)
+        ]
+        about = tuple(
+            finding for finding in diagnosis.findings if finding.about in {reading.key, reading.measure}
+        )
+        out.append(Read(reading, bands[0] if bands else None, about))
+    return out
+
+
+def reading_lines(reads: Sequence[Read], room: int) -> list[Content]:
+    """Return one line per reading: state, measure, values, scale, and in a word where it lies."""
+    lines = []
+    last = ""
+    for read in reads:
+        state = read.reading.state
+        word = MARGIN_STATE.get(state, state) if state != last else ""
+        lines.append(_reading_line(read, word, room))
+        last = state
+    return lines
+
+
+def _reading_line(read: Read, word: str, room: int) -> Content:
+    """Return one reading in one line."""
+    wide = room >= WIDE
+    name_room, value_room = (34, 24) if wide else (20, 18)
+    values = reading_text(read.reading).replace(" / ", " ")
+    verdict, style = _verdict(read)
+    rest = room - INDENT - name_room - value_room - SCALE_WIDTH - 3
+    names = plain(read.reading.measure)
+    band = ""
+    if wide and read.band:
+        band = pad(
+            f"{band_number(read.band.low)} to {band_number(read.band.high)} {read.band.unit}", rest - 12
+        )
+    return row(
+        word,
+        pad(names, name_room),
+        " ",
+        pad(values, value_room, right=True),
+        " ",
+        _scale_text(read),
+        " ",
+        (pad(verdict, 11 if wide else rest), style),
+        band,
+    )
+
+
+def _scale_text(read: Read) -> str:
+    """Return the scale of a reading; blank where no band is known."""
+    if read.band is None:
+        return " " * SCALE_WIDTH
+    return scale(in_unit(read.reading, read.band.unit), read.band.low, read.band.high)
+
+
+def _verdict(read: Read) -> tuple[str, str]:
+    """Return in a word where a reading lies, and its style."""
+    for verdict in ("stop", "watch"):
+        if any(finding.verdict == verdict for finding in read.findings):
+            return VERDICT_WORD[verdict], VERDICT_STYLE[verdict]
+    if any(value.kind == "open" for value in read.reading.values):
+        return "open", STRONG
+    if read.band is None:
+        return "no band", FAINT
+    numbers = in_unit(read.reading, read.band.unit)
+    below, above = side(numbers, read.band.low, read.band.high)
+    if not below and not above:
+        return "inside", ""
+    if below and above:
+        return "apart", STRONG
+    which, word = (below, "low") if below else (above, "high")
+    known = sum(not math.isnan(number) for number in numbers)
+    return (word if len(which) == known else f"{','.join(str(i + 1) for i in which)} {word}"), STRONG
+
+
+def in_unit(reading: Reading, unit: str) -> tuple[float, ...]:
+    """Return the numbers of a reading in another unit of its dimension."""
+    measure = MEASURES.get(reading.measure)
+    known = find_unit(unit, dimension=measure.dimension) if measure and unit else None
+    if known is None:
+        return reading.numbers
+    return tuple((number - float(known.offset)) / float(known.factor) for number in reading.numbers)
+
+
+def band_number(value: float) -> str:
+    """Return a number of a band with three digits."""
+    if not math.isfinite(value):
+        return "open"
+    return f"{value:.0f}" if abs(value) >= 1000 else f"{value:#.3g}".rstrip(".")
+
+
+def next_lines(item: NextItem | None, first: str, knowledge: Knowledge, room: int) -> list[Content]:
+    """Return the reading to take: what, in which state, leads, why, what to expect. ``first`` comes before it."""
+    if item is None:
+        return rows(
+            "next", "nothing that is left to read is worth its minutes; F3 other reading, F8 close", room
+        )
+    name = question(item.observation, knowledge) if item.observation else key_words(item.key, knowledge)
+    minutes = f"{item.minutes:g} min" if item.minutes else ""
+    name_room = room - INDENT - len(minutes) - 1
+    lines = [row("next", (pad(name, name_room), STRONG), " ", minutes)]
+    if first:
+        lines += rows("", first, room, style=WATCH, most=1)
+    if item.leads:
+        lines += rows("leads", item.leads, room, most=2)
+    if item.expect:
+        lines += rows("expect", item.expect, room, most=1)
+    if item.why:
+        lines += rows("because", item.why, room, most=2)
+    if item.hazards:
+        names = [knowledge.hazards[h].name if h in knowledge.hazards else plain(h) for h in item.hazards]
+        lines += rows("hazards", "; ".join(names), room, most=1)
+    if item.sees:
+        lines += rows("meter", item.sees, room, most=1)
+    return lines
+
+
+def share_out(blocks: Sequence[tuple[Sequence[Content], int]], height: int) -> list[list[Content]]:
+    """Give each block its lines: first everybody's least, then one by one in order, until the page is full."""
+    given = [min(least, len(lines)) for lines, least in blocks]
+    left = height - sum(given)
+    while left > 0 and any(had < len(lines) for had, (lines, _) in zip(given, blocks, strict=True)):
+        for index, (lines, _) in enumerate(blocks):
+            if left > 0 and given[index] < len(lines):
+                given[index] += 1
+                left -= 1
+    return [list(lines[:had]) for had, (lines, _) in zip(given, blocks, strict=True)]
