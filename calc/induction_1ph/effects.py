@@ -12,8 +12,9 @@ from typing import Final
 from calc.induction_1ph.plate import HAS_RUN_CAPACITOR, HAS_START_CAPACITOR, SPLIT_PHASE
 from calc.twin import Mode, Severity
 
-# design: index among the designs that the plate allows. stands: 0 starts, 1 does not start with its
-# load coupled, 2 does not start at all. helped: runs without starting torque, since somebody turned it.
+# design: index among the designs that the plate allows.
+# turns_loaded, turns_free: chance that such a motor can be found running with its load, or without.
+# stands: chance that it can be found energised and standing. starts: that a start can be read at all.
 DEFAULTS: dict[str, float] = {
     "design": 0.0,
     "live": 1.0,
@@ -38,136 +39,99 @@ DEFAULTS: dict[str, float] = {
     "rise": 1.0,  # factor on the temperature rise
     "earth_ohm": 1e9,  # path from winding to earth
     "jammed": 0.0,
+    "turns_loaded": 1.0,
+    "turns_free": 1.0,
     "stands": 0.0,
-    "trips": 0.0,  # protection opens within seconds of a start
+    "starts": 1.0,
 }
+
+
+ANY, START, RUN, RUN_ALONE, RUN_AND_START, SWITCH = (
+    "any",
+    "start capacitor",
+    "run capacitor",
+    "run capacitor alone",
+    "both capacitors",
+    "start switch",
+)
 
 
 @dataclass(frozen=True)
 class Variant:
-    """One way of an effect: attributes, weight, severities, and the parts that a design must have."""
+    """One way of an effect: attributes, weight, severities, and the part that a design must have."""
 
     name: str
     weight: float
     fixed: Mapping[str, float]
     severity: tuple[Severity, ...] = ()
-    needs_run: bool = False
-    needs_start: bool = False
-    needs_switch: bool = False
-    only_run: bool = False
+    part: str = ANY
 
     def suits(self, design: str) -> bool:
-        """Whether a design has the parts."""
+        """Whether a design has the part."""
         run, start = design in HAS_RUN_CAPACITOR, design in HAS_START_CAPACITOR
-        switch = start or design == SPLIT_PHASE
-        return not (
-            (self.needs_run and not run)
-            or (self.needs_start and not start)
-            or (self.needs_switch and not switch)
-            or (self.only_run and switch)
-        )
+        return {
+            ANY: True,
+            START: start,
+            RUN: run,
+            RUN_ALONE: run and not start,
+            RUN_AND_START: run and start,
+            SWITCH: start or design == SPLIT_PHASE,
+        }[self.part]
 
 
 def _one(attribute: str, low: float, high: float) -> tuple[Severity, ...]:
     return (Severity(attribute, low, high),)
 
 
-def _start_dead(flag: str) -> tuple[Variant, ...]:
-    """Ways of a dead start circuit: it stands, or was helped and runs."""
-    return (
-        Variant("stands", 0.72, {flag: 1.0, "stands": 2.0}),
-        Variant("stands coupled", 0.2, {flag: 1.0, "stands": 1.0}),
-        Variant("runs", 0.08, {flag: 1.0}),
-    )
+def _can(stands: float, turns_free: float, turns_loaded: float) -> dict[str, float]:
+    """Chances of the states in which such a motor can be found. Common practice."""
+    return {"stands": stands, "turns_free": turns_free, "turns_loaded": turns_loaded}
 
 
-def _only(variants: tuple[Variant, ...], part: str) -> tuple[Variant, ...]:
-    """Restrict variants to the designs that have a part: ``run``, ``start``, ``switch``, ``run alone``."""
-    return tuple(
-        replace(
-            variant,
-            needs_run=part in {"run", "run alone"},
-            needs_start=part == "start",
-            needs_switch=part == "switch",
-            only_run=part == "run alone",
-        )
-        for variant in variants
-    )
-
+# No start circuit: it stands and hums; some start without load, a few were helped and run.
+_START_DEAD = _can(0.92, 0.25, 0.07)
 
 VARIANTS: dict[str, tuple[Variant, ...]] = {
     "none": (Variant("", 1.0, {}),),
     "low_voltage": (
-        Variant("runs", 0.85, {"set_volts": 1.0}, _one("volts_lost", 0.08, 0.30)),
-        Variant("stands coupled", 0.15, {"set_volts": 1.0, "stands": 1.0}, _one("volts_lost", 0.08, 0.30)),
+        Variant("", 1.0, {"set_volts": 1.0, **_can(0.12, 0.97, 0.88)}, _one("volts_lost", 0.08, 0.30)),
     ),
     "high_voltage": (Variant("", 1.0, {"set_volts": 1.0}, _one("volts_over", 0.08, 0.20)),),
-    "no_supply": (Variant("", 1.0, {"live": 0.0, "stands": 2.0}),),
-    "start_capacitor_open": _only(_start_dead("start_open"), "start"),
-    "start_capacitor_shorted": _only(_start_dead("start_shorted"), "start"),
+    "no_supply": (Variant("", 1.0, {"live": 0.0, **_can(1.0, 0.0, 0.0)}),),
+    "start_capacitor_open": (Variant("", 1.0, {"start_open": 1.0, **_START_DEAD}, part=START),),
+    "start_capacitor_shorted": (Variant("", 1.0, {"start_shorted": 1.0, **_START_DEAD}, part=START),),
     "start_capacitor_weak": (
-        Variant("starts", 0.6, {}, _one("start_lost", 0.3, 0.9), needs_start=True),
-        Variant("stands coupled", 0.4, {"stands": 1.0}, _one("start_lost", 0.3, 0.9), needs_start=True),
+        Variant("", 1.0, _can(0.4, 0.9, 0.6), _one("start_lost", 0.3, 0.9), part=START),
     ),
     "run_capacitor_open": (
-        *_only(_start_dead("run_open"), "run alone"),
-        Variant("runs", 1.0, {"run_open": 1.0}, needs_run=True, needs_switch=True),
+        Variant("", 1.0, {"run_open": 1.0, **_START_DEAD}, part=RUN_ALONE),
+        Variant("", 1.0, {"run_open": 1.0}, part=RUN_AND_START),
     ),
     "run_capacitor_shorted": (
-        *_only(_start_dead("run_shorted"), "run alone"),
-        Variant("stands", 0.4, {"run_shorted": 1.0, "stands": 2.0}, needs_run=True, needs_switch=True),
-        Variant(
-            "stands coupled", 0.3, {"run_shorted": 1.0, "stands": 1.0}, needs_run=True, needs_switch=True
-        ),
-        Variant("trips", 0.3, {"run_shorted": 1.0, "trips": 1.0}, needs_run=True, needs_switch=True),
+        Variant("", 1.0, {"run_shorted": 1.0, **_can(0.92, 0.1, 0.05)}, part=RUN_ALONE),
+        Variant("", 1.0, {"run_shorted": 1.0, **_can(0.7, 0.3, 0.1)}, part=RUN_AND_START),
     ),
-    "run_capacitor_weak": (
-        Variant("runs", 0.8, {}, _one("run_lost", 0.1, 0.7), needs_run=True),
-        Variant("stands coupled", 0.15, {"stands": 1.0}, _one("run_lost", 0.25, 0.7), needs_run=True),
-        Variant("stands", 0.05, {"stands": 2.0}, _one("run_lost", 0.4, 0.8), needs_run=True),
-    ),
-    "start_switch_open": _only(_start_dead("switch_open"), "switch"),
-    "start_switch_closed": (
-        Variant("trips", 0.75, {"switch_closed": 1.0, "trips": 1.0}, needs_switch=True),
-        Variant("runs", 0.25, {"switch_closed": 1.0}, needs_switch=True),
-    ),
-    "open_auxiliary": _start_dead("auxiliary_open"),
-    "open_main": (
-        Variant("stands", 0.9, {"main_open": 1.0, "stands": 2.0}),
-        Variant("runs", 0.1, {"main_open": 1.0}),
-    ),
-    "main_turn_short": (
-        Variant("runs", 0.7, {}, _one("turns_shorted", 0.01, 0.25)),
-        Variant("trips", 0.2, {"trips": 1.0}, _one("turns_shorted", 0.03, 0.25)),
-        Variant("stands coupled", 0.1, {"stands": 1.0}, _one("turns_shorted", 0.03, 0.25)),
-    ),
+    "run_capacitor_weak": (Variant("", 1.0, _can(0.2, 0.95, 0.8), _one("run_lost", 0.1, 0.7), part=RUN),),
+    "start_switch_open": (Variant("", 1.0, {"switch_open": 1.0, **_START_DEAD}, part=SWITCH),),
+    "start_switch_closed": (Variant("", 1.0, {"switch_closed": 1.0, **_can(0.0, 0.25, 0.2)}, part=SWITCH),),
+    "open_auxiliary": (Variant("", 1.0, {"auxiliary_open": 1.0, **_START_DEAD}),),
+    "open_main": (Variant("", 1.0, {"main_open": 1.0, **_can(0.9, 0.1, 0.05)}),),
+    "main_turn_short": (Variant("", 1.0, _can(0.12, 0.85, 0.75), _one("turns_shorted", 0.01, 0.25)),),
     "other_connection": (
         Variant("auxiliary reversed", 0.7, {}),
-        Variant("wired for the higher voltage", 0.15, {"winding_ohm": 4.0}),
-        Variant("wired for the higher voltage, stands", 0.05, {"winding_ohm": 4.0, "stands": 1.0}),
-        Variant("wired for the lower voltage", 0.05, {"winding_ohm": 0.25}),
-        Variant("wired for the lower voltage, trips", 0.05, {"winding_ohm": 0.25, "trips": 1.0}),
+        Variant("wired for the higher voltage", 0.2, {"winding_ohm": 4.0, **_can(0.3, 0.9, 0.7)}),
+        Variant("wired for the lower voltage", 0.1, {"winding_ohm": 0.25, **_can(0.1, 0.5, 0.4)}),
     ),
-    "excess_load": (
-        Variant("runs", 0.85, {}, _one("load_set", 1.15, 2.0)),
-        Variant("stands coupled", 0.15, {"stands": 1.0}, _one("load_set", 1.15, 2.5)),
-    ),
+    "excess_load": (Variant("", 1.0, _can(0.12, 1.0, 0.88), _one("load_set", 1.15, 2.0)),),
     "light_load": (Variant("", 1.0, {}, _one("load_set", 0.05, 0.3)),),
-    "stall": (
-        Variant("motor", 0.55, {"jammed": 1.0, "stands": 2.0}),
-        Variant("load", 0.45, {"jammed": 1.0, "stands": 1.0}),
-    ),
+    "stall": (Variant("", 1.0, {"jammed": 1.0, **_can(1.0, 0.3, 0.0)}),),
     "hot": (Variant("", 1.0, {}, _one("rise", 1.3, 3.0)),),
-    "friction": (
-        Variant("in the motor", 0.6, {}, _one("friction", 0.005, 0.1)),
-        Variant("in the load", 0.4, {"load_drags": 1.0}, _one("friction", 0.005, 0.1)),
-    ),
-    "earth_path": (
-        Variant("runs", 0.5, {}, _one("earth_ohm", 1.0, 3e4)),
-        Variant("trips", 0.5, {"trips": 2.0}, _one("earth_ohm", 1.0, 3e4)),
-    ),
+    "friction": (Variant("in the motor", 0.6, {}, _one("friction", 0.005, 0.1)),),
+    "earth_path": (Variant("", 1.0, {"starts": 0.5, **_can(0.0, 0.5, 0.5)}, _one("earth_ohm", 1.0, 3e4)),),
 }
-
+# Heavy drag may as well be in the load, where it is gone when uncoupled.
+_DRAG_IN_LOAD = Variant("in the load", 0.4, {"load_drags": 1.0}, _one("friction", 0.1, 1.0))
+_HEAVY = 0.2
 
 _NOT_FITTED: Final = 1e-6
 """Weight of an effect of a part that no design of this motor has."""
@@ -204,7 +168,7 @@ def enumerate_modes(
     modes: list[Mode] = []
     for index in picked:
         design, share = designs[index], shares[index]
-        suited = [variant for variant in VARIANTS[effect] if variant.suits(design)]
+        suited = [variant for variant in _variants(effect, severity) if variant.suits(design)]
         total = sum(variant.weight for variant in suited)
         for variant in suited:
             name = variant.name if len(picked) == 1 else f"{variant.name} ({design})".strip()
@@ -221,6 +185,11 @@ def enumerate_modes(
         return tuple(modes)
     likeliest = float(max(picked, key=lambda index: shares[index]))
     return (Mode(effect=effect, variant="not fitted", weight=_NOT_FITTED, fixed={"design": likeliest}),)
+
+
+def _variants(effect: str, severity: tuple[float, float] | None) -> tuple[Variant, ...]:
+    heavy = effect == "friction" and severity is not None and severity[1] > _HEAVY
+    return (*VARIANTS[effect], _DRAG_IN_LOAD) if heavy else VARIANTS[effect]
 
 
 def _ranged(usual: tuple[Severity, ...], asked: tuple[float, float] | None) -> tuple[Severity, ...]:

@@ -107,24 +107,20 @@ class SinglePhaseTwin:
         return np.zeros((len(z), 0))
 
     def possible(self, z: Floats, attributes: Attributes) -> Mapping[str, Floats]:
-        """For each state, whether such a motor can be in it: shape (rows,), 1.0 or 0.0."""
-        stands, trips, live = attributes["stands"], attributes["trips"], attributes["live"]
-        site = self.site(z, attributes)
-        turns = (trips < 0.5) & (live > 0.5)
-        free = turns & (stands < 1.5)
-        carries = turns & (stands < 0.5)
-        carries &= ~turning(site, attributes, "loaded").running.stalled
+        """For each state, the chance that such a motor can be in it: shape (rows,), 0.0 to 1.0."""
+        pulled_out = turning(self.site(z, attributes), attributes, "loaded").running.stalled
         always = np.ones(len(z))
-        flags = {
-            "starting": trips < 1.5,
-            "stalled": (stands > 0.5) & (trips < 1.5),
-            "no_load": free,
-            "light_load": turns & (stands < 0.5),
-            "loaded": carries,
-            "coasting": free,
+        return {
+            "isolated": always,
+            "standby": always,
+            "spun": 0.0 * always,
+            "starting": attributes["starts"],
+            "stalled": np.where(pulled_out, np.maximum(attributes["stands"], 0.5), attributes["stands"]),
+            "no_load": attributes["turns_free"],
+            "light_load": attributes["turns_loaded"],
+            "loaded": np.where(pulled_out, 0.0, attributes["turns_loaded"]),
+            "coasting": np.maximum(attributes["turns_free"], attributes["turns_loaded"]),
         }
-        found = {state: flag.astype(np.float64) for state, flag in flags.items()}
-        return {"isolated": always, "standby": always, "spun": 0.0 * always, **found}
 
     def transform(self, measure: str) -> Transform:
         """How a measure enters the comparison on this machine."""

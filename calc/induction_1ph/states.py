@@ -107,8 +107,7 @@ def supply(site: Site, attributes: Attributes) -> Floats:
 
 def at_standstill(site: Site, attributes: Attributes) -> Standing:
     """Locked rotor with the start circuit as it is; a motor that starts is taken to have run before."""
-    was_running = (attributes["stands"] < 0.5) & (attributes["live"] > 0.5)
-    warm = np.where(was_running, priors.RESTART_HEAT * site.rise_k, 5.0)
+    warm = np.maximum((1.0 - attributes["stands"]) * priors.RESTART_HEAT * site.rise_k, 5.0)
     setting = settle(site, attributes, warm_c=site.ambient_c + warm, at_start=True)
     setting = _locked(site, setting)
     slip = np.ones_like(site.load)
@@ -142,8 +141,7 @@ def turning(site: Site, attributes: Attributes, state: str) -> Standing:
     heat = priors.IDLE_HEAT + (1.0 - priors.IDLE_HEAT) * np.minimum(share, 2.0) ** 2
     warm = site.ambient_c + site.rise_k * attributes["rise"] * heat
     setting = settle(site, attributes, warm_c=np.minimum(warm, 220.0), at_start=False)
-    limit = 1.5 if state == "no_load" else 0.5
-    stands = (attributes["stands"] > limit) | (attributes["live"] < 0.5)
+    stands = (attributes["live"] < 0.5) | (attributes["jammed"] * (state != "no_load") > 0.5)
     running = run_loaded(site.machine, setting, asked, stands)
     found = _standing(site, attributes, running, False)
     if not running.stalled.any():
