@@ -126,7 +126,7 @@ def read_base(machine: Machine) -> Base:
     typical = typical_efficiency(power_w=power, poles=poles, frequency_hz=frequency)
     eta = _share(efficiency) if efficiency else typical
     pf = plate.number("power_factor")
-    current_spread = 0.022
+    current_spread = 0.018
     if plate.current is None:
         pf_guess = pf if pf else typical_power_factor(power_w=power, poles=poles)
         current = power / (math.sqrt(3.0) * voltage * eta * pf_guess)
@@ -262,14 +262,14 @@ def circuit(base: Base, z: Floats) -> Circuit:
     p_in = p_out + losses
     current = np.maximum(current, p_in / 0.955)
     slip = np.minimum(base.slip * np.exp(base.slip_spread * column["slip"]), 0.35)
-    friction = losses * 0.11 * np.exp(0.45 * column["friction_share"])
+    friction = losses * 0.11 * np.exp(0.30 * column["friction_share"])
     stray = losses * 0.09
     p_gap = (p_out + friction + stray) / (1.0 - slip)
     # What is left for stator copper and core; a plate whose slip eats all the losses keeps a tenth of them.
     rest = losses - slip * p_gap - friction - stray
     rest = 0.5 * (rest + np.sqrt(rest * rest + (0.25 * losses) ** 2))
-    core_share = 1.0 / (1.0 + np.exp(0.35 - 0.6 * column["core_share"]))
-    r1 = rest * (1.0 - core_share) / current**2 * np.exp(0.12 * column["resistance"])
+    core_share = 1.0 / (1.0 + np.exp(0.35 - 0.42 * column["core_share"]))
+    r1 = rest * (1.0 - core_share) / current**2 * np.exp(0.06 * column["resistance"])
     core = rest * core_share
     x_locked, r2_locked, x_run = _leakage(base, column, slip, p_gap, current, r1)
     x1 = 0.5 * x_run

@@ -50,7 +50,7 @@ class StateResult:
 def supply(base: Base, z: Floats, rows: Mapping[str, Floats], nominal: float, inverter: bool) -> Supply:
     """Build the supply of each row: level, unbalance, frequency, regulation."""
     level = nominal * (1.0 + rows["level"] + rows["level_sd"] * z[:, INDEX["level"]])
-    sway = 0.0012 * z[:, INDEX["frequency"]]
+    sway = 0.0008 * z[:, INDEX["frequency"]]
     frequency = 1.0 + rows["frequency_change"] + sway
     if inverter:
         frequency = np.clip(0.85 + 0.22 * z[:, INDEX["frequency"]], 0.15, 2.0)

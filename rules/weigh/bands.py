@@ -25,7 +25,7 @@ from rules.weigh.soft import shape, spread_of
 
 COVERAGE = 0.9
 _SIGMAS = 1.645  # of a normal, for 90 %
-_TRUST_BELOW = 0.08  # odds of healthy under which the machine's own readings are not used
+_TRUST_BELOW = 0.08  # odds of a sound circuit under which the machine's own readings are not used
 _SUPPLY = ("supply_voltage", "supply_frequency", "ambient_temperature", "armature_voltage", "field_voltage")
 
 # Conditions for which an unread reading is expected.
@@ -86,8 +86,9 @@ def _basis(twin: Twin, posterior: Posterior | None) -> tuple[Frame, Fit]:
     if posterior is None:
         empty = frame([])
         return empty, fit_modes(twin, healthy, empty)
-    if posterior.odds.get("healthy", 0.0) >= _TRUST_BELOW:
-        place = next(h.place for h in posterior.hypotheses if h.fault == "healthy")
+    place = next(h.place for h in posterior.hypotheses if h.fault == "healthy")
+    sound = sum(p for h, p in zip(posterior.hypotheses, posterior.share(), strict=True) if h.place == place)
+    if sound >= _TRUST_BELOW:
         fit, one = posterior.fit, slice(place, place + 1)
         return posterior.data, Fit(
             z=fit.z[one],

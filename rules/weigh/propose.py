@@ -104,7 +104,7 @@ def _readings(
             continue
         for state, how in rule.states.items():
             key = f"{rule.id}@{state}"
-            chance = state_chance(sheet, state, chances)
+            chance = state_chance(sheet, state, chances, s)
             if key in taken or not how.proposed or gate.forbids(state) or chance < s.least_chance:
                 continue
             candidates.append((rule, state, chance))
@@ -117,12 +117,13 @@ def _readings(
     for (rule, state, chance), ask in zip(candidates, asks, strict=True):
         gain = _gain(posterior, knowledge, lead, looks.get(ask.key), rule, state, meters, s)
         how = rule.states[state]
-        score = chance * gain / ((how.minutes + s.overhead_minutes) * _hazard(how.hazards, s))
+        minutes = how.minutes + arranging(sheet, state, s)
+        score = chance * gain / ((minutes + s.overhead_minutes) * _hazard(how.hazards, s))
         item = NextItem(
             measure=rule.id,
             state=state,
             gain_bits=round(gain / math.log(2.0), 4),
-            minutes=how.minutes,
+            minutes=minutes,
             leads=how.leads,
             hazards=how.hazards,
             why=wording.why(posterior, lead.faults, lead.share, lead.label),
@@ -132,11 +133,20 @@ def _readings(
     return found
 
 
-def state_chance(sheet: CaseSheet, state: str, chances: Mapping[str, float]) -> float:
+def state_chance(
+    sheet: CaseSheet, state: str, chances: Mapping[str, float], s: ProposalSettings
+) -> float:
     """Chance that the machine can be in a state: what was recorded in it shows that it can."""
     if any(r.state == state for r in sheet.readings):
         return 1.0
-    return chances.get(state, 0.0)
+    return chances.get(state, 0.0) * s.access.get(state, 1.0)
+
+
+def arranging(sheet: CaseSheet, state: str, s: ProposalSettings) -> float:
+    """Minutes to bring the machine into a state; none where something was read in it already."""
+    if any(r.state == state for r in sheet.readings):
+        return 0.0
+    return s.arrange_minutes.get(state, 0.0)
 
 
 def _suits(rule: ReadingRule, sheet: CaseSheet, kind: str) -> bool:
@@ -251,7 +261,7 @@ def _observations(
             continue
         if not ("any" in known.kinds or sheet.machine.kind in known.kinds):
             continue
-        chance = _can_see(known, sheet, gate, lead)
+        chance = _can_see(known, sheet, gate, lead, s)
         if chance < s.least_chance:
             continue
         gain = _binary_gain(known, [by_id[h.fault] for h in lead.hypotheses], lead, s)
@@ -268,12 +278,16 @@ def _observations(
     return found
 
 
-def _can_see(known: Observation, sheet: CaseSheet, gate: GateState, lead: Leading) -> float:
+def _can_see(
+    known: Observation, sheet: CaseSheet, gate: GateState, lead: Leading, s: ProposalSettings
+) -> float:
     """Chance that the machine is in a state in which this can be seen, and is allowed to be."""
     if "any" in known.states or "isolated" in known.states:
         return 1.0
+    none = np.zeros(len(lead.share))
+    odds = {state: float(lead.share @ lead.possible.get(state, none)) for state in known.states}
     chances = [
-        state_chance(sheet, state, {state: float(lead.share @ lead.possible.get(state, np.zeros(len(lead.share))))})
+        state_chance(sheet, state, odds, s)
         for state in known.states
         if not gate.forbids(state)
     ]

@@ -26,6 +26,8 @@ class ProposalSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown
     least_bits: float
     least_chance: float
     part_weight: float
+    access: dict[str, float]
+    arrange_minutes: dict[str, float]
 
 
 class SlipSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
