@@ -23,11 +23,11 @@ from casebook.entry import Entry, canonical_json
 from casebook.errors import BadEntry, CasebookError, NewerCasebook, NotACasebook
 from casebook.opening import translated
 from casebook.rows import entry_of_row, moment_of, stamp
+from casebook.walk import Gap, walk
 from casebook.wire import entry_of_line, read_lines
 
 _MAGIC: Final = b"SQLite format 3\0"
 _MAX_CELL: Final = 4 * MAX_BODY
-_COLUMNS: Final = "id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body"
 _ROW: Final = tuple[str, str, str, str, int, str, int, str | None, str]
 
 
@@ -55,9 +55,16 @@ def count_items(path: Path) -> int:
     """Return about how many entries a file holds, for a progress bar."""
     if kind_of_file(path) == "casebook":
         with translated(path), closing(open_foreign(path)) as connection:
-            return int(connection.execute("SELECT count(*) FROM entry").fetchone()[0])
+            return _count(connection)
     with path.open("rb") as file:
         return sum(piece.count(b"\n") for piece in iter(lambda: file.read(1 << 20), b""))
+
+
+def _count(connection: sqlite3.Connection) -> int:
+    try:
+        return int(connection.execute("SELECT count(*) FROM entry").fetchone()[0])
+    except sqlite3.DatabaseError:
+        return 0  # damaged: what can be read is read, without a bar
 
 
 def read_items(path: Path) -> Iterator[Item]:
@@ -91,17 +98,14 @@ def _casebook_items(path: Path) -> Iterator[Item]:
 
 def _items_of(path: Path) -> Iterator[Item]:
     with translated(path), closing(open_foreign(path)) as connection:
-        last: object = 0
-        try:
-            for row in connection.execute(f"SELECT {_COLUMNS}, seq FROM entry ORDER BY seq"):
-                last = row[-1]
-                yield item_of_row(row)
-        except sqlite3.DatabaseError as error:
-            yield Item(f"all after entry {last!s:.20}", None, f"the file is damaged there ({error})")
+        for found in walk(connection):
+            if isinstance(found, Gap):
+                yield Item(found.where, None, f"cannot be read ({found.why})")
+            else:
+                yield _item_of_row(found)
 
 
-def item_of_row(row: tuple[Any, ...]) -> Item:
-    """Return the entry of a foreign row whose last column is its number, or why it is left out."""
+def _item_of_row(row: tuple[Any, ...]) -> Item:
     where = f"entry {row[-1]!s:.20}"
     try:
         return Item(where, _entry_of_foreign_row(row[:-1]))

@@ -57,9 +57,10 @@ class _Fit(msgspec.Struct, frozen=True, kw_only=True):
 def trend_of(
     series: Series, *, now: datetime, limit: float | None = None, limit_text: str = "the limit"
 ) -> Trend:
-    """Return the trend of a series up to ``now``; ``limit`` is in the series' unit.
+    """Return the trend of a series up to ``now``.
 
-    The limit holds at the series' anchor temperature. Readings beyond the meter's range, open circuits and values that were not read are left out.
+    ``limit`` is in the series' unit, at its anchor temperature. Readings beyond the meter's range,
+    open circuits and values that were not read are left out.
     """
     points = [point for point in series.points if _value(series, point) is not None]
     days = (points[-1].time_utc - points[0].time_utc).total_seconds() / 86400 if points else 0.0
@@ -70,9 +71,10 @@ def trend_of(
     low, high = fit.slope - fit.width * sigma, fit.slope + fit.width * sigma
     months = _months_to_limit(fit, limit) if limit is not None and limit > 0 else None
     is_clear = low > 0 or high < 0
+    rate = _rate_words(fit, (low, high), f"{len(points)} readings over {_span(days)}")
+    until = _limit_words(months, limit_text) if is_clear else ""
     return Trend(
-        words=f"{_name(series)}{_rate_words(fit, (low, high), f'{len(points)} readings over {_span(days)}')}"
-        f"{_limit_words(months) if is_clear else ''}".replace("LIMIT", limit_text),
+        words=f"{_name(series)}{rate}{until}",
         readings=len(points),
         per_year=fit.slope,
         per_year_low=low,
@@ -166,15 +168,14 @@ def _amount(per_year: float, *, in_months: bool) -> str:
     return f"{100 * abs(math.expm1(per_year)):.1f} %"
 
 
-def _limit_words(months: tuple[float, float, float] | None) -> str:
-    """Say when the limit is reached; the word LIMIT stands for its name."""
+def _limit_words(months: tuple[float, float, float] | None, limit_text: str) -> str:
     if months is None or months[1] == math.inf:
         return ""
     low, mid, high = months
     if mid == 0:
-        return "; has reached LIMIT"
+        return f"; has reached {limit_text}"
     until = "or later than can be told" if high > _FAR_MONTHS else f"to {_months(high)}"
-    return f"; reaches LIMIT in about {_months(mid)} ({_months(low)} {until})"
+    return f"; reaches {limit_text} in about {_months(mid)} ({_months(low)} {until})"
 
 
 def _months(months: float) -> str:
