@@ -14,6 +14,7 @@ from rules.derived import Derived, derived
 from rules.facts import facts_of
 from rules.knowledge import Knowledge, Limit, LimitBand
 from rules.limit_bands import band_of, concerns
+from rules.trips import trip_findings
 
 WEIGHT: Final = {"stop": 0, "watch": 1, "remark": 2, "normal": 3}
 
@@ -30,9 +31,10 @@ def findings(sheet: CaseSheet, knowledge: Knowledge) -> tuple[Finding, ...]:
     """Return the published limits that the readings of a sheet cross, the gravest first.
 
     One finding per limit: the worst of its readings. Limits that lack an input are silent.
+    Last comes what the trip arithmetic says.
     """
     ordered = sorted(crossings(sheet, knowledge), key=lambda one: WEIGHT[one.band.verdict])
-    return tuple(_finding(one) for one in ordered)
+    return (*(_finding(one) for one in ordered), *trip_findings(sheet))
 
 
 def crossings(sheet: CaseSheet, knowledge: Knowledge) -> Iterator[Crossing]:
