@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from calc.quantities import STATES
 from tui.columns import columns, paragraph
 from tui.words import fault_name, heading, key_words, measure_name, number, percent, plain, question
 
@@ -125,23 +126,22 @@ def item_name(item: NextItem, knowledge: Knowledge) -> str:
     return question(item.observation, knowledge) if item.observation else key_words(item.key, knowledge)
 
 
-def band_lines(bands: Iterable[Band]) -> list[str]:
-    """Return bands as a table."""
-    rows = [
-        [
-            measure_name(band.measure),
-            plain(band.state),
-            *(number(value) for value in (band.low, band.mid, band.high)),
-            band.unit,
-            condition(band),
-        ]
-        for band in bands
-    ]
-    return (
-        columns(rows, head=("reading", "state", "low", "middle", "high", "unit", "at"), right=(2, 3, 4))
-        if rows
-        else []
-    )
+def band_lines(bands: Sequence[Band]) -> list[str]:
+    """Return bands as one table per state, in the order of a visit: at rest, starting, running."""
+    lines: list[str] = []
+    for state, meaning in STATES.items():
+        rows = [_band_row(band) for band in bands if band.state == state]
+        head = ("", "low", "middle", "high", "unit", "at")
+        lines += titled(
+            f"{plain(state)}: {meaning}", columns(rows, head=head, right=(1, 2, 3)) if rows else []
+        )
+    return lines
+
+
+def _band_row(band: Band) -> list[str]:
+    """Return one band as cells."""
+    numbers = [number(value) for value in (band.low, band.mid, band.high)]
+    return [measure_name(band.measure), *numbers, band.unit, condition(band)]
 
 
 def condition(band: Band) -> str:

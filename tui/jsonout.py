@@ -61,8 +61,13 @@ def _band(band: Band) -> Json:
 
 def _fault(fault: FaultOdds) -> Json:
     """Return one fault with what speaks for and against it; keys that are empty are left out."""
-    plain = {"id": fault.id, "probability": fault.probability, "name": fault.name, "part": fault.part}
-    more = {
+    plain: dict[str, Json] = {
+        "id": fault.id,
+        "probability": fault.probability,
+        "name": fault.name,
+        "part": fault.part,
+    }
+    more: dict[str, Json] = {
         "within": [_fault(inner) for inner in fault.within],
         "reasons": [msgspec.to_builtins(reason) for reason in fault.reasons],
     }

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from calc.quantities import MEASURES
 from calc.units import find_unit
-from tui.answer_text import NO_MODEL, NOTHING_FORBIDS, condition
+from tui.answer_text import LEAST_SHOWN, NO_MODEL, NOTHING_FORBIDS, condition
 from tui.compose import band_text
 from tui.words import (
     complaint_name,
@@ -34,6 +34,11 @@ DEFERRAL = (
     "site rule; limits are quoted with their source, the edition at hand decides. Work on and near "
     "electrical equipment, and the decision to energise, belong to qualified persons under licensed practice."
 )
+CONFIRMED = {
+    "teardown": "confirmed by teardown",
+    "repair": "confirmed by repair",
+    "believed": "believed, not confirmed",
+}
 CONTEXT = (
     "temperature",
     "test_voltage",
@@ -89,8 +94,8 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
     """Return the printed sheet of a case."""
     blocks = [
         Block("Energising", sentences=tuple(_gate(diagnosis))),
-        Block("Limits crossed", ("verdict", "finding", "source"), tuple(_findings(diagnosis))),
-        Block("Read", ("reading", "state", "read", "expected", "noted"), tuple(_readings(case, diagnosis))),
+        Block("Limits crossed", sentences=tuple(_findings(diagnosis))),
+        Block("Read", ("reading", "read", "expected", "noted"), tuple(_readings(case, diagnosis))),
         Block("Seen", sentences=tuple(_seen(case, knowledge))),
         Block("Likely faults", ("odds", "fault", "part"), tuple(_faults(diagnosis, knowledge))),
         Block("Why", sentences=tuple(_reasons(diagnosis))),
@@ -114,11 +119,11 @@ def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
     closed = case.closed.what if case.closed else None
     suspects = [fault_name(fault.id, knowledge) for fault in diagnosis.faults[:2] if fault.id != "healthy"]
     found = fault_name(closed.found, knowledge) if closed else ", ".join(suspects)
-    how = f" ({closed.confirmed})" if closed else " (suspected)"
+    how = f" ({CONFIRMED[closed.confirmed]})" if closed else " (suspected)"
     retest = closed.retest if closed else ()
     blocks = [
         Block("Fault", sentences=(found + how,) if found else ()),
-        Block("Readings", ("reading", "state", "read", "noted"), tuple(_tag_rows(case))),
+        Block("Readings", ("reading", "read", "noted"), tuple(_tag_rows(case))),
         Block("Seen", sentences=tuple(_seen(case, knowledge))),
         Block("Please return with", sentences=tuple(_retest(diagnosis, retest, knowledge))),
     ]
@@ -167,9 +172,9 @@ def _gate(diagnosis: Diagnosis) -> Iterable[str]:
         yield marks[line.status] + line.needs + (f" ({line.because})" if line.because else "")
 
 
-def _findings(diagnosis: Diagnosis) -> Iterable[Row]:
+def _findings(diagnosis: Diagnosis) -> Iterable[str]:
     for finding in diagnosis.findings:
-        yield Row((finding.verdict, finding.says, finding.source))
+        yield f"{finding.verdict}: {finding.says}. Source: {finding.source}"
 
 
 def _readings(case: Case, diagnosis: Diagnosis) -> Iterable[Row]:
@@ -177,26 +182,19 @@ def _readings(case: Case, diagnosis: Diagnosis) -> Iterable[Row]:
     for logged in case.readings:
         reading, band = logged.what.reading, bands.get(logged.what.reading.key)
         shown = logged.what.expected or (" ".join((band_text(band), condition(band))).strip() if band else "")
-        cells = (
-            measure_name(reading.measure),
-            plain(reading.state),
-            reading_text(reading),
-            shown,
-            context_text(reading),
-        )
+        cells = (reading_name(reading), reading_text(reading), shown, context_text(reading))
         yield Row(cells, _scale(reading, band))
 
 
 def _tag_rows(case: Case) -> Iterable[Row]:
     for logged in case.readings:
         reading = logged.what.reading
-        cells = (
-            measure_name(reading.measure),
-            plain(reading.state),
-            reading_text(reading),
-            context_text(reading),
-        )
-        yield Row(cells)
+        yield Row((reading_name(reading), reading_text(reading), context_text(reading)))
+
+
+def reading_name(reading: Reading) -> str:
+    """Return measure and state in words."""
+    return f"{measure_name(reading.measure)}, {plain(reading.state)}"
 
 
 def context_text(reading: Reading) -> str:
@@ -228,6 +226,8 @@ def _seen(case: Case, knowledge: Knowledge) -> Iterable[str]:
 
 def _faults(diagnosis: Diagnosis, knowledge: Knowledge) -> Iterable[Row]:
     for fault in diagnosis.faults[:5]:
+        if fault.probability < LEAST_SHOWN:
+            return
         yield Row((percent(fault.probability), fault.name or fault_name(fault.id, knowledge), fault.part))
 
 
@@ -274,10 +274,7 @@ def _closing(case: Case, knowledge: Knowledge) -> Iterable[str]:
             yield f"concluded: {fault_name(case.conclusion.what.fault, knowledge)}"
         return
     closed = case.closed.what
-    how = {"teardown": "confirmed by teardown", "repair": "confirmed by repair"}.get(
-        closed.confirmed, "believed, not confirmed"
-    )
-    yield f"found: {fault_name(closed.found, knowledge)} ({how})"
+    yield f"found: {fault_name(closed.found, knowledge)} ({CONFIRMED[closed.confirmed]})"
     if closed.done:
         yield f"done: {closed.done}"
     if closed.parts:

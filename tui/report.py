@@ -59,11 +59,14 @@ def _block_text(block: Block) -> list[str]:
     """Return a block as lines: a table where it fits, else each row as a paragraph."""
     table = columns([row.cells for row in block.rows], head=block.head) if block.rows else []
     if any(len(line) > WIDTH for line in table):
-        table = []
-        for row in block.rows:
-            first, *others = row.cells
-            table += paragraph("; ".join([first, *(cell for cell in others if cell)]), rest="    ")
+        table = [line for row in block.rows for line in _stacked(block.head, row.cells)]
     return table + [line for sentence in block.sentences for line in paragraph(sentence, rest="    ")]
+
+
+def _stacked(head: tuple[str, ...], cells: tuple[str, ...]) -> list[str]:
+    """Return a row that is too wide for a line: the first cell, and the others below it with their heads."""
+    said = "; ".join(f"{name} {cell}" for name, cell in zip(head[1:], cells[1:], strict=True) if cell)
+    return [*paragraph(cells[0]), *paragraph(said, first="    ")]
 
 
 def _block_html(block: Block) -> str:

@@ -18,8 +18,8 @@ if TYPE_CHECKING:
 
     from casebook.store import CaseRow
 
-HEAD = ("case", "last entry", "machine", "complaint", "status", "fault")
-ROOM = (9, 10, 17, 16, 6, 12)  # eighty columns with the gaps between
+HEAD = ("case", "last entry", "machine", "complaint", "fault; ? still open")
+ROOM = (9, 10, 18, 16, 19)  # eighty columns with the gaps between
 
 
 def run(arguments: Namespace) -> int:
@@ -43,15 +43,12 @@ def run(arguments: Namespace) -> int:
 
 def _cells(row: CaseRow) -> list[str]:
     """Return one case as cells that fit into eighty columns."""
-    fault = row.found or (f"{row.suspect}?" if row.suspect else "")
+    fault = row.found if row.status == "closed" else f"{row.suspect}?"
     texts = (
         row.number,
         f"{row.last_utc.astimezone():%Y-%m-%d}",
         row.tag or "-",
-        row.complaint,
-        row.status,
-        fault,
+        plain(row.complaint),
+        plain(fault),
     )
-    return [
-        harmless(plain(text) if place > 2 else text, limit=ROOM[place]) for place, text in enumerate(texts)
-    ]
+    return [harmless(text, limit=room) for text, room in zip(texts, ROOM, strict=True)]
