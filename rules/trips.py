@@ -13,7 +13,7 @@ from typing import Final
 
 import msgspec
 
-from calc.overload_relay import REFERENCE_MULTIPLE, trip_time_s
+from calc.overload_relay import trip_time_s
 from calc.safe_yaml import read_document
 from calc.sheet import CaseSheet, Reading
 from rules.answer import Finding
@@ -103,17 +103,19 @@ def window_s(trip: Trip, table: TripTable) -> tuple[float, float]:
     early_s = trip_time_s(
         multiple=trip.multiple, threshold=table.holds_at, time_at_reference_s=quick_s, preload=preload
     )
-    return early_s, max(_latest_s(trip.multiple, one, table) for one in classes)
+    return early_s, max(_latest_s(trip, one, table) for one in classes)
 
 
-def _latest_s(multiple: float, named: TripClass, table: TripTable) -> float:
+def _latest_s(trip: Trip, named: TripClass, table: TripTable) -> float:
     """Return the longest time that the standard leaves a relay of one class."""
-    if multiple < table.trips_at:
+    if trip.multiple < table.trips_at:
         return math.inf
-    if multiple < WARM_MULTIPLE:
+    if trip.multiple < WARM_MULTIPLE:
         return table.within_s
-    curve_s = trip_time_s(multiple=multiple, threshold=table.trips_at, time_at_reference_s=named.cold_to_s)
-    return curve_s if multiple >= REFERENCE_MULTIPLE else max(curve_s, named.warm_to_s)
+    cold_s = trip_time_s(
+        multiple=trip.multiple, threshold=table.trips_at, time_at_reference_s=named.cold_to_s
+    )
+    return cold_s if trip.from_cold else min(cold_s, named.warm_to_s)
 
 
 def _trip(sheet: CaseSheet) -> Trip | None:
@@ -181,4 +183,6 @@ def _finding(name: str, verdict: str, trip: Trip, said: str) -> Finding:
 
 
 def _time(seconds: float) -> str:
-    return f"{seconds:.2g} s" if seconds < 99.5 else f"{seconds / 60.0:.2g} min"
+    if seconds < 99.5:
+        return f"{seconds:.2g} s"
+    return f"{seconds / 60.0:.2g} min" if seconds < 595.0 else f"{seconds / 60.0:.0f} min"
