@@ -66,7 +66,7 @@ def finding_lines(findings: Sequence[Finding]) -> list[str]:
     """Return each published limit that is crossed, with its source."""
     shown: list[str] = []
     for finding in findings[:FINDINGS_SHOWN]:
-        shown += paragraph(f"{finding.says} ({finding.source})", first=f"  {finding.verdict:<6}  ")
+        shown += paragraph(f"{finding.says}; source: {finding.source}", first=f"  {finding.verdict:<6}  ")
     return shown + _more(findings, FINDINGS_SHOWN)
 
 

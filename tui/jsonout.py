@@ -71,14 +71,14 @@ def _fault(fault: FaultOdds) -> Json:
         "within": [_fault(inner) for inner in fault.within],
         "reasons": [msgspec.to_builtins(reason) for reason in fault.reasons],
     }
-    return {key: value for key, value in (plain | more).items() if value not in ("", [])}
+    return {key: value for key, value in (plain | more).items() if value not in ("", [], ())}
 
 
 def _next(item: NextItem) -> Json:
     """Return one item of what to read next, with the measure and state, or the observation."""
     plain: dict[str, Any] = msgspec.to_builtins(item)
     unused = ("measure", "state") if item.observation else ("observation",)
-    return {key: value for key, value in plain.items() if key not in unused and value not in ("", [])}
+    return {key: value for key, value in plain.items() if key not in unused and value not in ("", [], ())}
 
 
 def _finite(value: Json) -> Json:
