@@ -125,19 +125,24 @@ def solve_currents(windings: Windings, rotor: Rotor, slip: Floats) -> Currents:
     """
     forward, forward_siemens = half_field_ohm(rotor, slip, backward=False)
     backward, backward_siemens = half_field_ohm(rotor, slip, backward=True)
-    divider = 1.0 / (1.0 + windings.main_ohm * windings.shunt_siemens)
+    shorted = bool(windings.shunt_siemens.any())
+    source, series = windings.main_volt, windings.main_ohm
+    if shorted:
+        divider = 1.0 / (1.0 + series * windings.shunt_siemens)
+        source, series = source * divider, series * divider
     ratio = windings.turns_ratio
-    own = windings.main_ohm * divider + forward + backward
-    other = windings.auxiliary_ohm + ratio**2 * (forward + backward)
+    both = forward + backward
+    own = series + both
+    other = windings.auxiliary_ohm + ratio**2 * both
     mutual = 1j * ratio * (forward - backward)
-    source = windings.main_volt * divider
     determinant = own * other + mutual * mutual
     field_current = (other * source + mutual * windings.auxiliary_volt) / determinant
     auxiliary = (own * windings.auxiliary_volt - mutual * source) / determinant
-    ahead = (field_current - 1j * ratio * auxiliary) * forward
-    against = (field_current + 1j * ratio * auxiliary) * backward
+    across = 1j * ratio * auxiliary
+    ahead = (field_current - across) * forward
+    against = (field_current + across) * backward
     torque = 2.0 * (square(ahead) * forward_siemens.real - square(against) * backward_siemens.real)
-    main = field_current + windings.shunt_siemens * (ahead + against)
+    main = field_current + windings.shunt_siemens * (ahead + against) if shorted else field_current
     return Currents(main=main, auxiliary=auxiliary, forward_emf=ahead, backward_emf=against, torque_w=torque)
 
 

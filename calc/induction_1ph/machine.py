@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, fields, replace
+from typing import TypeVar
 
 import numpy as np
 
@@ -38,10 +39,6 @@ class Motor:
     slip: Floats
     run_f: Floats
 
-    def column(self) -> Motor:
-        """Return the same with shape (rows, 1), to be spread over slips."""
-        return replace(self, **{f.name: getattr(self, f.name)[:, None] for f in fields(self)})
-
 
 @dataclass(frozen=True)
 class Setting:
@@ -60,10 +57,6 @@ class Setting:
     leakage: Floats
     rotor_rise: Floats
     winding_ohm: Floats
-
-    def column(self) -> Setting:
-        """Return the same with shape (rows, 1), to be spread over slips."""
-        return replace(self, **{f.name: getattr(self, f.name)[:, None] for f in fields(self)})
 
 
 def motor(plate: Plate, values: Mapping[str, Floats], *, base_current_a: Floats) -> Motor:
@@ -123,23 +116,85 @@ def in_parallel(one: Phasors, other: Phasors) -> Phasors:
     return np.asarray(one * other / np.where(total == 0.0, 1.0, total))
 
 
-def saturated_ohm(machine: Motor, emf_v: Floats) -> Floats:
-    """Magnetising reactance at an induced voltage [V]; ``magnetising_ohm`` holds at rated voltage."""
-    e = np.minimum(emf_v / machine.voltage_v, 1.6)
+def saturation(emf: Floats) -> Floats:
+    """Magnetising reactance at an induced voltage over that at rated voltage; ``emf`` is per unit of it."""
     share = priors.SATURATION_SHARE
-    factor = (1.0 + share) / (1.0 + share * e**priors.SATURATION_POWER)
-    return np.asarray(machine.magnetising_ohm * factor, dtype=np.float64)
+    risen = np.exp(priors.SATURATION_POWER * np.log(np.clip(emf, 1e-6, 1.6)))
+    return np.asarray((1.0 + share) / (1.0 + share * risen), dtype=np.float64)
 
 
-def run_at(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) -> tuple[Currents, Floats]:
+@dataclass(frozen=True)
+class Connected:
+    """A motor in a setting: all that does not change with slip and magnetisation, fed with one volt."""
+
+    windings: Windings
+    rotor: Rotor
+    magnetising_ohm: Floats
+    rated_emf_v: Floats
+    backward_rise: Floats
+    supply_v: Floats
+    source_ohm: Floats
+
+    def column(self) -> Connected:
+        """Return the same with shape (rows, 1), to be spread over slips."""
+        return replace(
+            self,
+            windings=_column(self.windings),
+            rotor=_column(self.rotor),
+            **{f.name: getattr(self, f.name)[:, None] for f in fields(self)[2:]},
+        )
+
+
+_Arrays = TypeVar("_Arrays", Windings, Rotor)
+
+
+def _column(arrays: _Arrays) -> _Arrays:
+    return replace(arrays, **{f.name: getattr(arrays, f.name)[:, None] for f in fields(arrays)})
+
+
+def connect(machine: Motor, setting: Setting) -> Connected:
+    """Put a motor into a setting."""
+    linked = setting.winding_ohm
+    warm = copper_factor(setting.temperature_c) * linked
+    main_x = machine.main_reactance_ohm * setting.leakage * linked
+    main_ohm = machine.main_ohm * warm
+    series_ohm = main_ohm * (1.0 - setting.turn_share) + 1j * main_x + setting.main_extra_ohm
+    shorted_ohm = main_ohm + 1j * priors.LOOP_LEAKAGE * main_x
+    auxiliary_x = machine.auxiliary_reactance_ohm * setting.leakage * linked
+    unit = np.ones(linked.shape, dtype=np.complex128)
+    return Connected(
+        windings=Windings(
+            main_ohm=np.asarray(series_ohm, dtype=np.complex128),
+            auxiliary_ohm=machine.auxiliary_ohm * warm + 1j * auxiliary_x + setting.auxiliary_extra_ohm,
+            turns_ratio=machine.turns_ratio,
+            main_volt=unit,
+            auxiliary_volt=unit,
+            shunt_siemens=np.asarray(setting.turn_share / shorted_ohm, dtype=np.complex128),
+        ),
+        rotor=Rotor(
+            magnetising_ohm=machine.magnetising_ohm * linked,
+            core_ohm=machine.core_ohm * linked,
+            rotor_ohm=machine.rotor_ohm * warm * setting.rotor_rise,
+            rotor_reactance_ohm=main_x,
+            backward_ratio=np.ones_like(linked),
+        ),
+        magnetising_ohm=machine.magnetising_ohm * linked,
+        rated_emf_v=machine.voltage_v * np.sqrt(linked),
+        backward_rise=(priors.BACKWARD_RESISTANCE - 1.0) / setting.rotor_rise,
+        supply_v=setting.supply_v,
+        source_ohm=setting.source_ohm,
+    )
+
+
+def run_at(connected: Connected, slip: Floats, emf_v: Floats) -> tuple[Currents, Floats]:
     """Currents of a motor in a setting at a slip, and the voltage left at its terminals.
 
     Parameters
     ----------
-    machine, setting : Motor, Setting
-        Same shape.
+    connected : Connected
+        From :func:`connect`.
     slip : ndarray
-        Slip. [1]
+        Slip, of the same shape or to be spread over. [1]
     emf_v : ndarray
         Induced voltage that the iron is magnetised for. [V]
 
@@ -151,10 +206,14 @@ def run_at(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) -> tup
         That voltage. [V]
 
     """
-    windings, rotor = _at_one_volt(machine, setting, slip, emf_v)
-    one_volt = solve_currents(windings, rotor, slip)
-    drop = 1.0 / (1.0 + setting.source_ohm * (one_volt.main + one_volt.auxiliary))
-    volt = np.asarray(setting.supply_v * np.abs(drop))
+    rotor = replace(
+        connected.rotor,
+        magnetising_ohm=connected.magnetising_ohm * saturation(emf_v / connected.rated_emf_v),
+        backward_ratio=1.0 + connected.backward_rise * (1.0 - slip),
+    )
+    one_volt = solve_currents(connected.windings, rotor, slip)
+    drop = 1.0 + connected.source_ohm * (one_volt.main + one_volt.auxiliary)
+    volt = np.asarray(connected.supply_v / np.abs(drop))
     currents = Currents(
         main=one_volt.main * volt,
         auxiliary=one_volt.auxiliary * volt,
@@ -163,31 +222,3 @@ def run_at(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) -> tup
         torque_w=one_volt.torque_w * volt**2,
     )
     return currents, volt
-
-
-def _at_one_volt(machine: Motor, setting: Setting, slip: Floats, emf_v: Floats) -> tuple[Windings, Rotor]:
-    """Windings and rotor of a setting, fed with one volt."""
-    linked = setting.winding_ohm
-    warm = copper_factor(setting.temperature_c) * linked
-    main_x = machine.main_reactance_ohm * setting.leakage * linked
-    rotor = Rotor(
-        magnetising_ohm=saturated_ohm(machine, emf_v / np.sqrt(linked)) * linked,
-        core_ohm=machine.core_ohm * linked,
-        rotor_ohm=machine.rotor_ohm * warm * setting.rotor_rise,
-        rotor_reactance_ohm=main_x,
-        backward_ratio=1.0 + (priors.BACKWARD_RESISTANCE - 1.0) * (1.0 - slip) / setting.rotor_rise,
-    )
-    main_ohm = machine.main_ohm * warm
-    auxiliary_x = machine.auxiliary_reactance_ohm * setting.leakage * linked
-    unit = np.ones(slip.shape, dtype=np.complex128)
-    shorted_ohm = np.asarray(main_ohm + 1j * priors.LOOP_LEAKAGE * main_x, dtype=np.complex128)
-    series_ohm = main_ohm * (1.0 - setting.turn_share) + 1j * main_x + setting.main_extra_ohm
-    windings = Windings(
-        main_ohm=np.asarray(series_ohm, dtype=np.complex128),
-        auxiliary_ohm=machine.auxiliary_ohm * warm + 1j * auxiliary_x + setting.auxiliary_extra_ohm,
-        turns_ratio=machine.turns_ratio,
-        main_volt=unit,
-        auxiliary_volt=unit,
-        shunt_siemens=setting.turn_share / shorted_ohm,
-    )
-    return windings, rotor

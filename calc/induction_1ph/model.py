@@ -9,7 +9,7 @@ import numpy as np
 from calc.induction_1ph import priors
 from calc.induction_1ph.circuit import square
 from calc.induction_1ph.effects import DEFAULTS, VARIANTS, enumerate_modes
-from calc.induction_1ph.machine import run_at
+from calc.induction_1ph.machine import connect, run_at
 from calc.induction_1ph.plate import HAS_START_CAPACITOR, SPLIT_PHASE, Plate, read_plate
 from calc.induction_1ph.plate_fit import NDIndex, fit_plate, rated_setting
 from calc.induction_1ph.readings import COVERED, error_of, predict_one, transform_of
@@ -186,7 +186,7 @@ class SinglePhaseTwin:
         machine = self._fit.motors(np.zeros((len(design), self._fit.size)), design)
         setting = rated_setting(self.plate, machine, self._fit.known.has_run)
         slip = np.minimum(machine.slip, 0.5)
-        currents, volt = run_at(machine, setting, slip, 0.92 * machine.voltage_v)
+        currents, volt = run_at(connect(machine, setting), slip, priors.RATED_EMF * machine.voltage_v)
         line = currents.main + currents.auxiliary
         output = (currents.torque_w * (1.0 - slip)) - machine.friction_w
         floor = 0.05 * np.sqrt(square(line)) * volt

@@ -16,7 +16,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from calc.induction_1ph import priors
-from calc.induction_1ph.machine import Motor, Setting, capacitor_ohm, motor, run_at
+from calc.induction_1ph.machine import Motor, Setting, capacitor_ohm, connect, motor, run_at
 from calc.induction_1ph.plate import DESIGNS, HAS_RUN_CAPACITOR, Plate
 from calc.twin import Flags, Floats
 
@@ -82,7 +82,7 @@ class PlateFit:
         steps = _along(z, self.span, design)
         u = self.base[design] + steps
         off = residuals(self.plate, self.known, u, design) - self.rest[design] - _along(z, self.slope, design)
-        back = np.einsum("rm,rnm->rn", np.clip(off, -_FAR, _FAR), self.onto[design])
+        back = _along(np.clip(off, -_FAR, _FAR), self.onto.transpose(0, 2, 1), design)
         return motors_of(self.plate, self.known, u - back, design)
 
 
@@ -144,9 +144,7 @@ def residuals(plate: Plate, known: Base, u: Floats, design: NDIndex) -> Floats:
     machine = motors_of(plate, known, u, design)
     setting = rated_setting(plate, machine, known.has_run[design])
     slip = np.minimum(machine.slip, 0.5)
-    emf = 0.92 * machine.voltage_v
-    currents, _ = run_at(machine, setting, slip, emf)
-    currents, _ = run_at(machine, setting, slip, np.abs(currents.forward_emf))
+    currents, _ = run_at(connect(machine, setting), slip, priors.RATED_EMF * machine.voltage_v)
     line = currents.main + currents.auxiliary
     amps = np.abs(line)
     given = np.maximum(machine.voltage_v * line.real, 1e-3 * machine.power_w)

@@ -84,6 +84,9 @@ LOCKED_LEAKAGE: dict[str, Spread] = {
     CAPACITOR_RUN: (0.90, 0.06),
     CAPACITOR_START_RUN: (0.83, 0.06),
 }
+RATED_EMF = 0.92
+"""Forward induced voltage at rated load over rated voltage, for the saturation there."""
+
 LOCKED_ROTOR_RESISTANCE = 1.16
 BACKWARD_RESISTANCE = 1.25
 """Rotor resistance at line frequency, and against the backward field, over that in running: deep bars."""

@@ -7,14 +7,14 @@ from dataclasses import dataclass
 import numpy as np
 
 from calc.induction_1ph.circuit import Currents
-from calc.induction_1ph.machine import Motor, Setting, run_at
+from calc.induction_1ph.machine import Connected, Motor, Setting, connect, run_at
 from calc.twin import Flags, Floats
 
 # Slips looked at first, in multiples of the rated slip: the torque is nearly straight below the third.
-_STEPS = np.array([0.12, 0.5, 1.0, 1.7, 2.8, 4.5, 7.5])
+_STEPS = np.array([0.12, 0.55, 1.1, 2.0, 3.6, 7.0])
 _LARGEST = 0.6
 _SMALLEST = 2e-5
-_REFINEMENTS = 3
+_REFINEMENTS = 2
 
 
 @dataclass(frozen=True)
@@ -46,42 +46,68 @@ def run_loaded(machine: Motor, setting: Setting, load_w: Floats, standing: Flags
 
     Notes
     -----
-    The first crossing on a grid of slips, then regula falsi with the Illinois weight; the
-    magnetising reactance follows the induced voltage from step to step.
+    A parabola through three torques of a grid of slips around the first crossing, then
+    secant steps; the magnetising reactance follows the induced voltage from step to step.
 
     """
-    low, high, low_gap, high_gap, carried = _bracket(machine, setting, load_w)
-    stalled = standing | ~carried
-    emf = 0.93 * setting.supply_v
-    slip = high
-    for _ in range(_REFINEMENTS):
-        slip = high - high_gap * (high - low) / np.where(high_gap == low_gap, 1.0, high_gap - low_gap)
-        currents, _ = run_at(machine, setting, slip, emf)
+    connected = connect(machine, setting)
+    guess = _cross(machine, connected, load_w)
+    stalled = standing | ~guess.carried
+    slip, slope, emf = guess.slip, guess.slope, guess.emf_v
+    last_slip, last_gap = slip, np.zeros_like(slip)
+    for turn in range(_REFINEMENTS):
+        currents, _ = run_at(connected, slip, emf)
         emf = np.abs(currents.forward_emf)
         gap = currents.torque_w - load_w
-        above = gap >= 0.0
-        low_gap = np.where(above, 0.5 * low_gap, gap)
-        high_gap = np.where(above, gap, 0.5 * high_gap)
-        low, high = np.where(above, low, slip), np.where(above, slip, high)
+        if turn:
+            slope = _secant(slip - last_slip, gap - last_gap, slope)
+        last_slip, last_gap = slip, gap
+        slip = np.clip(slip - gap / slope, 0.3 * slip, np.minimum(2.0 * slip, 0.95))
     slip = np.where(stalled, 1.0, slip)
-    currents, voltage = run_at(machine, setting, slip, emf)
+    currents, voltage = run_at(connected, slip, emf)
     return Running(slip=slip, currents=currents, voltage_v=voltage, stalled=stalled)
 
 
-def _bracket(
-    machine: Motor, setting: Setting, load_w: Floats
-) -> tuple[Floats, Floats, Floats, Floats, Flags]:
-    """Two slips around the load with their torque gaps, and whether there is a crossing at all."""
+def _secant(moved: Floats, gained: Floats, slope: Floats) -> Floats:
+    """Slope of the torque between two steps where it is a sensible one, else the slope before."""
+    found = gained / np.where(moved == 0.0, 1.0, moved)
+    sensible = (moved != 0.0) & (found > 0.3 * slope) & (found < 3.0 * slope)
+    return np.where(sensible, found, slope)
+
+
+@dataclass(frozen=True)
+class _Crossing:
+    """First guess at the crossing: slip, slope of the torque [W], induced voltage; whether there is one."""
+
+    slip: Floats
+    slope: Floats
+    emf_v: Floats
+    carried: Flags
+
+
+def _cross(machine: Motor, connected: Connected, load_w: Floats) -> _Crossing:
+    """Look for the first slip of a grid at which the torque is above the load."""
     slips = np.minimum(machine.slip[:, None] * _STEPS, _LARGEST)
-    emf = 0.93 * setting.supply_v[:, None]
-    currents, _ = run_at(machine.column(), setting.column(), slips, emf)
+    currents, _ = run_at(connected.column(), slips, 0.93 * connected.supply_v[:, None])
     gaps = currents.torque_w - load_w[:, None]
-    carried = np.asarray((gaps >= 0.0).any(axis=1), dtype=np.bool_)
-    index = np.argmax(gaps >= 0.0, axis=1)
+    above = gaps >= 0.0
+    carried = np.asarray(above.any(axis=1), dtype=np.bool_)
+    index = np.argmax(above, axis=1)
     rows = np.arange(len(index))
-    before = np.maximum(index - 1, 0)
-    high, high_gap = slips[rows, index], gaps[rows, index]
-    start = currents.torque_w[:, 0] - load_w
-    low = np.where(index > 0, slips[rows, before], _SMALLEST)
-    low_gap = np.where(index > 0, gaps[rows, before], np.minimum(start, 0.0) - load_w - 1e-9)
-    return low, high, low_gap, high_gap, carried
+    first = np.clip(index - 1, 0, len(_STEPS) - 3)
+    a, b, c = (slips[rows, first + k] for k in range(3))
+    fa, fb, fc = (gaps[rows, first + k] for k in range(3))
+    # Newton's divided differences; the root of the parabola on its rising branch.
+    ab = (fb - fa) / np.maximum(b - a, _SMALLEST)
+    bc = (fc - fb) / np.maximum(c - b, _SMALLEST)
+    bend = (bc - ab) / np.maximum(c - a, _SMALLEST)
+    rise = ab + bend * (a - b)
+    inside = np.maximum(rise * rise - 4.0 * bend * fa, 0.0)
+    root = -2.0 * fa / np.where(rise + np.sqrt(inside) == 0.0, 1.0, rise + np.sqrt(inside))
+    low = np.where(index > 0, slips[rows, np.maximum(index - 1, 0)], _SMALLEST)
+    high = slips[rows, index]
+    slip = np.clip(a + root, low, high)
+    slope = rise + 2.0 * bend * (slip - a)
+    least = 0.1 * np.maximum(np.abs(ab), load_w)
+    emf = np.abs(currents.forward_emf[rows, index])
+    return _Crossing(slip=slip, slope=np.maximum(slope, least), emf_v=emf, carried=carried)

@@ -9,7 +9,7 @@ import numpy as np
 
 from calc.induction_1ph import priors
 from calc.induction_1ph.circuit import Phasors
-from calc.induction_1ph.machine import OPEN_OHM, Motor, Setting, capacitor_ohm, in_parallel, run_at
+from calc.induction_1ph.machine import OPEN_OHM, Motor, Setting, capacitor_ohm, connect, in_parallel, run_at
 from calc.induction_1ph.slip import Running, run_loaded
 from calc.twin import Floats
 
@@ -79,10 +79,9 @@ def auxiliary_path(site: Site, attributes: Attributes, *, at_start: bool) -> tup
     return path + OPEN_OHM * attributes["auxiliary_open"], np.asarray(seen)
 
 
-def settle(site: Site, attributes: Attributes, *, warm_c: Floats, at_start: bool) -> Setting:
+def settle(site: Site, attributes: Attributes, *, warm_c: Floats, path: Phasors) -> Setting:
     """Return the setting of a state: what is in circuit, at which supply."""
     one = np.ones_like(site.load)
-    path, _ = auxiliary_path(site, attributes, at_start=at_start)
     return Setting(
         temperature_c=warm_c,
         auxiliary_extra_ohm=path,
@@ -108,14 +107,13 @@ def supply(site: Site, attributes: Attributes) -> Floats:
 def at_standstill(site: Site, attributes: Attributes) -> Standing:
     """Locked rotor with the start circuit as it is; a motor that starts is taken to have run before."""
     warm = np.maximum((1.0 - attributes["stands"]) * priors.RESTART_HEAT * site.rise_k, 5.0)
-    setting = settle(site, attributes, warm_c=site.ambient_c + warm, at_start=True)
-    setting = _locked(site, setting)
+    path, seen = auxiliary_path(site, attributes, at_start=True)
+    setting = _locked(site, settle(site, attributes, warm_c=site.ambient_c + warm, path=path))
     slip = np.ones_like(site.load)
-    currents, volt = run_at(site.machine, setting, slip, 0.5 * setting.supply_v)
+    currents, volt = run_at(connect(site.machine, setting), slip, 0.5 * setting.supply_v)
     stalled = np.ones(len(slip), dtype=np.bool_)
-    return _standing(
-        site, attributes, Running(slip=slip, currents=currents, voltage_v=volt, stalled=stalled), True
-    )
+    found = Running(slip=slip, currents=currents, voltage_v=volt, stalled=stalled)
+    return _standing(site, attributes, found, seen)
 
 
 def _locked(site: Site, setting: Setting) -> Setting:
@@ -140,20 +138,20 @@ def turning(site: Site, attributes: Attributes, state: str) -> Standing:
     share = asked / site.machine.power_w
     heat = priors.IDLE_HEAT + (1.0 - priors.IDLE_HEAT) * np.minimum(share, 2.0) ** 2
     warm = site.ambient_c + site.rise_k * attributes["rise"] * heat
-    setting = settle(site, attributes, warm_c=np.minimum(warm, 220.0), at_start=False)
+    path, seen = auxiliary_path(site, attributes, at_start=False)
+    setting = settle(site, attributes, warm_c=np.minimum(warm, 220.0), path=path)
     stands = (attributes["live"] < 0.5) | (attributes["jammed"] * (state != "no_load") > 0.5)
     running = run_loaded(site.machine, setting, asked, stands)
-    found = _standing(site, attributes, running, False)
+    found = _standing(site, attributes, running, seen)
     if not running.stalled.any():
         return found
     return _merge(running.stalled, at_standstill(site, attributes), found)
 
 
-def _standing(site: Site, attributes: Attributes, running: Running, at_start: bool) -> Standing:
+def _standing(site: Site, attributes: Attributes, running: Running, seen: Phasors) -> Standing:
     currents, volt = running.currents, running.voltage_v
     earth = 0.4 * volt / attributes["earth_ohm"]
     line = currents.main + currents.auxiliary + earth
-    _, seen = auxiliary_path(site, attributes, at_start=at_start)
     given = volt * line.real
     output = (currents.torque_w - site.machine.friction_w) * (1.0 - running.slip)
     share = np.clip((given - output - volt * earth) / site.rated_loss_w, 0.0, 6.0)
