@@ -10,12 +10,16 @@ from contextlib import contextmanager
 from datetime import datetime, timedelta
 from pathlib import Path
 
+import msgspec
+
 from calc.sheet import CaseSheet
 from casebook.bodies import Body, Correction, bodies_of_sheet
 from casebook.entry import Entry, clean_line, encode_body, make_entry, new_id
 from casebook.errors import AmbiguousCase, BadEntry, UnknownCase
 from casebook.fold import Case, fold_case
-from casebook.numbers import read_number, shown_number
+from casebook.history import MachineHistory, machine_history
+from casebook.learned import LearnedCounts, Score, learned_counts, scoreboard
+from casebook.numbers import SHOWN, full_number, read_number, shown_number
 from casebook.place import default_path
 from casebook.sqlite_store import SqliteStore
 from casebook.store import CaseRow, Changes, MachineRow, Store
@@ -57,8 +61,6 @@ class Casebook:
 
     def correct(self, case: str, names: str, instead: Body | None, *, person: str, why: str = "") -> Entry:
         """Correct an earlier entry of a case; ``instead`` None strikes it out."""
-        import msgspec  # noqa: PLC0415
-
         data = None if instead is None else msgspec.json.decode(encode_body(instead))
         return self.record(case, Correction(names=names, instead=data, why=why), person=person)[0]
 
@@ -87,13 +89,8 @@ class Casebook:
 
     def number(self, case: str) -> str:
         """Return a case's number, as long as this casebook needs to tell it from the others."""
-        from casebook.numbers import full_number  # noqa: PLC0415
-
         full = full_number(case)
-        length = 6
-        while length < len(full) and len(self.store.find_cases(full[:length])) > 1:
-            length += 1
-        return "C-" + full[:length] if length > 6 else shown_number(full)
+        return shown_number(full, tuple(map(full_number, self.store.find_cases(full[:SHOWN]))))
 
     def cases(self, *, limit: int = 50, before: int | None = None, status: str = "") -> list[CaseRow]:
         """Return cases, newest activity first; page with ``before``, the last row's ``place``."""
@@ -110,6 +107,18 @@ class Casebook:
     def machine_cases(self, tag: str) -> tuple[Case, ...]:
         """Return a machine's cases, folded, oldest activity first."""
         return tuple(fold_case(self.store.case_entries(case)) for case in self.store.machine_cases(tag))
+
+    def history(self, tag: str) -> MachineHistory:
+        """Return one machine's readings over time."""
+        return machine_history(tag, self.machine_cases(tag))
+
+    def learned(self, kind: str, power_w: float | None = None) -> LearnedCounts:
+        """Return the confirmed faults on machines of a kind and size, for the engine."""
+        return learned_counts(self.store.outcomes(kind), kind=kind, power_w=power_w)
+
+    def scoreboard(self) -> list[Score]:
+        """Return how well the odds did, all kinds first."""
+        return scoreboard(self.store.outcomes())
 
     def changed_since(self, token: int) -> Changes:
         """Return which cases got entries since an earlier answer's token (0: all)."""

@@ -6,13 +6,15 @@ exchanged winding begins a new history: what was read before says nothing about 
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Iterable
+from collections.abc import Collection, Iterable
 from datetime import datetime
 from typing import Final
 
 import msgspec
 
+from calc.errors import RangeError
 from calc.sheet import Reading
+from calc.temperature import insulation_at_40_c, insulation_system, winding_resistance_at
 from casebook.fold import Case, Logged
 
 INSULATION: Final = frozenset(
@@ -37,15 +39,13 @@ WINDINGS: Final = frozenset(
 )
 ANCHORS_C: Final = {**dict.fromkeys(INSULATION, 40.0), **dict.fromkeys(WINDINGS, 25.0)}
 
-Correct = Callable[[str, float, float, Case], float]
-"""(measure, value in ohm, winding temperature in degC, case) to the value at the anchor, in ohm."""
-
 
 class Point(msgspec.Struct, frozen=True, kw_only=True):
     """One reading in a machine's history. Numbers are in the inner unit of the measure.
 
-    ``corrected`` holds them at the anchor temperature, None where the temperature
-    was not read. ``kind`` is that of the values: "exact", or what stands against it.
+    ``corrected`` holds them at the anchor temperature, None where the temperature was
+    not read or lies where the laws do not hold. ``kind`` is "exact", or the
+    kind of the first value that is not.
     """
 
     time_utc: datetime
@@ -109,12 +109,8 @@ def taken_utc(logged: Logged[Reading]) -> datetime:
     return moment_of_reading(logged.what) or logged.time_utc
 
 
-def machine_history(tag: str, cases: Iterable[Case], *, correct: Correct | None = None) -> MachineHistory:
-    """Return the history of one machine from its cases.
-
-    ``correct`` brings one value to the anchor temperature of its measure; None
-    uses the laws of ``calc.temperature``.
-    """
+def machine_history(tag: str, cases: Iterable[Case]) -> MachineHistory:
+    """Return the history of one machine from its cases."""
     held = sorted(cases, key=lambda case: (case.opened_utc, case.id))
     new_since = winding_new(held)
     grouped: dict[tuple[str, str, str], list[Point]] = {}
@@ -125,7 +121,7 @@ def machine_history(tag: str, cases: Iterable[Case], *, correct: Correct | None 
             if reading.measure in ANCHORS_C and new_since is not None and moment < new_since:
                 continue
             key = (reading.measure, reading.state, reading.at or "")
-            grouped.setdefault(key, []).append(_point(case, logged, moment, correct))
+            grouped.setdefault(key, []).append(_point(case, logged, moment))
     return MachineHistory(
         tag=tag,
         cases=tuple(case.id for case in held),
@@ -143,16 +139,13 @@ def winding_new(cases: Iterable[Case]) -> datetime | None:
     return max(moments, default=None)
 
 
-def _point(case: Case, logged: Logged[Reading], moment: datetime, law: Correct | None) -> Point:
+def _point(case: Case, logged: Logged[Reading], moment: datetime) -> Point:
     reading = logged.what
     read = [value for value in reading.values if value.is_read]
     kinds = [value.kind for value in read if value.kind != "exact"]
     warm = reading.temperature
     temperature_c = warm.number if warm is not None and warm.is_read else None
     numbers = tuple(value.number for value in read)
-    corrected = None
-    if law is not None and temperature_c is not None and reading.measure in ANCHORS_C:
-        corrected = tuple(law(reading.measure, number, temperature_c, case) for number in numbers)
     return Point(
         time_utc=moment,
         person=logged.person,
@@ -161,9 +154,36 @@ def _point(case: Case, logged: Logged[Reading], moment: datetime, law: Correct |
         numbers=numbers,
         kind=kinds[0] if kinds else "exact",
         temperature_c=temperature_c,
-        corrected=corrected,
+        corrected=_at_anchor(case, reading, numbers, temperature_c),
         found=case.closed.what.found if case.closed is not None else "",
     )
+
+
+def _at_anchor(
+    case: Case, reading: Reading, numbers: tuple[float, ...], temperature_c: float | None
+) -> tuple[float, ...] | None:
+    """Bring the values of a reading to their anchor temperature; None where no law does that."""
+    if temperature_c is None or reading.measure not in ANCHORS_C:
+        return None
+    system = None
+    if reading.measure != "cable_insulation_resistance":  # the plate tells of the winding only
+        system = insulation_system(case.machine.nameplate.insulation_class)
+    try:
+        if reading.measure in INSULATION:
+            values = [
+                insulation_at_40_c(insulation_ohm=ohm, winding_c=temperature_c, system=system)
+                for ohm in numbers
+            ]
+        else:
+            wanted_c = ANCHORS_C[reading.measure]
+            values = [
+                winding_resistance_at(resistance_ohm=ohm, measured_c=temperature_c, wanted_c=wanted_c)
+                for ohm in numbers
+            ]
+    except RangeError:
+        return None
+    known = tuple(value for value in values if value is not None)
+    return known if len(known) == len(numbers) else None
 
 
 def _series(key: tuple[str, str, str], points: list[Point], cases: Iterable[Case]) -> Series:
