@@ -8,7 +8,9 @@ from __future__ import annotations
 
 import difflib
 import math
-from collections.abc import Iterable, Iterator
+import re
+from collections.abc import Hashable, Iterable, Iterator
+from functools import lru_cache
 from typing import TypeAlias, TypeVar
 
 import msgspec
@@ -21,6 +23,8 @@ T = TypeVar("T")
 Steps: TypeAlias = tuple[Step, ...]
 """Where a part stands inside an entry: ``("bands", 1, "verdict")``."""
 
+_ANY = inspect.AnyType()
+_NUMBER = re.compile(r"[+-]?(0|[1-9][0-9]*)(\.[0-9]+)?([eE][+-]?[0-9]+)?")
 _WORDS = {"yes": "true", "on": "true", "no": "false", "off": "false"}
 
 
@@ -35,9 +39,9 @@ class Mistake(msgspec.Struct, frozen=True):
 def decode(plain: object, kind: type[T]) -> tuple[T | None, list[Mistake]]:
     """Return the entry, or None and everything that keeps it from being one."""
     try:
-        return msgspec.convert(_plain_bools(plain, inspect.type_info(kind)), kind, strict=False), []
+        return msgspec.convert(_prepared(plain, _info(kind)), kind, strict=False), []
     except msgspec.ValidationError as error:
-        mistakes = list(_walk(plain, inspect.type_info(kind), ()))
+        mistakes = list(_walk(plain, _info(kind), ()))
         return None, mistakes or [Mistake((), "", str(error))]
 
 
@@ -50,18 +54,41 @@ def did_you_mean(given: str, allowed: Iterable[str]) -> str:
     return f"allowed: {', '.join(words)}" if len(words) <= 12 else "no such word in the vocabulary"
 
 
-def _plain_bools(plain: object, info: inspect.Type) -> object:
-    """Turn yes and no into true and false, only where the type asks for a truth value."""
-    if isinstance(info, inspect.BoolType):
-        return _WORDS.get(plain.lower(), plain) if isinstance(plain, str) else plain
-    if isinstance(info, inspect.StructType) and isinstance(plain, dict):
-        types = {field.encode_name: field.type for field in info.fields}
-        return {k: _plain_bools(v, types[k]) if k in types else v for k, v in plain.items()}
-    if isinstance(info, inspect.VarTupleType) and isinstance(plain, list):
-        return [_plain_bools(part, info.item_type) for part in plain]
-    if isinstance(info, inspect.DictType) and isinstance(plain, dict):
-        return {k: _plain_bools(v, info.value_type) for k, v in plain.items()}
+@lru_cache(maxsize=32)
+def _info(kind: Hashable) -> inspect.Type:
+    return inspect.type_info(kind)
+
+
+def _prepared(plain: object, info: inspect.Type) -> object:
+    """Turn yes and no into true and false where a truth value is asked for, and nan into no number."""
+    if isinstance(info, inspect.UnionType):
+        info = next(choice for choice in info.types if not _none(choice))
+    if isinstance(plain, str):
+        if isinstance(info, inspect.BoolType):
+            return _WORDS.get(plain.lower(), plain)
+        return "no number" if isinstance(info, inspect.FloatType) and not _is_finite(plain) else plain
+    if isinstance(plain, dict):
+        return {key: _prepared(value, _part(info, key)) for key, value in plain.items()}
+    if isinstance(plain, list):
+        return [_prepared(value, _part(info, index)) for index, value in enumerate(plain)]
     return plain
+
+
+def _part(info: inspect.Type, step: Step) -> inspect.Type:
+    """Return the type of a part of a mapping or list; any where there is no such part."""
+    if isinstance(info, inspect.StructType):
+        return _fields(info).get(step, _ANY)
+    if isinstance(info, inspect.DictType):
+        return info.value_type
+    if isinstance(info, inspect.VarTupleType):
+        return info.item_type
+    if isinstance(info, inspect.TupleType) and isinstance(step, int) and step < len(info.item_types):
+        return info.item_types[step]
+    return _ANY
+
+
+def _fields(info: inspect.StructType) -> dict[Step, inspect.Type]:
+    return {field.encode_name: field.type for field in info.fields}
 
 
 def _walk(plain: object, info: inspect.Type, path: Steps) -> Iterator[Mistake]:
@@ -150,10 +177,8 @@ def _is_a(plain: object, info: inspect.Type) -> bool:
 
 
 def _is_finite(plain: str) -> bool:
-    try:
-        return math.isfinite(float(plain))
-    except ValueError:
-        return False
+    """Whether a text spells a finite number, without a leading zero that might mean octal."""
+    return _NUMBER.fullmatch(plain) is not None and math.isfinite(float(plain))
 
 
 def _none(info: inspect.Type) -> bool:
