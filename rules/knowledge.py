@@ -31,9 +31,9 @@ class EffectUse(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields
 
 
 class Spread(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
-    """How a reading that no circuit predicts is spread: log-normal (``factor`` is one sigma as a ratio) or normal.
+    """How a reading that no circuit predicts is spread: log-normal or normal.
 
-    ``median`` is text with a unit. Give ``factor`` or ``sigma`` (text with a unit), not both.
+    ``factor`` is one sigma of the log-normal as a ratio. ``median`` is text with a unit. Give ``factor`` or ``sigma`` (text with a unit), not both.
     """
 
     median: str
@@ -66,8 +66,9 @@ class Example(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=T
 
 
 Part = Literal[
-    "none", "supply", "control gear", "protection", "connection", "winding", "rotor", "armature", "field",
-    "commutator", "capacitor", "start switch", "bearings", "mounting", "coupling", "cooling", "load", "brake", "other",
+    "none", "supply", "control gear", "protection", "connection", "winding", "rotor", "armature",
+    "field", "commutator", "capacitor", "start switch", "bearings", "mounting", "coupling", "cooling",
+    "load", "brake", "other",
 ]  # fmt: skip
 
 
@@ -101,19 +102,23 @@ class Fault(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     status: Literal["draft", "checked", "retired"] = "draft"
     examples: tuple[Example, ...] = ()
 
-    def complaint_chances(self, kind: str) -> dict[str, float]:
-        """Return the chance of each complaint on a machine kind."""
-        return self.complaints_by_kind.get(kind, self.complaints)
-
-    def observation_chances(self, kind: str) -> dict[str, float]:
-        """Return the chance of "yes" of each observation on a machine kind."""
-        return {**self.observations, **self.observations_by_kind.get(kind, {})}
-
-    def refinement_shares(self, kind: str) -> dict[str, float]:
-        """Return the share of each refinement on a machine kind; they add up to one."""
+    def for_kind(self, kind: str) -> Fault:
+        """Return the fault as it shows on a machine kind: chances and shares of that kind in place."""
         shares = {part.id: part.shares.get(kind, part.share) for part in self.within}
-        total = sum(shares.values())
-        return {id: share / total for id, share in shares.items()} if total > 0 else {}
+        total = sum(shares.values()) or 1.0
+        within = (
+            msgspec.structs.replace(part, share=shares[part.id] / total, shares={})
+            for part in self.within
+            if shares[part.id] > 0.0
+        )
+        return msgspec.structs.replace(
+            self,
+            complaints=self.complaints_by_kind.get(kind, self.complaints),
+            complaints_by_kind={},
+            observations={**self.observations, **self.observations_by_kind.get(kind, {})},
+            observations_by_kind={},
+            within=tuple(within),
+        )
 
 
 class Observation(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
@@ -182,7 +187,7 @@ class ReadingRule(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     plausible: tuple[str, str] | None = None
     """Outside this range the value is asked about once."""
     needs: tuple[str, ...] = ()
-    """Conditions: ``coupled``, ``uncoupled``, ``can_turn``, ``capacitor_discharged``, ``load_held``, ``links_off`` …"""
+    """Conditions: ``coupled``, ``can_turn``, ``capacitor_discharged``, ``load_held``, ``links_off`` …"""
     context: tuple[str, ...] = ()
     """What to note with it: ``temperature``, ``test_voltage``, ``speed``."""
     kinds: tuple[str, ...] = ("any",)
