@@ -218,3 +218,27 @@ def _by_size(name: str, power_w: float, poles: int) -> float:
     low, high = powers[place - 1], powers[place]
     share = math.log(power_w / low) / math.log(high / low)
     return values[place - 1] + share * (values[place] - values[place - 1])
+
+
+def typical_slip(*, power_w: float) -> float:
+    """Return the slip to expect at rated load where the plate does not say.
+
+    Parameters
+    ----------
+    power_w : float
+        Rated output. [W]
+
+    Returns
+    -------
+    float
+        Slip, as a fraction of synchronous speed. [1]
+
+    Notes
+    -----
+    4.5 % at 1 kW, falling with the power of -0.28: a line through catalogue values
+    (common practice, from memory).
+
+    """
+    if not power_w > 0.0:
+        raise RangeError("power_w", power_w, "above zero")
+    return float(0.045 * max(power_w / 1000.0, 0.1) ** -0.28)
