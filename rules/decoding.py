@@ -9,8 +9,7 @@ from __future__ import annotations
 import difflib
 import math
 import re
-from collections.abc import Hashable, Iterable, Iterator
-from functools import lru_cache
+from collections.abc import Callable, Iterable, Iterator
 from typing import TypeAlias, TypeVar
 
 import msgspec
@@ -54,9 +53,14 @@ def did_you_mean(given: str, allowed: Iterable[str]) -> str:
     return f"allowed: {', '.join(words)}" if len(words) <= 12 else "no such word in the vocabulary"
 
 
-@lru_cache(maxsize=32)
-def _info(kind: Hashable) -> inspect.Type:
-    return inspect.type_info(kind)
+_INFO: dict[type, inspect.Type] = {}
+
+
+def _info(kind: type) -> inspect.Type:
+    """Return what msgspec knows of a type, looked at once."""
+    if kind not in _INFO:
+        _INFO[kind] = inspect.type_info(kind)
+    return _INFO[kind]
 
 
 def _prepared(plain: object, info: inspect.Type) -> object:
@@ -68,27 +72,27 @@ def _prepared(plain: object, info: inspect.Type) -> object:
             return _WORDS.get(plain.lower(), plain)
         return "no number" if isinstance(info, inspect.FloatType) and not _is_finite(plain) else plain
     if isinstance(plain, dict):
-        return {key: _prepared(value, _part(info, key)) for key, value in plain.items()}
+        part = _part_of(info)
+        return {key: _prepared(value, part(key)) for key, value in plain.items()}
     if isinstance(plain, list):
-        return [_prepared(value, _part(info, index)) for index, value in enumerate(plain)]
+        part = _part_of(info)
+        return [_prepared(value, part(index)) for index, value in enumerate(plain)]
     return plain
 
 
-def _part(info: inspect.Type, step: Step) -> inspect.Type:
-    """Return the type of a part of a mapping or list; any where there is no such part."""
+def _part_of(info: inspect.Type) -> Callable[[Step], inspect.Type]:
+    """Return a look-up of the types of the parts of a mapping or list; any where there is no such part."""
+    types: dict[Step, inspect.Type] = {}
+    other: inspect.Type = _ANY
     if isinstance(info, inspect.StructType):
-        return _fields(info).get(step, _ANY)
-    if isinstance(info, inspect.DictType):
-        return info.value_type
-    if isinstance(info, inspect.VarTupleType):
-        return info.item_type
-    if isinstance(info, inspect.TupleType) and isinstance(step, int) and step < len(info.item_types):
-        return info.item_types[step]
-    return _ANY
-
-
-def _fields(info: inspect.StructType) -> dict[Step, inspect.Type]:
-    return {field.encode_name: field.type for field in info.fields}
+        types = {field.encode_name: field.type for field in info.fields}
+    elif isinstance(info, inspect.DictType):
+        other = info.value_type
+    elif isinstance(info, inspect.VarTupleType):
+        other = info.item_type
+    elif isinstance(info, inspect.TupleType):
+        types = dict(enumerate(info.item_types))
+    return lambda step: types.get(step, other)
 
 
 def _walk(plain: object, info: inspect.Type, path: Steps) -> Iterator[Mistake]:
