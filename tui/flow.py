@@ -77,8 +77,6 @@ async def start(app: PlatesideApp, machine: Raw, complaint: str) -> None:
 
     kit = list(app.desk.kit or ())
     try:
-        if not hasattr(nameplate, "check_plate"):
-            return []
         sheet = sheet_from_plain({"format": 1, "machine": machine, "complaint": complaint, "kit": kit})
         visit = app.desk.open_case(sheet)
     except PlatesideError as error:
@@ -117,7 +115,8 @@ async def pick_complaint(app: PlatesideApp, tag: str, kind: str) -> str | None:
 
 async def type_plate(app: PlatesideApp, tag: str, complaint: str, begun: dict[str, Any]) -> Raw | None:
     """Ask for the kind of machine and its plate; another kind keeps what is typed."""
-    kind, lines = begun.get("kind"), dict(begun.get("lines") or {})
+    kind: str | None = begun.get("kind")
+    lines: dict[str, str] = dict(begun.get("lines") or {})
     while True:
         if not kind:
             choices = [Choice(kind, KINDS[kind]) for kind in OFFERED_KINDS]

@@ -93,10 +93,10 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         Key(
             "enter",
             "enter",
-            "enter",
+            "",
             "Store what is understood; on an empty line, do what stands beside 'next'.",
         ),
-        Key("f3", "other", "other", "Another reading than the one proposed, or one again."),
+        Key("f3", "other", "pick", "Another reading than the one proposed, or one again."),
         Key("f4", "skip", "skip", "Cannot be taken now: it is remembered and not proposed again."),
         Key(
             "f5",
@@ -106,7 +106,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         ),
         Key("f6", "gate", "gate", "The list before energising; the isolation record."),
         Key("f7", "tick", "seen", "What was seen, heard or smelt: the tick list."),
-        Key(_DONE, "close", "close", "Close the case with what was found."),
+        Key(_DONE, "close", "done", "Close the case with what was found."),
         Key("ctrl+r", "correct", "correct", "Correct or take back something stored; the log keeps both."),
         Key("ctrl+t", "curves", "curves", "Curves of this machine, and its history."),
         Key("ctrl+o", "machine", "machine", "The machine's page: plate, expected values, cases."),
@@ -171,7 +171,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         Key(_DONE, "done", "keep", "Keep the name and the kit."),
     ),
     "ask": (
-        Key("y,enter", "yes", "yes", "Yes."),
+        Key("y,f8", "yes", "yes", "Yes."),
         Key("n", "no", "no", "No."),
     ),
     "note": (Key("enter,f8", "done", "store", "Store the remark."),),

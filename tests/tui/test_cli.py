@@ -1,4 +1,4 @@
-"""The command line: exit status, where things are written, and that no details of a mistake reach a person."""
+"""The command line: exit status, where things are written, and what a mistake shows."""
 
 import json
 import os
@@ -25,7 +25,9 @@ def test_version_goes_to_standard_output(run):
     assert done == (0, "plateside 0.1.0\n", "")
 
 
-@pytest.mark.parametrize("argv", [["nonsense"], ["diagnose"], ["report"], ["export", "--csv", "--json-lines"], ["--cases"]])
+@pytest.mark.parametrize(
+    "argv", [["nonsense"], ["diagnose"], ["report"], ["export", "--csv", "--json-lines"], ["--cases"]]
+)
 def test_a_wrong_word_is_refused_in_one_line_with_status_2(run, argv):
     done = run(*argv)
     assert done.status == 2
@@ -51,7 +53,9 @@ def test_log_prints_a_number_per_sheet_and_cases_finds_it(run, sheet):
 
 def test_log_tells_a_bad_sheet_and_takes_the_others(run, sheet, tmp_path):
     bad = tmp_path / "bad.yaml"
-    bad.write_text("format: 1\nmachine: {kind: induction_3ph, nameplate: {current: 14.9 V}}\ncomplaint: runs_hot\n")
+    bad.write_text(
+        "format: 1\nmachine: {kind: induction_3ph, nameplate: {current: 14.9 V}}\ncomplaint: runs_hot\n"
+    )
     done = run("log", str(bad), sheet("pump_overload"))
     assert done.status == 2
     assert f"{bad}, line 2" in done.err
@@ -148,7 +152,9 @@ def test_a_reader_that_leaves_early_is_no_error(sheet, tmp_path):
 
 
 def test_the_screens_need_a_terminal_and_say_so(tmp_path):
-    done = spawn(stdin=subprocess.DEVNULL, env={"PLATESIDE_CASEBOOK": str(tmp_path / "b.db"), "TERM": "xterm"})
+    done = spawn(
+        stdin=subprocess.DEVNULL, env={"PLATESIDE_CASEBOOK": str(tmp_path / "b.db"), "TERM": "xterm"}
+    )
     assert done.returncode == 1
     assert "need a terminal" in done.stderr
     assert not (tmp_path / "b.db").exists()

@@ -1,13 +1,18 @@
 """``diagnose`` and ``expect``: the JSON contract of case-sheet format 1, and the text for people."""
 
+import contextlib
+import io
 import json
 import math
+import types
 from pathlib import Path
 
 import pytest
 
 from calc.quantities import ENERGISED_STATES
 from rules.answer import Band, Diagnosis, FaultOdds, NextItem
+from tui.cli import main
+from tui.commands import diagnose as command
 from tui.jsonout import as_json
 
 SHEETS = sorted((Path(__file__).resolve().parent.parent / "sheets").glob("*.yaml"))
@@ -32,11 +37,6 @@ def numbers_in(value):
 @pytest.fixture(scope="module")
 def answers():
     """The answers to all example sheets, from one process."""
-    import contextlib
-    import io
-
-    from tui.cli import main
-
     out, err = io.StringIO(), io.StringIO()
     with contextlib.redirect_stdout(out), contextlib.redirect_stderr(err):
         status = main(["diagnose", "--json", *map(str, SHEETS)])
@@ -126,7 +126,9 @@ def test_an_observation_that_comes_next_has_no_measure():
 
 def test_one_bad_sheet_gets_its_own_line_and_does_not_stop_the_others(run, sheet, tmp_path):
     bad = tmp_path / "bad.yaml"
-    bad.write_text("format: 1\nmachine: {kind: induction_3ph, nameplate: {current: 14.9 V}}\ncomplaint: runs_hot\n")
+    bad.write_text(
+        "format: 1\nmachine: {kind: induction_3ph, nameplate: {current: 14.9 V}}\ncomplaint: runs_hot\n"
+    )
     done = run("diagnose", "--json", str(bad), sheet("pump_overload"))
     first, second = (json.loads(line) for line in done.out.splitlines())
     assert done.status == 2
@@ -145,8 +147,6 @@ def test_a_sheet_that_is_no_file_is_told_with_status_2(run, tmp_path, name):
 
 
 def test_a_sheet_that_stumbles_the_program_is_told_and_the_others_answered(run, sheet, monkeypatch):
-    import tui.commands.diagnose as command
-
     right = command.weigh
 
     def stumble(given, knowledge, *, name=""):
@@ -183,9 +183,6 @@ def test_escape_codes_in_a_sheet_never_reach_the_terminal(run, tmp_path):
 
 
 def test_a_sheet_comes_from_standard_input_too(run, sheet, monkeypatch):
-    import io
-    import types
-
     text = Path(sheet("pump_overload")).read_bytes()
     monkeypatch.setattr("sys.stdin", types.SimpleNamespace(buffer=io.BytesIO(text)))
     done = run("diagnose", "--json", "-")

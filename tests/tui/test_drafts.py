@@ -17,7 +17,10 @@ def drafts(tmp_path):
 
 def test_a_draft_comes_back_as_it_was_typed(drafts):
     drafts.save("case-7", {"typed": "15.2 15.9 Ω", "case": "x"})
-    assert Drafts(drafts.folder.with_name("casebook.db")).load("case-7") == {"typed": "15.2 15.9 Ω", "case": "x"}
+    assert Drafts(drafts.folder.with_name("casebook.db")).load("case-7") == {
+        "typed": "15.2 15.9 Ω",
+        "case": "x",
+    }
 
 
 def test_an_empty_draft_leaves_nothing_behind(drafts):

@@ -6,7 +6,20 @@ from tui.keys import SCREENS, key_line, keys_of
 
 # measured with Textual's parser and named in terminal documentation; see the module's docstring
 DELIVERED = {f"f{n}" for n in range(2, 10)} | {f"ctrl+{c}" for c in "noqrtlg"}
-DELIVERED |= {"enter", "escape", "tab", "up", "down", "left", "right", "pageup", "pagedown", "space", "slash", "question_mark"}
+DELIVERED |= {
+    "enter",
+    "escape",
+    "tab",
+    "up",
+    "down",
+    "left",
+    "right",
+    "pageup",
+    "pagedown",
+    "space",
+    "slash",
+    "question_mark",
+}
 
 
 @pytest.mark.parametrize("screen", SCREENS)
@@ -34,7 +47,9 @@ def test_a_letter_always_has_a_key_beside_it_that_works_while_typing(screen: str
     lists = {"ask", "tick"}  # nothing is typed there
     for key in keys_of(screen):
         names = key.keys.split(",")
-        assert screen in lists or any(len(name) > 1 and name not in {"slash", "question_mark"} for name in names)
+        assert screen in lists or any(
+            len(name) > 1 and name not in {"slash", "question_mark"} for name in names
+        )
 
 
 @pytest.mark.parametrize("screen", SCREENS)

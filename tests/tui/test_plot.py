@@ -10,7 +10,12 @@ from tui.plot import Band, Curve, nice_span, plot
 
 def marks(lines: list[str], mark: str) -> list[tuple[int, int]]:
     """Where a mark stands inside the axes."""
-    return [(x, y) for y, line in enumerate(lines[1:-2]) for x, c in enumerate(line.partition("|")[2]) if c == mark]
+    return [
+        (x, y)
+        for y, line in enumerate(lines[1:-2])
+        for x, c in enumerate(line.partition("|")[2])
+        if c == mark
+    ]
 
 
 def test_a_rising_line_rises_to_the_right():
@@ -31,13 +36,17 @@ def test_nothing_finite_says_so():
 
 
 def test_a_band_lies_between_its_ends():
-    lines = plot([Curve(x=[0, 1], y=[0, 10])], bands=[Band(x=[0, 1], low=[4, 4], high=[6, 6])], width=40, height=24)
+    lines = plot(
+        [Curve(x=[0, 1], y=[0, 10])], bands=[Band(x=[0, 1], low=[4, 4], high=[6, 6])], width=40, height=24
+    )
     rows = {y for _, y in marks(lines, ".")}
     assert rows == {8, 9, 10, 11, 12}  # of rows 0 (ten) to 20 (zero), those from six to four
 
 
 def test_the_curve_is_drawn_over_the_band():
-    lines = plot([Curve(x=[0, 1], y=[5, 5])], bands=[Band(x=[0, 1], low=[0, 0], high=[10, 10])], width=40, height=23)
+    lines = plot(
+        [Curve(x=[0, 1], y=[5, 5])], bands=[Band(x=[0, 1], low=[0, 0], high=[10, 10])], width=40, height=23
+    )
     assert marks(lines, "*")
 
 

@@ -40,11 +40,13 @@ class ClosingPage(FormPage[dict[str, str]]):
         """Return the lines: all but the first may stay blank."""
         return [
             Line("found", "found", "what it really was; two faults joined by +", self.found, self.hear_found),
-            Line("confirmed", "known by", "believed, repair, teardown", "believed", hear_choice(CONFIRMED)),
-            Line("done", "done", "what was done"),
-            Line("parts", "parts", "parts that were fitted"),
-            Line("minutes", "minutes", "time spent", hear=hear_minutes),
-            Line("note", "remark", "for the next shift and the repair shop"),
+            Line(
+                "confirmed", "known by", "believed, repair, teardown", "believed", hear_choice(CONFIRMED), 12
+            ),
+            Line("done", "done", "what was done", width=50),
+            Line("parts", "parts", "parts that were fitted", width=40),
+            Line("minutes", "minutes", "time spent", hear=hear_minutes, width=8),
+            Line("note", "remark", "for the next shift and the shop", width=40),
         ]
 
     def head(self) -> list[Content]:

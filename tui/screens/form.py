@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, ClassVar
+from typing import TYPE_CHECKING
 
 from textual.containers import Horizontal, VerticalScroll
 from textual.widgets import Input, Static
@@ -31,6 +31,8 @@ class Line:
     hint: str = ""
     start: str = ""
     hear: Callable[[str], Heard] = lambda _text: ("", True)
+    width: int = 24
+    """Cells to type in."""
 
 
 class LineInput(Input):
@@ -44,8 +46,6 @@ class LineInput(Input):
 
 class FormPage(Page[Answer]):
     """Lines to type; subclasses name them and say what becomes of them."""
-
-    WIDE_INPUT: ClassVar[int] = 24
 
     def __init__(self, typed: dict[str, str] | None = None) -> None:
         super().__init__()
@@ -77,7 +77,7 @@ class FormPage(Page[Answer]):
     def line_row(self, line: Line) -> Widget:
         """Return one line: word, input, what was understood."""
         field = LineInput(line, self.typed.get(line.name, line.start))
-        field.styles.width = self.WIDE_INPUT
+        field.styles.width = line.width
         heard = Static("", id=f"heard-{line.name}", markup=False, classes="heard")
         word = Static(row(line.word), markup=False, classes="word")
         return Horizontal(word, field, heard, classes="line")
@@ -114,7 +114,7 @@ class FormPage(Page[Answer]):
         if field.value.strip():
             heard, fine = field.line.hear(field.value.strip())
             text, style = heard, ("" if fine else WATCH)
-        room = max(self.room - INDENT - self.WIDE_INPUT - 1, 4)
+        room = max(self.room - INDENT - field.line.width - 1, 4)
         self.query_one(f"#heard-{field.line.name}", Static).update(row_text(cut(text, room), style))
 
     def show_remarks(self) -> None:

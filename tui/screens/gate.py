@@ -28,7 +28,7 @@ STATUS = {"needed": "needed", "cleared": "cleared", "forbids": "FORBIDS"}
 
 
 class Gate(TextPage):
-    """Every line of the gate, with what cleared it or what it asks for. Enter asks for the isolation record."""
+    """Every line of the gate, with what cleared it or what it asks for."""
 
     KEYS = "gate"
     BINDINGS = bindings("gate")
@@ -90,35 +90,36 @@ class IsolationPage(FormPage[Isolation]):
         """Return the lines of the record."""
         yes = hear_choice(YES_NO)
         return [
-            Line("person", "isolated", "by whom: isolated, locked out, own lock and tag", self.person),
+            Line("person", "by", "who isolated it, with own lock and tag", self.person),
             Line(
                 "proved_dead",
                 "dead",
-                "y: proved dead at the point of work, every line to every line and to earth",
+                "y: proved dead where the work is, all lines and earth",
                 hear=yes,
+                width=5,
             ),
-            Line("tester_proved", "tester", "y: tester proved on a known source before and after", hear=yes),
-            Line("note", "points", "where it is isolated and locked, free text"),
+            Line("tester_proved", "tester", "y: proved on a live source before and after", hear=yes, width=5),
+            Line("note", "points", "where it is isolated and locked", width=34),
         ]
 
     def head(self) -> list[Content]:
         """Return what the record says."""
         moment = datetime.now().astimezone().strftime("%Y-%m-%d %H:%M")
         return [
-            *rows("isolate", f"Isolation record of {self.tag or 'this machine'}, {moment}", self.room, style=STRONG),
-            *rows("", "Capacitors discharged, brakes and hanging loads held, stored energy let off. It ends when the state "
-                  "of the machine changes.", self.room),
+            *rows("isolate", f"Isolation of {self.tag or 'this machine'}, {moment}", self.room, style=STRONG),
+            *rows("", "Capacitors discharged, brakes and hanging loads held, stored energy let off. "
+                  "Locked out, with your own lock.", self.room),
         ]  # fmt: skip
 
     def action_done(self) -> None:
         """Store the record where it is whole."""
         values = self.values
         if not values["person"]:
+            self.query_one("#line-person").focus()
             self.say("A name must stand there: who isolated and locked out.")
-        elif (
-            one_of(YES_NO, values["proved_dead"]) != "yes" or one_of(YES_NO, values["tester_proved"]) != "yes"
-        ):
-            self.say("Not isolated yet: 'dead' and 'tester' need a y. F9 goes back without a record.")
+        elif missing := [n for n in ("proved_dead", "tester_proved") if one_of(YES_NO, values[n]) != "yes"]:
+            self.query_one(f"#line-{missing[0]}").focus()
+            self.say("Not proved: a y must stand there. F9 goes back without a record.")
         else:
             self.dismiss(
                 Isolation(
@@ -183,7 +184,6 @@ def isolation_text(case: Case) -> list[str]:
             for word, so in (("locked out", record.locked_out), ("proved dead", record.proved_dead))
             if so
         ]
-        out.append(
-            f"{moment} {record.by}: isolated, {', '.join(said)}{f'; {record.points}' if record.points else ''}"
-        )
+        points = f"; {record.points}" if record.points else ""
+        out.append(f"{moment} {record.by}: isolated, {', '.join(said)}{points}")
     return out

@@ -15,8 +15,11 @@ from tui.widgets.ruled import blank, pad, row, rows
 from tui.words import fault_name, kind_name, measure_name, plain, reading_text
 
 if TYPE_CHECKING:
+    from datetime import datetime
+
     from textual.content import Content
 
+    from calc.sheet import Reading
     from casebook.fold import Case
     from rules.answer import Band
     from tui.compose import Visit
@@ -106,11 +109,8 @@ class MachinePage(TextPage):
         for measure in HISTORY:
             for case in self.cases:
                 for logged in case.readings:
-                    reading = logged.what.reading
-                    if reading.measure == measure:
-                        at = f" at {reading.temperature.text}" if reading.temperature else ""
-                        day = logged.time_utc.astimezone().strftime("%Y-%m-%d")
-                        text = f"{day}  {pad(f'{measure_name(measure)}, {plain(reading.state)}', 40)} {reading_text(reading)}{at}"
+                    if logged.what.reading.measure == measure:
+                        text = f"{day(logged.time_utc)}  {followed(logged.what.reading)}"
                         out.append(row("history" if len(out) == 1 else "", text))
         return out if len(out) > 1 else []
 
@@ -119,10 +119,10 @@ class MachinePage(TextPage):
         assert self.visit is not None
         out: list[Content] = [blank()]
         for case in reversed(self.cases):
-            day = case.opened_utc.astimezone().strftime("%Y-%m-%d")
-            text = f"{day}  {case.number}  {plain(case.complaint)}"
+            text = f"{day(case.opened_utc)}  {case.number}  {plain(case.complaint)}"
             if case.closed is not None:
-                text += f": {fault_name(case.closed.what.found, self.visit.knowledge)} ({case.closed.what.confirmed})"
+                found = fault_name(case.closed.what.found, self.visit.knowledge)
+                text += f": {found} ({case.closed.what.confirmed})"
             out += rows("cases" if case is self.cases[-1] else "", text, self.room, most=2)
         return out
 
@@ -141,3 +141,16 @@ class MachinePage(TextPage):
 
         if self.visit is not None:
             self.app.push_screen(Curves(self.visit))
+
+
+def day(moment: datetime) -> str:
+    """Return the day of a moment."""
+    return moment.astimezone().strftime("%Y-%m-%d")
+
+
+def followed(reading: Reading) -> str:
+    """Return one reading of a history: measure, state, values, temperature."""
+    at = f" at {reading.temperature.text}" if reading.temperature else ""
+    return (
+        f"{pad(f'{measure_name(reading.measure)}, {plain(reading.state)}', 40)} {reading_text(reading)}{at}"
+    )

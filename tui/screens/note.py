@@ -11,7 +11,6 @@ class Note(FormPage[str]):
 
     KEYS = "note"
     BINDINGS = bindings("note")
-    WIDE_INPUT = 60
 
     def __init__(self, word: str = "note", hint: str = "for the log") -> None:
         super().__init__()
@@ -19,7 +18,7 @@ class Note(FormPage[str]):
 
     def form_lines(self) -> list[Line]:
         """Return the one line."""
-        return [Line("text", self.word, self.hint)]
+        return [Line("text", self.word, self.hint, width=56)]
 
     def action_done(self) -> None:
         """Store what stands there."""

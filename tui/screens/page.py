@@ -26,7 +26,7 @@ NARROWEST, LOWEST = 40, 12
 
 
 class Page(Screen[Answer]):
-    """One ruled page. ``KEYS`` names its keys in ``tui.keys``; ``body`` yields what stands above the key line."""
+    """One ruled page: ``KEYS`` names its keys in ``tui.keys``, ``body`` is what stands above the key line."""
 
     KEYS: ClassVar[str] = "help"
 

@@ -37,7 +37,7 @@ class Person(FormPage[dict[str, str]]):
             start = "yes" if instrument in self.kit else "no"
             word = "carry" if place == 0 else ""
             hear = self.hear_instrument(instrument)
-            lines.append(Line(instrument, word, instrument.replace("_", " "), start, hear))
+            lines.append(Line(instrument, word, instrument.replace("_", " "), start, hear, width=5))
         return lines
 
     def hear_instrument(self, instrument: str) -> Callable[[str], Heard]:

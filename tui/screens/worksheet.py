@@ -9,28 +9,28 @@ from textual.containers import Horizontal
 from textual.widgets import Input, Static
 from textual.worker import get_current_worker
 
-from calc.errors import PlatesideError
 from rules.answer import NextItem
+from rules.gate import gate
 from tui.keys import bindings
-from tui.look import FAINT, STRONG, WATCH
+from tui.look import FAINT, STOP, STRONG, WATCH
 from tui.screens import worksheet_lines as blocks
-from tui.screens.worksheet_keys import WorksheetKeys, values_wanted
+from tui.screens.worksheet_choices import values_wanted
+from tui.screens.worksheet_typing import WorksheetTyping
 from tui.widgets.ruled import Ruled, fill, row, rows
-from tui.words import question
 
 if TYPE_CHECKING:
     from textual.content import Content
     from textual.widget import Widget
 
     from rules.answer import Diagnosis
+    from rules.gate import GateState
     from tui.compose import Visit, Weighed
 
-BELOW = 3
-"""Lines below the blocks: what was understood, the line to type, the keys."""
-YES_WORDS = {"y": True, "yes": True, "n": False, "no": False}
+BELOW = 4
+"""Lines below the blocks: two for what was understood, the line to type, the keys."""
 
 
-class Worksheet(WorksheetKeys):
+class Worksheet(WorksheetTyping):
     """One case at work. Enter stores what is understood; on an empty line it does what comes first."""
 
     KEYS = "worksheet"
@@ -50,6 +50,9 @@ class Worksheet(WorksheetKeys):
         self.older = 0
         self.again = False
         self.is_weighing = False
+        self.gate_now: GateState | None = None
+        self.was_read: set[str] = set()
+        """States behind the shut gate that were read before, as the technician said."""
 
     def body(self) -> list[Widget]:
         """Return the blocks, what was understood, and the line to type."""
@@ -113,7 +116,8 @@ class Worksheet(WorksheetKeys):
         head = blocks.machine_lines(sheet, visit.number, visit.knowledge, room)
         stop = blocks.stop_lines(sheet, visit.knowledge, room)
         if self.weighed is None:
-            return [*head, *stop, row("gate", ("SHUT", STRONG)), row("", ("weighing ...", FAINT))]
+            waits = "weighing ..." if self.is_weighing else "not weighed; readings are stored all the same"
+            return [*head, *stop, row("gate", ("SHUT", STRONG)), row("", (waits, FAINT))]
         answer = self.weighed.diagnosis
         findings = blocks.finding_lines(answer, visit.knowledge, room)
         reads = blocks.reading_lines(blocks.readings_of(sheet, answer)[self.older :], room)
@@ -146,25 +150,33 @@ class Worksheet(WorksheetKeys):
             out += block
         return out
 
-    def first_words(self) -> str:
-        """Return what must come before the reading, in words."""
+    def first_words(self) -> tuple[str, str]:
+        """Return what must come before the reading, in words, with its style."""
         first = self.wanted_first()
-        return {
+        if first == "shut":
+            return "GATE SHUT for this state. Enter only what was read before; energise nothing for it.", STOP
+        words = {
             "isolation": "Enter: the isolation record comes first",
             "acknowledge": "Enter: hazards of this state to read and accept first",
-            "": "",
-        }[first]
+        }
+        return words.get(first, ""), WATCH
 
     def wanted_first(self) -> str:
-        """Return what must come before the reading: isolation, acknowledge, or nothing."""
+        """Return what must come before the reading: shut, isolation, acknowledge, or nothing."""
         item = self.target
         if item is None or item.state is None:
             return ""
+        if (
+            self.gate_now is not None
+            and self.gate_now.forbids(item.state)
+            and item.state not in self.was_read
+        ):
+            return "shut"
         return self.visit.wants_first(item.state, item.hazards)
 
     def placeholder(self) -> str:
         """Return what the line to type expects."""
-        if self.is_weighing and self.weighed is None:
+        if self.weighed is None and self.chosen is None:
             return ""
         return self.asks_for(self.target)
 
@@ -177,105 +189,11 @@ class Worksheet(WorksheetKeys):
     def show_said(self) -> None:
         """Show what was understood or said last."""
         text, style = self.said
-        self.query_one("#said", Ruled).show(
-            rows("" if not text else "heard", text, self.room, style=style, most=1)
-        )
+        self.query_one("#said", Ruled).show(self.said_lines(text, style))
 
-    # typing
-
-    def on_input_changed(self, event: Input.Changed) -> None:
-        """Say in words what is understood, while it is typed."""
-        text, item = event.value.strip(), self.target
-        self.sure_of = "" if self.sure_of != text else self.sure_of
-        if not text or item is None or item.state is None or text[:1].isalpha():
-            self.say("")
-            return
-        try:
-            understood = self.visit.understand(str(item.measure), item.state, text)
-        except PlatesideError as error:
-            self.say(str(error), FAINT)
-        else:
-            self.say(understood.echo, "")
-
-    def on_input_submitted(self, _event: Input.Submitted) -> None:
-        """Enter: store, or do what comes first."""
-        self.enter()
-
-    def action_enter(self) -> None:
-        """Enter, where the line to type has lost the focus."""
-        self.enter()
-
-    @work(exclusive=True, group="enter")
-    async def enter(self) -> None:
-        """Do the obvious with what stands in the line."""
-        text, item = self.query_one(Input).value.strip(), self.target
-        if item is None:
-            await self.enter_without_target(text)
-        elif item.observation is not None:
-            await self.enter_answer(item, text)
-        elif text and self.is_a_word(text):
-            await self.pick_other(text)
-        elif await self.come_first(item) and text:
-            self.enter_reading(item, text)
-        elif not text:
-            self.say(f"Type {self.asks_for(item)}; F4 where it cannot be taken.", "")
-
-    async def enter_without_target(self, text: str) -> None:
-        """Nothing is proposed: pick another reading, or go on to closing."""
-        if self.weighed is None:
-            self.say("Still weighing; what is typed stays.", "")
-        elif text:
-            await self.pick_other(text)
-        else:
-            await self.close_case()
-
-    @staticmethod
-    def is_a_word(text: str) -> bool:
-        """Whether the text is no value but the beginning of another reading's name."""
-        first = text.split(maxsplit=1)[0].lower()
-        return len(first) > 1 and first.isalpha() and first not in {"ol", "open", "inf", "nan", "none"}
-
-    async def enter_answer(self, item: NextItem, text: str) -> None:
-        """Store a yes or no."""
-        answer = YES_WORDS.get(text.lower())
-        if answer is None:
-            if text and self.is_a_word(text):
-                await self.pick_other(text)
-            else:
-                self.say("y or n; F4 where it cannot be told.", "")
-            return
-        self.visit.observe(str(item.observation), answer)
-        self.stored(f"{question(str(item.observation), self.visit.knowledge)} {'yes' if answer else 'no'}")
-
-    def enter_reading(self, item: NextItem, text: str) -> None:
-        """Understand a reading, ask once about what is hardly possible, and store it."""
-        try:
-            understood = self.visit.understand(str(item.measure), str(item.state), text)
-        except PlatesideError as error:
-            self.say(str(error))
-            return
-        if understood.asks and self.sure_of != text:
-            self.sure_of = text
-            self.say(f"{understood.asks} Enter again keeps it.")
-            return
-        if self.correcting:
-            self.visit.correct(self.correcting, understood)
-        else:
-            self.visit.record(understood)
-        self.stored(understood.echo)
-
-    def stored(self, words: str) -> None:
-        """Go on after something is on disk."""
-        self.clear_line()
-        self.say(f"stored: {words}", FAINT)
-        self.weigh()
-
-    def clear_line(self) -> None:
-        """Make the line ready for the next thing."""
-        self.chosen, self.correcting, self.sure_of = None, "", ""
-        with self.prevent(Input.Changed):
-            self.query_one(Input).value = ""
-        self.plateside.desk.drafts.drop(self.draft_name)
+    def said_lines(self, text: str, style: str) -> list[Content]:
+        """Return always two lines, so that nothing jumps while it is typed."""
+        return fill(rows("heard" if text else "", text, self.room, style=style, most=2), 2)
 
     # weighing
 
@@ -310,6 +228,9 @@ class Worksheet(WorksheetKeys):
         if trouble is not None:
             self.say(self.plateside.trouble(trouble))
         self.weighed = weighed or self.weighed
+        if self.weighed is not None:
+            odds = {fault.id: fault.probability for fault in self.weighed.diagnosis.faults}
+            self.gate_now = gate(self.visit.sheet, self.visit.knowledge, suspects=odds)
         if self.is_mounted:
             self.show_blocks()
 

@@ -7,22 +7,28 @@ from typing import TYPE_CHECKING
 from textual import work
 from textual.widgets import Input
 
-from calc.quantities import MEASURES, arity
-from casebook.bodies import Closed
 from rules.answer import NextItem
 from tui.look import FAINT, WATCH
-from tui.screens.closing import CONFIRMED, ClosingPage
+from tui.screens.closing import ClosingPage
 from tui.screens.gate import Gate, Hazards, IsolationPage, hazards_text, isolation_text
 from tui.screens.note import Note
 from tui.screens.page import Page
 from tui.screens.pick import Choice, Pick
 from tui.screens.reasons import Reasons
 from tui.screens.tick import Tick
-from tui.words import key_words, plain, question
+from tui.screens.worksheet_choices import (
+    closing_of,
+    found_choices,
+    item_of,
+    other_choices,
+    shut_question,
+    stored_choices,
+)
+from tui.words import key_words, question
 
 if TYPE_CHECKING:
     from rules.answer import Diagnosis
-    from tui.compose import Visit
+    from tui.compose import Visit, Weighed
 
 
 class WorksheetKeys(Page[None]):
@@ -32,6 +38,9 @@ class WorksheetKeys(Page[None]):
     chosen: NextItem | None
     correcting: str
     older: int
+    was_read: set[str]
+    sure_of: str
+    weighed: Weighed | None
 
     @property
     def target(self) -> NextItem | None:
@@ -73,6 +82,10 @@ class WorksheetKeys(Page[None]):
         """Return what must come before the reading."""
         raise NotImplementedError
 
+    def asks_for(self, item: NextItem | None) -> str:
+        """Return what belongs into the line for an item."""
+        raise NotImplementedError
+
     # other reading, skip
 
     @work(exclusive=True, group="enter")
@@ -82,11 +95,11 @@ class WorksheetKeys(Page[None]):
 
     async def pick_other(self, typed: str) -> None:
         """Pick a reading from all that suit the machine; the proposed ones stand first."""
-        choices = other_choices(self)
+        choices = other_choices(self.visit, [item.key for item in self.proposals])
         key = await self.app.push_screen_wait(Pick("reading", "Which reading?", choices, typed=typed))
         if key is None:
             return
-        self.chosen = item_of(self, key)
+        self.chosen = item_of(key, self.proposals, self.visit.knowledge)
         with self.prevent(Input.Changed):
             self.query_one(Input).value = ""
         self.say("")
@@ -117,6 +130,12 @@ class WorksheetKeys(Page[None]):
     async def come_first(self, item: NextItem) -> bool:
         """Ask for what must come before a reading; return whether it is there."""
         first = self.wanted_first()
+        if first == "shut":
+            if not await self.app.push_screen_wait(shut_question(str(item.state))):
+                return False
+            self.was_read.add(str(item.state))
+            self.show_blocks()
+            first = self.wanted_first()
         if first == "isolation":
             return await self.isolate()
         if first == "acknowledge":
@@ -216,7 +235,7 @@ class WorksheetKeys(Page[None]):
             self.visit.correct(entry)
             self.stored(f"taken back: {stored[entry].text}")
         elif way == "anew":
-            self.chosen, self.correcting = item_of(self, keys[entry]), entry
+            self.chosen, self.correcting = item_of(keys[entry], self.proposals, self.visit.knowledge), entry
             self.show_blocks()
             self.say("Type the right values; Enter stores the correction.", "")
 
@@ -244,83 +263,3 @@ class WorksheetKeys(Page[None]):
         self.visit.close(closing_of(answer, known.retest if known else ()))
         self.plateside.desk.drafts.drop(self.draft_name)
         self.dismiss(None)
-
-
-def closing_of(answer: dict[str, str], retest: tuple[str, ...]) -> Closed:
-    """Return what the closing page says as what is stored."""
-    minutes = answer["minutes"].replace(",", ".")
-    confirmed = answer["confirmed"]
-    assert confirmed in CONFIRMED
-    return Closed(
-        found=answer["found"],
-        confirmed=confirmed,  # type: ignore[arg-type]
-        done=answer["done"],
-        parts=tuple(part.strip() for part in answer["parts"].split(",") if part.strip()),
-        minutes=float(minutes) if minutes else None,
-        retest=retest,
-        note=answer["note"],
-    )
-
-
-def found_choices(names: dict[str, str], odds: dict[str, float]) -> list[Choice]:
-    """Return the faults to choose from, the likeliest first."""
-    pairs = {fault: " and ".join(names.get(part, plain(part)) for part in fault.split("+")) for fault in odds}
-    every = {**pairs, **{fault: name for fault, name in names.items() if fault not in pairs}}
-    ordered = sorted(every, key=lambda fault: -odds.get(fault, 0.0))
-    return [
-        Choice(f, every[f], word=f"{100 * odds[f]:.0f} %" if odds.get(f, 0) >= 0.01 else "") for f in ordered
-    ]
-
-
-def stored_choices(visit: Visit) -> dict[str, Choice]:
-    """Return what is stored and can be corrected, by entry, newest first."""
-    knowledge = visit.knowledge
-    return {
-        entry: Choice(entry, f"{key_words(key, knowledge)}: {text}", word=key.partition("@")[2] or "seen")
-        for entry, key, text in visit.correctable()
-    }
-
-
-def other_choices(page: WorksheetKeys) -> list[Choice]:
-    """Return all readings and questions that suit the machine, the proposed ones first."""
-    knowledge, kind = page.visit.knowledge, page.visit.kind
-    proposed = [item.key for item in page.proposals]
-    choices = {}
-    for rule in knowledge.readings.values():
-        for state in rule.states:
-            if rule.id in MEASURES and MEASURES[rule.id].suits(kind):
-                key = f"{rule.id}@{state}"
-                choices[key] = Choice(
-                    key,
-                    f"{MEASURES[rule.id].label}, {plain(state)}",
-                    word="proposed" if key in proposed else "",
-                )
-    for seen in knowledge.observations.values():
-        if {"any", kind} & set(seen.kinds):
-            choices[seen.id] = Choice(seen.id, seen.name, word="proposed" if seen.id in proposed else "")
-    order = {key: place for place, key in enumerate(proposed)}
-    return sorted(choices.values(), key=lambda choice: order.get(choice.key, len(order)))
-
-
-def item_of(page: WorksheetKeys, key: str) -> NextItem:
-    """Return a reading or question picked by hand: the proposal where there is one, else what the rules say of it."""
-    for item in page.proposals:
-        if item.key == key:
-            return item
-    measure, at, state = key.partition("@")
-    if not at:
-        return NextItem(observation=key)
-    rule = page.visit.knowledge.readings.get(measure)
-    how = rule.states.get(state) if rule else None
-    if how is None:
-        return NextItem(measure=measure, state=state)
-    return NextItem(measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards)
-
-
-def values_wanted(measure: str, kind: str) -> str:
-    """Return what belongs into the line for a measure, in words."""
-    known = MEASURES.get(measure)
-    if known is None:
-        return "a value with its unit"
-    many = "three values" if arity(measure, kind) == 3 else "one value"
-    return f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"

@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Final
 
 from calc.quantities import MEASURES
 from calc.units import find_unit
-from tui.answer_text import NOTHING_FORBIDS
+from tui.answer_text import NOTHING_FORBIDS, NOTHING_LEFT
 from tui.look import FAINT, STOP, STRONG, VERDICT_STYLE, VERDICT_WORD, WATCH
 from tui.widgets.ruled import INDENT, pad, row, rows
 from tui.widgets.scale import WIDTH as SCALE_WIDTH
@@ -29,10 +29,14 @@ if TYPE_CHECKING:
     from rules.knowledge import Knowledge
 
 WIDE: Final = 110
-BAR: Final = 18
+BAR: Final = 10
+WIDE_BAR: Final = 24
+MOVE_ROOM: Final = 14
 MOVED: Final = 0.015
 """A move of the odds that is worth a word."""
-LEAST: Final = 0.005
+FAULTS: Final = 6
+WIDE_FAULTS: Final = 10
+LEAST: Final = 0.015
 """Odds below this are not worth a line."""
 MARGIN_STATE: Final = {"light_load": "light ld", "no_load": "no load"}
 
@@ -74,8 +78,8 @@ def gate_lines(diagnosis: Diagnosis, room: int) -> list[Content]:
     forbids = [line.because or line.needs for line in energise.lines if line.status == "forbids"]
     needs = [line.needs for line in energise.lines if line.status == "needed"] or list(energise.needs)
     if forbids:
-        return rows("gate", f"SHUT by: {'; '.join(forbids)}", room, style=STOP, most=2)
-    return rows("gate", f"SHUT. Needed: {'; '.join(needs)}", room, style=STRONG, most=2)
+        return rows("gate", f"SHUT by: {'; '.join(forbids)}", room, style=STOP, most=4)
+    return rows("gate", f"SHUT. Needed: {'; '.join(needs)}", room, style=STRONG, most=4)
 
 
 def finding_lines(diagnosis: Diagnosis, knowledge: Knowledge, room: int) -> list[Content]:
@@ -98,7 +102,9 @@ def fault_lines(
     """Return the likely faults: name, a bar, the odds, and how they moved."""
     if diagnosis.model == "none":
         return rows("faults", "this kind of machine has no model yet: limits and gate only", room)
-    likely = [fault for fault in diagnosis.faults if fault.probability >= LEAST] or diagnosis.faults[:1]
+    most = WIDE_FAULTS if room >= WIDE else FAULTS
+    likely = [fault for fault in diagnosis.faults if fault.probability >= LEAST] or list(diagnosis.faults[:1])
+    likely = likely[:most]
     words = ["faults", *[""] * (len(likely) - 1)]
     return [
         _fault_line(fault, moved.get(fault.id, 0.0), knowledge, room, word)
@@ -108,21 +114,22 @@ def fault_lines(
 
 def _fault_line(fault: FaultOdds, moved: float, knowledge: Knowledge, room: int, word: str) -> Content:
     """Return one fault in one line."""
-    bar = round(fault.probability * BAR)
+    bar_room = WIDE_BAR if room >= WIDE else BAR
+    bar = round(fault.probability * bar_room)
     before = fault.probability - moved
     move = ""
     if abs(moved) >= MOVED:
         move = f"{'up' if moved > 0 else 'down'} from {percent(before).strip()}"
-    name_room = room - INDENT - BAR - 8 - 15
+    name_room = room - INDENT - bar_room - MOVE_ROOM - 8
     name = fault.name or fault_name(fault.id, knowledge)
     return row(
         word,
         (pad(name, name_room), STRONG if word else ""),
         " ",
         "=" * bar,
-        ("." * (BAR - bar), FAINT),
+        ("." * (bar_room - bar), FAINT),
         f" {percent(fault.probability)} ",
-        (pad(move, 14), FAINT),
+        (pad(move, MOVE_ROOM), FAINT),
     )
 
 
@@ -166,7 +173,7 @@ def reading_lines(reads: Sequence[Read], room: int) -> list[Content]:
 def _reading_line(read: Read, word: str, room: int) -> Content:
     """Return one reading in one line."""
     wide = room >= WIDE
-    name_room, value_room = (34, 24) if wide else (20, 18)
+    name_room, value_room = (34, 24) if wide else (21, 18)
     values = reading_text(read.reading).replace(" / ", " ")
     verdict, style = _verdict(read)
     rest = room - INDENT - name_room - value_room - SCALE_WIDTH - 3
@@ -232,34 +239,34 @@ def band_number(value: float) -> str:
     return f"{value:.0f}" if abs(value) >= 1000 else f"{value:#.3g}".rstrip(".")
 
 
-def next_lines(item: NextItem | None, first: str, knowledge: Knowledge, room: int) -> list[Content]:
-    """Return the reading to take: what, in which state, leads, why, what to expect. ``first`` comes before it."""
+def next_lines(
+    item: NextItem | None, first: tuple[str, str], knowledge: Knowledge, room: int
+) -> list[Content]:
+    """Return the reading to take: what, in which state, leads, why. ``first``, in its style, comes before it."""
     if item is None:
-        return rows(
-            "next", "nothing that is left to read is worth its minutes; F3 other reading, F8 close", room
-        )
+        return rows("next", NOTHING_LEFT, room)
     name = question(item.observation, knowledge) if item.observation else key_words(item.key, knowledge)
     minutes = f"{item.minutes:g} min" if item.minutes else ""
     name_room = room - INDENT - len(minutes) - 1
     lines = [row("next", (pad(name, name_room), STRONG), " ", minutes)]
-    if first:
-        lines += rows("", first, room, style=WATCH, most=1)
+    if first[0]:
+        lines += rows("first", first[0], room, style=first[1], most=2)
     if item.leads:
-        lines += rows("leads", item.leads, room, most=2)
+        lines += rows("leads", item.leads, room, most=4)
     if item.expect:
-        lines += rows("expect", item.expect, room, most=1)
-    if item.why:
-        lines += rows("because", item.why, room, most=2)
+        lines += rows("expect", item.expect, room, most=2)
     if item.hazards:
         names = [knowledge.hazards[h].name if h in knowledge.hazards else plain(h) for h in item.hazards]
         lines += rows("hazards", "; ".join(names), room, most=1)
     if item.sees:
         lines += rows("meter", item.sees, room, most=1)
+    if item.why:
+        lines += rows("because", item.why, room, most=2)
     return lines
 
 
 def share_out(blocks: Sequence[tuple[Sequence[Content], int]], height: int) -> list[list[Content]]:
-    """Give each block its lines: first everybody's least, then one by one in order, until the page is full."""
+    """Give each block its lines: first everybody's least, then one by one until the page is full."""
     given = [min(least, len(lines)) for lines, least in blocks]
     left = height - sum(given)
     while left > 0 and any(had < len(lines) for had, (lines, _) in zip(given, blocks, strict=True)):

@@ -1,0 +1,159 @@
+"""The visit as plain questions and answers: typed lines in, a closed case out."""
+
+import io
+
+import pytest
+
+from casebook.book import open_casebook
+from tui.drafts import Drafts
+from tui.plate_lines import plate_lines
+
+KIT = 30  # more answers than there are instruments to ask for
+
+
+@pytest.fixture
+def talk(run, monkeypatch):
+    """Hold a visit with typed lines; the input ends after the last."""
+
+    def talk_it(*lines):
+        monkeypatch.setattr("sys.stdin", io.StringIO("".join(f"{line}\n" for line in lines)))
+        return run("--plain")
+
+    return talk_it
+
+
+@pytest.fixture
+def known(run, sheet):
+    """A casebook that knows the wash-water pump."""
+    run("log", sheet("pump_overload"), "--person", "Ines")
+
+
+@pytest.fixture
+def kit(casebook):
+    """A kit that was asked for on an earlier visit."""
+    carried = ["multimeter", "clamp_meter", "insulation_tester", "tachometer"]
+    Drafts(casebook).remember("kit", carried)
+    return carried
+
+
+def newest(casebook):
+    with open_casebook(casebook) as book:
+        return book.case(book.cases(limit=1)[0].id)
+
+
+ISOLATION = ("Ines", "Q4 in the control centre", "yes", "yes", "yes", "yes")
+OPEN_CASE = ("Ines", "WP-104 wash water", "yes", "routine_check")
+
+
+def test_a_whole_case_from_a_known_tag_to_the_closing(talk, known, kit, casebook):
+    done = talk(
+        *OPEN_CASE,
+        "read insulation_resistance isolated 350M", *ISOLATION,
+        "seen shaft_turns_freely yes",
+        "note pump was noisy last week",
+        "close", "healthy", "believed", "25", "greased", "grease, rag",
+    )  # fmt: skip
+    case = newest(casebook)
+    assert done.status == 0
+    assert "is closed" in done.out
+    assert case.status == "closed"
+    assert case.readings[0].what.reading.values[0].number == 350e6
+    assert case.observations == {"shaft_turns_freely": True}
+    assert case.isolation[0].what.proved_dead
+    assert case.closed.what.found == "healthy"
+    assert case.closed.what.parts == ("grease", "rag")
+    assert case.shown.what.faults
+    assert case.kit == tuple(kit)
+
+
+def test_a_machine_that_is_new_is_asked_for_line_by_line(talk, kit, casebook):
+    plate = {"power": "7.5 kW", "voltage": "400", "current": "14.9", "frequency": "50", "connection": "D"}
+    lines = [plate.get(line.field, "") for line in plate_lines("induction_3ph")]
+    talk("Ines", "WP-9", "induction_3ph", *lines, "runs_hot")
+    case = newest(casebook)
+    assert case.machine.nameplate.number("power") == 7500.0
+    assert case.machine.nameplate.current.text == "14.9 A"
+    assert case.machine.nameplate.connection == "delta"
+    assert case.complaint == "runs_hot"
+
+
+def test_a_case_is_not_opened_until_everything_is_asked(talk, kit, casebook):
+    talk("Ines", "WP-9", "induction_3ph", "7.5 kW")
+    with open_casebook(casebook) as book:
+        assert book.cases() == []
+
+
+def test_a_reading_is_echoed_in_words_and_stored(talk, known, kit, casebook):
+    done = talk(*OPEN_CASE, "read insulation_resistance isolated >2G", *ISOLATION)
+    assert "more than 2 gigaohm" in done.out
+    assert newest(casebook).readings[0].what.reading.values[0].kind == "above"
+
+
+def test_no_isolated_reading_without_a_complete_isolation_record(talk, known, kit, casebook):
+    talk(*OPEN_CASE, "read insulation_resistance isolated 350M", "Ines", "Q4", "yes", "yes", "no", "yes")
+    case = newest(casebook)
+    assert case.readings == ()
+    assert not case.isolation[0].what.proved_dead
+
+
+def test_no_energised_reading_until_its_hazards_are_acknowledged(talk, known, kit, casebook):
+    talk(
+        *OPEN_CASE,
+        "read line_current loaded 14.1 14.2 14.0",
+        "no",
+        "read line_current loaded 14.1 14.2 14.0",
+        "yes",
+    )
+    case = newest(casebook)
+    assert len(case.readings) == 1
+    assert case.hazards[0].what.about == "loaded"
+    assert case.hazards[0].what.shown
+
+
+def test_a_doubtful_value_is_asked_about_once(talk, known, kit, casebook):
+    talk(*OPEN_CASE, "read supply_voltage loaded 4000 398 399", "yes", "no")
+    assert newest(casebook).readings == ()
+    talk(*OPEN_CASE, "read supply_voltage loaded 4000 398 399", "yes", "yes")
+    assert newest(casebook).readings[0].what.reading.note == "checked"
+
+
+def test_what_is_no_reading_is_told_and_nothing_is_stored(talk, known, kit, casebook):
+    done = talk(*OPEN_CASE, "read winding_resistance isolated 1.9 1.9")
+    assert "three values" in done.out
+    assert newest(casebook).readings == ()
+
+
+def test_what_is_skipped_is_not_proposed_again(talk, known, kit, casebook):
+    talk(*OPEN_CASE, "skip no ladder")
+    (skipped,) = newest(casebook).skipped
+    assert skipped.what.why == "no ladder"
+
+
+def test_a_reading_can_be_struck_out_and_stays_in_the_log(talk, known, kit, casebook):
+    talk(*OPEN_CASE, "read insulation_resistance isolated 350M", *ISOLATION, "correct", "1", "strike")
+    case = newest(casebook)
+    assert case.readings == ()
+    assert any(line.struck for line in case.lines)
+
+
+def test_an_open_case_is_gone_on_with_by_its_number(talk, known, kit, casebook):
+    number = newest(casebook).number
+    talk("Oskar", number, "seen bearing_noise no")
+    case = newest(casebook)
+    assert case.number == number
+    assert case.observations["bearing_noise"] is False
+    assert case.persons == ("Ines", "Oskar")
+
+
+def test_the_end_of_the_input_leaves_and_keeps_what_was_accepted(talk, known, kit, casebook):
+    done = talk(*OPEN_CASE, "seen hums yes")
+    assert done.status == 0
+    assert "is in the casebook" in done.out
+    assert newest(casebook).observations == {"hums": True}
+
+
+def test_the_kit_is_asked_once(talk, known, casebook):
+    first = talk(*OPEN_CASE, *["yes"] * KIT)
+    second = talk(*OPEN_CASE)
+    assert "asked only once" in first.out
+    assert "asked only once" not in second.out

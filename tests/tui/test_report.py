@@ -1,0 +1,112 @@
+"""The printed sheet: what was read, what it means, who decides; as text and as one HTML page."""
+
+from html.parser import HTMLParser
+
+import pytest
+
+from tui.page import Scale
+from tui.report import scale_svg
+
+VOID = {"meta", "rect", "path", "br"}
+
+
+class Tags(HTMLParser):
+    """Notes every tag and attribute, and whether they close in order."""
+
+    def __init__(self):
+        super().__init__()
+        self.open, self.seen, self.attributes, self.words = [], set(), [], []
+
+    def handle_starttag(self, tag, attrs):
+        self.seen.add(tag)
+        self.attributes += attrs
+        if tag not in VOID:
+            self.open.append(tag)
+
+    def handle_startendtag(self, tag, attrs):
+        self.seen.add(tag)
+        self.attributes += attrs
+
+    def handle_endtag(self, tag):
+        assert self.open.pop() == tag
+
+    def handle_data(self, data):
+        self.words.append(data)
+
+
+@pytest.fixture
+def number(run, sheet):
+    return run("log", sheet("pump_overload"), "--person", "Ines").out.split()[0]
+
+
+def test_the_text_names_what_was_read_with_bands_and_sources(run, number):
+    done = run("report", number)
+    assert done.status == 0
+    for words in (
+        "WP-104 wash water",
+        "18.9 / 19.3 / 19.0 A",
+        "expected",
+        "source",
+        "licensed practice",
+        "Ines",
+    ):
+        assert words in done.out.lower() or words in done.out
+    assert max(len(line) for line in done.out.splitlines()) <= 80
+
+
+def test_the_page_is_whole_and_links_to_nothing(run, number):
+    done = run("report", number, "--html")
+    tags = Tags()
+    tags.feed(done.out)
+    assert tags.open == []
+    assert "svg" in tags.seen
+    assert not tags.seen & {"script", "link", "img", "iframe", "object", "embed"}
+    assert not [value for name, value in tags.attributes if name in {"src", "href"} or name.startswith("on")]
+    assert "@import" not in done.out
+    assert "url(" not in done.out
+
+
+def test_what_somebody_typed_never_becomes_markup(run, tmp_path):
+    path = tmp_path / "odd.yaml"
+    path.write_text(
+        "format: 1\nmachine: {kind: induction_3ph, tag: '<script>alert(1)</script> & [red]x[/red]'}\n"
+        "complaint: runs_hot\n"
+    )
+    number = run("log", str(path)).out.split()[0]
+    page = run("report", number, "--html").out
+    assert "<script" not in page
+    assert "&lt;script&gt;" in page
+    assert "<script>alert(1)</script> & [red]x[/red]" in run("report", number).out
+
+
+def test_the_tag_for_the_repair_shop_has_plate_fault_and_readings(run, number):
+    done = run("report", number, "--tag")
+    assert "REPAIR TAG" in done.out
+    assert "7.5 kW" in done.out
+    assert "suspected" in done.out
+    assert "1.91 / 1.92 / 1.90 ohm" in done.out
+
+
+def test_a_stop_complaint_stands_at_the_head(run, sheet):
+    number = run("log", sheet("shock_from_frame")).out.split()[0]
+    assert "! STOP" in "\n".join(run("report", number).out.splitlines()[:5])
+    assert 'class="stop"' in run("report", number, "--html").out
+
+
+def test_a_case_that_is_not_there_is_told(run, number):
+    done = run("report", "C-ZZZZZZ")
+    assert (done.status, done.out) == (1, "")
+    assert "C-ZZZZZZ" in done.err
+
+
+def test_a_reading_outside_its_band_is_drawn_outside_the_box():
+    picture = scale_svg(Scale(low=10.0, high=12.0, read=(15.0,)), width=120)
+    box_x, box_width = (
+        float(picture.split(f' {name}="')[n].split('"')[0]) for name, n in (("x", 1), ("width", 2))
+    )
+    stroke = float(picture.rsplit('d="M', 1)[1].split()[0])
+    assert stroke > box_x + box_width
+
+
+def test_an_open_circuit_does_not_break_the_picture():
+    assert "inf" not in scale_svg(Scale(low=1.0, high=2.0, read=(float("inf"), 1.5)))

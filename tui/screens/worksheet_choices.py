@@ -1,0 +1,106 @@
+"""What the worksheet offers to pick from, and what a pick means."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from calc.quantities import MEASURES, arity
+from casebook.bodies import Closed
+from rules.answer import NextItem
+from tui.screens.ask import Ask
+from tui.screens.closing import CONFIRMED
+from tui.screens.pick import Choice
+from tui.words import key_words, plain
+
+if TYPE_CHECKING:
+    from collections.abc import Sequence
+
+    from rules.knowledge import Knowledge
+    from tui.compose import Visit
+
+
+def shut_question(state: str) -> Ask:
+    """Return what is asked before a reading behind the shut gate is entered."""
+    return Ask(
+        f"The gate is shut for the state '{plain(state)}'. Was it read already, on a running machine?",
+        "y enters a reading that is there. n: nothing is energised for it; F6 shows the gate.",
+    )
+
+
+def closing_of(answer: dict[str, str], retest: tuple[str, ...]) -> Closed:
+    """Return what the closing page says as what is stored."""
+    minutes = answer["minutes"].replace(",", ".")
+    confirmed = answer["confirmed"]
+    assert confirmed in CONFIRMED
+    return Closed(
+        found=answer["found"],
+        confirmed=confirmed,  # type: ignore[arg-type]
+        done=answer["done"],
+        parts=tuple(part.strip() for part in answer["parts"].split(",") if part.strip()),
+        minutes=float(minutes) if minutes else None,
+        retest=retest,
+        note=answer["note"],
+    )
+
+
+def found_choices(names: dict[str, str], odds: dict[str, float]) -> list[Choice]:
+    """Return the faults to choose from, the likeliest first."""
+    pairs = {fault: " and ".join(names.get(part, plain(part)) for part in fault.split("+")) for fault in odds}
+    every = {**pairs, **{fault: name for fault, name in names.items() if fault not in pairs}}
+    ordered = sorted(every, key=lambda fault: -odds.get(fault, 0.0))
+    return [
+        Choice(f, every[f], word=f"{100 * odds[f]:.0f} %" if odds.get(f, 0) >= 0.01 else "") for f in ordered
+    ]
+
+
+def stored_choices(visit: Visit) -> dict[str, Choice]:
+    """Return what is stored and can be corrected, by entry, newest first."""
+    knowledge = visit.knowledge
+    return {
+        entry: Choice(entry, f"{key_words(key, knowledge)}: {text}", word=key.partition("@")[2] or "seen")
+        for entry, key, text in visit.correctable()
+    }
+
+
+def other_choices(visit: Visit, proposed: Sequence[str]) -> list[Choice]:
+    """Return all readings and questions that suit the machine, the proposed ones first."""
+    knowledge, kind = visit.knowledge, visit.kind
+    choices = {}
+    for rule in knowledge.readings.values():
+        for state in rule.states:
+            if rule.id in MEASURES and MEASURES[rule.id].suits(kind):
+                key = f"{rule.id}@{state}"
+                choices[key] = Choice(
+                    key,
+                    f"{MEASURES[rule.id].label}, {plain(state)}",
+                    word="proposed" if key in proposed else "",
+                )
+    for seen in knowledge.observations.values():
+        if {"any", kind} & set(seen.kinds):
+            choices[seen.id] = Choice(seen.id, seen.name, word="proposed" if seen.id in proposed else "")
+    order = {key: place for place, key in enumerate(proposed)}
+    return sorted(choices.values(), key=lambda choice: order.get(choice.key, len(order)))
+
+
+def item_of(key: str, proposals: Sequence[NextItem], knowledge: Knowledge) -> NextItem:
+    """Return what was picked by hand: the proposal where there is one, else what the rules say of it."""
+    for item in proposals:
+        if item.key == key:
+            return item
+    measure, at, state = key.partition("@")
+    if not at:
+        return NextItem(observation=key)
+    rule = knowledge.readings.get(measure)
+    how = rule.states.get(state) if rule else None
+    if how is None:
+        return NextItem(measure=measure, state=state)
+    return NextItem(measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards)
+
+
+def values_wanted(measure: str, kind: str) -> str:
+    """Return what belongs into the line for a measure, in words."""
+    known = MEASURES.get(measure)
+    if known is None:
+        return "a value with its unit"
+    many = "three values" if arity(measure, kind) == 3 else "one value"
+    return f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"
