@@ -33,7 +33,9 @@ class EffectUse(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields
 class Spread(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """How a reading that no circuit predicts is spread: log-normal or normal.
 
-    ``factor`` is one sigma of the log-normal as a ratio. ``median`` is text with a unit. Give ``factor`` or ``sigma`` (text with a unit), not both.
+    ``median`` is text with a unit. Give either ``factor``, one sigma of the log-normal
+    as a ratio, or ``sigma``, one of the normal as text with a unit. Of a reading with
+    three values it is the spread of the worst.
     """
 
     median: str
