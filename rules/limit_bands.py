@@ -21,11 +21,16 @@ def band_of(limit: Limit, value: float) -> LimitBand:
     if math.isnan(value):
         return NORMAL
     for band in limit.bands:
-        under = band.below is None or value < amount(band.below)
-        over = band.above is None or value > amount(band.above)
+        under = band.below is None or _beyond(amount(band.below), value)
+        over = band.above is None or _beyond(value, amount(band.above))
         if under and over:
             return band
     return NORMAL
+
+
+def _beyond(high: float, low: float) -> bool:
+    """Whether one value lies above another by more than the last bits of a division."""
+    return high > low and not math.isclose(high, low, rel_tol=1e-9)
 
 
 def concerns(limit: Limit, facts: Facts) -> bool:
