@@ -30,7 +30,12 @@ class Fields:
     """One mapping of the document: hands out its fields and notes what is wrong with them."""
 
     def __init__(
-        self, document: Document, path: tuple[Step, ...], data: Plain, problems: list[Problem]
+        self,
+        document: Document,
+        path: tuple[Step, ...],
+        data: Plain,
+        problems: list[Problem],
+        example: str = "kind: induction_3ph",
     ) -> None:
         self.document = document
         self.path = path
@@ -39,7 +44,7 @@ class Fields:
         if isinstance(data, dict):
             self.data = {str(key): value for key, value in data.items()}
         elif data is not None:
-            self.wrong("", _kind(data), "fields with names, such as kind: induction_3ph")
+            self.wrong("", _kind(data), f"fields with names, such as {{{example}}}")
 
     def wrong(self, field: str, given: str, allowed: str, *, step: int | None = None) -> None:
         """Note a problem with a field."""
@@ -59,9 +64,27 @@ class Fields:
             if name not in known:
                 self.wrong(clip(name, 40), "", f"no such field; {did_you_mean(name, known)}")
 
-    def inner(self, field: str) -> Fields:
+    def inner(self, field: str, example: str = "kind: induction_3ph") -> Fields:
         """Return a mapping inside this one, empty where it is not given."""
-        return Fields(self.document, (*self.path, field), self.data.get(field), self.problems)
+        return Fields(self.document, (*self.path, field), self.data.get(field), self.problems, example)
+
+    def entry(self, field: str, index: int, example: str) -> Fields | None:
+        """Return one mapping of a list, or None where it is something else."""
+        listed = self.data.get(field)
+        data = listed[index] if isinstance(listed, list) else None
+        if not isinstance(data, dict):
+            self.wrong(field, _kind(data), f"fields with names, such as {{{example}}}", step=index)
+            return None
+        found = Fields(self.document, (*self.path, field, index), data, self.problems, example)
+        return None if found.torn() else found
+
+    def torn(self) -> bool:
+        """Note a name that is part of a number: between braces a comma parts the fields."""
+        for name in self.data:
+            if name[:1].isdigit():
+                self.wrong(clip(name, 40), "", "a comma parts the fields here: write 1455 rpm, or 1.455 rpm")
+                return True
+        return False
 
     def items(self, field: str) -> Iterable[tuple[int, Plain]]:
         """Return the entries of a list, none where it is not given."""
@@ -148,7 +171,10 @@ class Fields:
             return None
         texts = found if isinstance(found, list) else [found]
         if len(texts) != wanted:
-            self._count(field, len(texts), wanted, what)
+            torn = len(texts) > wanted and any(str(item).strip().isdigit() for item in texts)
+            self._count(
+                field, len(texts), wanted, what, "; a comma parts the values: write 1.2 ohm" if torn else ""
+            )
             return None
         read = [MISSING if t is None else self._item(t, field, dimension, i) for i, t in enumerate(texts)]
         if all(value is MISSING for value in read):
@@ -166,12 +192,12 @@ class Fields:
             str(item), field, dimension, step=step if isinstance(self.data[field], list) else None
         )
 
-    def _count(self, field: str, given: int, wanted: int, what: str) -> None:
+    def _count(self, field: str, given: int, wanted: int, what: str, hint: str) -> None:
         if wanted == 1:
-            self.wrong(field, f"{given} values", f"one value of {what}")
+            self.wrong(field, f"{given} values", f"one value of {what}{hint}")
         else:
             names = "[…, …, …] in the order of the phases, null for one that was not read"
-            self.wrong(field, f"{given} of three values", f"three values of {what}: {names}")
+            self.wrong(field, f"{given} of three values", f"three values of {what}: {names}{hint}")
 
     def _scalar(self, field: str, wanted: str) -> str | None:
         found = self.data.get(field)
@@ -187,4 +213,6 @@ def _kind(found: object) -> str:
         return "a mapping"
     if isinstance(found, list):
         return "a list"
+    if found is None:
+        return "null"
     return clip(found) or "empty text"

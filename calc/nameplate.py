@@ -52,6 +52,14 @@ class PlateRemark(msgspec.Struct, frozen=True, kw_only=True):
     instead: str = ""
     suggestion: str = ""
 
+    def __str__(self) -> str:
+        """Say it in one line: what contradicts, and the likely slip."""
+        return (
+            f"{self.says}. {self.suggestion[:1].upper()}{self.suggestion[1:]}"
+            if self.suggestion
+            else self.says
+        )
+
 
 def check_plate(machine: Machine) -> list[PlateRemark]:
     """Compare the fields of a nameplate with each other.
@@ -82,6 +90,31 @@ def check_plate(machine: Machine) -> list[PlateRemark]:
     slips = explanations(plate, machine.nameplate, apart) if apart > 1.0 else []
     remarks = [_remark(finding, slips, machine.nameplate) for finding in wrong]
     return [*remarks, *_ratings(machine.nameplate)]
+
+
+def impossible(machine: Machine) -> PlateRemark | None:
+    """Return the contradiction that no machine can have, whatever its make: output far from its input.
+
+    Parameters
+    ----------
+    machine : Machine
+        Kind and nameplate.
+
+    Returns
+    -------
+    PlateRemark or None
+        The remark on output against volts and amps, where they lie further apart than
+        ``impossible_times`` of ``tables/plate_checks.yaml``; motors below 500 W are left alone.
+
+    """
+    n = plate_of(machine).numbers
+    if not {"power", "voltage", "current"} <= n.keys() or n["power"] < 500.0:
+        return None
+    phases = math.sqrt(3.0) if machine.kind in {"induction_3ph", "induction_wound_rotor"} else 1.0
+    apart = abs(math.log(n["power"] / (phases * n["voltage"] * n["current"] * limit("usual_share"))))
+    if apart < math.log(limit("impossible_times")):
+        return None
+    return next((remark for remark in check_plate(machine) if remark.id == "power_balance"), None)
 
 
 def _remark(finding: Finding, slips: list[Slip], nameplate: Nameplate) -> PlateRemark:

@@ -48,8 +48,8 @@ def _reading_limit(name: str) -> float:
 
 
 @cache
-def _highest(measure: str) -> Value | None:
-    listed = table("reading_limits")["highest"]
+def _highest(section: str, measure: str) -> Value | None:
+    listed = table("reading_limits")[section]
     text = listed.get(measure) if isinstance(listed, dict) else None
     return None if text is None else parse_value(str(text), dimension=MEASURES[measure].dimension)
 
@@ -93,6 +93,17 @@ def check_reading(fields: Fields, reading: Reading, machine: Machine) -> None:
         and reading.state != "isolated"
     ):
         fields.wrong("state", reading.state, f"isolated: {measure.label} is never read on a live machine")
+    highest = _highest("never_above", measure.id)
+    if highest is not None and any(
+        value.number > highest.number for value in reading.values if value.is_read
+    ):
+        allowed = (
+            "a level below the line, such as -38 dB"
+            if measure.dimension == "level"
+            else f"at most {highest.text}"
+        )
+        fields.wrong("value", clip(reading.values[0].text), allowed)
+        return
     if reading.note and re.search(rf"\b{CHECKED}\b", reading.note, re.IGNORECASE):
         return
     for index, value in enumerate(reading.values):
@@ -104,15 +115,11 @@ def check_reading(fields: Fields, reading: Reading, machine: Machine) -> None:
 def _doubt(reading: Reading, value: Value, machine: Machine) -> str:
     """Return why a value is doubted, or nothing."""
     measure = MEASURES[reading.measure]
-    highest = _highest(measure.id)
+    highest = _highest("asked_above", measure.id)
     if measure.usual_unit == "Mohm" and value.unit == "mohm" and math.isfinite(value.number):
         return "mohm is a thousandth of an ohm; insulation is read in Mohm"
     if highest is not None and value.number > highest.number:
-        return (
-            "sidebands lie below the line: write -38 dB"
-            if measure.dimension == "level"
-            else f"at most {highest.text}"
-        )
+        return f"at most {highest.text} is read"
     rated = _rated(measure.id, machine)
     if rated is None:
         return ""
@@ -135,7 +142,7 @@ def _rated(measure: str, machine: Machine) -> Value | None:
         candidates.append(machine.supply.nominal_voltage)
     if field == "speed":
         candidates.append(plate.max_speed)
-    known = [value for value in candidates if value is not None]
+    known = [value for value in candidates if value is not None and value.number > 0.0]
     return max(known, key=lambda value: value.number, default=None)
 
 

@@ -9,12 +9,14 @@ from calc import vocabulary as words
 from calc.errors import Problem, clip
 from calc.fields import Fields, did_you_mean
 from calc.lookup import code_letters
+from calc.nameplate import impossible
 from calc.plausible import check_plate_values, check_reading
 from calc.quantities import DC_KINDS, KINDS, MEASURES, STATES, Measure, arity
 from calc.safe_yaml import Document
 from calc.sheet import CaseSheet, Machine, Nameplate, Rating, Reading, Supply, Value
 
 _KNOWN_WELL: Final = DC_KINDS | {"induction_3ph", "induction_1ph"}
+_NEEDED: Final = frozenset({"format", "machine", "complaint"})
 _SHEET: Final = ("format", "machine", "kit", "complaint", "readings", "observations")
 _MACHINE: Final = (
     "tag", "kind", "nameplate", "supply", "starter", "load", "mount", "hazardous_area", "brake",
@@ -40,7 +42,7 @@ class Decoder:
 
     def sheet(self) -> CaseSheet | None:
         """Return the sheet, or None where ``problems`` says why not."""
-        if not isinstance(self.document.data, dict):
+        if not isinstance(self.document.data, dict) or not _NEEDED & self.document.data.keys():
             self._no_sheet()
             return None
         top = Fields(self.document, (), self.document.data, self.problems)
@@ -53,6 +55,7 @@ class Decoder:
         readings = tuple(r for r in (self._reading(top, i, machine) for i, _ in top.items("readings")) if r)
         observations = self._observations(top)
         kit = self._kit(top)
+        self.problems.sort(key=lambda problem: problem.line or 0)
         if self.problems or complaint is None:
             return None
         return CaseSheet(
@@ -61,7 +64,8 @@ class Decoder:
 
     def _no_sheet(self) -> None:
         data = self.document.data
-        given = "an empty file" if data is None else "a list" if isinstance(data, list) else clip(data)
+        kinds = {"NoneType": "an empty file", "list": "a list", "dict": "fields of something else"}
+        given = kinds.get(type(data).__name__) or clip(data)
         allowed = "a case sheet: format, machine, complaint, readings, observations"
         self.problems.append(
             Problem(self.document.file, "", given, allowed, self.document.line(()) if data else None)
@@ -81,10 +85,11 @@ class Decoder:
         kind = fields.word("kind", KINDS)
         if fields.data.get("kind") is None:
             fields.wrong("kind", "nothing", f"the machine's kind: {', '.join(KINDS)}")
-        load = fields.inner("load")
+        load = fields.inner("load", "type: conveyor")
         load.refuse_unknown({"type"})
         supply = self._supply(fields)
-        return Machine(
+        before = len(self.problems)
+        machine = Machine(
             kind=kind or "",
             tag=fields.text("tag", longest=words.TAG_LENGTH),
             nameplate=self._plate(fields, kind or "", supply),
@@ -96,16 +101,22 @@ class Decoder:
             brake=fields.flag("brake"),
             thermal_protector=fields.word("thermal_protector", words.PROTECTORS),
         )
+        if len(self.problems) == before and (remark := impossible(machine)):
+            plate = fields.inner("nameplate")
+            plate.wrong(
+                remark.likely or "power", remark.says, remark.suggestion or "fields that belong together"
+            )
+        return machine
 
     @staticmethod
     def _supply(machine: Fields) -> Supply:
-        fields = machine.inner("supply")
+        fields = machine.inner("supply", "source: mains")
         fields.refuse_unknown(("source", *words.SUPPLY_DIMENSION))
         values = {name: single(fields, name, dimension) for name, dimension in words.SUPPLY_DIMENSION.items()}
         return Supply(source=fields.word("source", words.SOURCES), **values)
 
     def _plate(self, machine: Fields, kind: str, supply: Supply) -> Nameplate:
-        fields = machine.inner("nameplate")
+        fields = machine.inner("nameplate", "voltage: 400 V")
         fields.refuse_unknown(_PLATE)
         found: dict[str, Any] = {
             name: single(fields, name, _dimension(fields, name, dimension, kind))
@@ -116,7 +127,7 @@ class Decoder:
         found["code_letter"] = letter(fields, "code_letter", code_letters())
         found["design_letter"] = letter(fields, "design_letter", words.DESIGN_LETTERS)
         found["insulation_class"] = insulation_class(fields)
-        ratings = tuple(self._rating(fields, i) for i, _ in fields.items("ratings"))
+        ratings = tuple(r for r in (self._rating(fields, i) for i, _ in fields.items("ratings")) if r)
         found["ratings"] = ratings
         if ratings:
             fill_rating_in_use(fields, found, supply)
@@ -124,14 +135,11 @@ class Decoder:
         check_plate_values(fields, plate, kind)
         return plate
 
-    def _rating(self, plate: Fields, index: int) -> Rating:
-        listed = plate.data["ratings"]
-        fields = Fields(
-            self.document,
-            (*plate.path, "ratings", index),
-            listed[index] if isinstance(listed, list) else None,
-            self.problems,
-        )
+    @staticmethod
+    def _rating(plate: Fields, index: int) -> Rating | None:
+        fields = plate.entry("ratings", index, "voltage: 230 V, current: 28 A")
+        if fields is None:
+            return None
         fields.refuse_unknown(words.RATING_FIELDS)
         found: dict[str, Any] = {
             name: single(fields, name, words.PLATE_DIMENSION[name])
@@ -143,13 +151,9 @@ class Decoder:
         return Rating(**found, connection=fields.word("connection", words.CONNECTIONS))
 
     def _reading(self, top: Fields, index: int, machine: Machine) -> Reading | None:
-        listed = top.data["readings"]
-        fields = Fields(
-            self.document,
-            ("readings", index),
-            listed[index] if isinstance(listed, list) else None,
-            self.problems,
-        )
+        fields = top.entry("readings", index, "measure: speed, state: loaded, value: 1455 rpm")
+        if fields is None:
+            return None
         before = len(self.problems)
         fields.refuse_unknown(_READING)
         measure = fields.word("measure", MEASURES)
@@ -182,7 +186,7 @@ class Decoder:
 
     @staticmethod
     def _observations(top: Fields) -> dict[str, bool]:
-        fields = top.inner("observations")
+        fields = top.inner("observations", "hums: yes")
         found: dict[str, bool] = {}
         for name in fields.data:
             if fields.named(name) and (seen := fields.flag(name)) is not None:

@@ -125,7 +125,7 @@ class Twin(Protocol):
         """
 
     def plate_misfit(self, z: Floats) -> Floats:
-        """Plate fields that the latents do not meet by construction, as residuals of unit sigma: (rows, n)."""
+        """Plate fields that the latents do not meet by construction, in sigmas: (rows, n)."""
 
     def possible(self, z: Floats, attributes: Mapping[str, Floats]) -> Mapping[str, Floats]:
         """For each state, 1.0 where such a machine can be in it, else 0.0: shape (rows,)."""

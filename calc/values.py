@@ -241,7 +241,7 @@ def _why_no_unit(word: str, dimension: str) -> str:
 
 
 def _why_no_number(clean: str, dimension: str) -> str:
-    if re.match(r"[+-]?(nan|inf)", clean, re.IGNORECASE):
+    if re.match(r"[+-]?\.?(nan|inf)", clean, re.IGNORECASE):
         return f"{_wanted(dimension)}; not a number (an open circuit is written open, a value not read null)"
     return _wanted(dimension)
 

@@ -52,6 +52,7 @@ def diagnose(
     -------
     Diagnosis
         A kind without a model gets limits, gate and cautions, and ``model`` says "none".
+
     """
     twin = twin_of(sheet.machine)
     crossed = findings(sheet, knowledge)

@@ -119,6 +119,7 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
 
 NAMES: Final = tuple(_EFFECTS)
 _RUBBING = Severity("friction", 0.1, 0.5)
+_IMPOSSIBLE = 1e-6  # weight of an effect that this machine cannot show: plain DC has no pulses to lose
 _BRIDGE_LOSS = (0.38, 0.52)  # half of a single-phase bridge gone
 
 
@@ -133,6 +134,7 @@ def modes(plate: Plate, effect: str, severity: tuple[float, float] | None = None
     """
     entry = _EFFECTS[effect]
     low, high = severity or _range(plate, effect, entry)
+    scale = _IMPOSSIBLE if effect == "missing_pulses" and plate.source == "dc" else 1.0
     found = []
     for variant, weight, fixed in entry.ways(plate):
         given: tuple[Severity, ...] = ()
@@ -140,7 +142,7 @@ def modes(plate: Plate, effect: str, severity: tuple[float, float] | None = None
             given = (Severity(entry.attribute, low, high),)
         elif effect == "stall" and variant == "rubbing":
             given = (_RUBBING,)
-        found.append(Mode(effect=effect, variant=variant, weight=weight, fixed=fixed, severity=given))
+        found.append(Mode(effect=effect, variant=variant, weight=weight * scale, fixed=fixed, severity=given))
     return tuple(found)
 
 

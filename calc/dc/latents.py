@@ -12,7 +12,16 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from calc.dc.plate import COILS, COPPER_PER_K, PLATE_AMBIENT_C, RISE_K, Plate, usual
+from calc.dc.plate import (
+    COILS,
+    COPPER_PER_K,
+    FIELD_POWER,
+    LOSS_RATIO,
+    PLATE_AMBIENT_C,
+    RISE_K,
+    Plate,
+    usual,
+)
 from calc.twin import Floats, standard_normal_cdf
 
 _ALWAYS = (
@@ -122,22 +131,31 @@ class _Draw:
 
 
 def _base(plate: Plate, draw: _Draw) -> dict[str, Floats]:
-    """Rated volts, amperes and speed, and the loss ratio."""
+    """Rated volts, amperes and speed."""
     volt = draw.spread("plate_voltage", plate.voltage_spread, plate.voltage_v)
-    loss = draw.spread("loss", plate.loss_spread, plate.loss_ratio)
-    power = draw.spread("plate_power", plate.power_spread, plate.power_w)
     return {
         "volt": volt,
-        "ampere": power * (1.0 + loss) / volt,
+        "ampere": plate.power_w * _size(plate, draw) * (1.0 + _loss(plate, draw)) / volt,
         "rpm": draw.spread("speed", plate.speed_spread, plate.speed_rpm),
     }
 
 
+def _size(plate: Plate, draw: _Draw) -> Floats:
+    """Output over the plate's central output: 1 unless the plate leaves the size open."""
+    return draw.spread("plate_power", plate.power_spread)
+
+
+def _loss(plate: Plate, draw: _Draw) -> Floats:
+    """Losses over output; where the size is open they follow it."""
+    usual_at_size = plate.loss_ratio * _size(plate, draw) ** LOSS_RATIO[1]
+    return np.minimum(draw.spread("loss", plate.loss_spread) * usual_at_size, 1.5)
+
+
 def _armature(plate: Plate, draw: _Draw, base: Mapping[str, Floats]) -> dict[str, Floats]:
     """Split the losses into copper, brushes and rotation; the circuit follows."""
-    loss = draw.spread("loss", plate.loss_spread, plate.loss_ratio)
+    loss = _loss(plate, draw)
     lost = loss / (1.0 + loss)
-    rotating = lost * (0.27 + 0.25 * draw.share("rotating_share"))
+    rotating = lost * (0.32 + 0.22 * draw.share("rotating_share"))
     copper = lost - rotating
     drop = np.where(base["volt"] < 60.0, 0.6, 1.9) / base["volt"]
     brush = 0.5 * copper * (1.0 - np.exp(-drop / (0.5 * copper)))
@@ -162,7 +180,7 @@ def _series_share(plate: Plate, draw: _Draw) -> Floats:
     if not plate.has_series_field:
         return np.zeros(len(draw("loss")))
     usual_ratio = 0.10 if plate.kind == "dc_compound" else 0.30
-    ratio = draw.spread("series_ohm", 0.6 if plate.kind == "dc_compound" else 0.4, usual_ratio)
+    ratio = draw.spread("series_ohm", 0.75 if plate.kind == "dc_compound" else 0.4, usual_ratio)
     return np.asarray(ratio / (1.0 + ratio))
 
 
@@ -187,8 +205,8 @@ def _duty(plate: Plate, draw: _Draw) -> dict[str, Floats]:
         "source": _source(plate, draw),
         "ambient": 22.0 + 10.0 * draw("ambient"),
         "rise": draw.spread("rise", 0.13, RISE_K),
-        "frame": draw.spread("frame", 0.22, 0.52),
-        "bars": draw.spread("commutator", 0.15, usual((*COILS, 0.0), plate.power_w)),
+        "frame": draw.spread("frame", 0.22, 0.45),
+        "bars": draw.spread("commutator", 0.15, usual((*COILS, 0.0), plate.power_w)) * _size(plate, draw) ** COILS[1],
         "evenness": draw.spread("commutator", 0.4, 1.3),
     }
 
@@ -221,9 +239,11 @@ def _field(plate: Plate, draw: _Draw, base: Mapping[str, Floats]) -> dict[str, F
     if plate.kind != "dc_separately_excited" and plate.voltage_spread > 0.0:
         supply = supply * base["volt"] / plate.voltage_v
     current = draw.spread("coil", plate.field_current_spread, plate.field_current_a)
-    free = 0.42 * draw.share("margin", -0.4) ** 2
+    if plate.field_current_spread > 0.1:
+        current = current * _size(plate, draw) ** (1.0 + FIELD_POWER[1]) * plate.field_voltage_v / supply
+    free = 0.36 * draw.share("margin", -0.45)
     separate = plate.kind == "dc_separately_excited"
-    held = np.clip(free / 0.12, 0.0, 1.0) if separate else np.zeros_like(free)
+    held = np.clip((free - 0.05) / 0.1, 0.0, 1.0) if separate else np.zeros_like(free)
     held = held * held * (3.0 - 2.0 * held)
     winding = (1.0 - free) * supply / current / hot
     return {

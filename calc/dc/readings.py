@@ -129,23 +129,33 @@ def _ripple_hz(bench: Bench, ask: Ask) -> Floats:
     )
 
 
-def _bar_high(bench: Bench, ask: Ask) -> Floats:
-    """Highest deviation upward of the drop between bars, % of the mean; an open coil shows nearly all of it."""
+def _bar_rise(bench: Bench) -> Floats:
+    """Highest drop between bars above the mean, %; an open coil shows nearly all of the drop."""
     m, a = bench.machine, bench.attributes
-    opened = np.where(a["coil_open"] > 0.0, 260.0 * (m.bars / 60.0) ** 0.3, 0.0)
-    return np.asarray(m.evenness + opened + a["unevenness"] * (0.5 + 4.0 * np.minimum(a["brush_ohm"], 0.3)))
+    opened = np.where(a["coil_open"] > 0.0, 260.0 * (m.bars / 60.0) ** 0.3 * m.evenness / 1.3, 0.0)
+    uneven = a["unevenness"] * (0.5 + 4.0 * np.minimum(a["brush_ohm"], 0.3))
+    return np.asarray(m.evenness + opened + uneven)
+
+
+def _bar_fall(bench: Bench) -> Floats:
+    """Lowest drop between bars below the mean, %; a shorted coil drops nothing."""
+    m, a = bench.machine, bench.attributes
+    fallen = 90.0 * (1.0 - np.exp(-a["coil_shorted"] * m.bars)) + 0.5 * a["unevenness"]
+    return np.minimum(m.evenness + fallen, 100.0)
+
+
+def _bar_high(bench: Bench, ask: Ask) -> Floats:
+    """Highest drop between bars, % of the mean."""
+    return np.asarray(100.0 + _bar_rise(bench))
 
 
 def _bar_low(bench: Bench, ask: Ask) -> Floats:
-    """Lowest deviation of the drop between bars, % of the mean, negative; a shorted coil drops nothing."""
-    m, a = bench.machine, bench.attributes
-    coils = a["coil_shorted"] * m.bars
-    fallen = 90.0 * (1.0 - np.exp(-coils)) + 0.5 * a["unevenness"]
-    return np.asarray(-np.minimum(m.evenness + fallen, 100.0))
+    """Lowest drop between bars, % of the mean."""
+    return np.asarray(100.0 - _bar_fall(bench))
 
 
 def _bar_spread(bench: Bench, ask: Ask) -> Floats:
-    return np.maximum(_bar_high(bench, ask), -_bar_low(bench, ask))
+    return np.maximum(_bar_rise(bench), _bar_fall(bench))
 
 
 def _ambient(bench: Bench, ask: Ask) -> Floats:

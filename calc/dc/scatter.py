@@ -33,7 +33,7 @@ _LEVEL: Final = {
     "ripple_frequency": 0.08,
     "open_circuit_voltage": 0.012,
     "bar_drop_spread": 0.22,
-    "bar_drop_max": 0.30,
+    "bar_drop_max": 0.04,
     "starting_time": 0.9,
 }
 _IN_STATE: Final = {
@@ -86,7 +86,7 @@ def model_error(plate: Plate, ask: Ask) -> ModelError:
         level = _RESTING_TEMPERATURE if ask.state == "isolated" else _TEMPERATURES[ask.measure]
         return ModelError(level=1.5 if ask.measure == "ambient_temperature" else level)
     if ask.measure == "bar_drop_min":
-        return ModelError(level=6.0)
+        return ModelError(level=5.0)
     if ask.measure == "open_circuit_voltage" and ask.speed_rpm is None and plate.spun_rpm is None:
         return ModelError(level=0.5)
     return ModelError(level=_IN_STATE.get(ask.key, _LEVEL.get(ask.measure, 0.1)))

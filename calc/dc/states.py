@@ -134,11 +134,12 @@ class Bench:
         load = np.where(a["torque"] > 0.0, a["torque"], m.load)
         share = {"no_load": 0.0, "light_load": LIGHT_LOAD, "loaded": 1.0}[name] * load
         rise = {"no_load": 0.3 + 0.0 * load, "light_load": 0.35 + 0.0 * load}.get(name, 0.25 + 0.5 * np.minimum(load, 1.5))
-        field_a, field_v = self.field(name)
+        field = self.field(name)
         circuit = Armature(self.supply, self.resistance(rise), m.brush, m.emf)
-        point = operate(circuit, self.magnet(field_a), share * (1.0 - m.rotating), m.rotating, self.drag)
+        torque = share * (1.0 - m.rotating)
+        point = operate(circuit, self.magnet(field[0]), torque, m.rotating, self.drag)
         stands = (a["stalled"] > 0.5) & ((name != "no_load") | (a["seized"] > 0.5))
-        return self._settle(point, stands, field_a, field_v)
+        return self._settle(point, stands, torque, field)
 
     @cached_property
     def drag(self) -> Floats:
@@ -147,21 +148,41 @@ class Bench:
         loop = _TURN_BRAKE * a["coil_shorted"] / (self.machine.resistance + 0.3 * a["coil_shorted"])
         return np.asarray(a["friction"] + loop)
 
-    def _settle(self, point: Point, stands: Floats, field_a: Floats, field_v: Floats) -> Condition:
-        """Take the running point, or the standstill where the machine cannot run."""
+    def _settle(self, point: Point, stands: Floats, load: Floats, field: tuple[Floats, Floats]) -> Condition:
+        """Take the running point, the drive's current limit, or the standstill where the machine cannot run."""
         still = self._locked("stalled")
         dead = self.attributes["armature_open"] > 0.5
-        down = np.asarray(stands, dtype=bool) | dead | (~point.runs & (point.speed < 0.5))
-        pick = lambda run, stop: np.where(down, stop, run)  # noqa: E731
+        limited = self._limited(point, load, field[0])
+        held = limited.runs > 0.5
+        down = np.asarray(stands, dtype=bool) | dead | (~point.runs & ~held & (point.speed < 0.5))
+
+        def pick(run: Floats, hold: Floats, stop: Floats | float) -> Floats:
+            return np.where(down, stop, np.where(held, hold, run))
+
         return Condition(
-            volts=pick(self.supply, still.volts),
-            current=pick(point.current, still.current),
-            speed=pick(point.speed, 0.0),
+            volts=pick(self.supply, limited.volts, still.volts),
+            current=pick(point.current, limited.current, still.current),
+            speed=pick(point.speed, limited.speed, 0.0),
             flux=point.flux,
-            field_v=field_v,
-            field_a=field_a,
-            runs=(point.runs & ~down).astype(np.float64),
+            field_v=field[1],
+            field_a=field[0],
+            runs=((point.runs | held) & ~down).astype(np.float64),
         )
+
+    def _limited(self, point: Point, load: Floats, field_a: Floats) -> Condition:
+        """Where the load asks a converter for more than its limit, current is held and volts give way.
+
+        The load is taken to fall with the square of speed; ``runs`` marks the rows concerned.
+        """
+        m = self.machine
+        magnet = self.magnet(field_a)
+        flux = magnet.flux(m.limit)
+        spare = flux * m.limit - m.rotating - self.drag
+        speed = np.sqrt(np.clip(spare / np.maximum(load, 1e-3), 0.0, 4.0))
+        volts = m.emf * flux * speed + m.limit * self.resistance(0.7) + m.brush
+        asked = (point.current > m.limit) & (m.source > 0.5) & (load > 1e-3)
+        runs = asked & (speed > 0.2) & (speed < 1.8) & (volts < self.supply)
+        return Condition(volts, m.limit, speed, flux, 0.0 * flux, field_a, runs.astype(np.float64))
 
     def _locked(self, name: str) -> Condition:
         """Shaft at rest, current as starter or drive lets through; the terminals see ohms and brushes only."""

@@ -107,6 +107,8 @@ LIGHT_LOAD = 0.35
 """Load torque of an idling process over that of its work. Common practice."""
 IDLE_HEAT = 0.55
 """Share of the rated rise that a motor reaches without load. From memory."""
+SETTLED_HEAT = (1.7, 0.6, 0.9)
+"""Losses over rated losses up to which the rise follows them; how it falls beyond; least. From memory."""
 FRAME_RISE = 0.60
 """Rise of the frame over that of the winding, small enclosed motors. From memory."""
 BEARING_RISE = (0.36, 18.5)

@@ -154,7 +154,7 @@ def _standing(site: Site, attributes: Attributes, running: Running, seen: Phasor
     line = currents.main + currents.auxiliary + earth
     given = volt * line.real
     output = (currents.torque_w - site.machine.friction_w) * (1.0 - running.slip)
-    share = np.clip((given - output - volt * earth) / site.rated_loss_w, 0.0, 6.0)
+    share = settled_heat((given - output - volt * earth) / site.rated_loss_w)
     winding = site.ambient_c + site.rise_k * attributes["rise"] * share
     return Standing(
         running=running,
@@ -163,6 +163,16 @@ def _standing(site: Site, attributes: Attributes, running: Running, seen: Phasor
         input_w=np.asarray(given),
         winding_c=np.asarray(np.minimum(winding, 350.0)),
     )
+
+
+def settled_heat(loss: Floats) -> Floats:
+    """Rise over rated rise as it is found, from losses over rated losses.
+
+    A motor with far too much loss trips before it is warm.
+    """
+    most, fall, least = priors.SETTLED_HEAT
+    kept = np.maximum(most - fall * (loss - most), least)
+    return np.asarray(np.where(loss < most, np.maximum(loss, 0.0), kept), dtype=np.float64)
 
 
 def _merge(pick: np.ndarray[tuple[int], np.dtype[np.bool_]], yes: Standing, no: Standing) -> Standing:

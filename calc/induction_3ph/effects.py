@@ -44,14 +44,14 @@ _LINES = (0, 1, 2)
 
 def _each(effect: str, count: int, **attributes: float) -> tuple[Mode, ...]:
     return tuple(
-        Mode(effect=effect, variant=f"{'UVW'[i]}", weight=1.0 / count, fixed={"phase": float(i), **attributes})
+        Mode(
+            effect=effect, variant=f"{'UVW'[i]}", weight=1.0 / count, fixed={"phase": float(i), **attributes}
+        )
         for i in range(count)
     )
 
 
-def _severe(
-    modes: tuple[Mode, ...], attribute: str, severity: tuple[float, float]
-) -> tuple[Mode, ...]:
+def _severe(modes: tuple[Mode, ...], attribute: str, severity: tuple[float, float]) -> tuple[Mode, ...]:
     step = (Severity(attribute, *severity),)
     return tuple(
         Mode(effect=m.effect, variant=m.variant, weight=m.weight, fixed=m.fixed, severity=step) for m in modes
@@ -69,7 +69,13 @@ def _one(
 def _with_stall(modes: tuple[Mode, ...], share: float) -> tuple[Mode, ...]:
     """Add the variant in which the shaft stands, with a share of the weight."""
     running = tuple(
-        Mode(effect=m.effect, variant=m.variant, weight=m.weight * (1.0 - share), fixed=m.fixed, severity=m.severity)
+        Mode(
+            effect=m.effect,
+            variant=m.variant,
+            weight=m.weight * (1.0 - share),
+            fixed=m.fixed,
+            severity=m.severity,
+        )
         for m in modes
     )
     standing = tuple(
@@ -103,7 +109,13 @@ def _series_resistance(severity: tuple[float, float]) -> tuple[Mode, ...]:
     in_lines = _severe(_lines("series_resistance", {0: 0.34, 1: 0.33, 2: 0.18}), "line_r", severity)
     inside = _severe(_each("series_resistance", 3), "phase_r", severity)
     return in_lines + tuple(
-        Mode(effect=m.effect, variant=f"joint of phase {m.variant}", weight=0.15 / 3, fixed=m.fixed, severity=m.severity)
+        Mode(
+            effect=m.effect,
+            variant=f"joint of phase {m.variant}",
+            weight=0.15 / 3,
+            fixed=m.fixed,
+            severity=m.severity,
+        )
         for m in inside
     )
 
@@ -146,7 +158,9 @@ def _other_connection(_severity: tuple[float, float]) -> tuple[Mode, ...]:
         ("high range on low voltage", 0.1, {"impedance": 4.0}),
         ("low range on high voltage", 0.1, {"impedance": 0.25}),
     )
-    modes = tuple(Mode(effect="other_connection", variant=name, weight=w, fixed=fixed) for name, w, fixed in ways)
+    modes = tuple(
+        Mode(effect="other_connection", variant=name, weight=w, fixed=fixed) for name, w, fixed in ways
+    )
     return _with_stall(modes, 0.3)
 
 
@@ -195,6 +209,7 @@ def modes(effect: str, severity: tuple[float, float] | None, connection: str | N
     ------
     KeyError
         If the model knows no such effect.
+
     """
     make, default = _MAKERS[effect]
     found = make(severity or default)

@@ -92,8 +92,12 @@ class InductionTwin:
             "line_current": Transform("log_mean", floor=0.006 * base.current_a),
             "speed": Transform("linear", scale=base.synchronous_rpm),
             "input_power": Transform("log", floor=0.004 * base.power_w),
-            "winding_resistance": Transform("log", cap=1100.0 * base.impedance_ohm, floor=1e-6 * base.impedance_ohm),
-            "phase_resistance": Transform("log", cap=1100.0 * base.impedance_ohm, floor=1e-6 * base.impedance_ohm),
+            "winding_resistance": Transform(
+                "log", cap=1100.0 * base.impedance_ohm, floor=1e-6 * base.impedance_ohm
+            ),
+            "phase_resistance": Transform(
+                "log", cap=1100.0 * base.impedance_ohm, floor=1e-6 * base.impedance_ohm
+            ),
             "starting_time": Transform("log", floor=0.1),
         }.get(measure, Transform("linear"))
 
@@ -209,9 +213,7 @@ class InductionTwin:
             return np.asarray(column())[:, None]
         return thermal.temperature_c(ask.measure, z, rows, machine, state)[:, None]
 
-    def _resistance(
-        self, ask: Ask, z: Floats, rows: Mapping[str, Floats], machine: Circuit
-    ) -> Floats:
+    def _resistance(self, ask: Ask, z: Floats, rows: Mapping[str, Floats], machine: Circuit) -> Floats:
         """Winding resistance at the temperature noted, else at the ambient latent's."""
         at_c = thermal.ambient_c(z) if ask.temperature_c is None else np.full(len(z), ask.temperature_c)
         cold = machine.r1 * rows["impedance"] * (COPPER_K + at_c) / (COPPER_K + 25.0 + machine.rise_k)

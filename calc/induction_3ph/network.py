@@ -39,9 +39,7 @@ class WindingFault:
     reversed_: Floats
 
 
-def winding_admittance(
-    y0: Phasors, y1: Phasors, y2: Phasors, fault: WindingFault, delta: Floats
-) -> Phasors:
+def winding_admittance(y0: Phasors, y1: Phasors, y2: Phasors, fault: WindingFault, delta: Floats) -> Phasors:
     """Admittance of the winding between its line terminals, positive and negative sequence.
 
     Parameters
@@ -57,6 +55,7 @@ def winding_admittance(
     -------
     ndarray of complex
         Shape (rows, 2, 2).
+
     """
     rows = len(y1)
     full = np.zeros((rows, 3, 3), dtype=np.complex128)

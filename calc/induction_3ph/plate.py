@@ -254,6 +254,7 @@ def circuit(base: Base, z: Floats) -> Circuit:
     rotor copper s P_gap; stator copper and core share the rest. R2/s follows from the air-gap
     power by the quadratic of the series rotor branch, X_m from the reactive power left over.
     The iterative nameplate methods reach the same circuit (facts 7.10); this one needs no iteration.
+
     """
     column = {name: z[:, place] for name, place in INDEX.items()}
     current = np.exp(base.current_spread * column["current"])

@@ -56,7 +56,8 @@ def supply(base: Base, z: Floats, rows: Mapping[str, Floats], nominal: float, in
         frequency = np.clip(0.85 + 0.22 * z[:, INDEX["frequency"]], 0.15, 2.0)
         level = level * np.minimum(frequency, 1.0)
     level = np.maximum(level, 0.05)
-    negative = level * rows["unbalance_sd"] * (z[:, INDEX["unbalance_a"]] + 1j * z[:, INDEX["unbalance_b"]])
+    angle = z[:, INDEX["unbalance_a"]] + 1j * z[:, INDEX["unbalance_b"]]
+    negative: Phasors = np.asarray(level * rows["unbalance_sd"] * angle, dtype=np.complex128)
     regulation = 0.0135 * np.exp(0.6 * z[:, INDEX["sag"]])
     return Supply(positive=level, negative=negative, frequency=frequency, regulation=regulation)
 
@@ -102,6 +103,7 @@ def solve(
     With x = R2/s and the Thevenin circuit of stator and magnetising branch, the air-gap power p
     demanded gives p x^2 + (2 p Rth - Vth^2) x + p (Rth^2 + X^2) + Vth^2 rho = 0, where rho is the
     braking of the negative sequence that a fault in series forces; no root means a stall.
+
     """
     scale = rows["impedance"]
     standing_rows = np.maximum(rows["stall"], 1.0 if standing else 0.0)
@@ -109,7 +111,7 @@ def solve(
     drop = feed.regulation * np.where(standing_rows > 0.5, 5.5, 0.6)
     live = 1.0 - rows["no_supply"]
     v1 = np.maximum(feed.positive * (1.0 - drop), 0.02) * live + 1e-6
-    v2 = feed.negative * live
+    v2: Phasors = np.asarray(feed.negative * live, dtype=np.complex128)
     bars = (1.0 + rows["bars"]) / (1.0 - np.minimum(rows["bars"], 0.8))
     r1 = r1 * scale
     x1, x2 = circuit.x1 * f * scale, circuit.x2 * f * scale
@@ -119,7 +121,7 @@ def solve(
     r2_back = 0.5 * (circuit.r2 + circuit.r2_locked) * bars * scale
     x_back = 0.5 * circuit.x_locked * f * scale
     y2 = _admittance(r1, x_back, r2_back / 1.9, x_back, xm, gc)
-    y0 = 1.0 / (r1 + 1j * 0.6 * x1)
+    y0: Phasors = np.asarray(1.0 / (r1 + 1j * 0.6 * x1), dtype=np.complex128)
     slip, pulls = _slip(rows, r1, x1, r2, x2, xm, v1, v2, y0, y2, torque * f, r2_back)
     stalled = np.maximum(standing_rows, 0.0)
     slip = np.where(stalled > 0.5, 1.0, slip)
@@ -129,7 +131,7 @@ def solve(
     x1_used = np.where(stalled > 0.5, x_half, x1)
     x2_used = np.where(stalled > 0.5, x_half, x2)
     y1 = _admittance(r1, x1_used, r2_used / slip, x2_used, xm, gc)
-    y2 = np.where(stalled > 0.5, y1, y2)
+    y2 = np.asarray(np.where(stalled > 0.5, y1, y2), dtype=np.complex128)
     current, voltage = _network(rows, y0, y1, y2, v1, v2, r1, x1_used)
     power = np.real((voltage * current.conj()).sum(axis=1)) / 3.0
     apparent = np.abs(voltage * current).sum(axis=1) / 3.0
@@ -150,12 +152,10 @@ def _magnetising(circuit: Circuit, v1: Floats, f: Floats, scale: Floats) -> Floa
     winding = np.where(scale < 0.9, 1.0 / np.sqrt(scale), np.where(scale > 1.1, 1.0 / np.sqrt(scale), 1.0))
     phi = np.minimum(v1 * winding / f * (0.97 / np.maximum(circuit.flux, 0.5)), 2.0)
     g = np.minimum(circuit.saturation, 0.8)
-    return circuit.xm / (1.0 - g + g * phi**6)
+    return np.asarray(circuit.xm / (1.0 - g + g * phi**6))
 
 
-def _admittance(
-    r1: Floats, x1: Floats, r2: Floats, x2: Floats, xm: Floats, gc: Floats
-) -> Phasors:
+def _admittance(r1: Floats, x1: Floats, r2: Floats, x2: Floats, xm: Floats, gc: Floats) -> Phasors:
     """Input admittance of the T circuit."""
     inner = gc - 1j / xm + 1.0 / (r2 + 1j * x2)
     return np.asarray(1.0 / (r1 + 1j * x1 + 1.0 / inner))

@@ -8,6 +8,7 @@ healthy, only what the supply says is used: a faulty machine's readings say noth
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from dataclasses import replace
 
 import numpy as np
 
@@ -50,18 +51,19 @@ def asks_of(sheet: CaseSheet, twin: Twin, rated_speed_rpm: float | None) -> list
             found[ask.key] = ask
     for measure in MEASURES.values():
         for state in STATES_SHOWN:
-            ask = Ask(measure.id, state, **_condition(measure.id, state, rated_speed_rpm))
+            ask = _condition(Ask(measure.id, state), rated_speed_rpm)
             if measure.suits(twin.kind) and ask.key not in found and twin.covers(ask):
                 found[ask.key] = ask
     return [a for a in found.values() if a.measure != "ambient_temperature"]
 
 
-def _condition(measure: str, state: str, rated_speed_rpm: float | None) -> dict[str, float | None]:
-    if state == "isolated" and measure.endswith("resistance"):
-        return {"temperature_c": _REFERENCE_C}
-    if state == "spun":
-        return {"speed_rpm": rated_speed_rpm}
-    return {}
+def _condition(ask: Ask, rated_speed_rpm: float | None) -> Ask:
+    """Put the reference condition to a reading that was not taken yet."""
+    if ask.state == "isolated" and ask.measure.endswith("resistance"):
+        return replace(ask, temperature_c=_REFERENCE_C)
+    if ask.state == "spun":
+        return replace(ask, speed_rpm=rated_speed_rpm)
+    return ask
 
 
 def bands(
@@ -105,9 +107,7 @@ def _basis(twin: Twin, posterior: Posterior | None) -> tuple[Frame, Fit]:
     return supply, fit_modes(twin, healthy, supply)
 
 
-def _without(
-    key: str, data: Frame, fit: Fit, weights: Floats, fitter: Fitter
-) -> tuple[Floats, Floats]:
+def _without(key: str, data: Frame, fit: Fit, weights: Floats, fitter: Fitter) -> tuple[Floats, Floats]:
     """Latents and covariance with one reading's own information taken out."""
     z, covariance = fit.z[0], fit.covariance[0]
     for one, group in zip(data.seen, data.groups, strict=True):

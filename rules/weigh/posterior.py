@@ -1,4 +1,4 @@
-"""The odds of every fault on one sheet: circuit readings, other readings, complaint and observations together."""
+"""The odds of every fault on one sheet: readings, complaint and observations weighed together."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from calc.observe import Seen, context, make_seen
+from calc.observe import InstrumentError, Seen, context, make_seen
 from calc.sheet import CaseSheet, Reading
 from calc.twin import Floats, Mode, Twin, attribute_rows
 from rules.knowledge import Fault, Knowledge
@@ -32,7 +32,7 @@ class Hypothesis:
 
 @dataclass(frozen=True)
 class Posterior:
-    """What a sheet says, in full: every term by itself, so that reasons and next readings can be drawn from it."""
+    """What a sheet says, in full: every term by itself, for reasons and next readings."""
 
     sheet: CaseSheet
     twin: Twin
@@ -90,7 +90,10 @@ def hypotheses_of(
 def split_readings(
     sheet: CaseSheet, twin: Twin, knowledge: Knowledge
 ) -> tuple[list[Seen], list[Reading], list[Reading]]:
-    """Sort readings: those the model predicts, those with a spread per fault, and the rest. The last of a key counts."""
+    """Sort readings into those the model predicts, those with a spread per fault, and the rest.
+
+    Of several readings of one key the last counts.
+    """
     newest = {(r.key, r.at, r.position, r.links): r for r in sheet.readings}
     errors = instrument_errors(knowledge)
     healthy = knowledge.faults.get("healthy")
@@ -110,8 +113,8 @@ def split_readings(
     return seen, direct, rest
 
 
-def _error(errors: Mapping[str, soft.InstrumentError], reading: Reading) -> soft.InstrumentError:
-    return errors.get(reading.measure, soft.InstrumentError(share=0.03))
+def _error(errors: Mapping[str, InstrumentError], reading: Reading) -> InstrumentError:
+    return errors.get(reading.measure, InstrumentError(share=0.03))
 
 
 def weigh(
@@ -129,6 +132,7 @@ def weigh(
         The model of this machine.
     odds : mapping, optional
         Starting odds per fault; the shipped ones of the kind where it is None.
+
     """
     w = weighing()
     faults = faults_of(knowledge, twin.kind)

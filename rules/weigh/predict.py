@@ -60,6 +60,7 @@ def outlooks(
         One row of latents per mode, (modes, dim).
     asks : sequence of Ask
         Readings the twin covers.
+
     """
     if not asks:
         return []

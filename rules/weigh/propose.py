@@ -10,7 +10,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cache
 from statistics import NormalDist
 
@@ -26,7 +26,7 @@ from rules.gate import GateState
 from rules.knowledge import Fault, Knowledge, Observation, ReadingRule
 from rules.weigh import wording
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.posterior import OTHER, Hypothesis, Posterior
+from rules.weigh.posterior import Hypothesis, Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
 from rules.weigh.soft import answer_chance, shape, spread_of
@@ -46,20 +46,64 @@ class Leading:
     possible: Mapping[str, Floats]
 
 
+@dataclass(frozen=True)
+class Candidate:
+    """One reading or observation that could be taken, and what it is worth."""
+
+    score: float
+    gain: float
+    minutes: float
+    key: str
+    rule: ReadingRule | None = None
+    state: str = ""
+    look: Outlook | None = None
+    known: Observation | None = None
+
+
 def propose(
     posterior: Posterior, knowledge: Knowledge, gate: GateState, limit: int = 12
 ) -> tuple[NextItem, ...]:
     """Return what is worth taking next, best first; empty when nothing is worth its minutes."""
     s = weighing().proposal
     lead = leading(posterior, s)
-    meters = instrument_errors(knowledge)
-    items = [
-        *_readings(posterior, knowledge, gate, lead, meters, s),
+    found = [
+        *_readings(posterior, knowledge, gate, lead, s),
         *_observations(posterior, knowledge, gate, lead, s),
     ]
-    worth = [(score, item) for score, item in items if item.gain_bits >= s.least_bits]
-    worth.sort(key=lambda pair: (-pair[0], pair[1].key))
-    return tuple(item for _, item in worth[:limit])
+    worth = [c for c in found if c.gain >= s.least_bits * math.log(2.0)]
+    worth.sort(key=lambda c: (-c.score, c.key))
+    why = wording.why(posterior, lead.faults, lead.share, lead.label)
+    return tuple(_item(c, posterior, knowledge, lead, why) for c in worth[:limit])
+
+
+def _item(
+    candidate: Candidate, posterior: Posterior, knowledge: Knowledge, lead: Leading, why: str
+) -> NextItem:
+    bits = round(candidate.gain / math.log(2.0), 4)
+    if candidate.known is not None:
+        known = candidate.known
+        return NextItem(
+            observation=known.id,
+            gain_bits=bits,
+            minutes=candidate.minutes,
+            leads=known.how or known.name,
+            hazards=known.hazards,
+            why=why,
+        )
+    if candidate.rule is None:
+        raise TypeError(candidate)
+    how = candidate.rule.states[candidate.state]
+    measure, state = candidate.rule.id, candidate.state
+    return NextItem(
+        measure=measure,
+        state=state,
+        gain_bits=bits,
+        minutes=candidate.minutes,
+        leads=how.leads,
+        hazards=how.hazards,
+        why=why,
+        expect=wording.expect(candidate.look, lead, posterior, knowledge, measure, state),
+    )
 
 
 def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
@@ -90,10 +134,10 @@ def _readings(
     knowledge: Knowledge,
     gate: GateState,
     lead: Leading,
-    meters: Mapping[str, InstrumentError],
     s: ProposalSettings,
-) -> list[tuple[float, NextItem]]:
+) -> list[Candidate]:
     sheet, twin = posterior.sheet, posterior.twin
+    meters = instrument_errors(knowledge)
     taken = {r.key for r in sheet.readings}
     chances: dict[str, float] = {}
     for state, flags in lead.possible.items():
@@ -108,7 +152,7 @@ def _readings(
             if key in taken or not how.proposed or gate.forbids(state) or chance < s.least_chance:
                 continue
             candidates.append((rule, state, chance))
-    asks = [Ask(rule.id, state, **_context(sheet, rule.id, state)) for rule, state, _ in candidates]
+    asks = [_context(sheet, Ask(rule.id, state)) for rule, state, _ in candidates]
     covered = [ask for ask in asks if twin.covers(ask)]
     modes = [posterior.modes[h.place] for h in lead.hypotheses]
     z = posterior.fit.z[[h.place for h in lead.hypotheses]]
@@ -119,23 +163,21 @@ def _readings(
         how = rule.states[state]
         minutes = how.minutes + arranging(sheet, state, s)
         score = chance * gain / ((minutes + s.overhead_minutes) * _hazard(how.hazards, s))
-        item = NextItem(
-            measure=rule.id,
-            state=state,
-            gain_bits=round(gain / math.log(2.0), 4),
-            minutes=minutes,
-            leads=how.leads,
-            hazards=how.hazards,
-            why=wording.why(posterior, lead.faults, lead.share, lead.label),
-            expect=wording.expect(looks.get(ask.key), lead, posterior, knowledge, rule.id, state),
+        found.append(
+            Candidate(
+                score=score,
+                gain=gain,
+                minutes=minutes,
+                key=ask.key,
+                rule=rule,
+                state=state,
+                look=looks.get(ask.key),
+            )
         )
-        found.append((score, item))
     return found
 
 
-def state_chance(
-    sheet: CaseSheet, state: str, chances: Mapping[str, float], s: ProposalSettings
-) -> float:
+def state_chance(sheet: CaseSheet, state: str, chances: Mapping[str, float], s: ProposalSettings) -> float:
     """Chance that the machine can be in a state: what was recorded in it shows that it can."""
     if any(r.state == state for r in sheet.readings):
         return 1.0
@@ -156,13 +198,14 @@ def _suits(rule: ReadingRule, sheet: CaseSheet, kind: str) -> bool:
     return sheet.kit is None or bool((set(sheet.kit) | _KIT_ALWAYS) & set(rule.instruments))
 
 
-def _context(sheet: CaseSheet, measure: str, state: str) -> dict[str, float | None]:
-    if state == "isolated" and measure.endswith("resistance"):
+def _context(sheet: CaseSheet, ask: Ask) -> Ask:
+    """Put to a reading the condition in which it would be taken now."""
+    if ask.state == "isolated" and ask.measure.endswith("resistance"):
         noted = [r.temperature.number for r in sheet.readings if r.temperature and r.state == "isolated"]
-        return {"temperature_c": noted[-1] if noted else None}
-    if state == "spun":
-        return {"speed_rpm": sheet.machine.nameplate.number("speed")}
-    return {}
+        return replace(ask, temperature_c=noted[-1] if noted else None)
+    if ask.state == "spun":
+        return replace(ask, speed_rpm=sheet.machine.nameplate.number("speed"))
+    return ask
 
 
 def _hazard(hazards: Sequence[str], s: ProposalSettings) -> float:
@@ -188,10 +231,10 @@ def _gain(
     healthy = knowledge.faults.get("healthy")
     shapes = []
     for h in lead.hypotheses:
-        spread = spread_of(by_id[h.fault], healthy, rule.id, state)
-        if spread is None:
+        found = spread_of(by_id[h.fault], healthy, rule.id, state)
+        if found is None:
             return 0.0
-        shapes.append(shape(spread))
+        shapes.append(shape(found))
     error = meters[rule.id].share if shapes[0][0] else meters[rule.id].floor
     mean = np.array([[centre] for _, centre, _ in shapes])
     variance = np.array([[[sigma**2 + error**2]] for _, _, sigma in shapes])
@@ -226,8 +269,9 @@ def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings
         Predicted reading per hypothesis, (h, m).
     spread : ndarray
         Its covariance per hypothesis, (h, m, m).
+
     """
-    count, dims = mean.shape
+    dims = mean.shape[1]
     root = np.linalg.cholesky(spread + 1e-12 * np.eye(dims))
     draws = _draws(s.draws, dims)
     samples = mean[:, None, :] + np.einsum("hij,dj->hdi", root, draws)
@@ -252,7 +296,7 @@ def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings
 
 def _observations(
     posterior: Posterior, knowledge: Knowledge, gate: GateState, lead: Leading, s: ProposalSettings
-) -> list[tuple[float, NextItem]]:
+) -> list[Candidate]:
     sheet = posterior.sheet
     found = []
     by_id = {f.id: f for f in posterior.faults}
@@ -266,15 +310,7 @@ def _observations(
             continue
         gain = _binary_gain(known, [by_id[h.fault] for h in lead.hypotheses], lead, s)
         score = chance * gain / ((known.minutes + s.overhead_minutes) * _hazard(known.hazards, s))
-        item = NextItem(
-            observation=known.id,
-            gain_bits=round(gain / math.log(2.0), 4),
-            minutes=known.minutes,
-            leads=known.how or known.name,
-            hazards=known.hazards,
-            why=wording.why(posterior, lead.faults, lead.share, lead.label),
-        )
-        found.append((score, item))
+        found.append(Candidate(score=score, gain=gain, minutes=known.minutes, key=known.id, known=known))
     return found
 
 
@@ -286,11 +322,7 @@ def _can_see(
         return 1.0
     none = np.zeros(len(lead.share))
     odds = {state: float(lead.share @ lead.possible.get(state, none)) for state in known.states}
-    chances = [
-        state_chance(sheet, state, odds, s)
-        for state in known.states
-        if not gate.forbids(state)
-    ]
+    chances = [state_chance(sheet, state, odds, s) for state in known.states if not gate.forbids(state)]
     return max(chances, default=0.0)
 
 
@@ -306,6 +338,3 @@ def _binary_gain(known: Observation, faults: Sequence[Fault], lead: Leading, s: 
             same = indicator @ (lead.share * chance)
             gain += factor * float(lead.share @ (chance * np.log(np.maximum(same / prior, 1e-12) / total)))
     return power * max(gain, 0.0)
-
-
-__all__ = ["OTHER", "Leading", "information", "leading", "propose", "state_chance"]

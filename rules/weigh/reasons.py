@@ -1,4 +1,4 @@
-"""Why a fault stands where it stands: every piece of evidence with its weight, adding up to the odds shown."""
+"""Why a fault stands where it stands: every piece of evidence, with weights that add up to the odds shown."""
 
 from __future__ import annotations
 
@@ -40,6 +40,10 @@ def rival(posterior: Posterior) -> str:
     return max(sorted(others), key=lambda name: others[name])
 
 
+def _name(fault: str) -> str:
+    return fault.replace("_", " ")
+
+
 def _best(posterior: Posterior, fault: str) -> Hypothesis:
     rows = [i for i, h in enumerate(posterior.hypotheses) if h.fault == fault]
     return posterior.hypotheses[max(rows, key=lambda i: posterior.log_joint[i])]
@@ -63,7 +67,7 @@ def _circuit(posterior: Posterior, own: Hypothesis, other: Hypothesis) -> list[R
         found.append(
             Reason(
                 about=seen.ask.key,
-                text=f"{title(seen.ask.key)}: this fault gives {with_fault}, {other.fault.replace('_', ' ')} {without}",
+                text=f"{title(seen.ask.key)}: this fault gives {with_fault}, {_name(other.fault)} {without}",
                 weight=weight,
                 read=read,
                 expected=with_fault,
@@ -86,7 +90,12 @@ def _tables(posterior: Posterior, fault: str, against: str) -> list[Reason]:
             read, text = texts.get(name.rstrip("'"), ""), title(name)
         side = "more" if weight > 0 else "less"
         found.append(
-            Reason(about=name, text=f"{text}, {side} usual than with {against.replace('_', ' ')}", weight=weight, read=read)
+            Reason(
+                about=name,
+                text=f"{text}, {side} usual than with {_name(against)}",
+                weight=weight,
+                read=read,
+            )
         )
     return found
 
@@ -115,6 +124,8 @@ def _rest(posterior: Posterior, own: Hypothesis, other: Hypothesis) -> list[Reas
 
 def _all_ways(posterior: Posterior, fault: str) -> float:
     """What the other ways of a fault add to its best one. [nats]"""
-    joint = np.array([v for h, v in zip(posterior.hypotheses, posterior.log_joint, strict=True) if h.fault == fault])
+    joint = np.array(
+        [v for h, v in zip(posterior.hypotheses, posterior.log_joint, strict=True) if h.fault == fault]
+    )
     top = float(joint.max())
     return math.log(float(np.exp(joint - top).sum()))

@@ -48,7 +48,8 @@ def _text(seen: Seen, predicted: Floats, mended: float) -> str:
             if order != (0, 1, 2)
         ]
     scored = [
-        (_distance(seen, project(trial[None, :], seen.transform)[0], predicted), words) for words, trial in trials
+        (_distance(seen, project(trial[None, :], seen.transform)[0], predicted), words)
+        for words, trial in trials
     ]
     best, words = min(scored)
     hint = f"; with {words} it would fit" if best < mended else ""

@@ -18,11 +18,11 @@ Table = dict[str, float]
 """Log chance of one piece of evidence under each fault."""
 
 
-def complaint_table(complaint: str, faults: Sequence[Fault], knowledge: Knowledge, kind: str, w: Weighing) -> Table:
+def complaint_table(
+    complaint: str, faults: Sequence[Fault], knowledge: Knowledge, kind: str, w: Weighing
+) -> Table:
     """Log chance of the complaint under each fault; what a fault does not list shares what it leaves."""
-    possible = [
-        c.id for c in knowledge.complaints.values() if "any" in c.kinds or kind in c.kinds
-    ]
+    possible = [c.id for c in knowledge.complaints.values() if "any" in c.kinds or kind in c.kinds]
     table: Table = {}
     for fault in faults:
         listed = {c: p for c, p in fault.complaints.items() if c in possible}
@@ -33,7 +33,9 @@ def complaint_table(complaint: str, faults: Sequence[Fault], knowledge: Knowledg
     return table
 
 
-def observation_table(name: str, answer: bool, faults: Sequence[Fault], knowledge: Knowledge, w: Weighing) -> Table:
+def observation_table(
+    name: str, answer: bool, faults: Sequence[Fault], knowledge: Knowledge, w: Weighing
+) -> Table:
     """Log chance of an answer under each fault, with the observer's reliability."""
     known = knowledge.observations.get(name)
     if known is None:

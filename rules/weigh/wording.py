@@ -106,9 +106,7 @@ def expect(
     return "; ".join(parts)
 
 
-def _spread_text(
-    posterior: Posterior, knowledge: Knowledge, fault: str, measure: str, state: str
-) -> str:
+def _spread_text(posterior: Posterior, knowledge: Knowledge, fault: str, measure: str, state: str) -> str:
     by_id = {f.id: f for f in posterior.faults}
     spread = spread_of(by_id[fault], knowledge.faults.get("healthy"), measure, state)
     if spread is None:
@@ -120,9 +118,7 @@ def _spread_text(
     return f"{figure(in_usual_unit(measure, low))} to {figure(in_usual_unit(measure, high))} {unit}".strip()
 
 
-def why(
-    posterior: Posterior, faults: Sequence[str], share: Floats, label: NDArray[np.int64]
-) -> str:
+def why(posterior: Posterior, faults: Sequence[str], share: Floats, label: NDArray[np.int64]) -> str:
     """Which suspects a proposal tells apart."""
     names = {f.id: f.name for f in posterior.faults}
     weight = [(float(share[label == i].sum()), fault) for i, fault in enumerate(faults)]
