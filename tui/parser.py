@@ -87,6 +87,9 @@ def _check_rules(parser: argparse.ArgumentParser) -> None:
 
 def _demo(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--build", metavar="FILE", help="only write the example casebook to FILE")
+    parser.add_argument(
+        "--plain", action="store_true", default=argparse.SUPPRESS, help="plain questions and answers"
+    )
 
 
 COMMANDS = (

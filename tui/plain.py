@@ -12,6 +12,7 @@ from tui.answer_text import (
     fault_lines,
     finding_lines,
     gate_lines,
+    item_name,
     next_lines,
     stop_lines,
     titled,
@@ -32,13 +33,13 @@ HELP = (
     "Type the values that are asked for, as the meter shows them:",
     "  15.2 15.9 14.8, 0.42, 1.2k, >5G, open; - is a value that was not read.",
     "Or one of these words:",
-    "  skip [WHY]                put the proposed item aside",
-    "  read MEASURE STATE        take another reading",
-    "  seen OBSERVATION yes/no   say what was seen, heard or smelt",
-    "  why, all, gate            the reasons; the whole answer; what stands before energising",
-    "  isolate, note TEXT        the isolation record; a remark",
-    "  correct                   correct or strike out an entry",
-    "  close, leave              close the case with what was found; leave it open",
+    "  skip [WHY]               put the proposed item aside",
+    "  read MEASURE STATE       take another reading",
+    "  seen OBSERVATION yes/no  say what was seen, heard or smelt",
+    "  why, all, gate           the reasons; the whole answer; the gate, line by line",
+    "  isolate, note TEXT       the isolation record; a remark",
+    "  correct                  correct or strike out an entry",
+    "  close, leave             close the case with what was found; leave it open",
 )
 
 
@@ -63,7 +64,7 @@ def _visit(book: Casebook, drafts: Drafts, knowledge: Knowledge) -> None:
     show(visit)
     while visit.case.status == "open":
         try:
-            changed = _one(visit, ask(">"))
+            changed = _one(visit, ask(_asked(visit)))
         except InputError as error:
             changed = False
             for problem in error.problems:
@@ -84,6 +85,12 @@ def show(visit: Visit) -> None:
     say(titled("Limits crossed", finding_lines(answer.findings)))
     say(titled("Likely faults", fault_lines(answer, visit.knowledge)))
     say(titled("Next", next_lines(proposals(visit), visit.knowledge)))
+
+
+def _asked(visit: Visit) -> str:
+    """Return the prompt: the item that a bare answer answers."""
+    items = proposals(visit)
+    return item_name(items[0], visit.knowledge) if items else "Nothing is proposed; help lists the words"
 
 
 def _one(visit: Visit, line: str) -> bool:
