@@ -14,6 +14,7 @@ from calc.values import MISSING, ValueTextError, parse_value
 from calc.vocabulary import PERCENT_RATIOS
 
 _ID: Final = re.compile(r"[a-z][a-z0-9_]{0,63}")
+_TORN: Final = "a comma parts the fields here: write 1455 rpm, or 1.455 rpm"
 _YES: Final = frozenset({"yes", "true", "on", "y"})
 _NO: Final = frozenset({"no", "false", "off", "n"})
 
@@ -61,7 +62,9 @@ class Fields:
     def refuse_unknown(self, known: Collection[str]) -> None:
         """Note every field that is none of the known ones."""
         for name in self.data:
-            if name not in known:
+            if name[:1].isdigit():
+                self.wrong(clip(name, 40), "", _TORN)
+            elif name not in known:
                 self.wrong(clip(name, 40), "", f"no such field; {did_you_mean(name, known)}")
 
     def inner(self, field: str, example: str = "kind: induction_3ph") -> Fields:
@@ -82,7 +85,7 @@ class Fields:
         """Note a name that is part of a number: between braces a comma parts the fields."""
         for name in self.data:
             if name[:1].isdigit():
-                self.wrong(clip(name, 40), "", "a comma parts the fields here: write 1455 rpm, or 1.455 rpm")
+                self.wrong(clip(name, 40), "", _TORN)
                 return True
         return False
 
