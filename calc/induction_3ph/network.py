@@ -57,16 +57,27 @@ def winding_admittance(y0: Phasors, y1: Phasors, y2: Phasors, fault: WindingFaul
         Shape (rows, 2, 2).
 
     """
-    rows = len(y1)
-    full = np.zeros((rows, 3, 3), dtype=np.complex128)
-    full[:, 0, 0], full[:, 1, 1], full[:, 2, 2] = y0, y1, y2
+    sound = np.zeros((len(y1), 2, 2), dtype=np.complex128)
+    sound[:, 0, 0], sound[:, 1, 1] = y1, y2
+    where = np.flatnonzero((fault.series > 0.0) | (fault.shunt != 0.0) | (fault.reversed_ > 0.0))
+    if len(where):
+        full = np.zeros((len(where), 3, 3), dtype=np.complex128)
+        full[:, 0, 0], full[:, 1, 1], full[:, 2, 2] = y0[where], y1[where], y2[where]
+        part = WindingFault(
+            fault.phase[where], fault.series[where], fault.shunt[where], fault.reversed_[where]
+        )
+        sound[where] = _faulted(full, part, delta[where])
+    return sound
+
+
+def _faulted(full: Phasors, fault: WindingFault, delta: Floats) -> Phasors:
+    """Put a fault into the windings' (rows, 3, 3) admittance and link them in star or delta: (rows, 2, 2)."""
     unit = FORTESCUE[:, fault.phase].T
-    if np.any(fault.series > 0.0):
-        full = _with_series(full, unit, fault.series)
-    if np.any(fault.shunt != 0.0):
-        full = full + fault.shunt[:, None, None] * unit[:, :, None] * unit.conj()[:, None, :]
+    full = _with_series(full, unit, fault.series)
+    outer = unit[:, :, None] * unit.conj()[:, None, :]
+    full = full + fault.shunt[:, None, None] * outer
     if np.any(fault.reversed_ > 0.0):
-        flip = np.eye(3) - 2.0 * fault.reversed_[:, None, None] * unit[:, :, None] * unit.conj()[:, None, :]
+        flip = np.eye(3) - 2.0 * fault.reversed_[:, None, None] * outer
         full = flip @ full @ flip
     inner = full[:, 1:, 1:]
     star = inner - full[:, 1:, 0:1] * full[:, 0:1, 1:] / full[:, 0:1, 0:1]
@@ -89,13 +100,19 @@ def line_unit(line: NDArray[np.int64]) -> Phasors:
 
 def with_line_resistance(admittance: Phasors, line: NDArray[np.int64], resistance: Floats) -> Phasors:
     """Put a resistance into one line before a (rows, 2, 2) admittance. [pu]"""
-    return _with_series(admittance, line_unit(line), resistance)
+    where = np.flatnonzero(resistance > 0.0)
+    out = admittance.copy()
+    out[where] = _with_series(admittance[where], line_unit(line[where]), resistance[where])
+    return out
 
 
 def with_path_between_lines(admittance: Phasors, missing: NDArray[np.int64], conductance: Floats) -> Phasors:
     """Put a conductance between the two lines other than ``missing``. [pu, star-equivalent]"""
-    span = line_unit((missing + 1) % 3) - line_unit((missing + 2) % 3)
-    return np.asarray(admittance + conductance[:, None, None] * span[:, :, None] * span.conj()[:, None, :])
+    where = np.flatnonzero(conductance > 0.0)
+    span = line_unit((missing[where] + 1) % 3) - line_unit((missing[where] + 2) % 3)
+    out = admittance.copy()
+    out[where] += conductance[where, None, None] * span[:, :, None] * span.conj()[:, None, :]
+    return out
 
 
 def to_lines(components: Phasors) -> Phasors:
