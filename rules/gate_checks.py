@@ -141,11 +141,13 @@ def trip_explained(seen: Evidence) -> Checked:
     if not has_tripped(sheet, seen.knowledge):
         return Checked("cleared", "no trip on record")
     tripped = [name for name in TRIP_OBSERVATIONS if sheet.observations.get(name) is True]
-    if tripped and sheet.observations.get("trip_cause_found") is True:
-        return Checked("cleared", f"{_question(seen, tripped[0])}: yes; the cause was found")
-    return Checked(
-        "needed", _question(seen, tripped[0]) + ": yes" if tripped else "what tripped is not on record"
-    )
+    if not tripped:
+        open_questions = tuple(name for name in seen.rule.asks if name not in sheet.observations)
+        return Checked("needed", "what tripped is not on record", wants=open_questions)
+    what = f"{_question(seen, tripped[0])}: yes"
+    if sheet.observations.get("trip_cause_found") is not True:
+        return Checked("needed", f"{what}; why is not on record", wants=("trip_cause_found",))
+    return Checked("cleared", f"{what}; the cause was found")
 
 
 def does_not_stall(seen: Evidence) -> Checked:

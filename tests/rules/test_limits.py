@@ -158,8 +158,9 @@ def test_service_factor_moves_the_rated_current(knowledge):
     [
         ("7.5 kW", None, "1.8", None), ("7.5 kW", None, "1.9", "watch"),
         ("7.5 kW", None, "4.6", "stop"),
-        ("15 kW", None, "2.0", "watch"), ("15.1 kW", "rigid", "2.8", None), ("90 kW", "rigid", "2.9", "watch"),
-        ("90 kW", "rigid", "4.6", "stop"), ("90 kW", "flexible", "4.5", None), ("90 kW", None, "7.2", "stop"),
+        ("15 kW", None, "2.0", "watch"), ("15.1 kW", "rigid", "2.8", None),
+        ("90 kW", "rigid", "2.9", "watch"), ("90 kW", "rigid", "4.6", "stop"),
+        ("90 kW", "flexible", "4.5", None), ("90 kW", None, "7.2", "stop"),
         ("301 kW", "rigid", "4.5", None), ("400 hp", "rigid", "4.6", "stop"),
         ("500 kW", "flexible", "11.1", "stop"),
     ],
