@@ -9,7 +9,7 @@ from calc.quantities import KINDS
 from tui.plate_lines import typed_of
 from tui.screens.ask import Ask
 from tui.screens.nameplate import NameplatePage
-from tui.screens.person import Person
+from tui.screens.person import USUAL, Person
 from tui.screens.pick import Choice, Pick
 from tui.screens.worksheet import Worksheet
 from tui.words import kind_name
@@ -28,9 +28,8 @@ OFFERED_KINDS = tuple(kind for kind in KINDS if kind not in {"dc_generator", "al
 async def ask_person(app: PlatesideApp) -> bool:
     """Ask for name and kit; return whether they were given."""
     desk = app.desk
-    instruments = sorted(
-        {tool for rule in desk.knowledge.readings.values() for tool in rule.instruments} - {"eyes"}
-    )
+    tools = {tool for rule in desk.knowledge.readings.values() for tool in rule.instruments} - {"eyes"}
+    instruments = sorted(tools, key=lambda tool: (tool not in USUAL, tool))
     answer = await app.push_screen_wait(Person(desk.person, desk.kit, instruments))
     if answer is None:
         return False
@@ -127,10 +126,12 @@ async def type_plate(app: PlatesideApp, tag: str, complaint: str, begun: dict[st
         page = NameplatePage(kind, tag, check_of(complaint), lines, {"complaint": complaint})
         machine = await app.push_screen_wait(page)
         if machine is None:
+            if any(page.values.values()):
+                app.desk.drafts.save(DRAFT, page.kept())
             return None
         if machine["kind"]:
             return machine
-        kind, lines = None, page.last_values
+        kind, lines = None, page.values
 
 
 def check_of(complaint: str) -> Any:  # noqa: ANN401  (a function from a raw machine to remarks)

@@ -14,6 +14,7 @@ from tui.keys import bindings
 from tui.look import FAINT, STRONG, WATCH
 from tui.screens.page import Page
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
+from tui.widgets.typed import TypedLine
 
 if TYPE_CHECKING:
     from textual.content import Content
@@ -41,7 +42,7 @@ class CasebookPage(Page[None]):
 
     def body(self) -> list[Widget]:
         """Return title, line to search, and list."""
-        typed = Input(compact=True, id="typed", placeholder="F3 or / to search tag, fault, note, person")
+        typed = TypedLine(placeholder="F3 or / to search tag, fault, note, person")
         return [
             Ruled(id="title"),
             Horizontal(Static(row("search"), id="mark", markup=False), typed, id="entry"),
@@ -51,7 +52,6 @@ class CasebookPage(Page[None]):
 
     def on_mount(self) -> None:
         """Put the focus on the list."""
-        self.query_one(Input).cursor_blink = False
         self.query_one(OptionList).focus()
 
     def on_screen_resume(self, _event: ScreenResume) -> None:
@@ -110,9 +110,9 @@ class CasebookPage(Page[None]):
         if self.shown:
             self.query_one(OptionList).highlighted = 0
 
-    def on_input_submitted(self, _event: Input.Submitted) -> None:
+    def entered(self, text: str) -> None:
         """Open what the search found first, or go back to the list."""
-        if self.query_one(Input).value.strip() and self.shown:
+        if text.strip() and self.shown:
             self.action_open()
         else:
             self.query_one(OptionList).focus()

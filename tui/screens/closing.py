@@ -58,10 +58,6 @@ class ClosingPage(FormPage[dict[str, str]]):
             lines += rows("re-test", "; ".join(self.retest)[:RETEST_MOST], self.room, most=3)
         return lines
 
-    def on_mount(self) -> None:
-        """Start at the first line: it is already filled in."""
-        self.fields[0].focus()
-
     def hear_found(self, text: str) -> Heard:
         """Return the names of the faults, or what is not understood."""
         names = []
@@ -72,7 +68,7 @@ class ClosingPage(FormPage[dict[str, str]]):
             names.append(self.names[fault])
         return " and ".join(names), True
 
-    def action_done(self) -> None:
+    def done(self) -> None:
         """Close where fault, how it is known and minutes are understood."""
         values = self.values
         for name, (heard, fine) in {
@@ -81,7 +77,7 @@ class ClosingPage(FormPage[dict[str, str]]):
             "minutes": hear_minutes(values["minutes"]),
         }.items():
             if not fine:
-                self.query_one(f"#line-{name}").focus()
+                self.go_to(name)
                 self.say(heard)
                 return
         values["found"] = "+".join(

@@ -1,4 +1,7 @@
-"""A page of lines to type, each with its word in the margin and what was understood beside it."""
+"""A page of lines to type, each with its word in the margin and what was understood beside it.
+
+There is one typed line on the page; it moves from row to row. The other rows are drawn.
+"""
 
 from __future__ import annotations
 
@@ -6,16 +9,16 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from textual.containers import Horizontal, VerticalScroll
-from textual.widgets import Input, Static
+from textual.containers import Container
+from textual.widgets import Input
 
 from tui.look import FAINT, WATCH
 from tui.screens.page import Answer, Page
-from tui.widgets.ruled import INDENT, Ruled, cut, row, rows
+from tui.widgets.ruled import INDENT, Ruled, cut, pad, row, rows
+from tui.widgets.typed import TypedLine
 
 if TYPE_CHECKING:
     from textual.content import Content
-    from textual.events import DescendantFocus
     from textual.widget import Widget
 
 Heard = tuple[str, bool]
@@ -35,15 +38,6 @@ class Line:
     """Cells to type in."""
 
 
-class LineInput(Input):
-    """The typed part of a line."""
-
-    def __init__(self, line: Line, value: str) -> None:
-        super().__init__(value, compact=True, id=f"line-{line.name}", select_on_focus=False)
-        self.line = line
-        self.cursor_blink = False
-
-
 class FormPage(Page[Answer]):
     """Lines to type; subclasses name them and say what becomes of them."""
 
@@ -51,9 +45,11 @@ class FormPage(Page[Answer]):
         super().__init__()
         self.typed = typed or {}
         """What stood in the lines before: from a draft, or from the last time."""
+        self.table: list[Line] = []
+        self.texts: dict[str, str] = {}
+        self.at = 0
+        self.top = 0
         self.said: Heard = ("", True)
-        self.last_values: dict[str, str] = dict(self.typed)
-        """What stood in the lines last; still there when the page is gone."""
 
     def form_lines(self) -> list[Line]:
         """Return the lines of the form."""
@@ -69,120 +65,146 @@ class FormPage(Page[Answer]):
 
     def body(self) -> list[Widget]:
         """Return head, lines and remarks."""
-        lines = [self.line_row(line) for line in self.form_lines()]
-        form = VerticalScroll(*lines, id="form")
-        form.can_focus = False
+        self.table = self.form_lines()
+        self.texts = {line.name: self.typed.get(line.name, line.start) for line in self.table}
+        empty = [place for place, line in enumerate(self.table) if not self.texts[line.name]]
+        self.at = empty[0] if empty else 0
+        form = Container(Ruled(id="lines"), TypedLine(), id="form")
         return [Ruled(id="head"), form, Ruled(id="remarks")]
 
-    def line_row(self, line: Line) -> Widget:
-        """Return one line: word, input, what was understood."""
-        field = LineInput(line, self.typed.get(line.name, line.start))
-        field.styles.width = line.width
-        heard = Static("", id=f"heard-{line.name}", markup=False, classes="heard")
-        word = Static(row(line.word), markup=False, classes="word")
-        return Horizontal(word, field, heard, classes="line")
-
     def on_mount(self) -> None:
-        """Put the focus on the first empty line."""
-        fields = self.fields
-        empty = [field for field in fields if not field.value]
-        (empty or fields)[0].focus()
+        """Put the typed line on the first empty row."""
+        self.query_one(TypedLine).focus()
+        self.go(self.at)
+
+    # where the typed line stands
 
     @property
-    def fields(self) -> list[LineInput]:
-        """The typed parts, in order."""
-        return list(self.query(LineInput))
+    def line(self) -> Line:
+        """The line that is typed now."""
+        return self.table[self.at]
 
     @property
     def values(self) -> dict[str, str]:
         """What stands in the lines now."""
-        return {field.line.name: field.value.strip() for field in self.fields}
+        return {name: text.strip() for name, text in self.texts.items()}
+
+    def go(self, place: int) -> None:
+        """Put the typed line on another row."""
+        self.at = max(0, min(place, len(self.table) - 1))
+        typed, text = self.query_one(TypedLine), self.texts[self.line.name]
+        typed.put(text, chosen=bool(text))
+        self.show_lines()
+
+    def go_to(self, name: str) -> None:
+        """Put the typed line on the row of a name."""
+        self.go(next(place for place, line in enumerate(self.table) if line.name == name))
+
+    # what is shown
 
     def show(self) -> None:
-        """Show head, what was understood of each line, and the remarks."""
+        """Show head, rows and remarks."""
         super().show()
-        if not self.is_mounted:
-            return
         self.query_one("#head", Ruled).show(self.head())
-        for field in self.fields:
-            self.show_heard(field)
         self.show_remarks()
+        self.show_lines()
 
-    def show_heard(self, field: LineInput) -> None:
-        """Show beside a line what was understood of it, or what belongs there."""
-        text, style = field.line.hint, FAINT
-        if field.value.strip():
-            heard, fine = field.line.hear(field.value.strip())
-            text, style = heard, ("" if fine else WATCH)
-        room = max(self.room - INDENT - field.line.width - 1, 4)
-        self.query_one(f"#heard-{field.line.name}", Static).update(row_text(cut(text, room), style))
+    def show_lines(self) -> None:
+        """Draw the rows that fit, and move the typed line to its own."""
+        height = self.height_of_form()
+        self.top = max(min(self.top, self.at), self.at - height + 1, 0)
+        shown = self.table[self.top : self.top + height]
+        self.query_one("#lines", Ruled).show([self.drawn(line) for line in shown])
+        typed = self.query_one(TypedLine)
+        typed.styles.offset = (INDENT, self.at - self.top)
+        typed.styles.width = self.line.width
+
+    def height_of_form(self) -> int:
+        """Return how many rows fit between head and remarks."""
+        said = len(self.remark_lines())
+        return max(int(self.app.size.height) - len(self.head()) - said - 1, 1)
+
+    def drawn(self, line: Line) -> Content:
+        """Return one row: word, what stands there, and what was understood of it or belongs there."""
+        text = self.texts[line.name]
+        heard, style = line.hint, FAINT
+        if text.strip():
+            heard, fine = line.hear(text.strip())
+            style = "" if fine else WATCH
+        room = max(self.room - INDENT - line.width - 1, 4)
+        return row(line.word, pad(text, line.width), " ", (cut(heard, room), style))
+
+    def remark_lines(self) -> list[Content]:
+        """Return what was said last, then the remarks."""
+        said = (
+            rows("note", self.said[0], self.room, style="" if self.said[1] else WATCH) if self.said[0] else []
+        )
+        return [*said, *self.remarks()]
 
     def show_remarks(self) -> None:
-        """Show the remarks, the last thing said on top."""
-        lines = self.remarks()
-        if self.said[0]:
-            lines = [*rows("note", self.said[0], self.room, style="" if self.said[1] else WATCH), *lines]
-        self.query_one("#remarks", Ruled).show(lines)
+        """Show the remarks."""
+        self.query_one("#remarks", Ruled).show(self.remark_lines())
 
     def say(self, text: str, *, fine: bool = False) -> None:
         """Say something below the form."""
         self.said = (text, fine)
         self.show_remarks()
+        self.show_lines()
+
+    # typing
 
     def on_input_changed(self, event: Input.Changed) -> None:
         """Understand a line while it is typed."""
-        if isinstance(event.input, LineInput) and self.is_mounted:
+        if event.value != self.texts[self.line.name]:
+            self.texts[self.line.name] = event.value
             self.said = ("", True)
-            self.last_values = self.values
-            self.show_heard(event.input)
             self.show_remarks()
+            self.show_lines()
 
-    def on_descendant_focus(self, event: DescendantFocus) -> None:
-        """Keep the line that is typed in view."""
-        event.widget.scroll_visible(animate=False)
-
-    def on_input_submitted(self, _event: Input.Submitted) -> None:
-        """Go to the next line."""
+    def entered(self, text: str) -> None:
+        """Keep the line and go to the next."""
+        self.texts[self.line.name] = text
         self.action_next_field()
 
     def action_next_field(self) -> None:
         """Go to the next line; on the last one, be done."""
-        fields = self.fields
-        at = self.at()
-        if at + 1 < len(fields):
-            fields[at + 1].focus()
+        if self.at + 1 < len(self.table):
+            self.go(self.at + 1)
         else:
             self.action_done()
 
+    def keep_line(self) -> None:
+        """Take over what stands in the typed line."""
+        self.texts[self.line.name] = self.query_one(TypedLine).value
+
     def action_cursor_down(self) -> None:
         """Go one line down."""
-        fields = self.fields
-        fields[min(self.at() + 1, len(fields) - 1)].focus()
+        self.keep_line()
+        self.go(self.at + 1)
 
     def action_cursor_up(self) -> None:
         """Go one line up."""
-        self.fields[max(self.at() - 1, 0)].focus()
-
-    def at(self) -> int:
-        """Return the place of the line that has the focus."""
-        fields = self.fields
-        return fields.index(self.focused) if isinstance(self.focused, LineInput) else 0
+        self.keep_line()
+        self.go(self.at - 1)
 
     def action_done(self) -> None:
         """Keep what stands here."""
+        self.keep_line()
+        self.done()
+
+    def done(self) -> None:
+        """Answer with what stands here, or say what is missing."""
         raise NotImplementedError
+
+    def action_back(self) -> None:
+        """Go back without an answer; what is typed can still be asked for."""
+        self.keep_line()
+        super().action_back()
 
     def unsaved(self) -> str:
         """Say that there is something typed."""
-        before = {line.name: self.typed.get(line.name, line.start) for line in self.form_lines()}
-        return f"what is typed on the page '{self.KEYS.replace('_', ' ')}'" if self.values != before else ""
-
-
-def row_text(text: str, style: str) -> Content:
-    """Return text in one style, as data."""
-    from textual.content import Content
-
-    return Content.styled(text, style)
+        before = {line.name: self.typed.get(line.name, line.start) for line in self.table}
+        return f"what is typed on the page '{self.KEYS.replace('_', ' ')}'" if self.texts != before else ""
 
 
 def one_of(choices: dict[str, str], text: str) -> str | None:

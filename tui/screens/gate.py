@@ -111,14 +111,14 @@ class IsolationPage(FormPage[Isolation]):
                   "Locked out, with your own lock.", self.room),
         ]  # fmt: skip
 
-    def action_done(self) -> None:
+    def done(self) -> None:
         """Store the record where it is whole."""
         values = self.values
         if not values["person"]:
-            self.query_one("#line-person").focus()
+            self.go_to("person")
             self.say("A name must stand there: who isolated and locked out.")
         elif missing := [n for n in ("proved_dead", "tester_proved") if one_of(YES_NO, values[n]) != "yes"]:
-            self.query_one(f"#line-{missing[0]}").focus()
+            self.go_to(missing[0])
             self.say("Not proved: a y must stand there. F9 goes back without a record.")
         else:
             self.dismiss(

@@ -92,7 +92,7 @@ class NameplatePage(FormPage[Raw]):
                 typed[line.field] = text
         return machine_of(self.kind, self.tag, typed) if typed else None
 
-    def action_done(self) -> None:
+    def done(self) -> None:
         """Keep the plate; point at the first line that is not understood."""
         for line in plate_lines(self.kind):
             text = self.values[line.field]
@@ -100,20 +100,22 @@ class NameplatePage(FormPage[Raw]):
                 try:
                     keep(line, text)
                 except ValueTextError as error:
-                    self.query_one(f"#line-{line.field}").focus()
+                    self.go_to(line.field)
                     self.say(f"{line.word}: {error}")
                     return
         self.dismiss(machine_of(self.kind, self.tag, self.values))
 
     def action_kind(self) -> None:
-        """Go back for another kind; what is typed is kept as a draft."""
+        """Go back for another kind; what is typed is kept."""
+        self.keep_line()
         self.dismiss({"kind": ""})
 
-    def draft(self) -> tuple[str, dict[str, Any]] | None:
-        """Keep tag, kind and every line."""
+    def kept(self) -> dict[str, Any]:
+        """Return what a draft must hold: tag, kind, every line, and what the page was given to keep."""
         lines = {name: text for name, text in self.values.items() if text}
-        return (
-            ("new_case", {"tag": self.tag, "kind": self.kind, "lines": lines, **self.extra})
-            if lines
-            else None
-        )
+        return {"tag": self.tag, "kind": self.kind, "lines": lines, **self.extra}
+
+    def draft(self) -> tuple[str, dict[str, Any]] | None:
+        """Keep what is typed, unless every line is blank."""
+        self.keep_line()
+        return ("new_case", self.kept()) if any(self.values.values()) else None

@@ -20,7 +20,7 @@ class Note(FormPage[str]):
         """Return the one line."""
         return [Line("text", self.word, self.hint, width=56)]
 
-    def action_done(self) -> None:
+    def done(self) -> None:
         """Store what stands there."""
         text = self.values["text"]
         self.dismiss(text or None)

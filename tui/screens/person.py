@@ -55,12 +55,12 @@ class Person(FormPage[dict[str, str]]):
         text = "Your name, and what you carry: nothing else is proposed. Asked once."
         return rows("who", text, self.room, style=STRONG)
 
-    def action_done(self) -> None:
+    def done(self) -> None:
         """Keep name and kit."""
         values = self.values
         if not values["person"]:
             self.say("A name must stand there.")
-            self.fields[0].focus()
+            self.go_to("person")
             return
         kit = [name for name in self.instruments if one_of(YES_NO, values[name]) == "yes"]
         self.dismiss({"person": values["person"], "kit": " ".join(kit)})

@@ -13,6 +13,7 @@ from tui.keys import bindings
 from tui.look import FAINT, PLAIN
 from tui.screens.page import Page
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
+from tui.widgets.typed import TypedLine
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
@@ -65,20 +66,18 @@ class Pick(Page[str]):
         self.word, self.title_text, self.choices = word, title, list(choices)
         self.typed, self.fresh = typed, fresh
         self.shown: list[Choice] = []
+        self.narrowed_by = ""
 
     def body(self) -> list[Widget]:
         """Return title, line to type, and list."""
         return [
             Ruled(id="title"),
-            Horizontal(
-                Static("", id="mark", markup=False), Input(self.typed, compact=True, id="typed"), id="entry"
-            ),
+            Horizontal(Static("", id="mark", markup=False), TypedLine(self.typed), id="entry"),
             OptionList(id="list", markup=False, compact=True),
         ]
 
     def on_mount(self) -> None:
         """Put the focus on the line to type."""
-        self.query_one(Input).cursor_blink = False
         self.query_one("#list").can_focus = False
         self.query_one(Input).focus()
 
@@ -95,6 +94,7 @@ class Pick(Page[str]):
 
     def narrow(self, text: str) -> None:
         """Keep the lines that match; the best first, a fresh one last."""
+        self.narrowed_by = text
         words = text.lower().replace("-", " ").split()
         self.shown = [choice for choice in self.choices if choice.matches(words)]
         made = self.fresh(text.strip())
@@ -122,8 +122,10 @@ class Pick(Page[str]):
         """Move the bar up."""
         self.query_one("#list", OptionList).action_cursor_up()
 
-    def on_input_submitted(self, _event: Input.Submitted) -> None:
-        """Take the line under the bar."""
+    def entered(self, text: str) -> None:
+        """Take the line under the bar, as the text last typed has it."""
+        if text != self.narrowed_by:
+            self.narrow(text)
         self.action_choose()
 
     def action_choose(self) -> None:

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING, Any, ClassVar
 
 from textual import work
 from textual.containers import Horizontal
-from textual.widgets import Input, Static
+from textual.widgets import Static
 from textual.worker import get_current_worker
 
 from rules.answer import NextItem
@@ -17,6 +17,7 @@ from tui.screens import worksheet_lines as blocks
 from tui.screens.worksheet_choices import values_wanted
 from tui.screens.worksheet_typing import WorksheetTyping
 from tui.widgets.ruled import Ruled, fill, row, rows
+from tui.widgets.typed import TypedLine
 
 if TYPE_CHECKING:
     from textual.content import Content
@@ -56,20 +57,17 @@ class Worksheet(WorksheetTyping):
 
     def body(self) -> list[Widget]:
         """Return the blocks, what was understood, and the line to type."""
-        typed = Input(compact=True, id="typed")
         return [
             Ruled(id="blocks", classes="page"),
             Ruled(id="said"),
-            Horizontal(Static(row("type"), id="mark", markup=False), typed, id="entry"),
+            Horizontal(Static(row("type"), id="mark", markup=False), TypedLine(), id="entry"),
         ]
 
     def on_mount(self) -> None:
         """Take up a draft, put the focus on the line to type, and weigh."""
-        typed = self.query_one(Input)
-        typed.cursor_blink = False
+        typed = self.query_one(TypedLine)
         draft = self.plateside.desk.drafts.load(self.draft_name)
-        with self.prevent(Input.Changed):
-            typed.value = str(draft.get("typed", ""))
+        typed.put(str(draft.get("typed", "")))
         if typed.value:
             self.say("From your draft; Enter stores it.", "")
         typed.focus()
@@ -108,7 +106,7 @@ class Worksheet(WorksheetTyping):
         """Show the blocks above the line to type."""
         height = max(int(self.app.size.height) - BELOW, 1)
         self.query_one("#blocks", Ruled).show(fill(self.block_lines(height), height))
-        self.query_one(Input).placeholder = self.placeholder()
+        self.query_one(TypedLine).placeholder = self.placeholder()
 
     def block_lines(self, height: int) -> list[Content]:
         """Return the lines of all blocks, shared out over the height."""
@@ -204,7 +202,6 @@ class Worksheet(WorksheetTyping):
             self.again = True
             return
         self.is_weighing = True
-        self.show_blocks()
         self.weigh_in_thread()
 
     @work(thread=True, group="weigh", exit_on_error=False)
@@ -243,11 +240,11 @@ class Worksheet(WorksheetTyping):
 
     def draft(self) -> tuple[str, dict[str, Any]] | None:
         """Keep what stands in the line."""
-        return self.draft_name, {"typed": self.query_one(Input).value, "case": self.visit.case.id}
+        return self.draft_name, {"typed": self.query_one(TypedLine).value, "case": self.visit.case.id}
 
     def unsaved(self) -> str:
         """Say that there is something typed."""
-        return f"'{self.query_one(Input).value}'" if self.query_one(Input).value.strip() else ""
+        return f"'{self.query_one(TypedLine).value}'" if self.query_one(TypedLine).value.strip() else ""
 
     def asks_for(self, item: NextItem | None) -> str:
         """Return what belongs into the line for an item."""

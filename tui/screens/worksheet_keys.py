@@ -5,7 +5,6 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from textual import work
-from textual.widgets import Input
 
 from rules.answer import NextItem
 from tui.look import FAINT, WATCH
@@ -40,6 +39,7 @@ class WorksheetKeys(Page[None]):
     older: int
     was_read: set[str]
     sure_of: str
+    is_weighing: bool
     weighed: Weighed | None
 
     @property
@@ -88,24 +88,23 @@ class WorksheetKeys(Page[None]):
 
     # other reading, skip
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_other(self) -> None:
         """Pick another reading."""
         await self.pick_other("")
 
-    async def pick_other(self, typed: str) -> None:
-        """Pick a reading from all that suit the machine; the proposed ones stand first."""
+    async def pick_other(self, typed: str) -> bool:
+        """Pick a reading from all that suit the machine; return whether one was picked."""
         choices = other_choices(self.visit, [item.key for item in self.proposals])
         key = await self.app.push_screen_wait(Pick("reading", "Which reading?", choices, typed=typed))
         if key is None:
-            return
+            return False
         self.chosen = item_of(key, self.proposals, self.visit.knowledge)
-        with self.prevent(Input.Changed):
-            self.query_one(Input).value = ""
         self.say("")
         self.show_blocks()
+        return True
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_skip(self) -> None:
         """Remember that the reading cannot be taken."""
         item = self.target
@@ -158,7 +157,7 @@ class WorksheetKeys(Page[None]):
         self.weigh()
         return True
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_gate(self) -> None:
         """Show the list before energising, and take the isolation record from there."""
         if self.diagnosis is None:
@@ -187,7 +186,7 @@ class WorksheetKeys(Page[None]):
 
         self.app.push_screen(MachinePage(self.visit.sheet.machine.tag or "", self.visit))
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_tick(self) -> None:
         """Tick what was seen."""
         knowledge, kind = self.visit.knowledge, self.visit.kind
@@ -204,7 +203,7 @@ class WorksheetKeys(Page[None]):
             )
             self.stored(words)
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_note(self) -> None:
         """Store a remark."""
         text = await self.app.push_screen_wait(Note())
@@ -214,7 +213,7 @@ class WorksheetKeys(Page[None]):
 
     # correct, close
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_correct(self) -> None:
         """Pick something stored, then take it back or type it anew."""
         stored = stored_choices(self.visit)
@@ -239,7 +238,7 @@ class WorksheetKeys(Page[None]):
             self.show_blocks()
             self.say("Type the right values; Enter stores the correction.", "")
 
-    @work(exclusive=True, group="enter")
+    @work(group="enter")
     async def action_close(self) -> None:
         """Close the case."""
         await self.close_case()

@@ -242,7 +242,7 @@ def band_number(value: float) -> str:
 def next_lines(
     item: NextItem | None, first: tuple[str, str], knowledge: Knowledge, room: int
 ) -> list[Content]:
-    """Return the reading to take: what, in which state, leads, why. ``first``, in its style, comes before it."""
+    """Return the reading to take: what, state, leads, why; ``first``, in its style, comes before it."""
     if item is None:
         return rows("next", NOTHING_LEFT, room)
     name = question(item.observation, knowledge) if item.observation else key_words(item.key, knowledge)

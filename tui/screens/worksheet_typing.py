@@ -9,6 +9,7 @@ from calc.errors import PlatesideError
 from rules.answer import NextItem
 from tui.look import FAINT
 from tui.screens.worksheet_keys import WorksheetKeys
+from tui.widgets.typed import TypedLine
 from tui.words import question
 
 YES_WORDS = {"y": True, "yes": True, "n": False, "no": False}
@@ -31,37 +32,57 @@ class WorksheetTyping(WorksheetKeys):
         else:
             self.say(understood.echo, "")
 
-    def on_input_submitted(self, _event: Input.Submitted) -> None:
-        """Enter: store, or do what comes first."""
-        self.enter()
+    def entered(self, text: str) -> None:
+        """Enter: take the text out of the line at once, then do the obvious with it."""
+        text = text.strip()
+        if self.is_weighing and self.chosen is None:
+            self.say("Weighing what was stored; Enter once more when it says what comes next.", "")
+            return
+        self.query_one(TypedLine).put("")
+        self.enter(text)
 
     def action_enter(self) -> None:
         """Enter, where the line to type has lost the focus."""
-        self.enter()
+        self.entered(self.query_one(TypedLine).value)
 
-    @work(exclusive=True, group="enter")
-    async def enter(self) -> None:
-        """Do the obvious with what stands in the line."""
-        text, item = self.query_one(Input).value.strip(), self.target
+    def give_back(self, text: str) -> None:
+        """Put text that was not stored back in the line, unless something else is typed there by now."""
+        typed = self.query_one(TypedLine)
+        if not typed.value:
+            typed.put(text)
+
+    @work(group="enter")
+    async def enter(self, text: str) -> None:
+        """Do the obvious with what stood in the line."""
+        item = self.target
+        stored = False
+        try:
+            stored = await self.enter_for(item, text)
+        finally:
+            if not stored:
+                self.give_back(text)
+
+    async def enter_for(self, item: NextItem | None, text: str) -> bool:
+        """Do the obvious with a text for an item; return whether the text is done with."""
         if item is None:
-            await self.enter_without_target(text)
-        elif item.observation is not None:
-            await self.enter_answer(item, text)
-        elif text and self.is_a_word(text):
-            await self.pick_other(text)
-        elif await self.come_first(item) and text:
-            self.enter_reading(item, text)
-        elif not text:
-            self.say(f"Type {self.asks_for(item)}; F4 where it cannot be taken.", "")
+            return await self.enter_without_target(text)
+        if item.observation is not None:
+            return await self.enter_answer(item, text)
+        if text and self.is_a_word(text):
+            return await self.pick_other(text)
+        if not await self.come_first(item):
+            return False
+        if text:
+            return self.enter_reading(item, text)
+        self.say(f"Type {self.asks_for(item)}; F4 where it cannot be taken.", "")
+        return True
 
-    async def enter_without_target(self, text: str) -> None:
+    async def enter_without_target(self, text: str) -> bool:
         """Nothing is proposed: pick another reading, or go on to closing."""
-        if self.weighed is None:
-            self.say("Still weighing; what is typed stays.", "")
-        elif text:
-            await self.pick_other(text)
-        else:
-            await self.close_case()
+        if text:
+            return await self.pick_other(text)
+        await self.close_case()
+        return True
 
     @staticmethod
     def is_a_word(text: str) -> bool:
@@ -69,34 +90,35 @@ class WorksheetTyping(WorksheetKeys):
         first = text.split(maxsplit=1)[0].lower()
         return len(first) > 1 and first.isalpha() and first not in {"ol", "open", "inf", "nan", "none"}
 
-    async def enter_answer(self, item: NextItem, text: str) -> None:
+    async def enter_answer(self, item: NextItem, text: str) -> bool:
         """Store a yes or no."""
         answer = YES_WORDS.get(text.lower())
         if answer is None:
             if text and self.is_a_word(text):
-                await self.pick_other(text)
-            else:
-                self.say("y or n; F4 where it cannot be told.", "")
-            return
+                return await self.pick_other(text)
+            self.say("y or n; F4 where it cannot be told.", "")
+            return False
         self.visit.observe(str(item.observation), answer)
         self.stored(f"{question(str(item.observation), self.visit.knowledge)} {'yes' if answer else 'no'}")
+        return True
 
-    def enter_reading(self, item: NextItem, text: str) -> None:
+    def enter_reading(self, item: NextItem, text: str) -> bool:
         """Understand a reading, ask once about what is hardly possible, and store it."""
         try:
             understood = self.visit.understand(str(item.measure), str(item.state), text)
         except PlatesideError as error:
             self.say(str(error))
-            return
+            return False
         if understood.asks and self.sure_of != text:
             self.sure_of = text
             self.say(f"{understood.asks} Enter again keeps it.")
-            return
+            return False
         if self.correcting:
             self.visit.correct(self.correcting, understood)
         else:
             self.visit.record(understood)
         self.stored(understood.echo)
+        return True
 
     def stored(self, words: str) -> None:
         """Go on after something is on disk."""
@@ -107,6 +129,4 @@ class WorksheetTyping(WorksheetKeys):
     def clear_line(self) -> None:
         """Make the line ready for the next thing."""
         self.chosen, self.correcting, self.sure_of = None, "", ""
-        with self.prevent(Input.Changed):
-            self.query_one(Input).value = ""
         self.plateside.desk.drafts.drop(self.draft_name)
