@@ -65,6 +65,7 @@ class SinglePhaseTwin:
         )
         self._start = [self._start_capacitor(design) for design in self.designs]
         self._rated_loss_w = self._rated_losses()
+        self.weights = self._fit.weights
 
     @property
     def dim(self) -> int:
