@@ -35,9 +35,21 @@ def answer_lines(diagnosis: Diagnosis, sheet: CaseSheet, knowledge: Knowledge) -
         *titled("What would turn it", item_lines(turn.text for turn in diagnosis.turns[:1])),
         *titled("Check the entry", item_lines(slip.text for slip in diagnosis.slips)),
         *titled("Nameplate", item_lines(diagnosis.plate_remarks)),
-        *titled("Cautions", item_lines(diagnosis.cautions[:CAUTIONS_SHOWN])),
+        *titled("Cautions", item_lines(other_cautions(diagnosis, knowledge))),
         *titled("Note", item_lines((*diagnosis.notes, *knowledge.loosened))),
     ]
+
+
+def other_cautions(diagnosis: Diagnosis, knowledge: Knowledge) -> list[str]:
+    """Return the cautions that do not stand with the next reading already."""
+    told = set(hazard_texts(diagnosis.next[0].hazards, knowledge)) if diagnosis.next else set()
+    return [caution for caution in diagnosis.cautions if caution not in told][:CAUTIONS_SHOWN]
+
+
+def hazard_texts(hazards: Iterable[str], knowledge: Knowledge) -> list[str]:
+    """Return the precaution of each hazard."""
+    known = knowledge.hazards
+    return [known[one].precaution if one in known else plain(one) for one in hazards]
 
 
 def stop_lines(sheet: CaseSheet, knowledge: Knowledge) -> list[str]:
@@ -114,9 +126,8 @@ def next_lines(items: Sequence[NextItem], knowledge: Knowledge) -> list[str]:
         ("sees    ", first.sees),
     ):
         shown += paragraph(text, first=f"    {mark}") if text else []
-    for hazard in first.hazards:
-        known = knowledge.hazards.get(hazard)
-        shown += paragraph(known.precaution if known else plain(hazard), first="    hazard  ")
+    for text in hazard_texts(first.hazards, knowledge):
+        shown += paragraph(text, first="    hazard  ")
     then = "; ".join(item_name(item, knowledge) for item in others[:2])
     return shown + (paragraph(then, first="  then: ") if then else [])
 
