@@ -24,8 +24,11 @@ DEFAULTS: dict[str, float] = {
     "phase": 0.0,
     "phase_r": 0.0,  # pu, inside the winding
     "turns": 0.0,  # shorted fraction of one phase
+    "loop": 1.0,  # resistance of the shorted loop, over that of its turns alone
     "reversed": 0.0,
-    "path_r": 0.0,  # resistance of a path between two lines, pu; 0: none
+    "path_r": 0.0,  # resistance of a path between two phases, pu; 0: none
+    "path_a": 1.0,  # where the path begins in the phase, share of its turns
+    "path_b": 1.0,  # where it ends in the next phase
     "earth_ohm": 0.0,  # resistance from one phase to earth; 0: none
     "impedance": 1.0,  # all winding impedances times
     "bars": 0.0,  # broken fraction of the rotor bars
@@ -129,7 +132,29 @@ def _open_phase(_severity: tuple[float, float]) -> tuple[Mode, ...]:
 
 
 def _turn_short(severity: tuple[float, float]) -> tuple[Mode, ...]:
-    return _with_stall(_severe(_each("turn_short", 3), "turns", severity), 0.06)
+    steps = (Severity("turns", *severity), Severity("loop", 1.0, 25.0))
+    modes = tuple(
+        Mode(effect=m.effect, variant=m.variant, weight=m.weight, fixed=m.fixed, severity=steps)
+        for m in _each("turn_short", 3)
+    )
+    return _with_stall(modes, 0.06)
+
+
+def _phase_short(severity: tuple[float, float]) -> tuple[Mode, ...]:
+    """Path between two phases, near the terminals, mid-winding, or at unlike places."""
+    places = ((0.85, 0.85), (0.35, 0.35), (0.8, 0.3), (0.3, 0.8))
+    ends = (Severity("path_r", *severity),)
+    return tuple(
+        Mode(
+            effect="phase_short",
+            variant=f"{'UVW'[k]}-{'VWU'[k]}",
+            weight=1.0 / 12.0,
+            fixed={"phase": float(k), "path_a": a, "path_b": b},
+            severity=ends,
+        )
+        for k in range(3)
+        for a, b in places
+    )
 
 
 def _broken_bars(severity: tuple[float, float]) -> tuple[Mode, ...]:
@@ -180,8 +205,8 @@ _MAKERS: dict[str, tuple[Callable[[tuple[float, float]], tuple[Mode, ...]], tupl
     "no_supply": (lambda _s: (Mode(effect="no_supply", fixed={"no_supply": 1.0, "stall": 1.0}),), (1.0, 1.0)),
     # shorted fraction of one phase
     "turn_short": (_turn_short, (0.003, 0.15)),
-    # resistance of the path between two lines, pu
-    "phase_short": (lambda s: _severe(_each("phase_short", 3), "path_r", s), (0.5, 50.0)),
+    # resistance of the path between two phases, pu
+    "phase_short": (_phase_short, (0.05, 50.0)),
     # resistance to earth, ohm
     "earth_path": (lambda s: _severe(_each("earth_path", 3), "earth_ohm", s), (0.3, 1e5)),
     "open_phase": (_open_phase, (1.0, 1.0)),
@@ -213,7 +238,7 @@ def modes(effect: str, severity: tuple[float, float] | None, connection: str | N
     """
     make, default = _MAKERS[effect]
     found = make(severity or default)
-    inside = effect in {"turn_short", "open_phase", "reversed_phase", "series_resistance"}
+    inside = effect in {"turn_short", "phase_short", "open_phase", "reversed_phase", "series_resistance"}
     if connection in {"star", "delta"} or not inside:
         return tuple(_linked(m, connection == "delta", 1.0) for m in found)
     return tuple(_linked(m, delta, 0.5) for m in found for delta in (False, True))

@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from calc.induction_3ph import effects, thermal
-from calc.induction_3ph.network import terminal_resistance
+from calc.induction_3ph.network import path_resistance, terminal_resistance
 from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, Circuit, circuit, read_base
 from calc.induction_3ph.states import StateResult, Supply, solve, supply
 from calc.sheet import Machine
@@ -227,8 +227,7 @@ class InductionTwin:
             own = np.where(delta > 0.5, 3.0, 1.0)[:, None] * phases
             return np.minimum(own * self.base.impedance_ohm, OPEN_OHM)
         between = terminal_resistance(phases, delta)
-        between = between + _line_extra(rows)
-        between = _with_path(rows, between)
+        between = _with_path(rows, phases, between) + _line_extra(rows)
         return np.minimum(between * self.base.impedance_ohm, OPEN_OHM)
 
 
@@ -243,18 +242,17 @@ def _line_extra(rows: Mapping[str, Floats]) -> Floats:
     return extra
 
 
-def _with_path(rows: Mapping[str, Floats], between: Floats) -> Floats:
-    """A conducting path between two lines lies across the reading of those two."""
-    if not np.any(rows["path_r"] > 0.0):
+def _with_path(rows: Mapping[str, Floats], phases: Floats, between: Floats) -> Floats:
+    """Terminal resistances where a path between two phases is in parallel with parts of them."""
+    where = np.flatnonzero(rows["path_r"] > 0.0)
+    if not len(where):
         return between
-    # Line-to-line conductance y between phases in the star-equivalent pu is 1/path_r.
-    path = np.where(rows["path_r"] > 0.0, rows["path_r"], 1e9)
-    index = np.arange(len(path))
-    pair = (rows["phase"].astype(np.int64) + 1) % 3
-    between = between.copy()
-    direct = between[index, pair]
-    between[index, pair] = direct * path / (direct + path)
-    return between
+    ends = np.stack([rows["path_a"][where], rows["path_b"][where]], axis=1)
+    out = between.copy()
+    out[where] = path_resistance(
+        phases[where], rows["phase"][where].astype(np.int64), ends, rows["path_r"][where]
+    )
+    return out
 
 
 def _scaled(mode: Mode, attribute: str, factor: float) -> Mode:

@@ -29,14 +29,16 @@ _DELTA: Phasors = np.array([_TURN, np.conj(_TURN)])
 class WindingFault:
     """What is wrong inside the winding; zeros where nothing is. Arrays of shape (rows,).
 
-    ``series`` is a resistance in one phase (200 pu is open), ``shunt`` an admittance across
-    one phase, ``reversed_`` 1 where a phase is reversed. ``phase`` counts from 0.
+    ``series`` is a resistance in one phase (200 pu is open), ``shunt`` an admittance across the
+    whole of one phase or, where ``ends`` are not (1, 0), between a share of this phase and a share
+    of the next. ``reversed_`` is 1 where a phase is reversed. ``phase`` counts from 0.
     """
 
     phase: NDArray[np.int64]
     series: Floats
     shunt: Phasors
     reversed_: Floats
+    ends: Floats
 
 
 def winding_admittance(y0: Phasors, y1: Phasors, y2: Phasors, fault: WindingFault, delta: Floats) -> Phasors:
@@ -64,7 +66,11 @@ def winding_admittance(y0: Phasors, y1: Phasors, y2: Phasors, fault: WindingFaul
         full = np.zeros((len(where), 3, 3), dtype=np.complex128)
         full[:, 0, 0], full[:, 1, 1], full[:, 2, 2] = y0[where], y1[where], y2[where]
         part = WindingFault(
-            fault.phase[where], fault.series[where], fault.shunt[where], fault.reversed_[where]
+            fault.phase[where],
+            fault.series[where],
+            fault.shunt[where],
+            fault.reversed_[where],
+            fault.ends[where],
         )
         sound[where] = _faulted(full, part, delta[where])
     return sound
@@ -75,7 +81,9 @@ def _faulted(full: Phasors, fault: WindingFault, delta: Floats) -> Phasors:
     unit = FORTESCUE[:, fault.phase].T
     full = _with_series(full, unit, fault.series)
     outer = unit[:, :, None] * unit.conj()[:, None, :]
-    full = full + fault.shunt[:, None, None] * outer
+    following = FORTESCUE[:, (fault.phase + 1) % 3].T
+    span = fault.ends[:, :1] * unit - fault.ends[:, 1:] * following
+    full = full + fault.shunt[:, None, None] * span[:, :, None] * span.conj()[:, None, :]
     if np.any(fault.reversed_ > 0.0):
         flip = np.eye(3) - 2.0 * fault.reversed_[:, None, None] * outer
         full = flip @ full @ flip
@@ -106,15 +114,6 @@ def with_line_resistance(admittance: Phasors, line: NDArray[np.int64], resistanc
     return out
 
 
-def with_path_between_lines(admittance: Phasors, missing: NDArray[np.int64], conductance: Floats) -> Phasors:
-    """Put a conductance between the two lines other than ``missing``. [pu, star-equivalent]"""
-    where = np.flatnonzero(conductance > 0.0)
-    span = line_unit((missing[where] + 1) % 3) - line_unit((missing[where] + 2) % 3)
-    out = admittance.copy()
-    out[where] += conductance[where, None, None] * span[:, :, None] * span.conj()[:, None, :]
-    return out
-
-
 def to_lines(components: Phasors) -> Phasors:
     """Three line phasors from positive and negative components (rows, 2); no zero sequence."""
     return np.asarray(components @ INVERSE[:, 1:].T)
@@ -123,6 +122,24 @@ def to_lines(components: Phasors) -> Phasors:
 def line_to_line(phase_values: Phasors) -> Floats:
     """Magnitudes U-V, V-W, W-U from three phasors, scaled so that a balanced unit set gives 1."""
     return np.asarray(np.abs(phase_values - np.roll(phase_values, -1, axis=1)) / np.sqrt(3.0))
+
+
+def path_resistance(phases: Floats, phase: NDArray[np.int64], ends: Floats, path: Floats) -> Floats:
+    """Resistance between terminals with a path between two phases of a star-equivalent winding: (rows, 3).
+
+    ``phases`` are the three phase resistances, ``ends`` where the path leaves this phase and the next
+    as shares from the common point, ``path`` its own resistance; all per unit.
+    """
+    index = np.arange(len(phase))
+    nxt, last = (phase + 1) % 3, (phase + 2) % 3
+    r_a, r_b, r_c = phases[index, phase], phases[index, nxt], phases[index, last]
+    a, b = ends[:, 0], ends[:, 1]
+    loop = a * r_a + b * r_b + path
+    out = np.empty((len(phase), 3))
+    out[index, phase] = (1 - a) * r_a + (1 - b) * r_b + (a * r_a + b * r_b) * path / loop
+    out[index, nxt] = (1 - b) * r_b + b * r_b * (path + a * r_a) / loop + r_c
+    out[index, last] = (1 - a) * r_a + a * r_a * (path + b * r_b) / loop + r_c
+    return out
 
 
 def terminal_resistance(phases: Floats, delta: Floats) -> Floats:

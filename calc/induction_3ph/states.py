@@ -16,7 +16,6 @@ from calc.induction_3ph.network import (
     to_lines,
     winding_admittance,
     with_line_resistance,
-    with_path_between_lines,
 )
 from calc.induction_3ph.plate import COPPER_K, INDEX, Base, Circuit
 from calc.twin import Floats
@@ -209,18 +208,23 @@ def _network(
     x1: Floats,
 ) -> tuple[Phasors, Phasors]:
     """Line currents and phase voltages at the motor's lines, before any resistance in a line."""
-    turns = rows["turns"]
+    turns, path = rows["turns"], rows["path_r"]
+    ends = np.stack(
+        [np.where(path > 0.0, rows["path_a"], 1.0), np.where(path > 0.0, rows["path_b"], 0.0)], axis=1
+    )
+    # Shorted turns are an ideal transformer's secondary behind their own resistance and leakage; a path between
+    # phases lies behind the resistance and leakage of the turns that it spans.
+    loop = r1 * rows["loop"] + 1j * turns * x1
+    span = path + 0.5 * (rows["path_a"] ** 2 + rows["path_b"] ** 2) * (r1 + 1j * x1)
+    shunt = np.where(turns > 0.0, turns / loop, np.where(path > 0.0, 1.0 / span, 0.0))
     fault = WindingFault(
         phase=rows["phase"].astype(np.int64),
         series=rows["phase_r"],
-        # The shorted turns are an ideal transformer's secondary behind their own resistance and leakage.
-        shunt=np.where(turns > 0.0, turns / (r1 + 1j * turns * x1), 0.0),
+        shunt=np.asarray(shunt, dtype=np.complex128),
         reversed_=rows["reversed"],
+        ends=ends,
     )
     admittance = winding_admittance(y0, y1, y2, fault, rows["delta"])
-    if np.any(rows["path_r"] > 0.0):
-        path = np.where(rows["path_r"] > 0.0, 1.0 / np.maximum(rows["path_r"], 1e-3), 0.0)
-        admittance = with_path_between_lines(admittance, fault.phase, path)
     line = rows["line"].astype(np.int64)
     if np.any(rows["line_r"] > 0.0):
         admittance = with_line_resistance(admittance, line, rows["line_r"])
