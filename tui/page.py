@@ -11,20 +11,22 @@ from tui.answer_text import LEAST_SHOWN, NO_MODEL, NOTHING_FORBIDS, condition
 from tui.compose import band_text
 from tui.words import (
     complaint_name,
+    context_text,
     fault_name,
     kind_name,
     measure_name,
     percent,
     plain,
+    plate_text,
     question,
+    reading_name,
     reading_text,
-    value_text,
 )
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
 
-    from calc.sheet import Machine, Reading, Value
+    from calc.sheet import Reading
     from casebook.fold import Case
     from rules.answer import Band, Diagnosis
     from rules.knowledge import Knowledge
@@ -39,17 +41,6 @@ CONFIRMED = {
     "repair": "confirmed by repair",
     "believed": "believed, not confirmed",
 }
-CONTEXT = (
-    "temperature",
-    "test_voltage",
-    "speed",
-    "at",
-    "links",
-    "method",
-    "after_stop",
-    "position",
-    "direction",
-)
 
 
 @dataclass(frozen=True)
@@ -145,21 +136,6 @@ def _facts(case: Case, knowledge: Knowledge) -> Iterable[tuple[str, str]]:
     yield "Written by", ", ".join(case.persons)
 
 
-def plate_text(machine: Machine) -> str:
-    """Return a nameplate in one line, as typed."""
-    plate = machine.nameplate
-    said: list[str] = []
-    for name in plate.__struct_fields__:
-        value = getattr(plate, name)
-        if name == "ratings" or value is None:
-            continue
-        text = value if isinstance(value, str) else value_text(value)
-        said.append(
-            text if name in {"power", "voltage", "current", "frequency", "speed"} else f"{plain(name)} {text}"
-        )
-    return ", ".join(said) or "not readable"
-
-
 def _gate(diagnosis: Diagnosis) -> Iterable[str]:
     """Yield the gate: what it needs, what forbids."""
     energise = diagnosis.energise
@@ -190,21 +166,6 @@ def _tag_rows(case: Case) -> Iterable[Row]:
     for logged in case.readings:
         reading = logged.what.reading
         yield Row((reading_name(reading), reading_text(reading), context_text(reading)))
-
-
-def reading_name(reading: Reading) -> str:
-    """Return measure and state in words."""
-    return f"{measure_name(reading.measure)}, {plain(reading.state)}"
-
-
-def context_text(reading: Reading) -> str:
-    """Return what was noted with a reading."""
-    said = []
-    for name in CONTEXT:
-        value: Value | str | None = getattr(reading, name)
-        if value is not None:
-            said.append(plain(value) if isinstance(value, str) else value_text(value))
-    return ", ".join([*said, *([reading.note] if reading.note else [])])
 
 
 def _scale(reading: Reading, band: Band | None) -> Scale | None:

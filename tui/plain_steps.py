@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from calc.quantities import MEASURES, STATES
 from casebook import bodies
-from tui.answer_text import gate_lines, reason_lines
+from tui.answer_text import gate_lines, hazard_texts, reason_lines
 from tui.output import say
 from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell
 from tui.words import fault_name, measure_name, plain
@@ -61,7 +61,7 @@ def _first(visit: Visit, state: str, hazards: tuple[str, ...]) -> bool:
         isolate(visit, "")
         return visit.wants_first(state, hazards) == ""
     if wanted == "acknowledge":
-        texts = [visit.knowledge.hazards[one].precaution for one in hazards if one in visit.knowledge.hazards]
+        texts = hazard_texts(hazards, visit.knowledge)
         for text in texts:
             tell(f"! {text}")
         if not ask_yes("Read, and taken care of?"):

@@ -7,8 +7,20 @@ from typing import TYPE_CHECKING
 from calc.quantities import KINDS, MEASURES
 
 if TYPE_CHECKING:
-    from calc.sheet import CaseSheet, Reading, Value
+    from calc.sheet import CaseSheet, Machine, Reading, Value
     from rules.knowledge import Knowledge
+
+_CONTEXT = (
+    "temperature",
+    "test_voltage",
+    "speed",
+    "at",
+    "links",
+    "method",
+    "after_stop",
+    "position",
+    "direction",
+)
 
 
 def plain(identifier: str) -> str:
@@ -92,3 +104,33 @@ def number(value: float) -> str:
 def number_range(low: float, high: float) -> str:
     """Return two numbers as a range."""
     return f"{number(low)} to {number(high)}"
+
+
+def plate_text(machine: Machine) -> str:
+    """Return a nameplate in one line, as typed."""
+    plate = machine.nameplate
+    said: list[str] = []
+    for name in plate.__struct_fields__:
+        value = getattr(plate, name)
+        if name == "ratings" or value is None:
+            continue
+        text = value if isinstance(value, str) else value_text(value)
+        said.append(
+            text if name in {"power", "voltage", "current", "frequency", "speed"} else f"{plain(name)} {text}"
+        )
+    return ", ".join(said) or "not readable"
+
+
+def reading_name(reading: Reading) -> str:
+    """Return measure and state in words."""
+    return f"{measure_name(reading.measure)}, {plain(reading.state)}"
+
+
+def context_text(reading: Reading) -> str:
+    """Return what was noted with a reading."""
+    said = []
+    for name in _CONTEXT:
+        value: Value | str | None = getattr(reading, name)
+        if value is not None:
+            said.append(plain(value) if isinstance(value, str) else value_text(value))
+    return ", ".join([*said, *([reading.note] if reading.note else [])])
