@@ -12,7 +12,7 @@ from rules.decoding import Steps
 
 _NEVER: Final = re.compile(
     r"""
-    \bsafe(?:ly)?\b | (?<!prove\ )(?<!proved\ )(?<!proving\ )\bdead\b | \bgood\b
+    \bsafe(?:ly)?\b | (?<!prove\ )(?<!proved\ )(?<!proving\ )(?<!prove\ it\ )\bdead\b | \bgood\b
     | \b(?:ok|okay|fine)\ to\b | \ball\ clear\b
     | \bmay\ be\ (?:energi[sz]ed|started|re-?started|switched\ on|put\ back)\b
     | \b(?:can|is\ allowed\ to|allowed\ to)\ be\ energi[sz]ed\b
