@@ -83,12 +83,13 @@ class SinglePhaseTwin:
         return tuple(VARIANTS)
 
     def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
-        """Enumerate the ways of an effect over the designs that the plate allows.
+        """Enumerate the ways of an effect over designs, the likeliest design first.
 
         The weights add up to the chance that the motor has the part. Raises KeyError for an
         unknown effect.
         """
-        picked = [i for i, weight in enumerate(self._fit.weights) if weight >= _LEAST_SHARE]
+        order = np.argsort(-self._fit.weights, kind="stable")
+        picked = [int(i) for i in order if self._fit.weights[i] >= _LEAST_SHARE]
         weights = [float(weight) for weight in self._fit.weights]
         return enumerate_modes(effect, self.designs, weights, severity, picked)
 

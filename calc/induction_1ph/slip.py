@@ -11,7 +11,7 @@ from calc.induction_1ph.machine import Connected, Motor, Setting, connect, run_a
 from calc.twin import Flags, Floats
 
 # Slips looked at first, in multiples of the rated slip: the torque is nearly straight below the third.
-_STEPS = np.array([0.12, 0.55, 1.1, 2.0, 3.6, 7.0])
+_STEPS = np.array([0.15, 0.75, 1.6, 3.3, 7.0])
 _LARGEST = 0.6
 _SMALLEST = 2e-5
 _REFINEMENTS = 2
