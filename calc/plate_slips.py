@@ -130,7 +130,7 @@ def oddness(plate: Plate) -> float:
         if power is not None and n["voltage"] > 1000.0 and power < 1000.0 * limit("high_voltage_from_kw"):
             total += 3.0
         total += 3.0 if n["voltage"] < 90.0 else 0.0
-        total += 2.0 if abs(n["voltage"] / n.get("nominal_voltage", n["voltage"]) - 1.0) > 0.15 else 0.0
+        total += 3.0 if abs(n["voltage"] / n.get("nominal_voltage", n["voltage"]) - 1.0) > 0.15 else 0.0
     if power is None or plate.kind not in INDUCTION:
         return total
     poles = poles_of(plate) or 4

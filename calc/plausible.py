@@ -123,7 +123,7 @@ def _doubt(reading: Reading, value: Value, machine: Machine) -> str:
     rated = _rated(measure.id, machine)
     if rated is None:
         return ""
-    times = _times(measure.dimension, reading.state)
+    times = _times(measure.id, measure.dimension, reading.state)
     if value.number > times * rated.number:
         return f"more than {times:g} times the {rated.text} that the machine is for"
     return _too_fast(value, machine) if measure.id == "speed" else ""
@@ -146,12 +146,13 @@ def _rated(measure: str, machine: Machine) -> Value | None:
     return max(known, key=lambda value: value.number, default=None)
 
 
-def _times(dimension: str, state: str) -> float:
-    if dimension == "current":
-        return _reading_limit(
-            "times_rated_current_starting" if state in _STARTING else "times_rated_current_running"
-        )
-    return _reading_limit(f"times_rated_{dimension}")
+def _times(measure: str, dimension: str, state: str) -> float:
+    if dimension != "current":
+        return _reading_limit(f"times_rated_{dimension}")
+    if state not in _STARTING:
+        return _reading_limit("times_rated_current_running")
+    armature = measure == "armature_current"
+    return _reading_limit(f"times_rated_{'armature_' if armature else ''}current_starting")
 
 
 def _too_fast(value: Value, machine: Machine) -> str:

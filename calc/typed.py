@@ -145,7 +145,7 @@ def _belongs(word: str, before: str, entry: Measure) -> bool:
 
 
 def _unit_of(item: str) -> str:
-    found = re.fullmatch(rf"(?:>=?|<=?|≥|≤)?\s*{_NUMBER}\s*(?P<unit>[^\d\s].*)?", item)
+    found = re.fullmatch(rf"(?:>=?|<=?|≥|≤)?\s*{_NUMBER}\s*(?P<unit>[^\d\s+.,-].*)?", item)
     return (found["unit"] or "").strip() if found else ""
 
 

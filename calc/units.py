@@ -107,8 +107,8 @@ def find_unit(word: str, *, dimension: str) -> Unit | None:
 def _by_pint(word: str, dimension: str) -> Unit | None:
     """Look a rarer unit up with pint; units with an offset are all in the table."""
     inner = INNER_UNIT[dimension]
-    if not word or not inner or not _PINT_WORD.fullmatch(word):
-        return None
+    if not inner or word[:1] == "M" or not _PINT_WORD.fullmatch(word):
+        return None  # MA, MV, MF are milli or micro written carelessly, or nothing that a meter shows
     import pint  # noqa: PLC0415
 
     try:

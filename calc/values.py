@@ -116,7 +116,7 @@ def parse_value(text: str, *, dimension: str) -> Value:
         return _rebuilt(value, text, "above" if limit["sign"] in ">=≥" else "below")
     if dimension == "power" and (fraction := _FRACTION.fullmatch(clean)):
         return _fraction(fraction, text, dimension)
-    if not _ONE.fullmatch(clean) and (span := _RANGE.fullmatch(clean)):
+    if (span := _RANGE.fullmatch(clean)) and not _is_one(clean, dimension):
         return _range(span, text, dimension)
     return _number(clean, text, dimension)
 
@@ -154,6 +154,14 @@ def _clean(text: str) -> str:
         text = text.replace(dash, "-")
     text = re.sub(r" 1/(?=min|h\b|s\b)", " /", " ".join(text.split()))
     return _GROUPED.sub(lambda found: found[1] + found[2].replace(" ", ""), text)
+
+
+def _is_one(clean: str, dimension: str) -> bool:
+    """Whether a text is one number with a unit: 1e-3 A is no range, and min-1 no end of one."""
+    found = _ONE.fullmatch(clean)
+    return found is not None and (
+        not found["unit"] or find_unit(found["unit"], dimension=dimension) is not None
+    )
 
 
 def _open(text: str, dimension: str) -> Value:
