@@ -56,6 +56,7 @@ class Mode:
 
     ``fixed`` sets attributes of the kind's model; ``severity`` names those that the
     severity latents set. ``weight`` is the mode's share among the modes of its effect.
+    ``cause`` names what is behind it where one effect has several causes.
     """
 
     effect: str
@@ -63,6 +64,7 @@ class Mode:
     weight: float = 1.0
     fixed: Mapping[str, float] = field(default_factory=dict)
     severity: tuple[Severity, ...] = ()
+    cause: str = ""
 
 
 @dataclass(frozen=True)

@@ -17,6 +17,7 @@ from rules.gate import gate
 from rules.knowledge import Fault, Knowledge, Refinement
 from rules.weigh import soft
 from rules.weigh.bands import bands
+from rules.weigh.instruments import instrument_errors
 from rules.weigh.posterior import OTHER, Posterior, faults_of, weigh
 from rules.weigh.propose import propose
 from rules.weigh.reasons import reasons, rival
@@ -130,9 +131,12 @@ def _within(
     """Causes inside a fault; together they carry at most the fault's own odds."""
     if not fault.within:
         return ()
+    ways = _ways(fault.id, posterior)
     left = max(1.0 - sum(r.share for r in fault.within), 0.0)
-    weights = [r.share * math.exp(_fits(r, fault, posterior, knowledge)) for r in fault.within]
+    weights = [_way(r, ways) * math.exp(_fits(r, fault, posterior, knowledge)) for r in fault.within]
     total = sum(weights) + left
+    if not total > 0.0:
+        return ()
     found = [
         FaultOdds(id=r.id, probability=probability * w / total, name=r.name, part=fault.part)
         for r, w in zip(fault.within, weights, strict=True)
@@ -140,22 +144,46 @@ def _within(
     return tuple(sorted(found, key=lambda f: (-f.probability, f.id)))
 
 
+def _ways(fault: str, posterior: Posterior) -> dict[str, float]:
+    """Probability of each cause that the circuit tells apart, given the fault."""
+    share = posterior.share()
+    ways: dict[str, float] = {}
+    for hypothesis, p in zip(posterior.hypotheses, share, strict=True):
+        if hypothesis.fault == fault:
+            mode = posterior.modes[hypothesis.place]
+            cause = mode.cause or mode.effect
+            ways[cause] = ways.get(cause, 0.0) + float(p)
+    total = sum(ways.values())
+    return {cause: p / total for cause, p in ways.items()} if total > 0.0 else {}
+
+
+def _way(refinement: Refinement, ways: dict[str, float]) -> float:
+    """Weight of a cause: by the circuit where it tells, else its usual share."""
+    if refinement.effect is None:
+        return refinement.share
+    return ways.get(refinement.effect, 1e-6 if len(ways) > 1 else refinement.share)
+
+
 def _fits(refinement: Refinement, fault: Fault, posterior: Posterior, knowledge: Knowledge) -> float:
-    """How much better a cause explains complaint and observations than its fault on average. [nats]"""
+    """How much better a cause explains what was seen than its fault on average. [nats]"""
     own = msgspec.structs.replace(
         fault,
         observations={**fault.observations, **refinement.observations},
         complaints={**fault.complaints, **refinement.complaints},
         readings={**fault.readings, **refinement.readings},
     )
+    return _soft(own, posterior, knowledge) - _soft(fault, posterior, knowledge)
+
+
+def _soft(fault: Fault, posterior: Posterior, knowledge: Knowledge) -> float:
+    """Log chance of complaint, observations and readings without a circuit under one form of a fault."""
     w = weighing()
     sheet, kind = posterior.sheet, posterior.twin.kind
-    gain = 0.0
-    for one, sign in ((own, 1.0), (fault, -1.0)):
-        gain += sign * soft.complaint_table(sheet.complaint, [one], knowledge, kind, w)[fault.id]
-        for name, answer in sheet.observations.items():
-            gain += sign * soft.observation_table(name, answer, [one], knowledge, w)[fault.id]
-    return gain
+    total = soft.complaint_table(sheet.complaint, [fault], knowledge, kind, w)[fault.id]
+    for name, answer in sheet.observations.items():
+        total += soft.observation_table(name, answer, [fault], knowledge, w)[fault.id]
+    tables = soft.direct_tables(posterior.direct, [fault], knowledge, instrument_errors(knowledge), w)
+    return total + sum(table[fault.id] for table in tables.values())
 
 
 def _notes(posterior: Posterior) -> tuple[str, ...]:

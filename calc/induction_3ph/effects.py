@@ -7,6 +7,7 @@ stand beside each default. Attributes can be merged, so two effects may act at o
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 
 from calc.twin import Mode, Severity
 
@@ -36,6 +37,9 @@ DEFAULTS: dict[str, float] = {
     "load_low": 0.28,
     "load_high": 1.06,
     "stall": 0.0,
+    "load_stalls": 0.0,  # 1: it is the load that stands, and the motor turns uncoupled
+    "running_star": 0.0,  # 1: energised in star although linked for delta
+    "upstream": 0.0,  # 1: the line is open on the primary of a delta-star transformer
     "hot": 1.0,
     "friction": 0.0,  # extra torque over rated
     "bearing_k": 0.0,  # heat of a bearing over its usual temperature, K
@@ -56,9 +60,7 @@ def _each(effect: str, count: int, **attributes: float) -> tuple[Mode, ...]:
 
 def _severe(modes: tuple[Mode, ...], attribute: str, severity: tuple[float, float]) -> tuple[Mode, ...]:
     step = (Severity(attribute, *severity),)
-    return tuple(
-        Mode(effect=m.effect, variant=m.variant, weight=m.weight, fixed=m.fixed, severity=step) for m in modes
-    )
+    return tuple(replace(m, severity=step) for m in modes)
 
 
 def _one(
@@ -69,25 +71,13 @@ def _one(
     return (Mode(effect=effect, fixed=fixed, severity=(ends,)),)
 
 
-def _with_stall(modes: tuple[Mode, ...], share: float) -> tuple[Mode, ...]:
-    """Add the variant in which the shaft stands, with a share of the weight."""
-    running = tuple(
-        Mode(
-            effect=m.effect,
-            variant=m.variant,
-            weight=m.weight * (1.0 - share),
-            fixed=m.fixed,
-            severity=m.severity,
-        )
-        for m in modes
-    )
+def _with_stall(modes: tuple[Mode, ...], share: float, *, free_uncoupled: bool = False) -> tuple[Mode, ...]:
+    """Add the variant in which the shaft stands, with a share of the weight; uncoupled it may turn."""
+    stands = {"stall": 1.0, "load_stalls": 1.0 if free_uncoupled else 0.0}
+    running = tuple(replace(m, weight=m.weight * (1.0 - share)) for m in modes)
     standing = tuple(
-        Mode(
-            effect=m.effect,
-            variant=f"{m.variant} standing".strip(),
-            weight=m.weight * share,
-            fixed={**m.fixed, "stall": 1.0},
-            severity=m.severity,
+        replace(
+            m, variant=f"{m.variant} standing".strip(), weight=m.weight * share, fixed={**m.fixed, **stands}
         )
         for m in modes
     )
@@ -112,19 +102,20 @@ def _series_resistance(severity: tuple[float, float]) -> tuple[Mode, ...]:
     in_lines = _severe(_lines("series_resistance", {0: 0.34, 1: 0.33, 2: 0.18}), "line_r", severity)
     inside = _severe(_each("series_resistance", 3), "phase_r", severity)
     return in_lines + tuple(
-        Mode(
-            effect=m.effect,
-            variant=f"joint of phase {m.variant}",
-            weight=0.15 / 3,
-            fixed=m.fixed,
-            severity=m.severity,
-        )
-        for m in inside
+        replace(m, variant=f"joint of phase {m.variant}", weight=0.15 / 3) for m in inside
     )
 
 
 def _open_line(_severity: tuple[float, float]) -> tuple[Mode, ...]:
-    return _with_stall(_lines("open_line", {0: 0.5, 1: 0.5}, line_r=OPEN), 0.5)
+    """One line open before or behind the volt meter, or on the primary of a delta-star transformer (1 : 2 : 1)."""
+    here = _with_stall(_lines("open_line", {0: 0.46, 1: 0.46}, line_r=OPEN), 0.5)
+    upstream = tuple(
+        replace(
+            m, variant=f"L{m.variant[1]}, upstream of the transformer", cause="open_upstream_of_transformer"
+        )
+        for m in _with_stall(_lines("open_line", {0: 0.08}, line_r=OPEN, upstream=1.0), 0.5)
+    )
+    return here + upstream
 
 
 def _open_phase(_severity: tuple[float, float]) -> tuple[Mode, ...]:
@@ -133,10 +124,7 @@ def _open_phase(_severity: tuple[float, float]) -> tuple[Mode, ...]:
 
 def _turn_short(severity: tuple[float, float]) -> tuple[Mode, ...]:
     steps = (Severity("turns", *severity), Severity("loop", 1.0, 25.0))
-    modes = tuple(
-        Mode(effect=m.effect, variant=m.variant, weight=m.weight, fixed=m.fixed, severity=steps)
-        for m in _each("turn_short", 3)
-    )
+    modes = tuple(replace(m, severity=steps) for m in _each("turn_short", 3))
     return _with_stall(modes, 0.06)
 
 
@@ -165,10 +153,7 @@ def _off_frequency(severity: tuple[float, float]) -> tuple[Mode, ...]:
     fixed = {"level_sd": 0.05}
     low = _one("off_frequency", "frequency_change", severity, -1.0, **fixed)
     high = _one("off_frequency", "frequency_change", severity, 1.0, **fixed)
-    return tuple(
-        Mode(effect=m.effect, variant=v, weight=0.5, fixed=m.fixed, severity=m.severity)
-        for m, v in ((low[0], "low"), (high[0], "high"))
-    )
+    return tuple(replace(m, variant=v, weight=0.5) for m, v in ((low[0], "low"), (high[0], "high")))
 
 
 def _friction(severity: tuple[float, float]) -> tuple[Mode, ...]:
@@ -178,21 +163,39 @@ def _friction(severity: tuple[float, float]) -> tuple[Mode, ...]:
 
 def _other_connection(_severity: tuple[float, float]) -> tuple[Mode, ...]:
     ways = (
-        ("star for delta", 0.45, {"impedance": 3.0, "delta": 0.0}),
-        ("delta for star", 0.35, {"impedance": 1 / 3.0, "delta": 1.0}),
-        ("high range on low voltage", 0.1, {"impedance": 4.0}),
-        ("low range on high voltage", 0.1, {"impedance": 0.25}),
+        ("star for delta", "star_for_delta", 0.45, {"impedance": 3.0, "delta": 0.0}),
+        ("delta for star", "delta_for_star", 0.35, {"impedance": 1 / 3.0, "delta": 1.0}),
+        ("high range on low voltage", "voltage_range", 0.1, {"impedance": 4.0}),
+        ("low range on high voltage", "voltage_range", 0.1, {"impedance": 0.25}),
     )
     modes = tuple(
-        Mode(effect="other_connection", variant=name, weight=w, fixed=fixed) for name, w, fixed in ways
+        Mode(effect="other_connection", variant=name, weight=w, fixed=fixed, cause=cause)
+        for name, cause, w, fixed in ways
     )
-    return _with_stall(modes, 0.3)
+    return _with_stall(modes, 0.3, free_uncoupled=True)
+
+
+def _stall(_severity: tuple[float, float]) -> tuple[Mode, ...]:
+    """The motor itself is seized, or what it drives: then it turns uncoupled."""
+    return (
+        Mode(effect="stall", variant="motor seized", weight=0.45, fixed={"stall": 1.0}),
+        Mode(effect="stall", variant="load seized", weight=0.55, fixed={"stall": 1.0, "load_stalls": 1.0}),
+    )
+
+
+def _stuck_in_star(_severity: tuple[float, float]) -> tuple[Mode, ...]:
+    """A star-delta starter that does not change over: it runs in star, and is read in delta at rest."""
+    mode = Mode(effect="stuck_in_star", variant="stays in star", fixed={"running_star": 1.0})
+    return _with_stall((mode,), 0.3, free_uncoupled=True)
 
 
 _MAKERS: dict[str, tuple[Callable[[tuple[float, float]], tuple[Mode, ...]], tuple[float, float]]] = {
     "none": (lambda _s: (Mode(effect="none"),), (1.0, 1.0)),
     # fraction below rated
-    "low_voltage": (lambda s: _with_stall(_one("low_voltage", "level", s, -1.0), 0.12), (0.08, 0.30)),
+    "low_voltage": (
+        lambda s: _with_stall(_one("low_voltage", "level", s, -1.0), 0.12, free_uncoupled=True),
+        (0.08, 0.30),
+    ),
     # fraction above rated
     "high_voltage": (lambda s: _one("high_voltage", "level", s), (0.08, 0.20)),
     # one sigma of each component of V2/V1
@@ -215,9 +218,13 @@ _MAKERS: dict[str, tuple[Callable[[tuple[float, float]], tuple[Mode, ...]], tupl
     # fraction of bars
     "broken_bars": (_broken_bars, (0.015, 0.25)),
     # torque over rated
-    "excess_load": (lambda s: _with_stall(_one("excess_load", "load", s), 0.06), (1.12, 2.0)),
+    "excess_load": (
+        lambda s: _with_stall(_one("excess_load", "load", s), 0.06, free_uncoupled=True),
+        (1.12, 2.0),
+    ),
     "light_load": (lambda s: _one("light_load", "load", s), (0.01, 0.28)),
-    "stall": (lambda _s: (Mode(effect="stall", fixed={"stall": 1.0}),), (1.0, 1.0)),
+    "stall": (_stall, (1.0, 1.0)),
+    "stuck_in_star": (_stuck_in_star, (1.0, 1.0)),
     # temperature rise times
     "hot": (lambda s: _one("hot", "hot", s), (1.25, 3.0)),
     # extra torque over rated
@@ -247,10 +254,4 @@ def modes(effect: str, severity: tuple[float, float] | None, connection: str | N
 def _linked(mode: Mode, delta: bool, share: float) -> Mode:
     fixed = {"delta": 1.0 if delta else 0.0, **mode.fixed}
     word = "" if share == 1.0 else (" in delta" if delta else " in star")
-    return Mode(
-        effect=mode.effect,
-        variant=f"{mode.variant}{word}".strip(),
-        weight=mode.weight * share,
-        fixed=fixed,
-        severity=mode.severity,
-    )
+    return replace(mode, variant=f"{mode.variant}{word}".strip(), weight=mode.weight * share, fixed=fixed)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -12,7 +12,7 @@ from calc.induction_3ph.network import path_resistance, terminal_resistance
 from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, Circuit, circuit, read_base
 from calc.induction_3ph.states import StateResult, Supply, solve, supply
 from calc.sheet import Machine
-from calc.twin import Ask, Floats, Mode, ModelError, Transform
+from calc.twin import Ask, Floats, Mode, ModelError, Severity, Transform, standard_normal_cdf
 
 _STANDING = {"stalled", "starting"}
 _TURNING = {"no_load", "light_load", "loaded"}
@@ -53,6 +53,7 @@ class InductionTwin:
     load_exponent: float
     nominal: float
     inverter: bool
+    star_delta: bool = False
     kind: str = "induction_3ph"
     defaults: Mapping[str, float] = field(default_factory=lambda: dict(effects.DEFAULTS))
     effects: tuple[str, ...] = effects.EFFECTS
@@ -64,6 +65,8 @@ class InductionTwin:
 
     def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
         """Enumerate the discrete ways of an effect on this machine."""
+        if effect == "stuck_in_star" and not self.star_delta:
+            return ()
         found = effects.modes(effect, severity, self.base.connection)
         if effect == "excess_load" and self.base.service_factor > 1.0:
             return tuple(_scaled(mode, "load", self.base.service_factor) for mode in found)
@@ -126,7 +129,7 @@ class InductionTwin:
         loaded = self._solve(machine, rows, feed, z, "loaded")
         turns = 1.0 - np.maximum(rows["stall"], loaded.stalled)
         one = np.ones(len(z))
-        free = 1.0 - np.maximum(rows["stall"], rows["no_supply"])
+        free = 1.0 - np.maximum(rows["stall"] * (1.0 - rows["load_stalls"]), rows["no_supply"])
         return {
             "isolated": one,
             "standby": one,
@@ -162,6 +165,8 @@ class InductionTwin:
         self, machine: Circuit, rows: Mapping[str, Floats], feed: Supply, z: Floats, state: str
     ) -> StateResult:
         """Solve one state with the torque and the winding temperature that belong to it."""
+        if state == "no_load":
+            rows = {**rows, "stall": rows["stall"] * (1.0 - rows["load_stalls"])}
         rated = (machine.p_out + machine.p_friction + machine.p_stray) / (1.0 - machine.slip)
         load = self._load(rows, z, feed)
         share = {"loaded": 1.0, "light_load": 0.4}.get(state, 0.0)
@@ -174,8 +179,6 @@ class InductionTwin:
 
     def _load(self, rows: Mapping[str, Floats], z: Floats, feed: Supply) -> Floats:
         """Load torque over rated; pumps and fans ask for torque as the square of speed."""
-        from calc.twin import standard_normal_cdf  # noqa: PLC0415
-
         span = rows["load_high"] - rows["load_low"]
         drawn = rows["load_low"] + span * standard_normal_cdf(z[:, INDEX["load"]])
         torque = np.where(rows["load"] > 0.0, rows["load"], drawn)
@@ -256,13 +259,11 @@ def _with_path(rows: Mapping[str, Floats], phases: Floats, between: Floats) -> F
 
 
 def _scaled(mode: Mode, attribute: str, factor: float) -> Mode:
-    from calc.twin import Severity  # noqa: PLC0415
-
     severity = tuple(
         Severity(s.attribute, s.low * factor, s.high * factor) if s.attribute == attribute else s
         for s in mode.severity
     )
-    return Mode(mode.effect, mode.variant, mode.weight, mode.fixed, severity)
+    return replace(mode, severity=severity)
 
 
 def fit(machine: Machine) -> InductionTwin:
@@ -279,4 +280,5 @@ def fit(machine: Machine) -> InductionTwin:
         load_exponent=exponent if machine.load_type else 1.0,
         nominal=volts / base.voltage_v,
         inverter=machine.supply.source == "inverter",
+        star_delta=machine.starter == "star_delta",
     )

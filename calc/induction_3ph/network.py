@@ -101,16 +101,24 @@ def _with_series(admittance: Phasors, unit: Phasors, resistance: Floats) -> Phas
     return np.asarray(admittance - gain[:, None, None] * column[:, :, None] * row[:, None, :])
 
 
-def line_unit(line: NDArray[np.int64]) -> Phasors:
-    """Positive and negative component of one line's unit vector, shape (rows, 2)."""
-    return np.asarray(FORTESCUE[1:, line].T)
+def line_unit(line: NDArray[np.int64], upstream: Floats | None = None) -> Phasors:
+    """Positive and negative component of one line's unit vector, shape (rows, 2).
+
+    ``upstream`` 1 turns it to where a line on the primary of a delta-star transformer acts: positive
+    sequence +30 degrees, negative -30, which gives 1 : 2 : 1 in the motor's lines.
+    """
+    unit = np.asarray(FORTESCUE[1:, line].T)
+    if upstream is None:
+        return unit
+    turned = np.where(upstream[:, None] > 0.5, _DELTA[None, :], 1.0)
+    return np.asarray(unit * turned)
 
 
-def with_line_resistance(admittance: Phasors, line: NDArray[np.int64], resistance: Floats) -> Phasors:
-    """Put a resistance into one line before a (rows, 2, 2) admittance. [pu]"""
+def with_line_resistance(admittance: Phasors, unit: Phasors, resistance: Floats) -> Phasors:
+    """Put a resistance into the line of a unit vector, before a (rows, 2, 2) admittance. [pu]"""
     where = np.flatnonzero(resistance > 0.0)
     out = admittance.copy()
-    out[where] = _with_series(admittance[where], line_unit(line[where]), resistance[where])
+    out[where] = _with_series(admittance[where], unit[where], resistance[where])
     return out
 
 

@@ -104,7 +104,7 @@ def solve(
     braking of the negative sequence that a fault in series forces; no root means a stall.
 
     """
-    scale = rows["impedance"]
+    scale = rows["impedance"] * np.where(rows["running_star"] > 0.5, 3.0, 1.0)
     standing_rows = np.maximum(rows["stall"], 1.0 if standing else 0.0)
     f = feed.frequency
     drop = feed.regulation * np.where(standing_rows > 0.5, 5.5, 0.6)
@@ -212,8 +212,8 @@ def _network(
     ends = np.stack(
         [np.where(path > 0.0, rows["path_a"], 1.0), np.where(path > 0.0, rows["path_b"], 0.0)], axis=1
     )
-    # Shorted turns are an ideal transformer's secondary behind their own resistance and leakage; a path between
-    # phases lies behind the resistance and leakage of the turns that it spans.
+    # Shorted turns are an ideal transformer's secondary behind their own resistance and leakage;
+    # a path between phases lies behind the resistance and leakage of the turns that it spans.
     loop = r1 * rows["loop"] + 1j * turns * x1
     span = path + 0.5 * (rows["path_a"] ** 2 + rows["path_b"] ** 2) * (r1 + 1j * x1)
     shunt = np.where(turns > 0.0, turns / loop, np.where(path > 0.0, 1.0 / span, 0.0))
@@ -227,7 +227,7 @@ def _network(
     admittance = winding_admittance(y0, y1, y2, fault, rows["delta"])
     line = rows["line"].astype(np.int64)
     if np.any(rows["line_r"] > 0.0):
-        admittance = with_line_resistance(admittance, line, rows["line_r"])
+        admittance = with_line_resistance(admittance, line_unit(line, rows["upstream"]), rows["line_r"])
     volts = np.stack([v1 * ROOT3, v2 * ROOT3], axis=1)
     amps = np.einsum("rij,rj->ri", admittance, volts)
     return to_lines(amps), to_lines(volts)
@@ -250,7 +250,7 @@ def _seen_voltage(rows: Mapping[str, Floats], voltage: Phasors, current: Phasors
     if not np.any(before):
         return voltage
     line = rows["line"].astype(np.int64)
-    unit = line_unit(line)
+    unit = line_unit(line, rows["upstream"])
     through = np.einsum("ri,ri->r", unit.conj(), current @ FORTESCUE[1:].T)
     drop = np.where(before, rows["line_r"], 0.0) * through
     return np.asarray(voltage - to_lines(drop[:, None] * unit))

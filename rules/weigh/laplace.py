@@ -22,7 +22,7 @@ from calc.twin import Ask, Floats, Mode, Twin, attribute_rows
 NU = 5.0
 STARTS = (0.2,)  # severity latents where a fit begins; more starts changed nothing on graded cases
 ROUNDS = 4
-PRUNE_NATS = 18.0
+PRUNE_NATS = (60.0, 18.0)  # modes further behind than this after the first and second round are given up
 REACH = 4.5  # no latent goes further out than this
 _STEPS = (1.0, 0.4, 0.12)
 
@@ -183,8 +183,8 @@ def fit_modes(twin: Twin, modes: Sequence[Mode], data: Frame, keep: int = 0) -> 
         step, heat = (0.5, 9.0) if turn == 0 else (0.12, 1.0)
         value_now, z_now = _improve(fitter, [every[i] for i in chosen], z[chosen], active, step, heat)
         z[chosen], value[chosen] = z_now, value_now
-        if turn == 1:
-            chosen = _prune(value, owner, keep)
+        if turn < len(PRUNE_NATS):
+            chosen = _prune(value, owner, keep, PRUNE_NATS[turn])
     best = _best_start(value, owner, len(modes))
     return _finish(fitter, modes, z[best], value[best], active, chosen, best)
 
@@ -211,10 +211,10 @@ def _improve(
     return value[row, pick], tries[row, pick]
 
 
-def _prune(value: Floats, owner: Sequence[int], keep: int) -> NDArray[np.int64]:
+def _prune(value: Floats, owner: Sequence[int], keep: int, margin: float) -> NDArray[np.int64]:
     """Keep the better start of each mode, and of those the ones within reach of the best."""
     best = _best_start(value, owner, max(owner) + 1)
-    near = value[best] < value[best].min() + PRUNE_NATS
+    near = value[best] < value[best].min() + margin
     near[keep] = True
     return np.asarray(best[near])
 

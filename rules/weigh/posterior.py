@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -49,7 +49,9 @@ class Posterior:
     log_other: float
     odds: Mapping[str, float]
     """Probability of every fault and of ``other``; sums to one."""
-    unweighed: tuple[Reading, ...] = field(default=())
+    direct: tuple[Reading, ...] = ()
+    """Readings weighed by their spread under each fault."""
+    unweighed: tuple[Reading, ...] = ()
     """Readings that neither the model nor any fault says anything about."""
 
     def share(self) -> Floats:
@@ -61,7 +63,11 @@ class Posterior:
 
 def faults_of(knowledge: Knowledge, kind: str) -> tuple[Fault, ...]:
     """Faults that a machine kind can have, healthy first."""
-    chosen = [f for f in knowledge.faults.values() if f.odds.get(kind, 0.0) > 0.0 and f.status != "retired"]
+    chosen = [
+        f.for_kind(kind)
+        for f in knowledge.faults.values()
+        if f.odds.get(kind, 0.0) > 0.0 and f.status != "retired"
+    ]
     return tuple(sorted(chosen, key=lambda f: (f.id != "healthy", f.id)))
 
 
@@ -75,8 +81,9 @@ def hypotheses_of(
     for fault in faults:
         uses = fault.effects.get(twin.kind) or fault.effects.get("any") or ()
         known = [use for use in uses if use.name in twin.effects]
-        total = sum(use.weight for use in known)
-        pairs = [(m, use.weight / total) for use in known for m in twin.modes(use.name, use.severity)]
+        found_modes = [(use.weight, twin.modes(use.name, use.severity)) for use in known]
+        total = sum(weight for weight, modes_of in found_modes if modes_of)
+        pairs = [(mode, weight / total) for weight, modes_of in found_modes for mode in modes_of]
         for mode, share in pairs or [(m, 1.0) for m in twin.modes("none")]:
             token = (tuple(sorted(mode.fixed.items())), mode.severity)
             place = places.setdefault(token, len(modes))
@@ -168,6 +175,7 @@ def weigh(
         log_joint=joint,
         log_other=log_other,
         odds=_odds(hypotheses, joint, log_other, faults),
+        direct=tuple(direct),
         unweighed=tuple(rest),
     )
 
