@@ -21,10 +21,8 @@ class Problem:
 
     def __str__(self) -> str:
         """Say it in one line: file, line, field, what was given, what is allowed."""
-        place = self.file if self.line is None else f"{self.file}, line {self.line}"
-        field = f": {self.where}" if self.where else ""
-        given = f": {self.given}" if self.given else ""
-        return f"{place}{field}{given}; {self.allowed}"
+        place = self.file if self.line is None else f"{self.file}, line {self.line}".lstrip(", ")
+        return f"{': '.join(part for part in (place, self.where, self.given) if part)}; {self.allowed}"
 
 
 class PlatesideError(Exception):

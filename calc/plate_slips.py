@@ -100,10 +100,9 @@ def _standard(field: str, number: float, why: str) -> float:
 
 
 def _possible(field: str, number: float, why: str, typed: Value) -> bool:
-    if why == HP_FOR_KW and typed.unit == "hp":
-        return False
-    if why == KW_FOR_HP and typed.unit != "hp":
-        return False
+    """Whether a change is worth a thought: hp and kW only where the other gives a size that is made."""
+    if why in {HP_FOR_KW, KW_FOR_HP}:
+        return (typed.unit == "hp") == (why == KW_FOR_HP) and _made(number)
     if field == "frequency":
         return any(abs(number - known) < 0.6 for known in (50.0, 60.0))
     return not (field in PERCENT_RATIOS and not 0.2 < number < 1.0)
@@ -121,40 +120,53 @@ def _exchanged(typed: Value) -> Iterator[float]:
 
 
 def oddness(plate: Plate) -> float:
-    """Return how unusual a plate is for its size (half a sum of squares), to choose between explanations."""
-    n = plate.numbers
-    power = n.get("power")
-    total = 0.0 if power is None or _made(power) else 1.0
-    if "voltage" in n and plate.kind in INDUCTION:
-        total += 0.0 if _near_any(n["voltage"], span("voltages"), 0.02) else 1.5
-        if power is not None and n["voltage"] > 1000.0 and power < 1000.0 * limit("high_voltage_from_kw"):
-            total += 3.0
-        total += 3.0 if n["voltage"] < 90.0 else 0.0
-        total += 3.0 if abs(n["voltage"] / n.get("nominal_voltage", n["voltage"]) - 1.0) > 0.15 else 0.0
-    if power is None or plate.kind not in INDUCTION:
+    """Return how unusual a plate is for its size, in points of the logarithm: to choose by."""
+    power = plate.numbers.get("power")
+    total = 0.0 if power is None or _made(power) else limit("odd_size")
+    if plate.kind not in INDUCTION:
         return total
-    poles = poles_of(plate) or 4
+    total += _odd_voltage(plate)
+    return total if power is None else total + _odd_for_size(plate, power)
+
+
+def _odd_voltage(plate: Plate) -> float:
+    """Return how unusual the voltage is, in itself, for the output, and for the site."""
+    voltage, power = plate.numbers.get("voltage"), plate.numbers.get("power")
+    if voltage is None:
+        return 0.0
+    total = 0.0 if _near_any(voltage, span("voltages"), 0.02) else limit("odd_voltage")
+    too_high = voltage > 1000.0 and power is not None and power < 1000.0 * limit("high_voltage_from_kw")
+    if too_high or voltage < 90.0:
+        total += limit("odd_extreme_voltage")
+    site = plate.numbers.get("nominal_voltage", voltage)
+    return total + (limit("odd_against_site") if abs(voltage / site - 1.0) > 0.15 else 0.0)
+
+
+def _odd_for_size(plate: Plate, power_w: float) -> float:
+    """Return half the sum of squares of what differs from a usual motor of that output."""
+    n, poles = plate.numbers, poles_of(plate) or 4
+    apart: list[float] = []
     if plate.kind == "induction_3ph":
-        if "efficiency" in n and n["efficiency"] < 1.0:
-            usual = typical_efficiency(power_w=power, poles=poles, frequency_hz=n.get("frequency", 50.0))
-            total += 0.5 * (math.log((1.0 - n["efficiency"]) / (1.0 - usual)) / 0.35) ** 2
+        if 0.0 < (efficiency := n.get("efficiency", 0.0)) < 1.0:
+            usual = typical_efficiency(power_w=power_w, poles=poles, frequency_hz=n.get("frequency", 50.0))
+            apart.append(math.log((1.0 - efficiency) / (1.0 - usual)) / limit("sigma_log_losses"))
         if "power_factor" in n:
-            total += (
-                0.5 * ((n["power_factor"] - typical_power_factor(power_w=power, poles=poles)) / 0.045) ** 2
-            )
-        if (ratio := n.get("locked_rotor_current_ratio")) is not None:
-            usual = typical_locked_rotor_ratio(power_w=power, poles=poles)
-            total += 0.5 * (math.log(ratio / usual) / 0.2) ** 2
+            usual = typical_power_factor(power_w=power_w, poles=poles)
+            apart.append((n["power_factor"] - usual) / limit("sigma_power_factor"))
+        if "locked_rotor_current_ratio" in n:
+            usual = typical_locked_rotor_ratio(power_w=power_w, poles=poles)
+            apart.append(math.log(n["locked_rotor_current_ratio"] / usual) / limit("sigma_log_locked_ratio"))
     slip = slip_of(plate)
     if slip is not None and slip > 0.0:
-        total += 0.5 * (math.log(slip / typical_slip(power_w=power)) / 0.4) ** 2
-    return total + (2.0 if poles > 12 else 0.7 if poles > 8 else 0.0)
+        apart.append(math.log(slip / typical_slip(power_w=power_w)) / limit("sigma_log_slip"))
+    many = "odd_poles_above_12" if poles > 12 else "odd_poles_above_8" if poles > 8 else ""
+    return 0.5 * sum(distance**2 for distance in apart) + (limit(many) if many else 0.0)
 
 
 def _made(power_w: float) -> bool:
-    return _near_any(power_w / 1000.0, span("sizes_kw"), 0.03) or _near_any(
-        power_w / HORSEPOWER_W, span("sizes_hp"), 0.02
-    )
+    """Whether an output is one that is made, in kW or in hp."""
+    kilowatts, horsepower = power_w / 1000.0, power_w / HORSEPOWER_W
+    return _near_any(kilowatts, span("sizes_kw"), 0.03) or _near_any(horsepower, span("sizes_hp"), 0.02)
 
 
 def _near_any(number: float, known: tuple[float, ...], tolerance: float) -> bool:

@@ -14,6 +14,7 @@ from typing import Final
 from calc.errors import clip
 from calc.fields import Fields
 from calc.lookup import table
+from calc.plate_checks import limit
 from calc.quantities import DC_KINDS, MEASURES
 from calc.sheet import Machine, Nameplate, Reading, Value
 from calc.typical import synchronous_speed_rpm
@@ -73,7 +74,7 @@ def _check_speed(fields: Fields, plate: Nameplate) -> None:
     highest = synchronous_speed_rpm(frequency_hz=frequency or 60.0, poles=2)
     if frequency is not None and not 10.0 <= frequency <= 1000.0:
         return
-    if speed > 1.02 * highest:
+    if speed > limit("times_two_pole_speed") * highest:
         at = (
             f"at {frequency:g} Hz" if frequency else "at 50 or 60 Hz (give the frequency where it is another)"
         )

@@ -4,7 +4,7 @@ from pathlib import Path
 
 import pytest
 
-from calc.errors import InputError
+from calc.errors import InputError, Problem
 from calc.sheet_io import read_sheet, sheet_from_text
 
 BASE = (Path(__file__).parents[1] / "sheets" / "pump_overload.yaml").read_text(encoding="utf-8")
@@ -253,3 +253,8 @@ def test_a_comma_in_a_quoted_value_is_understood_or_asked_about():
     asked = changed("[1.91 ohm, 1.92 ohm, 1.90 ohm]", '["1,910 ohm", "1.92 ohm", "1.90 ohm"]')
     (problem,) = problems_of(asked)
     assert "can be 1910 ohm or 1.910 ohm" in problem.allowed
+
+
+def test_a_problem_without_file_or_line_begins_with_its_field():
+    assert str(Problem("", "machine.kind", "pump", "a kind")) == "machine.kind: pump; a kind"
+    assert str(Problem("p.yaml", "", "", "a sheet", 3)) == "p.yaml, line 3; a sheet"
