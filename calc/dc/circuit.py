@@ -14,7 +14,7 @@ from calc.dc.plate import COPPER_PER_K
 from calc.twin import Flags, Floats
 
 FRICTION_SHARE = 0.4  # of the rotational losses that do not grow with speed; the rest is windage and iron
-STEPS = 8
+STEPS = 6
 
 
 def saturation(excitation: Floats, bend: Floats) -> Floats:
@@ -76,7 +76,7 @@ class Magnet:
 
 @dataclass(frozen=True)
 class Armature:
-    """Armature circuit: volts at its terminals, ohms warm, brush drop, and induced volts at rated flux and speed."""
+    """Armature circuit: volts at its terminals, warm resistance, brush drop, rated induced volts."""
 
     volts: Floats
     resistance: Floats
@@ -94,7 +94,9 @@ class Point:
     runs: Flags
 
 
-def operate(armature: Armature, magnet: Magnet, shaft_torque: Floats, rotating: Floats, drag: Floats) -> Point:
+def operate(
+    armature: Armature, magnet: Magnet, shaft_torque: Floats, rotating: Floats, drag: Floats
+) -> Point:
     """Find current and speed at a shaft torque.
 
     ``shaft_torque``, ``rotating`` (rotational losses at rated speed) and ``drag`` (what a
@@ -125,7 +127,7 @@ def _losses(rotating: Floats, speed: Floats) -> Floats:
 
 
 def power_balance(armature: Armature, point: Point) -> tuple[Floats, Floats]:
-    """Return electrical input, and the sum of copper loss, brush loss and air-gap power, both of rated V times A."""
+    """Return input, and the sum of copper loss, brush loss and air-gap power, of rated V times A."""
     given = armature.volts * point.current
     lost = point.current**2 * armature.resistance + armature.brush * point.current
     return np.asarray(given), np.asarray(lost + armature.emf * point.flux * point.speed * point.current)

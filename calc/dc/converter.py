@@ -19,7 +19,7 @@ PLAIN_DC = 0.0065  # generator, battery or bus; below 2 %
 
 
 def six_pulse_ripple(output: Floats) -> Floats:
-    """Rms ripple over mean volts of a six-pulse bridge at ``output`` = mean volts over those at full opening."""
+    """Rms ripple over mean volts of a six-pulse bridge at ``output`` of its full mean volts."""
     cosine = np.clip(output, 0.15, 1.0)
     double = 2.0 * cosine * cosine - 1.0
     square = 0.5 + 3.0 * math.sqrt(3.0) / (4.0 * math.pi) * double
@@ -34,7 +34,14 @@ def bridge_ripple(output: Floats) -> Floats:
 
 
 def ripple_share(
-    *, source: Floats, ripple: Floats, smoothing: Floats, volts: Floats, current: Floats, lost: Floats, commutator: Floats
+    *,
+    source: Floats,
+    ripple: Floats,
+    smoothing: Floats,
+    volts: Floats,
+    current: Floats,
+    lost: Floats,
+    commutator: Floats,
 ) -> Floats:
     """Rms ripple over mean armature volts.
 
@@ -55,7 +62,9 @@ def ripple_share(
     volts = np.maximum(volts, 0.02)
     reserve = 0.5 + 0.5 * np.tanh(0.8 * ripple)
     six = six_pulse_ripple((0.73 + 0.21 * reserve) * volts) * _broken(current, 0.03 * np.exp(0.5 * smoothing))
-    bridge = bridge_ripple((0.86 + 0.14 * reserve) * volts) * _broken(current, 0.13 * np.exp(0.35 * smoothing))
+    bridge = bridge_ripple((0.86 + 0.14 * reserve) * volts) * _broken(
+        current, 0.13 * np.exp(0.35 * smoothing)
+    )
     six = np.where(lost > 0.5, MISSING_SIX_PULSE * np.exp(0.15 * ripple), six)
     bridge = np.where(lost > 0.5, MISSING_BRIDGE * np.exp(0.1 * ripple), bridge)
     plain = PLAIN_DC * np.exp(0.55 * ripple)
@@ -70,6 +79,6 @@ def _broken(current: Floats, border: Floats) -> Floats:
 
 
 def ripple_frequency(*, source: Floats, mains_hz: float, lost: Floats, bars_per_second: Floats) -> Floats:
-    """Lowest strong ripple frequency, Hz: six or two per mains period, one when pulses are missing; bars on plain DC."""
+    """Main ripple frequency, Hz: six or two per mains period, one with pulses missing; bars on plain DC."""
     pulses = np.where(lost > 0.5, 1.0, np.where(source > 1.5, 2.0, 6.0))
     return np.where(source < 0.5, np.maximum(bars_per_second, 1.0), pulses * mains_hz)

@@ -54,7 +54,9 @@ def _one(**fixed: float) -> Callable[[Plate], tuple[tuple[str, float, dict[str, 
     return lambda plate: (("", 1.0, fixed),)
 
 
-def _ways(*ways: tuple[str, float, dict[str, float]]) -> Callable[[Plate], tuple[tuple[str, float, dict[str, float]], ...]]:
+def _ways(
+    *ways: tuple[str, float, dict[str, float]],
+) -> Callable[[Plate], tuple[tuple[str, float, dict[str, float]], ...]]:
     return lambda plate: ways
 
 
@@ -82,7 +84,10 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
     "weak_magnets": Effect("magnets_lost", 0.1, 0.5, _one()),
     "shorted_coil": Effect("coil_shorted", 0.002, 0.08, _one()),
     "open_coil": Effect(
-        None, 0.0, 0.0, _ways(("two_paths", 0.65, {"coil_open": 0.95}), ("four_paths", 0.35, {"coil_open": 0.33}))
+        None,
+        0.0,
+        0.0,
+        _ways(("two_paths", 0.65, {"coil_open": 0.95}), ("four_paths", 0.35, {"coil_open": 0.33})),
     ),
     "brush_resistance": Effect("brush_ohm", 0.02, 0.3, _one()),
     "dirty_commutator": Effect("brush_ohm", 0.004, 0.06, _one(unevenness=7.0)),

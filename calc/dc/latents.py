@@ -155,7 +155,7 @@ def _armature(plate: Plate, draw: _Draw, base: Mapping[str, Floats]) -> dict[str
     """Split the losses into copper, brushes and rotation; the circuit follows."""
     loss = _loss(plate, draw)
     lost = loss / (1.0 + loss)
-    rotating = lost * (0.32 + 0.22 * draw.share("rotating_share"))
+    rotating = lost / (1.0 + np.exp(0.2 - 0.3 * draw("rotating_share")))
     copper = lost - rotating
     drop = np.where(base["volt"] < 60.0, 0.6, 1.9) / base["volt"]
     brush = 0.5 * copper * (1.0 - np.exp(-drop / (0.5 * copper)))
@@ -206,7 +206,8 @@ def _duty(plate: Plate, draw: _Draw) -> dict[str, Floats]:
         "ambient": 22.0 + 10.0 * draw("ambient"),
         "rise": draw.spread("rise", 0.13, RISE_K),
         "frame": draw.spread("frame", 0.22, 0.45),
-        "bars": draw.spread("commutator", 0.15, usual((*COILS, 0.0), plate.power_w)) * _size(plate, draw) ** COILS[1],
+        "bars": draw.spread("commutator", 0.15, usual((*COILS, 0.0), plate.power_w))
+        * _size(plate, draw) ** COILS[1],
         "evenness": draw.spread("commutator", 0.4, 1.3),
     }
 
@@ -241,7 +242,7 @@ def _field(plate: Plate, draw: _Draw, base: Mapping[str, Floats]) -> dict[str, F
     current = draw.spread("coil", plate.field_current_spread, plate.field_current_a)
     if plate.field_current_spread > 0.1:
         current = current * _size(plate, draw) ** (1.0 + FIELD_POWER[1]) * plate.field_voltage_v / supply
-    free = 0.36 * draw.share("margin", -0.45)
+    free = 0.36 * draw.share("margin", -0.7)
     separate = plate.kind == "dc_separately_excited"
     held = np.clip((free - 0.05) / 0.1, 0.0, 1.0) if separate else np.zeros_like(free)
     held = held * held * (3.0 - 2.0 * held)

@@ -75,7 +75,7 @@ class DcTwin:
         bench = Bench(self.plate, rows(self.plate, z), attributes)
         ones = np.ones(len(z))
         loaded, idle = bench.state("loaded").runs, bench.state("light_load").runs
-        found = {name: ones for name in STATES} | {"loaded": loaded, "light_load": np.maximum(loaded, idle)}
+        found = dict.fromkeys(STATES, ones) | {"loaded": loaded, "light_load": np.maximum(loaded, idle)}
         found["stalled"] = 1.0 - loaded
         if self.plate.kind == "dc_series":
             found["no_load"] = 0.0 * ones

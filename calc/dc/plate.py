@@ -100,7 +100,7 @@ def read_plate(machine: Machine, readings: Sequence[Reading] = ()) -> Plate:
 
 def usual(law: tuple[float, float, float], power_w: float) -> float:
     """Return the usual value of a quantity for a machine of this output: ``a * kW ** b``."""
-    return law[0] * max(power_w / 1000.0, 0.02) ** law[1]
+    return law[0] * math.pow(max(power_w / 1000.0, 0.02), law[1])
 
 
 def _power_and_voltage(plate: Nameplate) -> tuple[float, float, float, float]:
@@ -154,7 +154,9 @@ def _loss_ratio(
         evidence.append((voltage * drawn / power - 1.0, sigma * voltage * current / power))
     if plate.number("power") and efficiency:
         ratio = 100.0 / efficiency if efficiency > 1.5 else 1.0 / efficiency
-        evidence.append((ratio - 1.0 - field_watts / power, math.hypot(0.015 * ratio, 0.5 * field_watts / power)))
+        evidence.append(
+            (ratio - 1.0 - field_watts / power, math.hypot(0.015 * ratio, 0.5 * field_watts / power))
+        )
     weights = [1.0 / sigma**2 for _, sigma in evidence]
     best = sum(w * value for w, (value, _) in zip(weights, evidence, strict=True)) / sum(weights)
     best = max(best, 0.35 * prior)

@@ -186,7 +186,9 @@ def _bearing(bench: Bench, ask: Ask) -> Floats:
     m, a = bench.machine, bench.attributes
     if ask.state == "isolated":
         return m.ambient + _ISOLATED_RISE_K
-    warm = _BEARING_RISE_K * (0.7 + 0.3 * a["heat"]) + _BEARING_FAULT_K * (1.0 - np.exp(-a["friction"] / 0.06))
+    warm = _BEARING_RISE_K * (0.7 + 0.3 * a["heat"]) + _BEARING_FAULT_K * (
+        1.0 - np.exp(-a["friction"] / 0.06)
+    )
     return np.asarray(m.ambient + warm)
 
 

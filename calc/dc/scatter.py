@@ -41,7 +41,7 @@ _IN_STATE: Final = {
     "armature_voltage@stalled": 0.05,
     "armature_current@starting": 0.05,
     "armature_current@stalled": 0.05,
-    "armature_current@no_load": 0.06,
+    "armature_current@no_load": 0.04,
     "ripple_voltage@no_load": 0.16,
 }
 
@@ -65,19 +65,19 @@ def transform(plate: Plate, measure: str) -> Transform:
 
 def _floor(plate: Plate, measure: str) -> float:
     """Below this a value counts as nothing."""
-    if measure in {"armature_voltage", "open_circuit_voltage"}:
-        return 0.005 * plate.voltage_v
-    if measure == "ripple_voltage":
-        return 0.001 * plate.voltage_v
-    if measure == "armature_current":
-        return 0.004 * plate.current_a
-    if measure == "speed":
-        return 0.02 * plate.speed_rpm
-    if measure == "field_voltage":
-        return 0.01 * plate.field_voltage_v
-    if measure == "field_current":
-        return 0.02 * plate.field_current_a
-    return {"ripple_frequency": 1.0, "starting_time": 0.1}.get(measure, 0.005 * plate.power_w)
+    floors = {
+        "armature_voltage": 0.005 * plate.voltage_v,
+        "open_circuit_voltage": 0.005 * plate.voltage_v,
+        "ripple_voltage": 0.001 * plate.voltage_v,
+        "armature_current": 0.004 * plate.current_a,
+        "speed": 0.02 * plate.speed_rpm,
+        "field_voltage": 0.01 * plate.field_voltage_v,
+        "field_current": 0.02 * plate.field_current_a,
+        "input_power": 0.005 * plate.power_w,
+        "ripple_frequency": 1.0,
+        "starting_time": 0.1,
+    }
+    return floors[measure]
 
 
 def model_error(plate: Plate, ask: Ask) -> ModelError:
@@ -89,4 +89,4 @@ def model_error(plate: Plate, ask: Ask) -> ModelError:
         return ModelError(level=5.0)
     if ask.measure == "open_circuit_voltage" and ask.speed_rpm is None and plate.spun_rpm is None:
         return ModelError(level=0.5)
-    return ModelError(level=_IN_STATE.get(ask.key, _LEVEL.get(ask.measure, 0.1)))
+    return ModelError(level=_IN_STATE.get(ask.key, _LEVEL[ask.measure]))

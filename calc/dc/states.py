@@ -15,14 +15,21 @@ import numpy as np
 from calc.dc.circuit import Armature, Magnet, Point, at_temperature, field_circuit, operate
 from calc.dc.latents import Rows
 from calc.dc.plate import Plate
-from calc.twin import Floats
+from calc.twin import Flags, Floats
 
 OPEN_OHM = 1e9
 STATES = ("isolated", "standby", "stalled", "starting", "no_load", "light_load", "loaded", "spun")
 LIGHT_LOAD = 0.25  # share of the load of the day that remains with the process idle
 # Rise of the field winding over its rated rise in each state; machines that were read at
 # a standstill had usually been running or tried.
-_FIELD_HEAT = {"loaded": 0.64, "light_load": 0.60, "no_load": 0.58, "starting": 0.63, "stalled": 0.61, "standby": 0.3}
+_FIELD_HEAT = {
+    "loaded": 0.64,
+    "light_load": 0.60,
+    "no_load": 0.58,
+    "starting": 0.63,
+    "stalled": 0.61,
+    "standby": 0.3,
+}
 _SPUN_RISE_K = 5.0
 _TURN_BRAKE = 0.08  # torque of a shorted coil: share of turns over resistance per unit
 _SHIFT_RAD = 2.5  # brush shift in electrical radian over the ampere-turns that come to act on the field
@@ -53,7 +60,12 @@ class Bench:
     def state(self, name: str) -> Condition:
         """Return the condition in a state of :data:`STATES`."""
         if name not in self._known:
-            work = {"stalled": self._locked, "starting": self._locked, "spun": self._spun, "standby": self._standby}
+            work = {
+                "stalled": self._locked,
+                "starting": self._locked,
+                "spun": self._spun,
+                "standby": self._standby,
+            }
             self._known[name] = work[name](name) if name in work else self._running(name)
         return self._known[name]
 
@@ -79,13 +91,13 @@ class Bench:
         return np.asarray(sound * (1.0 - 0.75 * np.minimum(a["coil_shorted"], 0.9)) * (1.0 + a["coil_open"]))
 
     def resistance(self, rise_share: Floats | float) -> Floats:
-        """Resistance of the armature circuit while it carries current, per unit, at a share of the rated rise."""
+        """Resistance of the armature circuit in service, per unit, at a share of the rated rise."""
         m, a = self.machine, self.attributes
         warm = at_temperature(m.ambient + m.rise * a["heat"] * rise_share)
         copper = self.armature_cold + m.resistance * m.series_share
         return np.asarray(copper * warm + a["brush_ohm"])
 
-    def magnet(self, field_a: Floats, series_sense: Floats | None = None) -> Magnet:
+    def magnet(self, field_a: Floats) -> Magnet:
         """Return what sets the flux at a field current."""
         m, a = self.machine, self.attributes
         shift = _SHIFT_RAD * np.minimum(a["off_neutral"], 0.5)
@@ -95,7 +107,7 @@ class Bench:
         scale = self._reaction_at_rated
         return Magnet(
             shunt=m.shunt_share * field_a / m.field_ampere,
-            series=(1.0 - m.shunt_share) * (a["series_sense"] if series_sense is None else series_sense),
+            series=(1.0 - m.shunt_share) * a["series_sense"],
             bend=m.bend,
             residual=m.residual,
             factor=(1.0 - a["magnets_lost"]) * np.cos(shift) / (1.0 - scale),
@@ -133,7 +145,9 @@ class Bench:
         m, a = self.machine, self.attributes
         load = np.where(a["torque"] > 0.0, a["torque"], m.load)
         share = {"no_load": 0.0, "light_load": LIGHT_LOAD, "loaded": 1.0}[name] * load
-        rise = {"no_load": 0.3 + 0.0 * load, "light_load": 0.35 + 0.0 * load}.get(name, 0.25 + 0.5 * np.minimum(load, 1.5))
+        rise = {"no_load": 0.3 + 0.0 * load, "light_load": 0.35 + 0.0 * load}.get(
+            name, 0.25 + 0.5 * np.minimum(load, 1.5)
+        )
         field = self.field(name)
         circuit = Armature(self.supply, self.resistance(rise), m.brush, m.emf)
         torque = share * (1.0 - m.rotating)
@@ -148,13 +162,13 @@ class Bench:
         loop = _TURN_BRAKE * a["coil_shorted"] / (self.machine.resistance + 0.3 * a["coil_shorted"])
         return np.asarray(a["friction"] + loop)
 
-    def _settle(self, point: Point, stands: Floats, load: Floats, field: tuple[Floats, Floats]) -> Condition:
-        """Take the running point, the drive's current limit, or the standstill where the machine cannot run."""
+    def _settle(self, point: Point, stands: Flags, load: Floats, field: tuple[Floats, Floats]) -> Condition:
+        """Take the running point, the drive's current limit, or standstill where it cannot run."""
         still = self._locked("stalled")
         dead = self.attributes["armature_open"] > 0.5
         limited = self._limited(point, load, field[0])
         held = limited.runs > 0.5
-        down = np.asarray(stands, dtype=bool) | dead | (~point.runs & ~held & (point.speed < 0.5))
+        down = stands | dead | (~point.runs & ~held & (point.speed < 0.5))
 
         def pick(run: Floats, hold: Floats, stop: Floats | float) -> Floats:
             return np.where(down, stop, np.where(held, hold, run))
@@ -175,17 +189,19 @@ class Bench:
         The load is taken to fall with the square of speed; ``runs`` marks the rows concerned.
         """
         m = self.machine
-        magnet = self.magnet(field_a)
-        flux = magnet.flux(m.limit)
+        asked = (point.current > m.limit) & (m.source > 0.5) & (load > 1e-3)
+        if not np.any(asked):
+            zero = np.zeros_like(load)
+            return Condition(zero, zero, zero, zero, zero, zero, zero)
+        flux = self.magnet(field_a).flux(m.limit)
         spare = flux * m.limit - m.rotating - self.drag
         speed = np.sqrt(np.clip(spare / np.maximum(load, 1e-3), 0.0, 4.0))
         volts = m.emf * flux * speed + m.limit * self.resistance(0.7) + m.brush
-        asked = (point.current > m.limit) & (m.source > 0.5) & (load > 1e-3)
         runs = asked & (speed > 0.2) & (speed < 1.8) & (volts < self.supply)
         return Condition(volts, m.limit, speed, flux, 0.0 * flux, field_a, runs.astype(np.float64))
 
     def _locked(self, name: str) -> Condition:
-        """Shaft at rest, current as starter or drive lets through; the terminals see ohms and brushes only."""
+        """Shaft at rest, current as starter or drive lets it through; ohms and brushes take all volts."""
         m, a = self.machine, self.attributes
         resistance = self.resistance(0.5)
         most = np.maximum(self.supply - m.brush, 0.0) / resistance
