@@ -113,7 +113,7 @@ VARIANTS: dict[str, tuple[Variant, ...]] = {
     ),
     "run_capacitor_weak": (Variant("", 1.0, _can(0.2, 0.95, 0.8), _one("run_lost", 0.1, 0.7), part=RUN),),
     "start_switch_open": (Variant("", 1.0, {"switch_open": 1.0, **_START_DEAD}, part=SWITCH),),
-    "start_switch_closed": (Variant("", 1.0, {"switch_closed": 1.0, **_can(0.0, 0.25, 0.2)}, part=SWITCH),),
+    "start_switch_closed": (Variant("", 1.0, {"switch_closed": 1.0, **_can(0.0, 0.12, 0.1)}, part=SWITCH),),
     "open_auxiliary": (Variant("", 1.0, {"auxiliary_open": 1.0, **_START_DEAD}),),
     "open_main": (Variant("", 1.0, {"main_open": 1.0, **_can(0.9, 0.1, 0.05)}),),
     "main_turn_short": (Variant("", 1.0, _can(0.12, 0.85, 0.75), _one("turns_shorted", 0.01, 0.25)),),

@@ -44,7 +44,8 @@ DESIGN_SHARES: dict[tuple[bool, bool], dict[str, float]] = {
 RISE_K = {"A": 46.0, "E": 50.0, "B": 54.0, "F": 57.0, "H": 68.0}
 _DEFAULT_RISE_K = 55.0
 _DEFAULT_SLIP = 0.035
-_DEFAULT_POWER_W = 550.0
+_DEFAULT_POWER_W = 650.0
+_USUAL_VOLT_AMPERES = 1.9
 
 
 @dataclass(frozen=True)
@@ -59,6 +60,7 @@ class Plate:
     frequency_hz: float
     poles: int
     power_w: float
+    power_told: bool
     power_sigma: float
     current_a: float | None
     current_sigma: float
@@ -73,6 +75,19 @@ class Plate:
     ambient_c: float
     supply_v: float
     design_shares: dict[str, float]
+
+    def power_prior(self, design: str) -> tuple[float, float]:
+        """Rated output over ``power_w``, and its spread: from the plate current where it tells no output."""
+        if self.power_told or self.current_a is None:
+            return 1.0, self.power_sigma
+        usual, spread = VOLT_AMPERES_PER_WATT[design]
+        return _USUAL_VOLT_AMPERES / usual, spread
+
+    def current_prior(self, design: str) -> tuple[float, float]:
+        """Rated current over the base current, and its spread; from the output where none is told."""
+        if self.current_a is not None:
+            return 1.0, 0.0
+        return 1.0, math.hypot(VOLT_AMPERES_PER_WATT[design][1], self.power_sigma)
 
     @property
     def synchronous_rpm(self) -> float:
@@ -118,6 +133,7 @@ def read_plate(machine: Machine, readings: Sequence[Reading] = ()) -> Plate:
         frequency_hz=frequency,
         poles=poles,
         power_w=power,
+        power_told=_positive(plate.number("power")) is not None,
         power_sigma=power_sigma,
         current_a=current,
         current_sigma=current_sigma,
@@ -207,7 +223,7 @@ def _current(plate: Nameplate, voltage_v: float) -> tuple[float | None, float]:
     )
     if power is not None and pf is not None and efficiency is not None:
         return power / (voltage_v * pf * efficiency), 0.04
-    return None, 0.25
+    return None, 0.0
 
 
 def _power(plate: Nameplate, voltage_v: float, current_a: float | None) -> tuple[float, float]:
@@ -216,8 +232,8 @@ def _power(plate: Nameplate, voltage_v: float, current_a: float | None) -> tuple
     if told is not None:
         return told, 0.0
     if current_a is not None:
-        return voltage_v * current_a / 1.9, 0.3
-    return _DEFAULT_POWER_W, 0.7
+        return voltage_v * current_a / _USUAL_VOLT_AMPERES, 0.0
+    return _DEFAULT_POWER_W, 0.9
 
 
 def _start_capacitor(value: Value | None) -> tuple[float | None, float]:

@@ -123,8 +123,8 @@ def _of_plate(plate: Plate, design: str) -> dict[str, priors.Spread]:
         run = (plate.run_f, priors.RUN_TOLERANCE) if plate.run_f else (ratio * rated_var, sigma)
     return {
         "slip": (plate.slip, plate.slip_sigma),
-        "current": (1.0, 0.0 if plate.current_a is not None else plate.current_sigma),
-        "power": (1.0, plate.power_sigma),
+        "current": plate.current_prior(design),
+        "power": plate.power_prior(design),
         "run": run,
     }
 
