@@ -9,6 +9,7 @@ from typing import Final
 import msgspec
 
 from calc.sheet import CaseSheet
+from rules.amounts import amount
 from rules.answer import Finding
 from rules.derived import Derived, derived
 from rules.facts import facts_of
@@ -74,7 +75,19 @@ def _source(limit: Limit) -> str:
 
 
 def _shown(one: Crossing) -> str:
-    typed = ", ".join(value.text for value in one.at.reading.values)
-    if one.limit.quantity == one.at.reading.measure or not math.isfinite(one.at.value):
+    """Say what was read, and what was made of it where the limit judges a derived quantity."""
+    reading = one.at.reading
+    typed = ", ".join(value.text for value in reading.values)
+    if reading.temperature is not None and reading.temperature.is_read:
+        typed += f" at {reading.temperature.text}"
+    if one.limit.quantity == reading.measure or not math.isfinite(one.at.value):
         return f"read: {typed}"
-    return f"{one.at.value:.3g} from {typed}"
+    return f"{_in_unit(one)} from {typed}"
+
+
+def _in_unit(one: Crossing) -> str:
+    """Write a derived value in the unit in which its limit is written."""
+    ends = [end for band in one.limit.bands for end in (band.below, band.above) if end is not None]
+    _, _, unit = ends[0].partition(" ") if ends else ("", "", "")
+    worth = amount(f"1 {unit}") if unit else 1.0
+    return f"{one.at.value / worth:.3g} {unit}".strip()

@@ -87,7 +87,8 @@ def gate(sheet: CaseSheet, knowledge: Knowledge, *, suspects: Mapping[str, float
         crossed = tuple(crossings(sheet, knowledge))
         situation = situation_of(sheet, knowledge)
         for rule in knowledge.gates.values():
-            lines += _judged(rule, Evidence(sheet, knowledge, rule, crossed), situation, suspects or {})
+            seen = Evidence(sheet, knowledge, rule, crossed)
+            lines += _through_the_start(_judged(rule, seen, situation, suspects or {}), situation)
     except Exception as error:
         lines.append(_broken(error))
     if len(lines) == 1:
@@ -140,6 +141,15 @@ def _judged(
         yield _line(rule.id, rule.name, Checked("cleared", _WHY[situation]), rule.asks, states)
     else:
         yield _line(rule.id, rule.name, checked, rule.asks, states - excepted)
+
+
+def _through_the_start(lines: Iterator[ShutLine], situation: Situation) -> Iterator[ShutLine]:
+    """Let what shuts a start shut running as well, where the machine stands and only a start leads there."""
+    for one in lines:
+        if situation in {"stands", "overload_trip"} and "starting" in one.states:
+            yield msgspec.structs.replace(one, states=one.states | RUNNING_STATES)
+        else:
+            yield one
 
 
 def _check(rule: GateRule, seen: Evidence, suspects: Mapping[str, float]) -> Checked:

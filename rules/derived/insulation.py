@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from typing import Final
 
 from calc.sheet import CaseSheet, Reading
+from calc.temperature import INSULATION_RANGE_C, System, insulation_at_40_c, insulation_system
 from rules.derived.base import Derived, numbers_of, over_other, plate, readings_of
 
 PI_UP_TO_OHM: Final = 5.0e9
@@ -14,10 +15,25 @@ PI_UP_TO_OHM: Final = 5.0e9
 
 
 def at_40c(sheet: CaseSheet) -> Iterator[Derived]:
-    """One-minute insulation at 40 degC by the lower of both laws; as read without a temperature, in ohm."""
+    """One-minute insulation at 40 degC; as read where no temperature was noted, in ohm."""
+    system = insulation_system(sheet.machine.nameplate.insulation_class)
     for reading in readings_of(sheet, "insulation_resistance"):
-        factor = factor_to_40c(reading)
-        yield from (Derived(number * factor, reading) for number in numbers_of(reading))
+        for number in numbers_of(reading):
+            yield Derived(_corrected(number, reading, system), reading)
+
+
+def _corrected(insulation_ohm: float, reading: Reading, system: System | None) -> float:
+    """Bring a reading to 40 degC, by the lower of both laws where the plate does not tell the insulation.
+
+    Outside the span in which the laws hold, the nearer end of the span is taken.
+    """
+    temperature = reading.temperature
+    if temperature is None or math.isnan(temperature.number) or insulation_ohm < 0.0:
+        return insulation_ohm
+    low_c, high_c = INSULATION_RANGE_C
+    winding_c = min(max(temperature.number, low_c), high_c)
+    at_40_ohm = insulation_at_40_c(insulation_ohm=insulation_ohm, winding_c=winding_c, system=system)
+    return insulation_ohm if at_40_ohm is None else at_40_ohm
 
 
 def over_kv_plus_one(sheet: CaseSheet) -> Iterator[Derived]:
@@ -26,18 +42,6 @@ def over_kv_plus_one(sheet: CaseSheet) -> Iterator[Derived]:
     if volt is not None:
         least_ohm = (volt / 1e3 + 1.0) * 1e6
         yield from (Derived(100.0 * one.value / least_ohm, one.reading) for one in at_40c(sheet))
-
-
-def factor_to_40c(reading: Reading) -> float:
-    """Return the factor from the noted temperature to 40 degC, the lower of both laws."""
-    temperature = reading.temperature
-    if temperature is None or not temperature.is_read or not -40.0 <= temperature.number <= 200.0:
-        return 1.0
-    t_c = temperature.number
-    older = math.pow(0.5, (40.0 - t_c) / 10.0)
-    slope = 4230.0 if t_c >= 40.0 else 1245.0
-    thermoset = math.exp(-slope * (1.0 / (t_c + 273.0) - 1.0 / 313.0))
-    return min(older, thermoset)
 
 
 def polarisation_index(sheet: CaseSheet) -> Iterator[Derived]:

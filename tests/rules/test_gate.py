@@ -78,7 +78,7 @@ def test_a_no_forbids(knowledge, seen):
 def test_a_motor_that_turns_uncoupled_may_be_jammed_by_its_load(knowledge):
     seen = CLEARED | {"shaft_turns_freely": False, "turns_freely_uncoupled": True}
     sheet = case("will_not_start", insulation(), windings(), seen=seen)
-    assert shut(sheet, knowledge) == {"starting", "light_load", "loaded"}
+    assert shut(sheet, knowledge) == {"light_load", "loaded"}
 
 
 # ------------------------------------------------------------------ what shuts everything
@@ -302,6 +302,25 @@ def test_a_suspected_earth_fault_shuts_what_entries_had_opened(knowledge):
     sheet = case("runs_hot", LOADED)
     assert shut(sheet, knowledge, ground_fault=0.29) == set()
     assert shut(sheet, knowledge, ground_fault=0.30) == ENERGISED_STATES - {"stalled"}
+
+
+def test_a_leading_suspect_that_forbids_lets_it_be_read_while_it_runs_but_not_started(knowledge):
+    assert shut(case("runs_hot", LOADED), knowledge, turn_short=0.49) == set()
+    assert shut(case("runs_hot", LOADED), knowledge, turn_short=0.5) == {"starting"}
+    sheet = case("will_not_start", insulation(), windings(), seen=CLEARED)
+    assert shut(sheet, knowledge, turn_short=0.5) == STARTED
+    assert "turn" in gate(sheet, knowledge, suspects={"turn_short": 0.5}).energise.because[0]
+
+
+def test_every_fault_that_forbids_energising_is_a_suspect_of_the_gate(knowledge):
+    forbidding = {fault.id for fault in knowledge.faults.values() if fault.forbids_energising}
+    assert set(knowledge.gates["forbidding_fault"].suspects) == forbidding
+
+
+def test_what_shuts_a_start_shuts_the_way_to_running_of_a_machine_that_stands(knowledge):
+    shaken = reading("vibration_velocity", "loaded", "9 mm/s")
+    sheet = case("will_not_start", insulation(), windings(), shaken, seen=CLEARED)
+    assert shut(sheet, knowledge) == STARTED
 
 
 def test_odds_that_are_no_number_shut(knowledge):

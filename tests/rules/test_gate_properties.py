@@ -19,7 +19,7 @@ INSULATION = [
     "insulation_between_phases", "cable_insulation_resistance", "field_insulation_resistance",
 ]  # fmt: skip
 KNOWN = shipped()
-SETTINGS = settings(max_examples=150, deadline=None, suppress_health_check=[HealthCheck.too_slow])
+SETTINGS = settings(max_examples=60, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 
 numbers = st.one_of(
     st.floats(allow_nan=True, allow_infinity=True),

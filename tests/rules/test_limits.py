@@ -4,7 +4,6 @@ import pytest
 
 from calc.sheet import Reading, Value
 from rules.derived import QUANTITIES, derived
-from rules.derived.insulation import factor_to_40c
 from rules.findings import findings
 from rules.validators.examples import verdict_of
 
@@ -51,14 +50,25 @@ def test_voltage_unbalance_is_the_largest_deviation_from_the_mean(volts, percent
 )
 def test_insulation_is_brought_to_40_degrees_by_the_lower_of_both_laws(t_c, thermoset):
     older = 0.5 ** ((40 - t_c) / 10)
-    got = factor_to_40c(insulation(temperature=f"{t_c} degC"))
-    assert got == pytest.approx(min(older, thermoset), rel=0.01)
+    read = insulation("100 Mohm", temperature=f"{t_c} degC")
+    assert one("insulation_at_40c", read) == pytest.approx(1e8 * min(older, thermoset), rel=0.01)
+    known = {"insulation_class": "F"}
+    assert one("insulation_at_40c", read, nameplate=known) == pytest.approx(1e8 * thermoset, rel=0.01)
+
+
+@pytest.mark.parametrize(("typed", "as_at"), [("-20 degC", 10), ("2 degC", 10), ("120 degC", 85)])
+def test_outside_the_span_of_the_laws_the_nearer_end_is_taken(typed, as_at):
+    far = one("insulation_at_40c", insulation("100 Mohm", temperature=typed))
+    assert far == pytest.approx(one("insulation_at_40c", insulation("100 Mohm", temperature=f"{as_at} degC")))
+
+
+def test_without_a_temperature_the_reading_counts_as_it_is():
+    assert one("insulation_at_40c", insulation("12 Mohm")) == 12e6
 
 
 def test_a_hot_megohm_does_not_pass_as_sixteen():
-    hot = case("routine_check", insulation("1.2 Mohm", temperature="80 degC"))
-    (found,) = derived(hot, "insulation_at_40c")
-    assert found.value == pytest.approx(1.2e6 * 4.6, rel=0.01)
+    hot = insulation("1 Mohm", temperature="80 degC")
+    assert one("insulation_at_40c", hot) == pytest.approx(4.6e6, rel=0.01)
 
 
 def test_200_megohm_at_20_degrees_counts_as_50_at_40():
@@ -77,6 +87,16 @@ def test_insulation_below_the_minimum_is_a_finding_with_its_source(knowledge):
     assert "from memory" in found.source
     assert "3 Mohm" in found.says
     assert found.about == "insulation_resistance@isolated"
+
+
+def test_a_finding_says_what_was_read_and_what_was_made_of_it(knowledge):
+    (found,) = findings(case("routine_check", insulation("9.8 Mohm", temperature="25 degC")), knowledge)
+    assert found.says.endswith("(3.46 Mohm from 9.8 Mohm at 25 degC)")
+    volts = reading("supply_voltage", "loaded", "400 V", "395 V", "388 V")
+    (found,) = findings(case("routine_check", volts), knowledge)
+    assert found.says.endswith("(1.61 % from 400 V, 395 V, 388 V)")
+    (found,) = findings(case("routine_check", reading("bearing_temperature", "loaded", "93 degC")), knowledge)
+    assert found.says == "bearing above 90 degC (read: 93 degC)"
 
 
 def test_the_minimum_of_a_high_voltage_winding_is_its_own(knowledge):

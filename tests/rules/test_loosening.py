@@ -22,7 +22,7 @@ SHAFT = """gates:
 - id: shaft_free
   name: shaft turns freely
   source: own standard
-  guards: [stalled, starting, light_load, loaded]
+  guards: [light_load, loaded]
   asks: [shaft_turns_freely]
   clears: [answered_yes]
   found_running_clears: yes

@@ -27,7 +27,8 @@ FINE = [
     SAYS_NOTHING_FORBIDS, "Isolated, locked out and proved dead.", "prove dead on a proved tester",
     "The field circuit reads open.", "a deadline", "goods lift", "unsafe", "prove it dead",
     "starts by hand in either direction",
-    "set it to the plate current", "the contactor holds in", "explosion-protected motors are for approved shops",
+    "set it to the plate current",
+    "the contactor holds in", "explosion-protected motors are for approved shops",
     "arc flash", "the relay did its job",
 ]  # fmt: skip
 
