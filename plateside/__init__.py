@@ -9,8 +9,6 @@ import os
 import sys
 from pathlib import Path
 
-__version__ = "0.1.0"
-
 # One diagnosis works on small matrices: BLAS threads only cost start-up time and key latency.
 os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 

@@ -8,6 +8,7 @@ import sys
 from typing import TYPE_CHECKING
 
 from tui import parser
+from tui.version import VERSION
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -34,7 +35,7 @@ def main(argv: Sequence[str] | None = None) -> int:
 def run(arguments: Namespace) -> int:
     """Run a parsed command line; what goes wrong is told in one line each."""
     if arguments.version:
-        print(f"plateside {_version()}")
+        print(f"plateside {VERSION}")
         return DONE
     from calc.errors import InputError, PlatesideError
 
@@ -65,13 +66,6 @@ def _command(arguments: Namespace) -> int:
     name = modules.get(arguments.command, "visit")
     status: int = importlib.import_module(f"tui.commands.{name}").run(arguments)
     return status
-
-
-def _version() -> str:
-    """Return the version of the program."""
-    import plateside
-
-    return plateside.__version__
 
 
 def _told(text: str, status: int) -> int:

@@ -15,6 +15,7 @@ from calc.quantities import ENERGISED_STATES
 from casebook import bodies
 from rules.findings import findings
 from tui.typed import Understood, understand
+from tui.version import VERSION
 from tui.words import number_range, reading_text
 
 if TYPE_CHECKING:
@@ -189,11 +190,11 @@ class Visit:
 
     def keep_shown(self) -> str:
         """Store what the screen says now, as evidence for a time when rules and limits have changed."""
-        return self._put(bodies.Shown.of(self.weigh().diagnosis))
+        return self._put(bodies.Shown.of(self.weigh().diagnosis, program=VERSION))
 
     def close(self, closing: bodies.Closed) -> str:
         """Close the case with what was found; what the screen said at that moment is kept with it."""
-        return self._put(bodies.Shown.of(self.weigh().diagnosis), closing)
+        return self._put(bodies.Shown.of(self.weigh().diagnosis, program=VERSION), closing)
 
     def reopen(self, why: str) -> str:
         """Go on with a closed case."""

@@ -13,6 +13,7 @@ from calc.sheet_io import read_sheet
 from casebook import bodies
 from casebook.book import Casebook, open_casebook
 from tui.compose import weigh
+from tui.version import VERSION
 
 if TYPE_CHECKING:
     from calc.sheet import CaseSheet
@@ -80,7 +81,7 @@ def _steps(sheet: CaseSheet, planned: Planned, knowledge: Knowledge) -> list[lis
     if any(reading.state == "isolated" for reading in sheet.readings):
         steps.append([_isolation(planned)])
     steps += [[body] for body in entries if body not in head]
-    steps.append([bodies.Shown.of(weigh(sheet, knowledge))])
+    steps.append([bodies.Shown.of(weigh(sheet, knowledge), program=VERSION)])
     return [*steps, [_closing(planned)]] if planned.found else steps
 
 
