@@ -16,10 +16,10 @@ from calc.fields import Fields
 from calc.lookup import table
 from calc.plate_checks import limit
 from calc.quantities import DC_KINDS, MEASURES
-from calc.sheet import Machine, Nameplate, Reading, Value
+from calc.sheet import Machine, Nameplate, Rating, Reading, Supply, Value
 from calc.typical import synchronous_speed_rpm
 from calc.values import parse_value
-from calc.vocabulary import CHECKED, PLATE_DIMENSION
+from calc.vocabulary import CHECKED, PLATE_DIMENSION, SUPPLY_DIMENSION
 
 _INDUCTION: Final = frozenset({"induction_3ph", "induction_1ph", "induction_wound_rotor"})
 # measure -> plate field that bounds it
@@ -38,7 +38,7 @@ def plate_limits() -> dict[str, tuple[Value, Value]]:
     found: dict[str, tuple[Value, Value]] = {}
     for name, span in table("plate_limits").items():
         low, high = span if isinstance(span, list) else (span, span)
-        dimension = PLATE_DIMENSION[name]
+        dimension = (PLATE_DIMENSION | SUPPLY_DIMENSION)[name]
         found[name] = parse_value(str(low), dimension=dimension), parse_value(str(high), dimension=dimension)
     return found
 
@@ -55,12 +55,17 @@ def _highest(section: str, measure: str) -> Value | None:
     return None if text is None else parse_value(str(text), dimension=MEASURES[measure].dimension)
 
 
+def check_limits(fields: Fields, part: Nameplate | Rating | Supply) -> None:
+    """Note values that no plate or supply has, each with what it can have."""
+    for name, (low, high) in plate_limits().items():
+        value = getattr(part, name, None)
+        if value is not None and not low.number <= value.number <= high.number:
+            fields.wrong(name, clip(value.text), f"{low.text} to {high.text} is possible here")
+
+
 def check_plate_values(fields: Fields, plate: Nameplate, kind: str) -> None:
     """Note plate values that no plate can show, each with the reason."""
-    for name, (low, high) in plate_limits().items():
-        value = getattr(plate, name)
-        if value is not None and not low.number <= value.number <= high.number:
-            fields.wrong(name, clip(value.text), f"a plate shows {low.text} to {high.text} here")
+    check_limits(fields, plate)
     if plate.poles is not None and plate.poles.number % 2:
         fields.wrong("poles", plate.poles.text, "2, 4, 6, … (a pole pair counts as two)")
     if kind in _INDUCTION:

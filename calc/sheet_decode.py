@@ -11,7 +11,7 @@ from calc.fields import Fields, did_you_mean
 from calc.lookup import code_letters
 from calc.nameplate import impossible
 from calc.plate_fields import fill_rating_in_use, insulation_class, letter, single
-from calc.plausible import check_plate_values, check_reading
+from calc.plausible import check_limits, check_plate_values, check_reading
 from calc.quantities import DC_KINDS, KINDS, MEASURES, STATES, Measure, arity
 from calc.safe_yaml import Document
 from calc.sheet import CaseSheet, Machine, Nameplate, Rating, Reading, Supply
@@ -114,7 +114,9 @@ class Decoder:
         fields = machine.inner("supply", "source: mains")
         fields.refuse_unknown(("source", *words.SUPPLY_DIMENSION))
         values = {name: single(fields, name, dimension) for name, dimension in words.SUPPLY_DIMENSION.items()}
-        return Supply(source=fields.word("source", words.SOURCES), **values)
+        supply = Supply(source=fields.word("source", words.SOURCES), **values)
+        check_limits(fields, supply)
+        return supply
 
     def _plate(self, machine: Fields, kind: str, supply: Supply) -> Nameplate:
         fields = machine.inner("nameplate", "voltage: 400 V")
@@ -149,7 +151,9 @@ class Decoder:
         }
         if fields.data.get("voltage") is None:
             fields.wrong("voltage", "nothing", "the voltage that this rating belongs to")
-        return Rating(**found, connection=fields.word("connection", words.CONNECTIONS))
+        rating = Rating(**found, connection=fields.word("connection", words.CONNECTIONS))
+        check_limits(fields, rating)
+        return rating
 
     def _reading(self, top: Fields, index: int, machine: Machine) -> Reading | None:
         fields = top.entry("readings", index, "measure: speed, state: loaded, value: 1455 rpm")
