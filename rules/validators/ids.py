@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-import importlib
 from collections.abc import Iterator
+from functools import cache
 
 from calc.quantities import KINDS, MEASURES, STATES
+from calc.sheet import Machine
 from rules.derived import QUANTITIES
 from rules.facts import NAMES as FACTS
 from rules.gate_checks import CHECKS
@@ -192,26 +193,27 @@ class UnknownEffect(Issue):
 
 
 class EffectCheck:
-    """Effects are those that the model of the kind offers; a kind without a model is not checked."""
+    """Effects are those that the models of the fault's kinds offer; a kind without a model is not checked."""
 
     def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
-        """Yield unknown effects."""
+        """Yield unknown effects, each once."""
+        seen: set[Use] = set()
         for fault in knowledge.faults.values():
-            for kind, effects in fault.effects.items():
+            for kind in fault.odds:
                 offered = effects_of(kind)
-                if offered is None:
-                    continue
-                for index, effect in enumerate(effects):
-                    use = Use("faults", fault.id, ("effects", kind, index, "name"), effect.name)
-                    yield from unknown(UnknownEffect, [use], offered)
+                key = kind if kind in fault.effects else "any"
+                for index, effect in enumerate(fault.effects.get(key, ())):
+                    use = Use("faults", fault.id, ("effects", key, index, "name"), effect.name)
+                    if offered is not None and use not in seen:
+                        found = list(unknown(UnknownEffect, [use], offered))
+                        seen |= {use} if found else set()
+                        yield from found
 
 
+@cache
 def effects_of(kind: str) -> frozenset[str] | None:
     """Return the effects that the model of a machine kind offers, or None where there is no model."""
-    folder = "dc" if kind.startswith("dc_") else kind
-    try:
-        module = importlib.import_module(f"calc.{folder}.effects")
-    except ImportError:
-        return None
-    offered = getattr(module, "EFFECTS", None)
-    return None if offered is None else frozenset(offered)
+    from calc.kinds import twin_of  # noqa: PLC0415  the models bring numpy, which loading rules does without
+
+    twin = twin_of(Machine(kind=kind))
+    return None if twin is None else frozenset(twin.effects)

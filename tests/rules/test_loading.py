@@ -1,6 +1,9 @@
 """Rule files become types, and everything wrong with them is named."""
 
 import json
+import subprocess
+import sys
+from pathlib import Path
 
 import pytest
 
@@ -10,6 +13,8 @@ from rules.check import check_rules
 from rules.loading import load_knowledge
 
 from .makers import built, shop
+
+ROOT = Path(__file__).resolve().parent.parent.parent
 
 OBSERVATION = """observations:
 - id: smells_of_fish
@@ -145,6 +150,14 @@ def test_one_bad_file_hides_no_problem_of_another(tmp_path):
     problems = said(tmp_path)
     assert any("a.yaml" in problem for problem in problems)
     assert any("smells_of_fish: base_rate: 7; between 0 and 1" in problem for problem in problems)
+
+
+def test_loading_needs_no_numbers_library():
+    program = "import sys; from rules.loading import load_knowledge; load_knowledge(); print('numpy' in sys.modules)"
+    ran = subprocess.run(
+        [sys.executable, "-c", program], capture_output=True, text=True, check=True, cwd=ROOT
+    )
+    assert ran.stdout.strip() == "False"
 
 
 # ------------------------------------------------------------------ cache
