@@ -275,3 +275,9 @@ def test_a_sheet_with_any_typing_error_is_a_sheet_or_a_list_of_problems(place, l
         assert refused.problems
     else:
         assert same(sheet_from_text(sheet_to_yaml(sheet), file="again"), sheet)
+
+
+def test_a_rating_that_no_plate_has_is_refused():
+    ratings = [{"voltage": "230 V", "current": "0 A"}, {"voltage": "400 V", "current": "16.2 A"}]
+    with pytest.raises(InputError, match=r"ratings\[0\]\.current: 0 A; 10 mA to 20 kA is possible here"):
+        sheet_from_plain(minimal(nameplate={"ratings": ratings, "in_use": "400 V"}))
