@@ -5,6 +5,7 @@ from __future__ import annotations
 import importlib
 import os
 import sys
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from tui import parser
@@ -19,12 +20,14 @@ DONE, FAILED, WRONG_INPUT, INTERRUPTED = 0, 1, 2, 130
 
 def main(argv: Sequence[str] | None = None) -> int:
     """Run one command; return 0 done, 1 could not be done, 2 the input is wrong."""
+    _open_closed_streams()
     try:
-        arguments = parser.build().parse_args(argv)
-        status = run(arguments)
+        status = run(parser.build().parse_args(argv))
         sys.stdout.flush()
     except BrokenPipeError:
-        return _reader_left()
+        status = _finish(DONE)  # whoever reads the results has seen enough
+    except OSError as error:
+        status = _finish(_told(_os_words(error), FAILED))
     except KeyboardInterrupt:
         return INTERRUPTED
     except SystemExit as leaving:  # argparse has said what it had to say
@@ -45,10 +48,8 @@ def run(arguments: Namespace) -> int:
         return _told(str(error), WRONG_INPUT)
     except PlatesideError as error:
         return _told(str(error), FAILED)
-    except BrokenPipeError:
+    except OSError:
         raise
-    except OSError as error:
-        return _told(_os_words(error), FAILED)
     except Exception as error:  # nothing unexpected may reach a person as a traceback
         return _told(unexpected(error), FAILED)
 
@@ -72,7 +73,6 @@ def _told(text: str, status: int) -> int:
     """Write a message to standard error; return the exit status."""
     from tui.output import warn
 
-    sys.stdout.flush()
     warn(text)
     return status
 
@@ -83,8 +83,18 @@ def _os_words(error: OSError) -> str:
     return f"{place}{error.strerror or error}"
 
 
-def _reader_left() -> int:
-    """Leave in silence when whoever reads standard output has gone."""
-    devnull = os.open(os.devnull, os.O_WRONLY)
-    os.dup2(devnull, sys.stdout.fileno())
-    return DONE
+def _open_closed_streams() -> None:
+    """Let a command run whose standard output or error was closed by its caller."""
+    if sys.stdout is None:
+        sys.stdout = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115  (lives on)
+    if sys.stderr is None:
+        sys.stderr = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115
+
+
+def _finish(status: int) -> int:
+    """Write what is still held back; throw it away where it cannot be written, lest it be tried again."""
+    try:
+        sys.stdout.flush()
+    except OSError:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    return status

@@ -182,3 +182,34 @@ def test_ascii_output_keeps_its_columns_where_the_terminal_is_not_utf8(tmp_path,
     done = spawn("cases", env=env)
     assert done.returncode == 0
     assert done.stdout.isascii()
+
+
+@pytest.mark.skipif(sys.platform == "win32", reason="redirections of POSIX shells")
+@pytest.mark.parametrize(
+    ("redirection", "status", "said"),
+    [(">&-", 0, ""), ("2>&-", 0, ""), (">/dev/full", 1, "No space left"), ("| head -n 1 >/dev/null", 0, "")],
+)
+def test_a_closed_or_full_output_ends_without_a_traceback(sheet, redirection, status, said):
+    if "/dev/full" in redirection and not Path("/dev/full").exists():
+        pytest.skip("this system has no /dev/full")
+    command = " ".join([*PLATESIDE, "diagnose", sheet("pump_overload"), redirection])
+    done = subprocess.run(
+        ["/bin/sh", "-c", command], capture_output=True, text=True, check=False, timeout=60,
+        env={**os.environ, "PYTHONPATH": str(ROOT)},
+    )  # fmt: skip
+    assert done.returncode == status
+    assert "Traceback" not in done.stderr
+    assert said in done.stderr
+    assert done.stderr.count("\n") <= 1
+
+
+def test_nothing_that_only_posix_has_is_imported_at_start():
+    code = (
+        "import sys\n"
+        "for name in ('fcntl', 'termios', 'pwd', 'grp', 'resource', 'tty', 'pty'):\n"
+        "    sys.modules[name] = None\n"
+        "import plateside\nfrom tui.cli import main\n"
+        f"sys.exit(main(['diagnose', {str(ROOT / 'tests' / 'sheets' / 'pump_overload.yaml')!r}]))"
+    )
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False, cwd=ROOT)
+    assert (done.returncode, done.stderr) == (0, "")

@@ -35,13 +35,15 @@ def _answer(name: str, knowledge: Knowledge, *, as_lines: bool) -> int:
         sheet = read(name)
         diagnosis = weigh(sheet, knowledge, name=name)
         if as_lines:
-            say_json(as_json(diagnosis))
+            answer = as_json(diagnosis)
         else:
-            say(answer_lines(diagnosis, sheet, knowledge))
-    except BrokenPipeError:
-        raise
+            lines = answer_lines(diagnosis, sheet, knowledge)
     except Exception as error:  # the other sheets are still answered
         return _refused(name, error, as_lines=as_lines)
+    if as_lines:
+        say_json(answer)
+    else:
+        say(lines)
     return cli.DONE
 
 
