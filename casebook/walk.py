@@ -8,7 +8,10 @@ from typing import Any, Final, NamedTuple
 
 _COLUMNS: Final = "id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body, seq"
 _ABOVE: Final = f"SELECT {_COLUMNS} FROM entry WHERE seq > ? ORDER BY seq"
+_ONE: Final = f"SELECT {_COLUMNS} FROM entry WHERE seq = ?"
 _LONGEST_GAP: Final = 200_000
+
+Row = tuple[Any, ...]
 
 
 class Gap(NamedTuple):
@@ -26,56 +29,47 @@ class Gap(NamedTuple):
         return f"entries {self.first} to {self.last if self.last is not None else 'the last'}"
 
 
-def walk(connection: sqlite3.Connection) -> Iterator[tuple[Any, ...] | Gap]:
-    """Yield rows of ``entry``, their number last, in rising order, and a ``Gap`` for what cannot be read."""
-    last = 0
-    while True:
+def walk(connection: sqlite3.Connection) -> Iterator[Row | Gap]:
+    """Yield rows of ``entry``, their number last, in rising order, and a ``Gap`` for what cannot be read.
+
+    A damaged tree may send the reader in circles: what does not rise is not followed.
+    """
+    last: int | None = 0
+    while last is not None:
+        why = ""
         try:
             for row in connection.execute(_ABOVE, (last,)):
+                if not isinstance(row[-1], int) or row[-1] <= last:
+                    why = "its rows are out of order"
+                    break
                 last = row[-1]
                 yield row
-        except sqlite3.DatabaseError:
-            pass  # the row before the bad one is lost with it: look at each alone
-        else:
-            return
-        gap: Gap | None = None
-        for found in _one_by_one(connection, last):
-            yield found
-            if isinstance(found, Gap):
-                gap = found
             else:
-                last = found[-1]
-        if gap is None or gap.last is None:
-            return
-        last = gap.last
-
-
-def _one_by_one(connection: sqlite3.Connection, last: int) -> Iterator[tuple[Any, ...] | Gap]:
-    """Yield single rows up to the first that cannot be read, then the gap that it begins."""
-    while True:
-        try:
-            row = connection.execute(f"{_ABOVE} LIMIT 1", (last,)).fetchone()
+                return
         except sqlite3.DatabaseError as error:
-            after = _next_readable(connection, last)
-            yield Gap(last + 1, None if after is None else after - 1, str(error))
-            return
-        if row is None:
-            return
-        last = row[-1]
-        yield row
+            why = str(error)
+        # The row before the bad one may have been lost with it: go on by single numbers.
+        row_after = _next_readable(connection, last)
+        after = None if row_after is None else int(row_after[-1])
+        if after != last + 1 and not (after is None and last == _highest(connection)):
+            yield Gap(last + 1, None if after is None else after - 1, why)
+        if row_after is not None:
+            yield row_after
+        last = after
 
 
-def _next_readable(connection: sqlite3.Connection, last: int) -> int | None:
-    """Return the next number whose row can be read; None if none can within a long way."""
+def _next_readable(connection: sqlite3.Connection, last: int) -> Row | None:
+    """Return the next row that can be read by its number; None if none can within a long way."""
     end = _highest(connection)
     for seq in range(last + 1, last + 1 + _LONGEST_GAP):
         if end is not None and seq > end:
             return None
         try:
-            if connection.execute(f"SELECT {_COLUMNS} FROM entry WHERE seq = ?", (seq,)).fetchone():
-                return seq
+            row = connection.execute(_ONE, (seq,)).fetchone()
         except sqlite3.DatabaseError:
             continue
+        if row is not None and row[-1] == seq:
+            return tuple(row)
     return None
 
 
