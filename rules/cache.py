@@ -9,7 +9,6 @@ import contextlib
 import hashlib
 import os
 import tempfile
-from importlib import metadata
 from pathlib import Path
 
 import msgspec
@@ -21,8 +20,8 @@ _KEPT = 4
 
 
 def key_of(texts: list[tuple[int, Path, str]]) -> str:
-    """Return the sha256 of all texts, their files, the program's version and the modules that check them."""
-    digest = hashlib.sha256(_version().encode())
+    """Return the sha256 of all texts, their files, and the program that checks them."""
+    digest = hashlib.sha256()
     for module in sorted(Path(__file__).parent.rglob("*.py")):
         digest.update(module.read_bytes())
     for number, file, text in texts:
@@ -55,10 +54,3 @@ def write(key: str, knowledge: Knowledge) -> None:
 def folder() -> Path:
     """Return the user's cache folder."""
     return Path(platformdirs.user_cache_dir("plateside", appauthor=False))
-
-
-def _version() -> str:
-    try:
-        return metadata.version("plateside")
-    except metadata.PackageNotFoundError:
-        return "checkout"
