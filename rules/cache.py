@@ -9,6 +9,7 @@ import contextlib
 import hashlib
 import os
 import tempfile
+from collections.abc import Sequence
 from pathlib import Path
 
 import msgspec
@@ -19,11 +20,13 @@ from rules.knowledge import Knowledge
 _KEPT = 4
 
 
-def key_of(texts: list[tuple[int, Path, str]]) -> str:
-    """Return the sha256 of all texts, their files, and the program that checks them."""
+def key_of(texts: list[tuple[int, Path, str]], folders: Sequence[Path] = ()) -> str:
+    """Return the sha256 of all texts, their files and folders, and the program that checks them."""
     digest = hashlib.sha256()
     for module in sorted(Path(__file__).parent.rglob("*.py")):
         digest.update(module.read_bytes())
+    for part in map(os.fsencode, folders):
+        digest.update(hashlib.sha256(part).digest())
     for number, file, text in texts:
         for part in (str(number).encode(), os.fsencode(file), text.encode()):
             digest.update(hashlib.sha256(part).digest())

@@ -79,7 +79,7 @@ def load_knowledge(*, extra_folders: Sequence[Path] = ()) -> Knowledge:
     """
     texts, problems = read_texts(extra_folders)
     if not problems:
-        key = cache.key_of(texts)
+        key = cache.key_of(texts, extra_folders)
         if (kept := cache.read(key)) is not None:
             return kept
         knowledge, problems = build(texts, extra_folders=extra_folders)

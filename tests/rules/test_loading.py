@@ -153,7 +153,8 @@ def test_one_bad_file_hides_no_problem_of_another(tmp_path):
 
 
 def test_loading_needs_no_numbers_library():
-    program = "import sys; from rules.loading import load_knowledge; load_knowledge(); print('numpy' in sys.modules)"
+    program = "import sys; from rules.loading import load_knowledge; load_knowledge(); "
+    program += "print('numpy' in sys.modules)"
     ran = subprocess.run(
         [sys.executable, "-c", program], capture_output=True, text=True, check=True, cwd=ROOT
     )
@@ -199,6 +200,11 @@ def test_a_cache_folder_that_cannot_be_made_is_no_error(tmp_path, monkeypatch):
     blocked.write_text("")
     monkeypatch.setenv("XDG_CACHE_HOME", str(blocked))
     assert load_knowledge().faults
+
+
+def test_an_empty_folder_is_told_from_none(tmp_path):
+    assert load_knowledge().folders == ()
+    assert load_knowledge(extra_folders=[tmp_path]).folders == (str(tmp_path),)
 
 
 def test_wrong_rules_are_never_kept(tmp_path):
