@@ -9,12 +9,11 @@ from typing import Final
 import msgspec
 
 from calc.sheet import CaseSheet
-from rules.amounts import amount
 from rules.answer import Finding
 from rules.derived import Derived, derived
 from rules.facts import facts_of
 from rules.knowledge import Knowledge, Limit, LimitBand
-from rules.limit_bands import band_of, concerns
+from rules.limit_bands import band_of, concerns, in_unit
 from rules.trips import trip_findings
 
 WEIGHT: Final = {"stop": 0, "watch": 1, "remark": 2, "normal": 3}
@@ -82,12 +81,4 @@ def _shown(one: Crossing) -> str:
         typed += f" at {reading.temperature.text}"
     if one.limit.quantity == reading.measure or not math.isfinite(one.at.value):
         return f"read: {typed}"
-    return f"{_in_unit(one)} from {typed}"
-
-
-def _in_unit(one: Crossing) -> str:
-    """Write a derived value in the unit in which its limit is written."""
-    ends = [end for band in one.limit.bands for end in (band.below, band.above) if end is not None]
-    _, _, unit = ends[0].partition(" ") if ends else ("", "", "")
-    worth = amount(f"1 {unit}") if unit else 1.0
-    return f"{one.at.value / worth:.3g} {unit}".strip()
+    return f"{in_unit(one.limit, one.at.value)} from {typed}"

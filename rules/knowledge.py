@@ -241,7 +241,7 @@ class GateRule(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     asks: tuple[str, ...]
     """Readings (``measure@state``) and observations that clear it."""
     clears: tuple[str, ...] = ()
-    """Named checks in ``rules/gate.py``; all must hold on the recorded entries."""
+    """Named checks in ``rules/gate_checks.py``; all must hold on the recorded entries."""
     found_running_clears: bool = False
     """A machine found running shows this by running, unless it tripped or was repaired."""
     overload_trip_clears: bool = False

@@ -41,3 +41,11 @@ def concerns(limit: Limit, facts: Facts) -> bool:
     of_kind = "any" in limit.kinds or kind in limit.kinds
     in_state = "any" in limit.states or state in limit.states
     return of_kind and in_state and meets(limit.where, facts)
+
+
+def in_unit(limit: Limit, value: float) -> str:
+    """Write a value of the inner unit in the unit in which the limit is written."""
+    ends = [end for band in limit.bands for end in (band.below, band.above) if end is not None]
+    _, _, unit = ends[0].partition(" ") if ends else ("", "", "")
+    worth = amount(f"1 {unit}") if unit else 1.0
+    return f"{value / worth:.3g} {unit}".strip()

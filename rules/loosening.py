@@ -12,7 +12,7 @@ from typing import Final
 
 from rules.amounts import amount, is_amount
 from rules.knowledge import Complaint, Entry, Fault, GateRule, Hazard, Limit, Observation, ReadingRule
-from rules.limit_bands import band_of
+from rules.limit_bands import band_of, in_unit
 
 SEVERITY: Final = {"normal": 0, "remark": 1, "watch": 2, "stop": 3}
 
@@ -51,12 +51,13 @@ def _limit(old: Limit, new: Limit) -> Iterator[str]:
     for value in _probes(old, new):
         before, after = band_of(old, value), band_of(new, value)
         if SEVERITY[after.verdict] < SEVERITY[before.verdict]:
-            yield f"call {value:g} {after.verdict} where the shipped limit says {before.verdict}"
+            shown = in_unit(old, value)
+            yield f"call {shown} {after.verdict} where the shipped limit says {before.verdict}"
             return
 
 
 def _probes(*limits: Limit) -> list[float]:
-    """Return values on, just beside and between all boundaries."""
+    """Return values between all boundaries, beyond them, on them and just beside."""
     ends = sorted(
         {amount(end) for limit in limits for band in limit.bands for end in (band.below, band.above)
          if end is not None and is_amount(end)}
@@ -64,7 +65,7 @@ def _probes(*limits: Limit) -> list[float]:
     beside = [end + sign * max(abs(end), 1e-9) * 1e-6 for end in ends for sign in (-1.0, 0.0, 1.0)]
     between = [(low + high) / 2.0 for low, high in pairwise(ends)]
     far = [ends[0] - 1.0 - abs(ends[0]), ends[-1] + 1.0 + abs(ends[-1])] if ends else [0.0]
-    return sorted([*beside, *between, *far])
+    return [*between, *far, *beside]
 
 
 def _hazard(old: Hazard, new: Hazard) -> Iterator[str]:

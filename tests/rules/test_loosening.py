@@ -60,7 +60,7 @@ def test_a_tighter_limit_says_nothing(tmp_path, old, new):
 @pytest.mark.parametrize(
     ("old", "new", "words"),
     [
-        ("above: 5 %", "above: 6 %", "where the shipped limit says stop"),
+        ("above: 5 %", "above: 6 %", "call 5.5 % watch where the shipped limit says stop"),
         ("above: 5 %, verdict: stop", "above: 5 %, verdict: watch", "where the shipped limit says stop"),
         ("  - {above: 1 %, verdict: watch}\n", "", "where the shipped limit says watch"),
         ("  quantity: voltage_unbalance", "  quantity: current_unbalance", "judge current_unbalance instead"),
