@@ -1,5 +1,6 @@
 """The invented plant: its sheets are sheets, its cases make sense, and nothing of it stays behind."""
 
+import os
 from pathlib import Path
 
 import pytest
@@ -7,6 +8,7 @@ import pytest
 from calc.sheet_io import read_sheet
 from casebook.book import open_casebook
 from rules.loading import load_knowledge
+from tui.commands.demo import sweep
 from tui.compose import weigh
 from tui.demo.build import SHEETS, build, plan, sheet_of
 
@@ -86,3 +88,16 @@ def test_the_demo_leaves_nothing_behind_and_never_touches_the_own_casebook(run, 
     assert run("demo", "--plain").status == 0
     assert not Path(seen[0]).parent.exists()
     assert not casebook.exists()
+
+
+def test_what_a_demo_left_behind_a_day_ago_is_removed_and_nothing_else(tmp_path):
+    old, new, other = (tmp_path / name for name in ("plateside-demo-a", "plateside-demo-b", "elsewhere"))
+    for folder in (old, new, other):
+        folder.mkdir()
+        (folder / "tern-point.db").touch()
+    for folder in (old, other):
+        os.utime(folder, (0, 0))
+    sweep(tmp_path)
+    assert not old.exists()
+    assert new.exists()
+    assert other.exists()

@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+import contextlib
+import shutil
 import tempfile
+import time
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -13,6 +16,9 @@ from tui.output import say
 
 if TYPE_CHECKING:
     from argparse import Namespace
+
+PREFIX = "plateside-demo-"
+DAY_S = 86_400.0
 
 
 def run(arguments: Namespace) -> int:
@@ -27,7 +33,16 @@ def run(arguments: Namespace) -> int:
         say(f"{target}: {build(target, knowledge)} cases of the invented Tern Point cannery")
         return cli.DONE
     visit.need_terminal(plain=arguments.plain)
-    with tempfile.TemporaryDirectory(prefix="plateside-demo-", ignore_cleanup_errors=True) as folder:
+    sweep(Path(tempfile.gettempdir()))
+    with tempfile.TemporaryDirectory(prefix=PREFIX, ignore_cleanup_errors=True) as folder:
         path = Path(folder) / "tern-point.db"
         build(path, knowledge)
         return visit.start(path, arguments)
+
+
+def sweep(folder: Path) -> None:
+    """Remove what demos have left that ended with their line or their machine, a day ago or more."""
+    for left in folder.glob(f"{PREFIX}*"):
+        with contextlib.suppress(OSError):
+            if time.time() - left.lstat().st_mtime > DAY_S:
+                shutil.rmtree(left)
