@@ -35,6 +35,7 @@ HEALTHY: Final[Mapping[str, float]] = {
     "torque": 0.0,  # load of rated torque; 0: the load of the day
     "stalled": 0.0,
     "seized": 0.0,  # 1: stalled even uncoupled
+    "at_limit": 0.0,  # 1: the load holds the drive at its current limit
     "heat": 1.0,  # factor on the temperature rise
     "friction": 0.0,  # of rated torque
 }
@@ -70,6 +71,7 @@ def _open_armature(plate: Plate) -> tuple[tuple[str, float, dict[str, float]], .
     return ways
 
 
+_AT_LIMIT: Final = ("at_limit", 0.1, {"at_limit": 1.0})
 _EFFECTS: Final[Mapping[str, Effect]] = {
     "none": Effect(None, 0.0, 0.0, _one()),
     "low_voltage": Effect(
@@ -81,7 +83,7 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
     "weak_field": Effect(
         "field_shorted", 0.05, 0.5, _ways(("one_pole", 0.5, {}), ("two_poles", 0.5, {"short_poles": 0.5}))
     ),
-    "weak_magnets": Effect("magnets_lost", 0.1, 0.5, _one()),
+    "weak_magnets": Effect("magnets_lost", 0.1, 0.5, _ways(("", 0.9, {}), _AT_LIMIT)),
     "shorted_coil": Effect("coil_shorted", 0.002, 0.08, _one()),
     "open_coil": Effect(
         None,
@@ -98,7 +100,11 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
         None,
         0.0,
         0.0,
-        _ways(("", 0.8, {"series_sense": -1.0}), ("stalled", 0.2, {"series_sense": -1.0, "stalled": 1.0})),
+        _ways(
+            ("", 0.7, {"series_sense": -1.0}),
+            ("at_limit", 0.15, {"series_sense": -1.0, "at_limit": 1.0}),
+            ("stalled", 0.15, {"series_sense": -1.0, "stalled": 1.0}),
+        ),
     ),
     "missing_pulses": Effect(
         "volts_lost",
@@ -106,7 +112,9 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
         0.5,
         _ways(("", 0.85, {"pulses_lost": 1.0}), ("made_up", 0.15, {"pulses_lost": 1.0, "volts_lost": 0.0})),
     ),
-    "excess_load": Effect("torque", 1.15, 2.0, _ways(("", 0.85, {}), ("stalled", 0.15, {"stalled": 1.0}))),
+    "excess_load": Effect(
+        "torque", 1.15, 2.0, _ways(("", 0.75, {}), _AT_LIMIT, ("stalled", 0.15, {"stalled": 1.0}))
+    ),
     "light_load": Effect("torque", 0.02, 0.2, _one()),
     "stall": Effect(
         None,

@@ -23,6 +23,8 @@ _OHMMETER_FAULT = 1.5  # a bad contact reads higher at small current than in ser
 _INTERPOLE_SHARE = 0.22
 _BEARING_RISE_K = 25.0
 _BEARING_FAULT_K = 85.0
+_RUBBING_DRAG = 0.12  # drag above this heats where the machine rubs rather than the bearing
+_RUBBING_K = 25.0
 
 
 def _volts(bench: Bench, ask: Ask) -> Floats:
@@ -85,8 +87,7 @@ def _field_ohms(bench: Bench, ask: Ask) -> Floats:
 
 
 def _series_ohms(bench: Bench, ask: Ask) -> Floats:
-    m = bench.machine
-    value = m.resistance * m.series_share * at_temperature(_temperature(bench, ask)) * _ohm(bench)
+    value = bench.series_cold * at_temperature(_temperature(bench, ask)) * _ohm(bench)
     return np.where(bench.attributes["series_open"] > 0.5, OPEN_OHM, value)
 
 
@@ -186,10 +187,10 @@ def _bearing(bench: Bench, ask: Ask) -> Floats:
     m, a = bench.machine, bench.attributes
     if ask.state == "isolated":
         return m.ambient + _ISOLATED_RISE_K
-    warm = _BEARING_RISE_K * (0.7 + 0.3 * a["heat"]) + _BEARING_FAULT_K * (
-        1.0 - np.exp(-a["friction"] / 0.06)
-    )
-    return np.asarray(m.ambient + warm)
+    drag = a["friction"]
+    in_bearing = 1.0 / (1.0 + (drag / _RUBBING_DRAG) ** 4)
+    fault = _BEARING_FAULT_K * (1.0 - np.exp(-drag / 0.06)) * in_bearing + _RUBBING_K * (1.0 - in_bearing)
+    return np.asarray(m.ambient + _BEARING_RISE_K * (0.7 + 0.3 * a["heat"]) + fault)
 
 
 def _starting_time(bench: Bench, ask: Ask) -> Floats:

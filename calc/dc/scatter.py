@@ -77,7 +77,7 @@ def _floor(plate: Plate, measure: str) -> float:
         "ripple_frequency": 1.0,
         "starting_time": 0.1,
     }
-    return floors[measure]
+    return floors.get(measure, 0.0)
 
 
 def model_error(plate: Plate, ask: Ask) -> ModelError:

@@ -200,3 +200,27 @@ def test_a_jammed_shaft_stands_and_draws_what_the_starter_lets_through(kind):
     found = twin.possible(z, rows_of(twin, 1, stalled=1.0, seized=1.0))
     assert found["loaded"][0] == 0.0
     assert found["stalled"][0] == 1.0
+
+
+def test_shorted_turns_of_a_series_field_lower_its_ohms_and_raise_the_speed():
+    twin = fit(machine("dc_series"))
+    given = {"severity": (0.3, 0.3001)}
+    assert read(twin, "weak_field", "series_field_resistance", "isolated", **given) == pytest.approx(
+        0.7, abs=0.01
+    )
+    assert read(twin, "weak_field", "speed", "loaded", **given) > 1.03
+
+
+def test_rubbing_heats_the_bearing_less_than_a_bearing_that_fails():
+    twin = fit(machine("dc_shunt"))
+    failing = read(twin, "friction", "bearing_temperature", "loaded", severity=(0.08, 0.0801))
+    rubbing = read(twin, "friction", "bearing_temperature", "loaded", severity=(0.4, 0.4001))
+    assert 1.2 < rubbing < failing
+
+
+def test_a_drive_at_its_limit_holds_the_current_and_lets_the_volts_give_way():
+    twin = fit(machine("dc_permanent_magnet", source="rectifier_1ph"))
+    place = [m.variant for m in twin.modes("weak_magnets")].index("at_limit")
+    given = {"place": place, "severity": (0.4, 0.4001)}
+    assert read(twin, "weak_magnets", "armature_voltage", "loaded", **given) < 0.98
+    assert read(twin, "weak_magnets", "armature_current", "loaded", **given) > 1.3
