@@ -18,7 +18,7 @@ from rules.answer import Energise, GateLine
 from rules.facts import facts_of, meets
 from rules.findings import crossings
 from rules.gate_checks import CHECKS, Checked, Evidence
-from rules.gate_record import below_floor, has_run, has_tripped, is_overload_trip, means_stop, typed
+from rules.gate_record import below_floor, has_run, has_tripped, is_overload_trip, label, means_stop, typed
 from rules.knowledge import GateRule, Knowledge
 
 NOT_ENERGISED: Final = frozenset(STATES) - ENERGISED_STATES
@@ -116,9 +116,11 @@ def _floor_line(sheet: CaseSheet, knowledge: Knowledge) -> ShutLine:
     try:
         low = below_floor(sheet)
         if means_stop(sheet, knowledge):
-            checked = Checked("forbids", f"the complaint means stop: {sheet.complaint}")
+            entry = knowledge.complaints.get(sheet.complaint)
+            named = entry.name if entry is not None else sheet.complaint
+            checked = Checked("forbids", f"the complaint means stop: {named}")
         elif low is not None:
-            checked = Checked("forbids", f"{low.measure} read {typed(low)}")
+            checked = Checked("forbids", f"{label(low)} read {typed(low)}")
     except Exception as error:
         checked = Checked("forbids", f"the sheet could not be judged: {type(error).__name__}")
     return _line("nothing_means_stop", needs, checked, (), ENERGISED_STATES)

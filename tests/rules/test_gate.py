@@ -86,6 +86,7 @@ def test_a_motor_that_turns_uncoupled_may_be_jammed_by_its_load(knowledge):
 def test_a_complaint_that_means_stop_shuts_every_energised_state(knowledge, complaint):
     sheet = case(complaint, insulation(), windings(), LOADED, seen=CLEARED)
     assert shut(sheet, knowledge) == ENERGISED_STATES - {"stalled"}
+    assert knowledge.complaints[complaint].name in gate(sheet, knowledge).energise.because[0]
 
 
 @pytest.mark.parametrize(

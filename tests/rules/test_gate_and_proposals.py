@@ -16,9 +16,9 @@ SHEETS = sorted((Path(__file__).parent.parent / "sheets").glob("*.yaml"))
 
 
 def variants(sheet):
-    """The sheet as it is, after a stop, with low insulation, after a trip and after a repair."""
+    """The sheet as it is, after a trip, standing still, with low insulation, and with nothing read."""
     yield sheet
-    for complaint in ("smoke_or_burning", "trips_instantly", "after_repair", "will_not_start"):
+    for complaint in ("trips_instantly", "will_not_start"):
         yield msgspec.structs.replace(sheet, complaint=complaint)
     yield msgspec.structs.replace(sheet, readings=(*sheet.readings, insulation("0.4 Mohm")))
     yield msgspec.structs.replace(sheet, readings=(), observations={})
