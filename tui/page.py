@@ -9,6 +9,7 @@ from calc.quantities import MEASURES
 from calc.units import find_unit
 from tui.answer_text import LEAST_SHOWN, NO_MODEL, NOTHING_FORBIDS, condition
 from tui.compose import band_text
+from tui.page_history import Chart, charts, trend_sentences
 from tui.words import (
     complaint_name,
     context_text,
@@ -68,6 +69,8 @@ class Block:
     head: tuple[str, ...] = ()
     rows: tuple[Row, ...] = ()
     sentences: tuple[str, ...] = ()
+    charts: tuple[Chart, ...] = ()
+    """Drawn on the page; in the text their sentences must do."""
 
 
 @dataclass(frozen=True)
@@ -81,8 +84,8 @@ class Page:
     warning: str = field(default="")
 
 
-def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
-    """Return the printed sheet of a case."""
+def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases: Sequence[Case] = ()) -> Page:
+    """Return the printed sheet of a case; ``cases`` are all of the machine, for its history."""
     blocks = [
         Block("Energising", sentences=tuple(_gate(diagnosis))),
         Block("Limits crossed", sentences=tuple(_findings(diagnosis))),
@@ -92,6 +95,7 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
         Block("Why", sentences=tuple(_reasons(diagnosis))),
         Block("To confirm and to do", sentences=tuple(_to_do(diagnosis, knowledge))),
         Block("Found and done", sentences=tuple(_closing(case, knowledge))),
+        history_block(case, cases),
         Block("Isolation", sentences=tuple(_isolation(case))),
         Block("Cautions", sentences=diagnosis.cautions),
         Block("Remarks", sentences=tuple(_remarks(case, diagnosis, knowledge))),
@@ -100,9 +104,18 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
     return Page(
         title=f"{case.number}  {case.tag or '(no tag)'}",
         facts=tuple(_facts(case, knowledge)),
-        blocks=tuple(block for block in blocks if block.rows or block.sentences),
+        blocks=tuple(block for block in blocks if block.rows or block.sentences or block.charts),
         warning=f"STOP: {stop.first}" if stop is not None and stop.stop else "",
     )
+
+
+def history_block(case: Case, cases: Sequence[Case]) -> Block:
+    """Return how the machine's insulation and windings have read over its cases up to this one."""
+    earlier = [one for one in cases if one.opened_utc <= case.opened_utc]
+    if not case.tag or not earlier:
+        return Block("History")
+    sentences = trend_sentences(earlier, tag=case.tag, now=case.last_utc)
+    return Block("History", sentences=tuple(sentences), charts=tuple(charts(earlier, tag=case.tag)))
 
 
 def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
@@ -121,7 +134,7 @@ def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
     return Page(
         title=f"REPAIR TAG  {case.tag or '(no tag)'}  {case.number}",
         facts=tuple(_facts(case, knowledge)),
-        blocks=tuple(block for block in blocks if block.rows or block.sentences),
+        blocks=tuple(block for block in blocks if block.rows or block.sentences or block.charts),
     )
 
 

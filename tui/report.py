@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-import math
 from html import escape
 from typing import TYPE_CHECKING
 
 from tui.columns import WIDTH, columns, paragraph
 from tui.harmless import UNSEEN
+from tui.pictures import chart_svg, scale_svg
 
 if TYPE_CHECKING:
-    from tui.page import Block, Page, Scale
+    from tui.page import Block, Page
 
 POLICY = "default-src 'none'; style-src 'unsafe-inline'"
 STYLE = """
@@ -71,8 +71,14 @@ def _stacked(head: tuple[str, ...], cells: tuple[str, ...]) -> list[str]:
 
 def _block_html(block: Block) -> str:
     """Return a block as a table or a list."""
+    if block.charts:
+        pictures = (
+            f"<p>{_html(chart.title)}, {_html(chart.unit)}<br/>{chart_svg(chart)}</p>"
+            for chart in block.charts
+        )
+        return _list_html(block.sentences) + "".join(pictures)
     if not block.rows:
-        return "<ul>" + "".join(f"<li>{_html(sentence)}</li>" for sentence in block.sentences) + "</ul>"
+        return _list_html(block.sentences)
     drawn = any(row.scale for row in block.rows)
     head = "".join(f"<th>{_html(cell)}</th>" for cell in block.head) + ("<th></th>" if drawn else "")
     body = "".join(
@@ -85,27 +91,10 @@ def _block_html(block: Block) -> str:
     return f"<table><thead><tr>{head}</tr></thead><tbody>{body}</tbody></table>"
 
 
-def scale_svg(scale: Scale, *, width: int = 120, height: int = 14) -> str:
-    """Return a reading on a line: the band as a box, each value as a stroke."""
-    read = [value for value in scale.read if math.isfinite(value)]
-    ends = [scale.low, scale.high, *read]
-    low, high = min(ends), max(ends)
-    span = (high - low) or 1.0
-    low, span = low - 0.1 * span, 1.2 * span
-
-    def x(value: float) -> float:
-        return round((value - low) / span * width, 1)
-
-    wide = max(1.0, x(scale.high) - x(scale.low))
-    box = f'<rect x="{x(scale.low)}" y="3" width="{wide:.1f}" height="8" fill="#ddd"/>'
-    strokes = "".join(
-        f'<path d="M{x(value)} 0V{height}" stroke="#111" stroke-width="1.6"/>' for value in read
-    )
-    return (
-        f'<svg width="{width}" height="{height}" viewBox="0 0 {width} {height}" role="img" '
-        'aria-label="reading in band">'
-        f'<path d="M0 7H{width}" stroke="#999"/>{box}{strokes}</svg>'
-    )
+def _list_html(sentences: tuple[str, ...]) -> str:
+    """Return sentences as a list."""
+    items = "".join(f"<li>{_html(sentence)}</li>" for sentence in sentences)
+    return f"<ul>{items}</ul>" if items else ""
 
 
 def _html(text: str) -> str:

@@ -5,7 +5,8 @@ from html.parser import HTMLParser
 import pytest
 
 from tui.page import Scale
-from tui.report import scale_svg
+from tui.page_history import Chart
+from tui.pictures import chart_svg, scale_svg
 
 VOID = {"meta", "rect", "path", "br"}
 
@@ -110,3 +111,20 @@ def test_a_reading_outside_its_band_is_drawn_outside_the_box():
 
 def test_an_open_circuit_does_not_break_the_picture():
     assert "inf" not in scale_svg(Scale(low=1.0, high=2.0, read=(float("inf"), 1.5)))
+
+
+def test_a_falling_insulation_is_drawn_falling():
+    points = ((0.0, 70.0), (1e7, 24.0), (2e7, 8.0), (3e7, 1.8))
+    picture = chart_svg(Chart(title="insulation", unit="Mohm", points=points, first="a", last="b"))
+    heights = [float(part.split('"')[0]) for part in picture.split('cy="')[1:]]
+    assert heights == sorted(heights)  # downwards on a page
+
+
+def test_the_history_of_a_machine_stands_on_its_sheet(run, tmp_path):
+    plant = str(tmp_path / "plant.db")
+    run("demo", "--build", plant)
+    listed = run("cases", "earth", "fire", "--casebook", plant).out
+    case = listed.splitlines()[2].split()[0]
+    assert "History" in run("report", case, "--casebook", plant).out
+    page = run("report", case, "--html", "--casebook", plant).out
+    assert 'aria-label="history"' in page

@@ -18,8 +18,11 @@ def run(arguments: Namespace) -> int:
     knowledge = places.knowledge(arguments)
     with open_casebook(places.casebook_path(arguments)) as book:
         case = book.case(arguments.case)
+        cases = book.machine_cases(case.tag) if case.tag else ()
     diagnosis = weigh(case.sheet, knowledge, name=case.number)
-    build = page.shop_tag if arguments.tag else page.sheet_page
-    sheet = build(case, diagnosis, knowledge)
+    if arguments.tag:
+        sheet = page.shop_tag(case, diagnosis, knowledge)
+    else:
+        sheet = page.sheet_page(case, diagnosis, knowledge, cases=cases)
     say(report.as_html(sheet) if arguments.html else report.as_text(sheet))
     return cli.DONE

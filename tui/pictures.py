@@ -1,0 +1,61 @@
+"""Small pictures for the printed page, as SVG that stands in the text."""
+
+from __future__ import annotations
+
+import math
+from typing import TYPE_CHECKING
+
+from tui.words import number
+
+if TYPE_CHECKING:
+    from tui.page import Scale
+    from tui.page_history import Chart
+
+DECADE = 5.0  # a spread above this factor is drawn on a logarithmic scale
+
+
+def scale_svg(scale: Scale, *, width: int = 120, height: int = 14) -> str:
+    """Return a reading on a line: the band as a box, each value as a stroke."""
+    read = [value for value in scale.read if math.isfinite(value)]
+    ends = [scale.low, scale.high, *read]
+    low, high = min(ends), max(ends)
+    span = (high - low) or 1.0
+    low, span = low - 0.1 * span, 1.2 * span
+
+    def x(value: float) -> float:
+        return round((value - low) / span * width, 1)
+
+    wide = max(1.0, x(scale.high) - x(scale.low))
+    box = f'<rect x="{x(scale.low)}" y="3" width="{wide:.1f}" height="8" fill="#ddd"/>'
+    strokes = "".join(
+        f'<path d="M{x(value)} 0V{height}" stroke="#111" stroke-width="1.6"/>' for value in read
+    )
+    return (
+        f'<svg width="{width}" height="{height}" viewBox="0 0 {width} {height}" role="img" '
+        f'aria-label="reading in band"><path d="M0 7H{width}" stroke="#999"/>{box}{strokes}</svg>'
+    )
+
+
+def chart_svg(chart: Chart, *, width: int = 420, height: int = 110) -> str:
+    """Return a quantity over time: a line through its readings, lowest and highest at the edge."""
+    values = [value for _, value in chart.points]
+    low, high = min(values), max(values)
+    is_log = low > 0 and high / low > DECADE
+    heights = [math.log(value) if is_log else value for value in values]
+    span = (max(heights) - min(heights)) or 1.0
+    start, end = chart.points[0][0], chart.points[-1][0]
+
+    def place(moment: float, tall: float) -> tuple[float, float]:
+        x = 60 + (moment - start) / ((end - start) or 1.0) * (width - 70)
+        return round(x, 1), round(height - 25 - (tall - min(heights)) / span * (height - 40), 1)
+
+    dots = [place(moment, tall) for (moment, _), tall in zip(chart.points, heights, strict=True)]
+    line = "L".join(f"{x} {y}" for x, y in dots)
+    marks = "".join(f'<circle cx="{x}" cy="{y}" r="3" fill="#111"/>' for x, y in dots)
+    labels = [(0, 19, number(high)), (0, height - 21, number(low)), (60, height - 4, chart.first)]
+    texts = "".join(f'<text x="{x}" y="{y}" font-size="11">{text}</text>' for x, y, text in labels)
+    last = f'<text x="{width}" y="{height - 4}" font-size="11" text-anchor="end">{chart.last}</text>'
+    return (
+        f'<svg width="{width}" height="{height}" viewBox="0 0 {width} {height}" role="img" '
+        f'aria-label="history"><path d="M{line}" fill="none" stroke="#555"/>{marks}{texts}{last}</svg>'
+    )
