@@ -40,7 +40,7 @@ def trend_sentences(cases: Iterable[Case], *, tag: str, now: datetime) -> list[s
 
 
 def charts(cases: Iterable[Case], *, tag: str) -> list[Chart]:
-    """Return what can be drawn: quantities that were read three times or more at one corrected temperature."""
+    """Return what can be drawn: what was read three times or more, corrected to one temperature."""
     corrected = [one for one in machine_history(tag, cases).series if one.anchor_c is not None]
     found = [_chart(series) for series in corrected]
     return [chart for chart in found if chart is not None]

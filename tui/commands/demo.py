@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING
 from calc.errors import PlatesideError
 from tui import cli, places
 from tui.commands import visit
-from tui.output import say
+from tui.output import say, warn
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -36,6 +36,7 @@ def run(arguments: Namespace) -> int:
     sweep(Path(tempfile.gettempdir()))
     with tempfile.TemporaryDirectory(prefix=PREFIX, ignore_cleanup_errors=True) as folder:
         path = Path(folder) / "tern-point.db"
+        warn("building the example plant, a few seconds ...")
         build(path, knowledge)
         return visit.start(path, arguments)
 
