@@ -122,6 +122,14 @@ def with_line_resistance(admittance: Phasors, unit: Phasors, resistance: Floats)
     return out
 
 
+def solve_two(matrix: Phasors, right: Phasors) -> Phasors:
+    """Solve many two-by-two systems by Cramer's rule: (rows, 2, 2) and (rows, 2)."""
+    a, b, c, d = matrix[:, 0, 0], matrix[:, 0, 1], matrix[:, 1, 0], matrix[:, 1, 1]
+    first, second = right[:, 0], right[:, 1]
+    determinant = a * d - b * c
+    return np.stack([(d * first - b * second) / determinant, (a * second - c * first) / determinant], axis=1)
+
+
 def to_lines(components: Phasors) -> Phasors:
     """Three line phasors from positive and negative components (rows, 2); no zero sequence."""
     return np.asarray(components @ INVERSE[:, 1:].T)

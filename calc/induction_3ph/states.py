@@ -13,6 +13,7 @@ from calc.induction_3ph.network import (
     WindingFault,
     line_to_line,
     line_unit,
+    solve_two,
     to_lines,
     winding_admittance,
     with_line_resistance,
@@ -21,6 +22,8 @@ from calc.induction_3ph.plate import COPPER_K, INDEX, Base, Circuit
 from calc.twin import Floats
 
 ROOT3 = np.sqrt(3.0)
+# Cable and transformer together: about as much resistance as reactance (judgement).
+_SOURCE_ANGLE = np.exp(1j * np.pi / 4.0)
 
 
 @dataclass(frozen=True)
@@ -131,7 +134,8 @@ def solve(
     x2_used = np.where(stalled > 0.5, x_half, x2)
     y1 = _admittance(r1, x1_used, r2_used / slip, x2_used, xm, gc)
     y2 = np.asarray(np.where(stalled > 0.5, y1, y2), dtype=np.complex128)
-    current, voltage = _network(rows, y0, y1, y2, v1, v2, r1, x1_used)
+    open_v1 = np.maximum(feed.positive, 0.02) * live + 1e-6
+    current, voltage = _network(rows, y0, y1, y2, open_v1, v2, r1, x1_used, feed.regulation)
     power = np.real((voltage * current.conj()).sum(axis=1)) / 3.0
     apparent = np.abs(voltage * current).sum(axis=1) / 3.0
     amps = _earth(rows, current, voltage)
@@ -206,8 +210,9 @@ def _network(
     v2: Phasors,
     r1: Floats,
     x1: Floats,
+    regulation: Floats,
 ) -> tuple[Phasors, Phasors]:
-    """Line currents and phase voltages at the motor's lines, before any resistance in a line."""
+    """Line currents and phase voltages behind the source's impedance, before any resistance in a line."""
     turns, path = rows["turns"], rows["path_r"]
     ends = np.stack(
         [np.where(path > 0.0, rows["path_a"], 1.0), np.where(path > 0.0, rows["path_b"], 0.0)], axis=1
@@ -229,8 +234,10 @@ def _network(
     if np.any(rows["line_r"] > 0.0):
         admittance = with_line_resistance(admittance, line_unit(line, rows["upstream"]), rows["line_r"])
     volts = np.stack([v1 * ROOT3, v2 * ROOT3], axis=1)
-    amps = np.einsum("rij,rj->ri", admittance, volts)
-    return to_lines(amps), to_lines(volts)
+    source = regulation * _SOURCE_ANGLE
+    behind = np.eye(2) + admittance * source[:, None, None]
+    amps = solve_two(behind, np.einsum("rij,rj->ri", admittance, volts))
+    return to_lines(amps), to_lines(volts - source[:, None] * amps)
 
 
 def _earth(rows: Mapping[str, Floats], current: Phasors, voltage: Phasors) -> Floats:

@@ -262,3 +262,13 @@ def _finish(
         freedom=freedom,
         alive=alive,
     )
+
+
+def join_fits(one: Fit, other: Fit) -> Fit:
+    """Fits of two sets of modes to the same readings as one."""
+    return Fit(
+        **{
+            name: np.concatenate([getattr(one, name), getattr(other, name)])
+            for name in Fit.__dataclass_fields__
+        }
+    )

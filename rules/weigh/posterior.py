@@ -13,21 +13,14 @@ from calc.sheet import CaseSheet, Reading
 from calc.twin import Floats, Mode, Twin, attribute_rows
 from rules.knowledge import Fault, Knowledge
 from rules.weigh import soft
+from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, Frame, fit_modes, frame
+from rules.weigh.laplace import Fit, Frame, fit_modes, frame, join_fits
 from rules.weigh.other import other_evidence
-from rules.weigh.settings import Weighing, weighing
+from rules.weigh.pairs import make_pairs
+from rules.weigh.settings import PairSettings, Weighing, weighing
 
 OTHER = "other"
-
-
-@dataclass(frozen=True)
-class Hypothesis:
-    """One fault in one mode; ``place`` is the mode's row in the fit."""
-
-    fault: str
-    place: int
-    log_weight: float
 
 
 @dataclass(frozen=True)
@@ -147,36 +140,118 @@ def weigh(
     hypotheses, modes = hypotheses_of(faults, twin, start)
     seen, direct, rest = split_readings(sheet, twin, knowledge)
     data = frame(seen)
-    fit = fit_modes(twin, modes, data)
+    case = Case(sheet, knowledge, twin, data, tuple(direct))
+    single = _weighed(case, faults, hypotheses, modes)
+    log_other = _log_other(data, twin, single.tables, start, w)
+    both = _pairs(case, single, start, log_other)
+    whole = single if both is None else _together(single, both)
+    return Posterior(
+        sheet=sheet,
+        twin=twin,
+        faults=whole.faults,
+        hypotheses=whole.hypotheses,
+        modes=whole.modes,
+        data=data,
+        fit=whole.fit,
+        tables=whole.tables,
+        state_terms=whole.states,
+        log_joint=whole.joint,
+        log_other=log_other,
+        odds=_odds(whole.hypotheses, whole.joint, log_other, whole.faults),
+        direct=tuple(direct),
+        unweighed=tuple(rest),
+    )
+
+
+@dataclass(frozen=True)
+class Case:
+    """What is weighed: the sheet, and its readings made ready."""
+
+    sheet: CaseSheet
+    knowledge: Knowledge
+    twin: Twin
+    data: Frame
+    direct: tuple[Reading, ...]
+
+
+@dataclass(frozen=True)
+class Weighed:
+    """Faults with their hypotheses, fits and log odds."""
+
+    faults: tuple[Fault, ...]
+    hypotheses: tuple[Hypothesis, ...]
+    modes: tuple[Mode, ...]
+    fit: Fit
+    tables: Mapping[str, soft.Table]
+    states: Floats
+    joint: Floats
+
+
+def _weighed(
+    case: Case, faults: tuple[Fault, ...], hypotheses: tuple[Hypothesis, ...], modes: tuple[Mode, ...]
+) -> Weighed:
+    """Fit all modes and add up what every hypothesis has for it."""
+    w, kind = weighing(), case.twin.kind
+    sheet, knowledge = case.sheet, case.knowledge
+    fit = fit_modes(case.twin, modes, case.data)
     tables: dict[str, soft.Table] = {
-        "complaint": soft.complaint_table(sheet.complaint, faults, knowledge, twin.kind, w)
+        "complaint": soft.complaint_table(sheet.complaint, faults, knowledge, kind, w)
     }
     for name, answer in sorted(sheet.observations.items()):
         tables[name] = soft.observation_table(name, answer, faults, knowledge, w)
-    tables |= soft.direct_tables(direct, faults, knowledge, instrument_errors(knowledge), w)
-    states = state_terms(sheet, knowledge, twin, modes, fit, w)
+    tables |= soft.direct_tables(case.direct, faults, knowledge, instrument_errors(knowledge), w)
+    states = state_terms(sheet, knowledge, case.twin, modes, fit, w)
     joint = np.array(
         [
             h.log_weight + fit.evidence[h.place] + states[h.place] + sum(t[h.fault] for t in tables.values())
             for h in hypotheses
         ]
     )
-    log_other = _log_other(data, twin, tables, start, w)
-    return Posterior(
-        sheet=sheet,
-        twin=twin,
-        faults=faults,
-        hypotheses=hypotheses,
-        modes=modes,
-        data=data,
-        fit=fit,
-        tables=tables,
-        state_terms=states,
-        log_joint=joint,
-        log_other=log_other,
-        odds=_odds(hypotheses, joint, log_other, faults),
-        direct=tuple(direct),
-        unweighed=tuple(rest),
+    return Weighed(faults, hypotheses, modes, fit, tables, states, joint)
+
+
+def _pairs(case: Case, single: Weighed, start: Mapping[str, float], log_other: float) -> Weighed | None:
+    """Two faults at once, where no single one explains everything that was noted; None where one does."""
+    s = weighing().pairs
+    if not strained(single.fit, case.data, single, log_other, s):
+        return None
+    found = make_pairs(single.faults, single.hypotheses, single.modes, single.joint, start, s)
+    if not found:
+        return None
+    hypotheses = tuple(
+        Hypothesis(fault=pair.fault.id, place=place, log_weight=pair.log_weight)
+        for place, pair in enumerate(found)
+    )
+    faults = tuple({pair.fault.id: pair.fault for pair in found}.values())
+    both = _weighed(case, faults, hypotheses, tuple(pair.mode for pair in found))
+    return both if both.joint.max() > max(float(single.joint.max()), log_other) + s.margin_nats else None
+
+
+def strained(fit: Fit, data: Frame, single: Weighed, log_other: float, s: PairSettings) -> bool:
+    """Whether the best single fault leaves something unexplained that another fault explains."""
+    best = int(np.argmax(single.joint))
+    if log_other > single.joint[best]:
+        return True
+    lead = single.hypotheses[best]
+    r = (data.y - fit.predicted[lead.place]) / data.sigma
+    worst = max((float((r[g] ** 2).mean()) for g in data.groups), default=0.0)
+    if worst > s.strained_sigmas**2:
+        return True
+    return any(max(t.values()) - t[lead.fault] > s.strained_nats for t in single.tables.values())
+
+
+def _together(one: Weighed, other: Weighed) -> Weighed:
+    """Two sets of hypotheses as one."""
+    shift = len(one.modes)
+    moved = tuple(Hypothesis(h.fault, h.place + shift, h.log_weight) for h in other.hypotheses)
+    return Weighed(
+        faults=one.faults + other.faults,
+        hypotheses=one.hypotheses + moved,
+        modes=one.modes + other.modes,
+        fit=join_fits(one.fit, other.fit),
+        tables={name: {**table, **other.tables[name]} for name, table in one.tables.items()},
+        states=np.concatenate([one.states, other.states]),
+        joint=np.concatenate([one.joint, other.joint]),
     )
 
 

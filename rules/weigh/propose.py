@@ -25,8 +25,9 @@ from rules.answer import NextItem
 from rules.gate import GateState
 from rules.knowledge import Fault, Knowledge, Observation, ReadingRule
 from rules.weigh import wording
+from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.posterior import Hypothesis, Posterior
+from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
 from rules.weigh.soft import answer_chance, shape, spread_of

@@ -7,7 +7,8 @@ import math
 import numpy as np
 
 from rules.answer import Reason
-from rules.weigh.posterior import Hypothesis, Posterior
+from rules.weigh.hypothesis import Hypothesis
+from rules.weigh.posterior import Posterior
 from rules.weigh.wording import amount_text, reading_text, title, values_of
 
 LEAST_WEIGHT = 0.1  # nats; smaller pieces are shown as one

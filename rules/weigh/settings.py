@@ -38,6 +38,16 @@ class SlipSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fie
     mended_sigmas: float
 
 
+class PairSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
+    """When two faults at once are considered."""
+
+    faults: int
+    together: float
+    margin_nats: float
+    strained_sigmas: float
+    strained_nats: float
+
+
 class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Numbers of the weighing; the YAML file says what each does."""
 
@@ -51,6 +61,7 @@ class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=
     families: dict[str, Family]
     proposal: ProposalSettings
     slip: SlipSettings
+    pairs: PairSettings
 
 
 @cache
