@@ -14,9 +14,8 @@ pytestmark = pytest.mark.system
 
 @pytest.fixture
 def terminal(tmp_path):
-    env = {
-        **os.environ, "TERM": "dumb", "PYTHONPATH": str(ROOT), "PLATESIDE_CASEBOOK": str(tmp_path / "book.db"),
-    }  # fmt: skip
+    own = {"TERM": "dumb", "PYTHONPATH": str(ROOT), "PLATESIDE_CASEBOOK": str(tmp_path / "book.db")}
+    env = {**os.environ, **own}
     command = [sys.executable, "-m", "plateside"]
     pexpect.run(" ".join([*command, "log", str(SHEET)]), env=env)
     child = pexpect.spawn(command[0], command[1:], env=env, encoding="utf-8", timeout=30)
