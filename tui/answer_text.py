@@ -20,6 +20,7 @@ LEAST_SHOWN = 0.01  # odds of a fault that is still listed
 LEAST_WITHIN = 0.05  # odds of a cause inside it
 NOTHING_FORBIDS = "no recorded finding forbids energising; site rules and licensed practice decide"
 NOTHING_LEFT = "nothing that is left to read is worth its minutes"
+NO_CHOICE = "without a model nothing can be chosen; what the gate needs comes first"
 NO_MODEL = "this machine kind has no model yet: limits, findings and the gate only"
 
 
@@ -31,7 +32,9 @@ def answer_lines(diagnosis: Diagnosis, sheet: CaseSheet, knowledge: Knowledge) -
         *gate_lines(diagnosis.energise),
         *titled("Limits crossed", finding_lines(diagnosis.findings)),
         *titled("Likely faults", fault_lines(diagnosis, knowledge)),
-        *titled("Next", next_lines(diagnosis.next, knowledge)),
+        *titled(
+            "Next", next_lines(diagnosis.next, knowledge) if diagnosis.faults else item_lines([NO_CHOICE])
+        ),
         *titled("What would turn it", item_lines(turn.text for turn in diagnosis.turns[:1])),
         *titled("Check the entry", item_lines(slip.text for slip in diagnosis.slips)),
         *titled("Nameplate", item_lines(diagnosis.plate_remarks)),
