@@ -206,3 +206,18 @@ def test_expect_says_where_a_kind_has_no_model(run, sheet):
     done = run("expect", sheet("wound_rotor_crusher"))
     assert done.status == 0
     assert "no model" in done.out.lower()
+
+
+@pytest.mark.parametrize("by", ["option", "environment"])
+def test_a_shops_own_rules_are_laid_over_the_shipped_ones(run, tmp_path, monkeypatch, by):
+    shop = tmp_path / "shop"
+    shop.mkdir()
+    (shop / "complaints.yaml").write_text(
+        "complaints:\n  - {id: squeals, name: squeals like the old winch, source: this shop, runs: 'yes'}\n"
+    )
+    sheet = tmp_path / "winch.yaml"
+    sheet.write_text("format: 1\nmachine: {kind: induction_3ph, tag: W-1}\ncomplaint: squeals\n")
+    if by == "environment":
+        monkeypatch.setenv("PLATESIDE_RULES", str(shop))
+    options = ["--rules", str(shop)] if by == "option" else []
+    assert "squeals like the old winch" in run(*options, "diagnose", str(sheet)).out
