@@ -46,8 +46,8 @@ class Rotor:
 class Windings:
     """Stator side: series impedances (the auxiliary one with its capacitor) and source voltages.
 
-    ``shunt_siemens`` is the admittance that shorted turns of the main winding put across
-    its induced voltage; zero on a sound winding.
+    ``main_ohm`` is what is left of the main winding where turns are shorted: ``turn_share`` of
+    them, in a loop whose admittance, counted in turns of the whole winding, is ``loop_siemens``.
     """
 
     main_ohm: Phasors
@@ -55,7 +55,8 @@ class Windings:
     turns_ratio: Floats
     main_volt: Phasors
     auxiliary_volt: Phasors
-    shunt_siemens: Phasors
+    turn_share: Floats
+    loop_siemens: Phasors
 
 
 @dataclass(frozen=True)
@@ -119,17 +120,19 @@ def solve_currents(windings: Windings, rotor: Rotor, slip: Floats) -> Currents:
         V_m = (Z_m + Z_f + Z_b) I_m - j a (Z_f - Z_b) I_a \\
         V_a = j a (Z_f - Z_b) I_m + (Z_a + a^2 (Z_f + Z_b)) I_a
 
-    Shorted turns are a shunt behind the main winding's impedance; source and impedance
-    are replaced by their Thevenin equivalent, so the two equations keep their form.
+    With a share ``m`` of the main turns shorted, the field is made by ``(1 - m) I_m`` less the
+    loop's ``m y E``, and the winding sees ``(1 - m) E``. Source and impedance are replaced by
+    their Thevenin equivalent in the field's current, so the two equations keep their form.
 
     """
     forward, forward_siemens = half_field_ohm(rotor, slip, backward=False)
     backward, backward_siemens = half_field_ohm(rotor, slip, backward=True)
-    shorted = bool(windings.shunt_siemens.any())
+    shorted = bool(windings.turn_share.any())
     source, series = windings.main_volt, windings.main_ohm
+    left = 1.0 - windings.turn_share
     if shorted:
-        divider = 1.0 / (1.0 + series * windings.shunt_siemens)
-        source, series = source * divider, series * divider
+        divider = 1.0 / (left + series * windings.turn_share * windings.loop_siemens / left)
+        source, series = source * divider, series * divider / left
     ratio = windings.turns_ratio
     both = forward + backward
     own = series + both
@@ -142,7 +145,9 @@ def solve_currents(windings: Windings, rotor: Rotor, slip: Floats) -> Currents:
     ahead = (field_current - across) * forward
     against = (field_current + across) * backward
     torque = 2.0 * (square(ahead) * forward_siemens.real - square(against) * backward_siemens.real)
-    main = field_current + windings.shunt_siemens * (ahead + against) if shorted else field_current
+    main = field_current
+    if shorted:
+        main = (main + windings.turn_share * windings.loop_siemens * (ahead + against)) / left
     return Currents(main=main, auxiliary=auxiliary, forward_emf=ahead, backward_emf=against, torque_w=torque)
 
 

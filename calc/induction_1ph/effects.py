@@ -13,8 +13,6 @@ from calc.induction_1ph.plate import HAS_RUN_CAPACITOR, HAS_START_CAPACITOR, SPL
 from calc.twin import Mode, Severity
 
 # design: index among the designs that the plate allows.
-# turns_loaded, turns_free: chance that such a motor can be found running with its load, or without.
-# stands: chance that it can be found energised and standing. starts: that a start can be read at all.
 DEFAULTS: dict[str, float] = {
     "design": 0.0,
     "live": 1.0,
@@ -32,6 +30,7 @@ DEFAULTS: dict[str, float] = {
     "main_open": 0.0,
     "auxiliary_open": 0.0,
     "turns_shorted": 0.0,  # fraction of the main winding's turns
+    "loop_leakage": 0.5,  # leakage of the shorted loop over its share of the winding's
     "winding_ohm": 1.0,  # impedance over that of the connection meant
     "load_set": 0.0,  # rated torque; 0: the site's load
     "friction": 0.0,  # rated torque
@@ -39,21 +38,10 @@ DEFAULTS: dict[str, float] = {
     "rise": 1.0,  # factor on the temperature rise
     "earth_ohm": 1e9,  # path from winding to earth
     "jammed": 0.0,
-    "turns_loaded": 1.0,
-    "turns_free": 1.0,
-    "stands": 0.0,
-    "starts": 1.0,
 }
 
 
-ANY, START, RUN, RUN_ALONE, RUN_AND_START, SWITCH = (
-    "any",
-    "start capacitor",
-    "run capacitor",
-    "run capacitor alone",
-    "both capacitors",
-    "start switch",
-)
+ANY, START, RUN, SWITCH = "any", "start capacitor", "run capacitor", "start switch"
 
 
 @dataclass(frozen=True)
@@ -73,8 +61,6 @@ class Variant:
             ANY: True,
             START: start,
             RUN: run,
-            RUN_ALONE: run and not start,
-            RUN_AND_START: run and start,
             SWITCH: start or design == SPLIT_PHASE,
         }[self.part]
 
@@ -83,51 +69,33 @@ def _one(attribute: str, low: float, high: float) -> tuple[Severity, ...]:
     return (Severity(attribute, low, high),)
 
 
-def _can(stands: float, turns_free: float, turns_loaded: float) -> dict[str, float]:
-    """Chances of the states in which such a motor can be found. Common practice."""
-    return {"stands": stands, "turns_free": turns_free, "turns_loaded": turns_loaded}
-
-
-# No start circuit: it stands and hums; some start without load, a few were helped and run.
-_START_DEAD = _can(0.92, 0.25, 0.07)
-
 VARIANTS: dict[str, tuple[Variant, ...]] = {
     "none": (Variant("", 1.0, {}),),
-    "low_voltage": (
-        Variant("", 1.0, {"set_volts": 1.0, **_can(0.12, 0.97, 0.88)}, _one("volts_lost", 0.08, 0.30)),
-    ),
+    "low_voltage": (Variant("", 1.0, {"set_volts": 1.0}, _one("volts_lost", 0.08, 0.30)),),
     "high_voltage": (Variant("", 1.0, {"set_volts": 1.0}, _one("volts_over", 0.08, 0.20)),),
-    "no_supply": (Variant("", 1.0, {"live": 0.0, **_can(1.0, 0.0, 0.0)}),),
-    "start_capacitor_open": (Variant("", 1.0, {"start_open": 1.0, **_START_DEAD}, part=START),),
-    "start_capacitor_shorted": (Variant("", 1.0, {"start_shorted": 1.0, **_START_DEAD}, part=START),),
-    "start_capacitor_weak": (
-        Variant("", 1.0, _can(0.4, 0.9, 0.6), _one("start_lost", 0.3, 0.9), part=START),
-    ),
-    "run_capacitor_open": (
-        Variant("", 1.0, {"run_open": 1.0, **_START_DEAD}, part=RUN_ALONE),
-        Variant("", 1.0, {"run_open": 1.0}, part=RUN_AND_START),
-    ),
-    "run_capacitor_shorted": (
-        Variant("", 1.0, {"run_shorted": 1.0, **_can(0.92, 0.1, 0.05)}, part=RUN_ALONE),
-        Variant("", 1.0, {"run_shorted": 1.0, **_can(0.7, 0.3, 0.1)}, part=RUN_AND_START),
-    ),
-    "run_capacitor_weak": (Variant("", 1.0, _can(0.2, 0.95, 0.8), _one("run_lost", 0.1, 0.7), part=RUN),),
-    "start_switch_open": (Variant("", 1.0, {"switch_open": 1.0, **_START_DEAD}, part=SWITCH),),
-    "start_switch_closed": (Variant("", 1.0, {"switch_closed": 1.0, **_can(0.0, 0.12, 0.1)}, part=SWITCH),),
-    "open_auxiliary": (Variant("", 1.0, {"auxiliary_open": 1.0, **_START_DEAD}),),
-    "open_main": (Variant("", 1.0, {"main_open": 1.0, **_can(0.9, 0.1, 0.05)}),),
-    "main_turn_short": (Variant("", 1.0, _can(0.12, 0.85, 0.75), _one("turns_shorted", 0.01, 0.25)),),
+    "no_supply": (Variant("", 1.0, {"live": 0.0}),),
+    "start_capacitor_open": (Variant("", 1.0, {"start_open": 1.0}, part=START),),
+    "start_capacitor_shorted": (Variant("", 1.0, {"start_shorted": 1.0}, part=START),),
+    "start_capacitor_weak": (Variant("", 1.0, {}, _one("start_lost", 0.3, 0.9), part=START),),
+    "run_capacitor_open": (Variant("", 1.0, {"run_open": 1.0}, part=RUN),),
+    "run_capacitor_shorted": (Variant("", 1.0, {"run_shorted": 1.0}, part=RUN),),
+    "run_capacitor_weak": (Variant("", 1.0, {}, _one("run_lost", 0.1, 0.7), part=RUN),),
+    "start_switch_open": (Variant("", 1.0, {"switch_open": 1.0}, part=SWITCH),),
+    "start_switch_closed": (Variant("", 1.0, {"switch_closed": 1.0}, part=SWITCH),),
+    "open_auxiliary": (Variant("", 1.0, {"auxiliary_open": 1.0}),),
+    "open_main": (Variant("", 1.0, {"main_open": 1.0}),),
+    "main_turn_short": (Variant("", 1.0, {}, _one("turns_shorted", 0.01, 0.25)),),
     "other_connection": (
         Variant("auxiliary reversed", 0.7, {}),
-        Variant("wired for the higher voltage", 0.2, {"winding_ohm": 4.0, **_can(0.3, 0.9, 0.7)}),
-        Variant("wired for the lower voltage", 0.1, {"winding_ohm": 0.25, **_can(0.1, 0.5, 0.4)}),
+        Variant("wired for the higher voltage", 0.2, {"winding_ohm": 4.0}),
+        Variant("wired for the lower voltage", 0.1, {"winding_ohm": 0.25}),
     ),
-    "excess_load": (Variant("", 1.0, _can(0.12, 1.0, 0.88), _one("load_set", 1.15, 2.0)),),
+    "excess_load": (Variant("", 1.0, {}, _one("load_set", 1.15, 2.0)),),
     "light_load": (Variant("", 1.0, {}, _one("load_set", 0.05, 0.3)),),
-    "stall": (Variant("", 1.0, {"jammed": 1.0, **_can(1.0, 0.3, 0.0)}),),
+    "stall": (Variant("", 1.0, {"jammed": 1.0}),),
     "hot": (Variant("", 1.0, {}, _one("rise", 1.3, 3.0)),),
     "friction": (Variant("in the motor", 0.6, {}, _one("friction", 0.005, 0.1)),),
-    "earth_path": (Variant("", 1.0, {"starts": 0.5, **_can(0.0, 0.5, 0.5)}, _one("earth_ohm", 1.0, 3e4)),),
+    "earth_path": (Variant("", 1.0, {}, _one("earth_ohm", 1.0, 3e4)),),
 }
 # Heavy drag may as well be in the load, where it is gone when uncoupled.
 _DRAG_IN_LOAD = Variant("in the load", 0.4, {"load_drags": 1.0}, _one("friction", 0.1, 1.0))

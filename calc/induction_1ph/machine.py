@@ -45,6 +45,7 @@ class Setting:
     """How a motor stands in one state; shapes as the motor's.
 
     ``leakage`` and ``rotor_rise`` are factors on leakage reactance and rotor resistance,
+    ``loop_leakage`` the loop's of shorted turns over its share of the winding's;
     ``winding_ohm`` one on all impedances: the winding linked for another voltage.
     """
 
@@ -54,6 +55,7 @@ class Setting:
     supply_v: Floats
     source_ohm: Floats
     turn_share: Floats
+    loop_leakage: Floats
     leakage: Floats
     rotor_rise: Floats
     winding_ohm: Floats
@@ -158,8 +160,9 @@ def connect(machine: Motor, setting: Setting) -> Connected:
     warm = copper_factor(setting.temperature_c) * linked
     main_x = machine.main_reactance_ohm * setting.leakage * linked
     main_ohm = machine.main_ohm * warm
-    series_ohm = main_ohm * (1.0 - setting.turn_share) + 1j * main_x + setting.main_extra_ohm
-    shorted_ohm = main_ohm + 1j * priors.LOOP_LEAKAGE * main_x
+    left = 1.0 - setting.turn_share
+    series_ohm = main_ohm * left + 1j * main_x * left**2 + setting.main_extra_ohm
+    loop_ohm = main_ohm + 1j * setting.loop_leakage * main_x
     auxiliary_x = machine.auxiliary_reactance_ohm * setting.leakage * linked
     unit = np.ones(linked.shape, dtype=np.complex128)
     return Connected(
@@ -169,7 +172,8 @@ def connect(machine: Motor, setting: Setting) -> Connected:
             turns_ratio=machine.turns_ratio,
             main_volt=unit,
             auxiliary_volt=unit,
-            shunt_siemens=np.asarray(setting.turn_share / shorted_ohm, dtype=np.complex128),
+            turn_share=setting.turn_share,
+            loop_siemens=np.asarray(1.0 / loop_ohm, dtype=np.complex128),
         ),
         rotor=Rotor(
             magnetising_ohm=machine.magnetising_ohm * linked,

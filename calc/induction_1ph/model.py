@@ -7,6 +7,7 @@ from collections.abc import Mapping, Sequence
 import numpy as np
 
 from calc.induction_1ph import priors
+from calc.induction_1ph.chances import found_in
 from calc.induction_1ph.circuit import square
 from calc.induction_1ph.effects import DEFAULTS, VARIANTS, enumerate_modes
 from calc.induction_1ph.machine import connect, run_at
@@ -110,18 +111,20 @@ class SinglePhaseTwin:
 
     def possible(self, z: Floats, attributes: Attributes) -> Mapping[str, Floats]:
         """For each state, the chance that such a motor can be in it: shape (rows,), 0.0 to 1.0."""
-        pulled_out = turning(self.site(z, attributes), attributes, "loaded").running.stalled
+        site = self.site(z, attributes)
+        pulled_out = turning(site, attributes, "loaded").running.stalled
+        found = found_in(attributes, site.has_switch)
         always = np.ones(len(z))
         return {
             "isolated": always,
             "standby": always,
             "spun": 0.0 * always,
-            "starting": attributes["starts"],
-            "stalled": np.where(pulled_out, np.maximum(attributes["stands"], 0.5), attributes["stands"]),
-            "no_load": attributes["turns_free"],
-            "light_load": attributes["turns_loaded"],
-            "loaded": np.where(pulled_out, 0.0, attributes["turns_loaded"]),
-            "coasting": np.maximum(attributes["turns_free"], attributes["turns_loaded"]),
+            "starting": found.starts,
+            "stalled": np.where(pulled_out, np.maximum(found.stands, 0.5), found.stands) * found.starts,
+            "no_load": found.turns_free,
+            "light_load": found.turns_loaded,
+            "loaded": np.where(pulled_out, 0.0, found.turns_loaded),
+            "coasting": np.maximum(found.turns_free, found.turns_loaded),
         }
 
     def transform(self, measure: str) -> Transform:

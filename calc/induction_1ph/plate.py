@@ -16,14 +16,22 @@ DESIGNS = (SPLIT_PHASE, CAPACITOR_START, CAPACITOR_RUN, CAPACITOR_START_RUN)
 HAS_RUN_CAPACITOR = frozenset({CAPACITOR_RUN, CAPACITOR_START_RUN})
 HAS_START_CAPACITOR = frozenset({CAPACITOR_START, CAPACITOR_START_RUN})
 
-# Input volt-amperes per watt of output at rated load, and its spread in the logarithm. Common practice;
-# NEC Table 430.248 currents give 1.6 to 4.1 from 5 hp down to 1/6 hp.
+# Input volt-amperes per watt of output at rated load and 500 W, its spread in the logarithm, and the
+# exponents with which it goes with output and poles. Common practice; NEC Table 430.248 currents give
+# 1.6 to 4.1 from 5 hp down to 1/6 hp.
 VOLT_AMPERES_PER_WATT = {
-    SPLIT_PHASE: (2.75, 0.22),
-    CAPACITOR_START: (2.3, 0.22),
-    CAPACITOR_RUN: (1.48, 0.12),
-    CAPACITOR_START_RUN: (1.42, 0.12),
+    SPLIT_PHASE: (2.75, 0.18, -0.14, 0.12),
+    CAPACITOR_START: (2.5, 0.14, -0.17, 0.15),
+    CAPACITOR_RUN: (1.48, 0.10, -0.04, 0.0),
+    CAPACITOR_START_RUN: (1.38, 0.10, 0.0, 0.0),
 }
+
+
+def volt_amperes_per_watt(design: str, *, power_w: float, poles: int) -> float:
+    """Input volt-amperes per watt of output at rated load that a design usually takes."""
+    usual, _, by_power, by_poles = VOLT_AMPERES_PER_WATT[design]
+    return float(usual * (power_w / 500.0) ** by_power * (poles / 4.0) ** by_poles)
+
 
 # How often each design carries the capacitors that are known of. Common practice.
 # (run, start) -> design -> share
@@ -80,8 +88,8 @@ class Plate:
         """Rated output over ``power_w``, and its spread: from the plate current where it tells no output."""
         if self.power_told or self.current_a is None:
             return 1.0, self.power_sigma
-        usual, spread = VOLT_AMPERES_PER_WATT[design]
-        return _USUAL_VOLT_AMPERES / usual, spread
+        usual = volt_amperes_per_watt(design, power_w=self.power_w, poles=self.poles)
+        return _USUAL_VOLT_AMPERES / usual, VOLT_AMPERES_PER_WATT[design][1]
 
     def current_prior(self, design: str) -> tuple[float, float]:
         """Rated current over the base current, and its spread; from the output where none is told."""
@@ -98,7 +106,8 @@ class Plate:
         """Rated current of a design: the plate's, or what its output usually takes."""
         if self.current_a is not None:
             return self.current_a
-        return VOLT_AMPERES_PER_WATT[design][0] * self.power_w / self.voltage_v
+        usual = volt_amperes_per_watt(design, power_w=self.power_w, poles=self.poles)
+        return usual * self.power_w / self.voltage_v
 
 
 def read_plate(machine: Machine, readings: Sequence[Reading] = ()) -> Plate:
@@ -118,11 +127,11 @@ def read_plate(machine: Machine, readings: Sequence[Reading] = ()) -> Plate:
 
     """
     plate = machine.nameplate
-    voltage = plate.number("voltage") or _nominal(machine.supply.nominal_voltage) or _voltage_class(readings)
     speed = plate.number("speed") or _running_speed(readings)
+    told = plate.number("voltage") or _nominal(machine.supply.nominal_voltage)
     frequency = plate.number("frequency") or _nominal(machine.supply.nominal_frequency)
-    if frequency is None:
-        frequency = 60.0 if voltage < 130.0 or (speed or 0.0) > 3000.0 else 50.0
+    frequency = frequency or _frequency(speed, told, readings)
+    voltage = told or _voltage_class(plate, frequency, readings)
     poles = _poles(plate, frequency, speed)
     slip, slip_sigma = _slip(plate.speed, frequency, poles, plate.number("power"))
     current, current_sigma = _current(plate, voltage)
@@ -173,11 +182,31 @@ def _share(number: float | None) -> float | None:
     return min(ratio, 0.999) if ratio > 0.05 else None
 
 
-def _voltage_class(readings: Sequence[Reading]) -> float:
-    """Return 115 V or 230 V, by what was read at the terminals; 230 V where nothing was."""
+def _frequency(speed_rpm: float | None, voltage_v: float | None, readings: Sequence[Reading]) -> float:
+    """50 or 60 Hz: as read, else by the synchronous speed just above the speed, else by voltage."""
+    read = [r.numbers[0] for r in readings if r.measure == "supply_frequency" and r.values[0].is_read]
+    if read:
+        return 60.0 if read[-1] > 55.0 else 50.0
+    if speed_rpm is not None and speed_rpm > 500.0:
+        slips = {f: min(s for s in _slips(f, speed_rpm) if s > -0.003) for f in (50.0, 60.0)}
+        return min(slips, key=lambda f: slips[f])
+    return 60.0 if voltage_v is not None and voltage_v < 130.0 else 50.0
+
+
+def _slips(frequency_hz: float, speed_rpm: float) -> list[float]:
+    return [1.0 - speed_rpm * poles / (120.0 * frequency_hz) for poles in (2, 4, 6, 8)] + [1.0]
+
+
+def _voltage_class(plate: Nameplate, frequency_hz: float, readings: Sequence[Reading]) -> float:
+    """115 V or 230 V: by what was read at the terminals, else by plate output and current."""
     read = [r.numbers[0] for r in readings if r.measure == "supply_voltage" and r.values[0].is_read]
-    live = sorted(v for v in read if 50.0 < v < 1000.0)
-    return 115.0 if live and live[len(live) // 2] < 160.0 else 230.0
+    live = [v for v in read if 50.0 < v < 1000.0]
+    if live:
+        return 115.0 if max(live) < (160.0 if frequency_hz > 55.0 else 125.0) else 230.0
+    power, current = _positive(plate.number("power")), _positive(plate.number("current"))
+    if power is not None and current is not None and frequency_hz > 55.0:
+        return 115.0 if 230.0 * current / power > 4.2 else 230.0
+    return 230.0
 
 
 def _running_speed(readings: Sequence[Reading]) -> float | None:

@@ -9,56 +9,84 @@ from __future__ import annotations
 
 from calc.induction_1ph.plate import CAPACITOR_RUN, CAPACITOR_START, CAPACITOR_START_RUN, SPLIT_PHASE
 
-# name -> (median, spread). magnetising: at rated flux. auxiliary_*: ratio to the main winding's own.
-# friction: of rated output. rotor_split: none, main and rotor leakage are alike.
+# name -> (median, spread) at REFERENCE. magnetising: at rated flux. auxiliary_*: ratio to the main
+# winding's own. friction: of rated output. Main and rotor leakage are taken to be alike.
 Spread = tuple[float, float]
 
 MEDIAN_AND_SPREAD: dict[str, dict[str, Spread]] = {
     SPLIT_PHASE: {
-        "main_resistance": (0.048, 0.22),
-        "leakage": (0.110, 0.18),
-        "rotor_resistance": (0.066, 0.28),
-        "magnetising": (2.0, 0.11),
-        "core": (22.5, 0.25),
-        "friction": (0.065, 0.42),
+        "main_resistance": (0.0455, 0.15),
+        "leakage": (0.110, 0.17),
+        "rotor_resistance": (0.060, 0.19),
+        "magnetising": (2.00, 0.11),
+        "core": (24.5, 0.20),
+        "friction": (0.056, 0.36),
         "turns_ratio": (0.71, 0.14),
-        "auxiliary_resistance": (5.2, 0.24),
-        "auxiliary_leakage": (0.50, 0.30),
+        "auxiliary_resistance": (5.2, 0.23),
+        "auxiliary_leakage": (0.50, 0.29),
     },
     CAPACITOR_START: {
-        "main_resistance": (0.043, 0.27),
-        "leakage": (0.120, 0.19),
-        "rotor_resistance": (0.054, 0.32),
-        "magnetising": (2.27, 0.14),
-        "core": (23.0, 0.27),
-        "friction": (0.043, 0.45),
-        "turns_ratio": (1.20, 0.12),
-        "auxiliary_resistance": (4.1, 0.28),
-        "auxiliary_leakage": (1.30, 0.25),
-    },
-    CAPACITOR_RUN: {
-        "main_resistance": (0.059, 0.23),
-        "leakage": (0.098, 0.15),
-        "rotor_resistance": (0.078, 0.25),
-        "magnetising": (2.75, 0.25),
-        "core": (11.0, 0.30),
-        "friction": (0.047, 0.45),
-        "turns_ratio": (1.20, 0.14),
-        "auxiliary_resistance": (1.85, 0.28),
-        "auxiliary_leakage": (1.40, 0.25),
-    },
-    CAPACITOR_START_RUN: {
-        "main_resistance": (0.046, 0.22),
-        "leakage": (0.107, 0.15),
-        "rotor_resistance": (0.060, 0.22),
-        "magnetising": (3.05, 0.20),
-        "core": (15.5, 0.25),
-        "friction": (0.031, 0.42),
-        "turns_ratio": (1.16, 0.12),
-        "auxiliary_resistance": (2.15, 0.26),
+        "main_resistance": (0.049, 0.15),
+        "leakage": (0.125, 0.17),
+        "rotor_resistance": (0.062, 0.20),
+        "magnetising": (2.17, 0.10),
+        "core": (21.5, 0.22),
+        "friction": (0.050, 0.34),
+        "turns_ratio": (1.20, 0.11),
+        "auxiliary_resistance": (4.2, 0.25),
         "auxiliary_leakage": (1.32, 0.23),
     },
+    CAPACITOR_RUN: {
+        "main_resistance": (0.0580, 0.17),
+        "leakage": (0.100, 0.15),
+        "rotor_resistance": (0.074, 0.16),
+        "magnetising": (2.85, 0.16),
+        "core": (11.8, 0.18),
+        "friction": (0.044, 0.30),
+        "turns_ratio": (1.27, 0.16),
+        "auxiliary_resistance": (1.80, 0.26),
+        "auxiliary_leakage": (1.40, 0.24),
+    },
+    CAPACITOR_START_RUN: {
+        "main_resistance": (0.0560, 0.17),
+        "leakage": (0.108, 0.15),
+        "rotor_resistance": (0.071, 0.16),
+        "magnetising": (2.55, 0.13),
+        "core": (13.2, 0.19),
+        "friction": (0.044, 0.30),
+        "turns_ratio": (1.21, 0.15),
+        "auxiliary_resistance": (2.15, 0.26),
+        "auxiliary_leakage": (1.30, 0.21),
+    },
 }
+
+REFERENCE = (500.0, 4.0)
+"""Rated output [W] and poles that the medians hold for."""
+
+# How medians go with size: exponents of output and of poles. Larger motors have less resistance, friction
+# and core loss per unit; more poles need more magnetising current. Common practice; the sizes judged.
+Trend = tuple[float, float]
+_SIZE: dict[str, Trend] = {
+    "main_resistance": (-0.21, 0.1),
+    "rotor_resistance": (-0.27, 0.1),
+    "core": (0.22, 0.1),
+    "friction": (-0.42, -0.2),
+}
+_ONE_WINDING_RUNS: dict[str, Trend] = {**_SIZE, "magnetising": (0.06, -0.12), "leakage": (-0.08, 0.1)}
+_TWO_WINDINGS_RUN: dict[str, Trend] = {**_SIZE, "magnetising": (0.24, -0.26), "run": (0.0, 0.3)}
+SIZE_TREND: dict[str, dict[str, Trend]] = {
+    SPLIT_PHASE: _ONE_WINDING_RUNS,
+    CAPACITOR_START: _ONE_WINDING_RUNS,
+    CAPACITOR_RUN: _TWO_WINDINGS_RUN,
+    CAPACITOR_START_RUN: _TWO_WINDINGS_RUN,
+}
+
+
+def size_factor(design: str, name: str, *, power_w: float, poles: int) -> float:
+    """Median of a quantity at a size over that at REFERENCE; 1 for a quantity without a trend."""
+    by_power, by_poles = SIZE_TREND[design].get(name, (0.0, 0.0))
+    return float((power_w / REFERENCE[0]) ** by_power * (poles / REFERENCE[1]) ** by_poles)
+
 
 # Reactive power of a capacitor at rated voltage over rated output; textbook examples give 0.6 to 1.7 (run).
 RUN_VAR_PER_WATT: Spread = (0.54, 0.27)
@@ -97,9 +125,6 @@ SOURCE_PER_UNIT: Spread = (0.0125, 0.45)
 LOAD: Spread = (0.69, 0.30)
 RISE_SPREAD = 0.22
 AMBIENT_SPREAD_K = 10.0
-
-LOOP_LEAKAGE = 0.4
-"""Leakage of a shorted coil over its share of the winding's: it links its own slots only. From memory."""
 
 RESTART_HEAT = 0.7
 """Share of the rise in service that is left in the winding of a motor that is started again. From memory."""

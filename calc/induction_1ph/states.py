@@ -8,6 +8,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from calc.induction_1ph import priors
+from calc.induction_1ph.chances import found_in
 from calc.induction_1ph.circuit import Phasors
 from calc.induction_1ph.machine import OPEN_OHM, Motor, Setting, capacitor_ohm, connect, in_parallel, run_at
 from calc.induction_1ph.slip import Running, run_loaded
@@ -89,6 +90,7 @@ def settle(site: Site, attributes: Attributes, *, warm_c: Floats, path: Phasors)
         supply_v=supply(site, attributes),
         source_ohm=site.source_ohm,
         turn_share=attributes["turns_shorted"],
+        loop_leakage=attributes["loop_leakage"],
         leakage=one,
         rotor_rise=one,
         winding_ohm=attributes["winding_ohm"],
@@ -106,7 +108,8 @@ def supply(site: Site, attributes: Attributes) -> Floats:
 
 def at_standstill(site: Site, attributes: Attributes) -> Standing:
     """Locked rotor with the start circuit as it is; a motor that starts is taken to have run before."""
-    warm = np.maximum((1.0 - attributes["stands"]) * priors.RESTART_HEAT * site.rise_k, 5.0)
+    stands = found_in(attributes, site.has_switch).stands
+    warm = np.maximum((1.0 - stands) * priors.RESTART_HEAT * site.rise_k, 5.0)
     path, seen = auxiliary_path(site, attributes, at_start=True)
     setting = _locked(site, settle(site, attributes, warm_c=site.ambient_c + warm, path=path))
     slip = np.ones_like(site.load)

@@ -42,7 +42,8 @@ def windings(*, main, auxiliary, main_volt, auxiliary_volt, ratio=1.0):
         turns_ratio=real(ratio),
         main_volt=phasor(main_volt),
         auxiliary_volt=phasor(auxiliary_volt),
-        shunt_siemens=phasor(0.0),
+        turn_share=real(0.0),
+        loop_siemens=phasor(0.0),
     )
 
 
@@ -205,5 +206,5 @@ def test_capacitance_from_volts_and_amps_by_the_usual_factor(frequency_hz, facto
 def test_usual_volt_amperes_lie_around_the_code_table(hp, amps):
     """NEC Table 430.248 at 230 V, looked up: a ceiling for sizing, so only plausibility."""
     listed = 230.0 * amps / (hp * 745.7)
-    usual = [median for median, _ in VOLT_AMPERES_PER_WATT.values()]
+    usual = [entry[0] for entry in VOLT_AMPERES_PER_WATT.values()]
     assert min(usual) * 0.9 < listed < max(usual) * 1.5

@@ -21,7 +21,7 @@ def standing(rotor):
 
 
 @st.composite
-def motors(draw, shunt=0.0):
+def motors(draw):
     main = draw(ohms) + 1j * draw(ohms)
     auxiliary = draw(ohms) + 1j * draw(st.floats(-200.0, 40.0))
     rotor = Rotor(
@@ -37,7 +37,8 @@ def motors(draw, shunt=0.0):
         turns_ratio=column(draw(st.floats(0.5, 2.0))),
         main_volt=np.array([230.0 + 0j]),
         auxiliary_volt=np.array([230.0 + 0j]),
-        shunt_siemens=np.array([shunt + 0j]),
+        turn_share=column(0.0),
+        loop_siemens=np.array([0j]),
     )
     return fed, rotor
 
@@ -76,11 +77,35 @@ def test_one_winding_alone_gives_no_starting_torque(machine):
 @given(motors(), slips, st.floats(1e-9, 1e-7))
 def test_hardly_any_shorted_turns_change_hardly_anything(machine, slip, share):
     fed, rotor = machine
-    shorted = Windings(**{**vars(fed), "shunt_siemens": share / fed.main_ohm})
+    shorted = Windings(**{**vars(fed), "turn_share": column(share), "loop_siemens": 1.0 / fed.main_ohm})
     sound = solve_currents(fed, rotor, column(slip))
     faulty = solve_currents(shorted, rotor, column(slip))
     scale = abs(sound.main[0]) + 230.0 / abs(fed.main_ohm[0])
     assert abs(faulty.main[0] - sound.main[0]) < 1e-5 * scale
+
+
+@given(motors(), slips, st.floats(0.01, 0.3))
+def test_power_goes_into_the_shorted_loop_and_nowhere_else(machine, slip, share):
+    fed, rotor = machine
+    whole = complex(fed.main_ohm[0])
+    fed = Windings(
+        **{
+            **vars(fed),
+            "main_ohm": np.array([whole.real * (1 - share) + 1j * whole.imag * (1 - share) ** 2]),
+            "turn_share": column(share),
+            "loop_siemens": np.array([1.0 / whole]),
+        }
+    )
+    found = solve_currents(fed, rotor, column(slip))
+    given_w = 230.0 * (found.main + found.auxiliary).real
+    emf = found.forward_emf + found.backward_emf
+    loop_w = share * square(emf) * fed.loop_siemens.real
+    used_w = loop_w + square(found.main) * fed.main_ohm.real
+    used_w = used_w + square(found.auxiliary) * fed.auxiliary_ohm.real
+    for field, backward in ((found.forward_emf, False), (found.backward_emf, True)):
+        _, siemens = half_field_ohm(rotor, column(slip), backward=backward)
+        used_w = used_w + 2.0 * square(field) * (siemens.real + 1.0 / rotor.core_ohm)
+    np.testing.assert_allclose(given_w, used_w, rtol=1e-8, atol=1e-6)
 
 
 def test_a_missing_capacitor_is_an_open_circuit():

@@ -42,7 +42,7 @@ def test_capacitor_voltage_is_well_above_line_voltage_on_a_sound_run_capacitor(c
 @pytest.mark.parametrize("flag", ["start_open", "switch_open", "auxiliary_open"])
 def test_a_dead_start_circuit_leaves_only_the_main_winding(capacitor_start, flag):
     asks = ["main_current@stalled", "auxiliary_current@stalled", "line_current@stalled"]
-    main, auxiliary, line = one(capacitor_start, asks, **{flag: 1.0, "stands": 1.0})
+    main, auxiliary, line = one(capacitor_start, asks, **{flag: 1.0})
     assert auxiliary < 1e-3
     assert line == pytest.approx(main, rel=1e-6)
     assert 3.0 * START["current"] < main < 9.0 * START["current"]
@@ -63,7 +63,7 @@ def test_a_failed_run_capacitor_measures_nothing(capacitor_run, flag):
 def test_a_shorted_run_capacitor_has_no_volts_and_a_high_auxiliary_current(capacitor_run):
     asks = ["capacitor_voltage@stalled", "auxiliary_current@stalled"]
     _, sound = one(capacitor_run, asks)
-    volt, amps = one(capacitor_run, asks, run_shorted=1.0, stands=1.0)
+    volt, amps = one(capacitor_run, asks, run_shorted=1.0)
     assert volt == 0.0
     assert amps > 3.0 * sound
 

@@ -66,7 +66,8 @@ def test_phasors_are_the_settled_state_of_the_differential_equation(slip):
         turns_ratio=column(RATIO),
         main_volt=np.array([VOLT + 0j]),
         auxiliary_volt=np.array([VOLT + 0j]),
-        shunt_siemens=np.array([0j]),
+        turn_share=column(0.0),
+        loop_siemens=np.array([0j]),
     )
     rotor = Rotor(column(MAGNETISING), column(np.inf), column(ROTOR_OHM), column(ROTOR_X), column(1.0))
     found = solve_currents(fed, rotor, column(slip))
