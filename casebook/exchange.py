@@ -16,13 +16,12 @@ from casebook.book import Casebook
 from casebook.entry import Entry, clean_line, encode_body, id_from_content, make_entry
 from casebook.fold import Case
 from casebook.foreign import Item
-from casebook.history import moment_of_reading
+from casebook.history import inner_unit, moment_of_reading
 from casebook.merge import MergeReport, Progress, is_sheet, merge_file, merge_items
 from casebook.wire import write_lines
 
 # A spreadsheet takes a cell that begins so for a formula (CSV injection; OWASP names these).
 _FORMULA: Final = ("=", "+", "-", "@", "\t", "\r", "\n", "|", "%")
-_EPOCH: Final = datetime(1970, 1, 1, tzinfo=UTC)
 _CSV_HEAD: Final = (
     "case", "tag", "taken_local", "taken_utc", "person", "measure", "state",
     "value_1", "value_2", "value_3", "unit", "number_1", "number_2", "number_3",
@@ -52,18 +51,19 @@ def sheet_for_export(case: Case) -> CaseSheet:
 def merge_sheet(book: Casebook, sheet: CaseSheet, person: str, *, source: str = "case sheet") -> MergeReport:
     """Take in a case sheet as a case whose ids are made from its content: twice changes nothing.
 
-    ``Casebook.log_sheet`` makes a new case each time; this is for sheets that were mailed.
+    ``Casebook.log_sheet`` makes a new case each time; this is for sheets that were mailed. A sheet
+    whose readings do not say when they were taken counts as of now.
     """
     entries = entries_of_sheet(sheet, person, source=source)
     return merge_items(book, (Item(source, entry) for entry in entries), source=source)
 
 
 def entries_of_sheet(sheet: CaseSheet, person: str, *, source: str) -> list[Entry]:
-    """Return the entries of a sheet, with ids and times that depend on its content alone."""
+    """Return the entries of a sheet, with ids that depend on its content alone."""
     content = [encode_body(body) for body in bodies_of_sheet(sheet)]
     case = id_from_content("case", clean_line(person), *content)
     times = [moment for reading in sheet.readings if (moment := moment_of_reading(reading)) is not None]
-    start = min(times, default=_EPOCH)
+    start = min(times, default=datetime.now().astimezone())
     bodies = (*bodies_of_sheet(sheet), Note(text=f"taken in from {clean_line(source)[:80]}"))
     entries: list[Entry] = []
     for place, body in enumerate(bodies):
@@ -112,12 +112,12 @@ def _csv_row(case: Case, reading: Reading, entry: Entry) -> list[str]:
         case.number,
         case.tag,
         moment.isoformat(timespec="seconds"),
-        moment.astimezone(_EPOCH.tzinfo).isoformat(timespec="seconds"),
+        moment.astimezone(UTC).isoformat(timespec="seconds"),
         entry.person,
         reading.measure,
         reading.state,
         *_three(texts),
-        reading.values[0].unit if reading.values else "",
+        inner_unit(reading.measure),
         *_three(numbers),
         *(_text(value) for value in (reading.temperature, reading.test_voltage, reading.speed)),
         *(

@@ -13,6 +13,7 @@ from typing import Final
 import msgspec
 
 from calc.errors import RangeError
+from calc.quantities import INNER_UNIT, MEASURES
 from calc.sheet import Reading
 from calc.temperature import insulation_at_40_c, insulation_system, winding_resistance_at
 from casebook.fold import Case, Logged
@@ -125,9 +126,15 @@ def machine_history(tag: str, cases: Iterable[Case]) -> MachineHistory:
     return MachineHistory(
         tag=tag,
         cases=tuple(case.id for case in held),
-        series=tuple(_series(key, points, held) for key, points in sorted(grouped.items())),
+        series=tuple(_series(key, points) for key, points in sorted(grouped.items())),
         winding_new_utc=new_since,
     )
+
+
+def inner_unit(measure: str) -> str:
+    """Return the unit of a measure's numbers; nothing for a ratio, or a measure that is not known here."""
+    known = MEASURES.get(measure)
+    return INNER_UNIT[known.dimension] if known is not None else ""
 
 
 def winding_new(cases: Iterable[Case]) -> datetime | None:
@@ -186,21 +193,13 @@ def _at_anchor(
     return known if len(known) == len(numbers) else None
 
 
-def _series(key: tuple[str, str, str], points: list[Point], cases: Iterable[Case]) -> Series:
+def _series(key: tuple[str, str, str], points: list[Point]) -> Series:
     measure, state, place = key
-    units = (
-        value.unit
-        for case in cases
-        for logged in case.taken
-        if logged.what.measure == measure
-        for value in logged.what.values
-        if value.unit
-    )
     return Series(
         measure=measure,
         state=state,
         place=place,
-        unit=next(units, ""),
+        unit=inner_unit(measure),
         anchor_c=ANCHORS_C.get(measure),
         points=tuple(sorted(points, key=lambda point: point.time_utc)),
     )

@@ -1,5 +1,6 @@
 """A casebook in a throw-away folder, and a case sheet of the invented plant."""
 
+import math
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -15,13 +16,14 @@ def value(text: str, number: float, unit: str, **more: object) -> Value:
 
 def a_sheet(tag: str = "P-104", **changes: object) -> CaseSheet:
     plate = Nameplate(
-        power=value("7.5 kW", 7500.0, "W", resolution=100.0),
+        power=value("7.5 kW", 7500.0, "kW", resolution=100.0),
         voltage=value("400 V", 400.0, "V", resolution=1.0),
         current=value("14.9 A", 14.9, "A", resolution=0.1),
         insulation_class="F",
     )
     amps = tuple(value(f"{amp} A", amp, "A", resolution=0.1) for amp in (15.2, 15.9, 14.8))
-    ohms = (value("open", float("inf"), "ohm", kind="open"), value("1.9 ohm", 1.9, "ohm"), amps[0])
+    ohm = value("1.9 ohm", 1.9, "ohm", resolution=0.1)
+    ohms = (value("open", math.inf, "ohm", kind="open"), ohm, ohm)
     fields: dict[str, object] = {
         "machine": Machine(kind="induction_3ph", tag=tag, nameplate=plate, starter="direct", mount="rigid"),
         "complaint": "trips_under_load",
