@@ -85,6 +85,7 @@ def diagnose(
             knowledge,
             states=tuple(dict.fromkeys(i.state for i in items[:3] if i.state)),
             faults=tuple(leading),
+            measures=tuple(dict.fromkeys(i.measure for i in items[:3] if i.measure)),
         ),
         slips=slips(posterior),
         notes=_notes(posterior),

@@ -29,6 +29,9 @@ _SIGMAS = 1.645  # of a normal, for 90 %
 _TRUST_BELOW = 0.08  # odds of a sound circuit under which the machine's own readings are not used
 _SUPPLY = ("supply_voltage", "supply_frequency", "ambient_temperature", "armature_voltage", "field_voltage")
 
+# What these read depends on the plant, not on the machine: a band would say nothing.
+_NO_BAND = frozenset({"control_voltage", "brake_voltage", "dc_bus_voltage"})
+
 # Conditions for which an unread reading is expected.
 _REFERENCE_C = 20.0
 STATES_SHOWN = ("isolated", "starting", "no_load", "loaded", "spun")
@@ -154,7 +157,12 @@ def _spread_bands(
     found = []
     for rule in knowledge.readings.values():
         measure = MEASURES.get(rule.id)
-        if measure is None or not measure.suits(kind) or not ("any" in rule.kinds or kind in rule.kinds):
+        if (
+            rule.id in _NO_BAND
+            or measure is None
+            or not measure.suits(kind)
+            or not ("any" in rule.kinds or kind in rule.kinds)
+        ):
             continue
         for state in rule.states:
             spread = spread_of(healthy, None, rule.id, state)

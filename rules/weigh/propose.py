@@ -59,6 +59,8 @@ class Candidate:
     state: str = ""
     look: Outlook | None = None
     known: Observation | None = None
+    behind_gate: bool = False
+    """The gate keeps its state shut; it is not proposed, but tells what the gate's lines are worth."""
 
 
 def propose(
@@ -71,10 +73,64 @@ def propose(
         *_readings(posterior, knowledge, gate, lead, s),
         *_observations(posterior, knowledge, gate, lead, s),
     ]
-    worth = [c for c in found if c.gain >= s.least_bits * math.log(2.0)]
-    worth.sort(key=lambda c: (-c.score, c.key))
+    worth = sorted(
+        (c for c in found if c.gain >= s.least_bits * math.log(2.0)), key=lambda c: (-c.score, c.key)
+    )
+    open_items = [c for c in worth if not c.behind_gate]
     why = wording.why(posterior, lead.faults, lead.share, lead.label)
-    return tuple(_item(c, posterior, knowledge, lead, why) for c in worth[:limit])
+    items = [_item(c, posterior, knowledge, lead, why) for c in open_items[:limit]]
+    return tuple(_with_gate(items, worth, posterior, knowledge, gate)[:limit])
+
+
+def _with_gate(
+    items: list[NextItem],
+    worth: Sequence[Candidate],
+    posterior: Posterior,
+    knowledge: Knowledge,
+    gate: GateState,
+) -> list[NextItem]:
+    """Add what the gate still needs, where a reading behind it is worth taking; first, if it is worth much more."""
+    behind = next((c for c in worth if c.behind_gate), None)
+    if behind is None:
+        return items
+    have = {item.key for item in items}
+    needed = [i for i in gate_items(posterior.sheet, knowledge, gate, behind.state) if i.key not in have]
+    best = next((c.score for c in worth if not c.behind_gate), 0.0)
+    return needed + items if behind.score > 2.0 * best else items + needed
+
+
+def gate_items(sheet: CaseSheet, knowledge: Knowledge, gate: GateState, state: str) -> list[NextItem]:
+    """What would clear the lines that keep a state shut: for each line the first that can be had."""
+    taken = {r.key for r in sheet.readings} | set(sheet.observations)
+    found: dict[str, NextItem] = {}
+    for line in gate.lines_for(state):
+        for ask in line.asks:
+            item = _gate_item(ask, line.needs, sheet, knowledge)
+            if ask not in taken and item is not None and not gate.forbids(item.state or "isolated"):
+                found.setdefault(ask, item)
+                break
+    return list(found.values())
+
+
+def _gate_item(ask: str, needs: str, sheet: CaseSheet, knowledge: Knowledge) -> NextItem | None:
+    why = f"needed before energising: {needs}"
+    known = knowledge.observations.get(ask)
+    if known is not None:
+        return NextItem(
+            observation=ask,
+            minutes=known.minutes,
+            leads=known.how or known.name,
+            hazards=known.hazards,
+            why=why,
+        )
+    measure, _, state = ask.partition("@")
+    rule = knowledge.readings.get(measure)
+    if rule is None or state not in rule.states or not _suits(rule, sheet, sheet.machine.kind):
+        return None
+    how = rule.states[state]
+    return NextItem(
+        measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards, why=why
+    )
 
 
 def _item(
@@ -150,7 +206,7 @@ def _readings(
         for state, how in rule.states.items():
             key = f"{rule.id}@{state}"
             chance = state_chance(sheet, state, chances, s)
-            if key in taken or not how.proposed or gate.forbids(state) or chance < s.least_chance:
+            if key in taken or not how.proposed or chance < s.least_chance:
                 continue
             candidates.append((rule, state, chance))
     asks = [_context(sheet, Ask(rule.id, state)) for rule, state, _ in candidates]
@@ -173,6 +229,7 @@ def _readings(
                 rule=rule,
                 state=state,
                 look=looks.get(ask.key),
+                behind_gate=gate.forbids(state),
             )
         )
     return found
