@@ -6,6 +6,8 @@ import os
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from calc.errors import PlatesideError
+
 if TYPE_CHECKING:
     from argparse import Namespace
 
@@ -20,6 +22,16 @@ def casebook_path(arguments: Namespace) -> Path:
     import platformdirs
 
     return Path(platformdirs.user_data_dir("plateside", appauthor=False)) / "casebook.db"
+
+
+def existing_casebook(arguments: Namespace) -> Path:
+    """Return the casebook for a command that only reads; it must be there, and is never made by looking."""
+    path = casebook_path(arguments)
+    if not path.exists():
+        raise PlatesideError(
+            f"there is no casebook {path} yet; `plateside log SHEET` or `plateside` starts one"
+        )
+    return path
 
 
 def rule_folders(arguments: Namespace) -> tuple[Path, ...]:

@@ -74,8 +74,9 @@ def test_cases_as_json_is_one_object_per_line_newest_first(run, sheet):
     assert [row["tag"] for row in rows] == ["MX-12 brine mixer", "WP-104 wash water"]
 
 
-def test_cases_without_a_casebook_says_so_and_makes_none(run, casebook):
-    done = run("cases")
+@pytest.mark.parametrize("argv", [["cases"], ["report", "C-7K3F9Q"], ["export"], ["copy", "copy.db"]])
+def test_a_command_that_only_reads_says_where_no_casebook_is_and_makes_none(run, casebook, argv):
+    done = run(*argv)
     assert (done.status, done.out) == (1, "")
     assert "no casebook" in done.err
     assert not casebook.exists()

@@ -24,11 +24,7 @@ ROOM = (9, 10, 18, 16, 19)  # eighty columns with the gaps between
 
 def run(arguments: Namespace) -> int:
     """Print the cases that hold every word, newest first."""
-    path = places.casebook_path(arguments)
-    if not path.exists():
-        warn(f"there is no casebook {path} yet; `plateside log SHEET` or `plateside` starts one")
-        return cli.FAILED
-    with open_casebook(path) as book:
+    with open_casebook(places.existing_casebook(arguments)) as book:
         rows = book.search(" ".join(arguments.words), limit=max(1, arguments.limit))
         for row in rows if arguments.json else ():
             say_json(msgspec.to_builtins(row))

@@ -19,7 +19,7 @@ def run(arguments: Namespace) -> int:
     target = Path(arguments.file).expanduser()
     if target.exists():
         raise PlatesideError(f"{target} exists already; name a new file")
-    with open_casebook(places.casebook_path(arguments)) as book:
+    with open_casebook(places.existing_casebook(arguments)) as book:
         book.safe_copy(target)
     say(f"{target}")
     return cli.DONE

@@ -5,7 +5,6 @@ from __future__ import annotations
 import sys
 from typing import TYPE_CHECKING
 
-from calc.errors import PlatesideError
 from calc.sheet_io import sheet_to_yaml
 from casebook.book import Casebook, open_casebook
 from casebook.exchange import export_csv, export_lines, sheet_for_export
@@ -23,10 +22,7 @@ PAGE = 500
 
 def run(arguments: Namespace) -> int:
     """Write the named cases, or all, to standard output."""
-    path = places.casebook_path(arguments)
-    if not path.exists():
-        raise PlatesideError(f"there is no casebook {path}")
-    with open_casebook(path) as book:
+    with open_casebook(places.existing_casebook(arguments)) as book:
         if arguments.json_lines:
             export_lines(book, sys.stdout.buffer, arguments.cases or None)
         elif arguments.csv:

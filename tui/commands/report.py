@@ -16,7 +16,7 @@ if TYPE_CHECKING:
 def run(arguments: Namespace) -> int:
     """Print the sheet of one case as text or as HTML."""
     knowledge = places.knowledge(arguments)
-    with open_casebook(places.casebook_path(arguments)) as book:
+    with open_casebook(places.existing_casebook(arguments)) as book:
         case = book.case(arguments.case)
         cases = book.machine_cases(case.tag) if case.tag else ()
     diagnosis = weigh(case.sheet, knowledge, name=case.number)
