@@ -12,11 +12,11 @@ from pathlib import Path
 
 import msgspec
 
-from calc.sheet import CaseSheet
+from calc.sheet import CaseSheet, Machine
 from casebook.bodies import Body, Correction, bodies_of_sheet
 from casebook.entry import Entry, clean_line, encode_body, make_entry, new_id
 from casebook.errors import AmbiguousCase, BadEntry, UnknownCase
-from casebook.fold import Case, fold_case
+from casebook.fold import Case, fold_case, fold_machine
 from casebook.history import MachineHistory, machine_history
 from casebook.learned import LearnedCounts, Score, learned_counts, scoreboard
 from casebook.numbers import SHOWN, full_number, read_number, shown_number
@@ -107,6 +107,10 @@ class Casebook:
     def machine_cases(self, tag: str) -> tuple[Case, ...]:
         """Return a machine's cases, folded, oldest activity first."""
         return tuple(fold_case(self.store.case_entries(case)) for case in self.store.machine_cases(tag))
+
+    def machine(self, tag: str) -> Machine | None:
+        """Return what the casebook knows of a machine, its last plate above all; None if it knows nothing."""
+        return fold_machine(self.machine_cases(tag))
 
     def history(self, tag: str) -> MachineHistory:
         """Return one machine's readings over time."""

@@ -11,7 +11,7 @@ from typing import Any, Generic, Literal, TypeVar
 
 import msgspec
 
-from calc.sheet import CaseSheet, Machine, Reading
+from calc.sheet import CaseSheet, Machine, Nameplate, Reading, Supply
 from casebook import bodies as b
 from casebook.entry import Entry, canonical_json, decode_body
 from casebook.numbers import full_number, shown_number
@@ -133,6 +133,17 @@ def fold_case(entries: Iterable[Entry]) -> Case:
     for name in ("readings", "isolation", "hazards", "skipped", "repairs", "notes"):
         fields[name] = tuple(fields.get(name, ()))
     return Case(id=lines[0].entry.case, lines=tuple(lines), **fields)
+
+
+def fold_machine(cases: Iterable[Case]) -> Machine | None:
+    """Return what is known of one machine: its cases folded, what was said last holds; None without cases."""
+    fields: dict[str, Any] = {}
+    for case in sorted(cases, key=lambda case: (case.last_utc, case.id)):
+        said = case.machine
+        changes = {name: getattr(said, name) for name in said.__struct_fields__}
+        unsaid = {"nameplate": Nameplate(), "supply": Supply()}
+        _change(fields, {name: value for name, value in changes.items() if value != unsaid.get(name)})
+    return fields.get("machine")
 
 
 def effective_lines(entries: Iterable[Entry]) -> list[Line]:

@@ -23,7 +23,7 @@ from casebook.entry import Entry, canonical_json
 from casebook.errors import BadEntry, CasebookError, NewerCasebook, NotACasebook
 from casebook.opening import translated
 from casebook.rows import entry_of_row, moment_of, stamp
-from casebook.walk import Gap, walk
+from casebook.walk import UNREADABLE, Gap, walk
 from casebook.wire import entry_of_line, read_lines
 
 _MAGIC: Final = b"SQLite format 3\0"
@@ -63,7 +63,7 @@ def count_items(path: Path) -> int:
 def _count(connection: sqlite3.Connection) -> int:
     try:
         return int(connection.execute("SELECT count(*) FROM entry").fetchone()[0])
-    except sqlite3.DatabaseError:
+    except UNREADABLE:
         return 0  # damaged: what can be read is read, without a bar
 
 

@@ -41,6 +41,15 @@ class Opened(NamedTuple):
 
 def connect(path: Path, *, group: bool, read_only: bool, timeout_s: float) -> Opened:
     """Open or start a casebook. Raises ``CasebookError`` with what to do."""
+    try:
+        return _connect(path, group=group, read_only=read_only, timeout_s=timeout_s)
+    except PermissionError as error:
+        raise NoPermission(f"{path} may not be reached by you") from error
+    except OSError as error:
+        raise CasebookError(f"{path} cannot be used: {error.strerror}") from error
+
+
+def _connect(path: Path, *, group: bool, read_only: bool, timeout_s: float) -> Opened:
     if read_only or (path.exists() and not place.is_writable(path)):
         return _open_to_read(path, asked=read_only)
     place.prepare(path, group=group)
@@ -234,6 +243,8 @@ def translated(path: Path) -> Iterator[None]:
         yield
     except sqlite3.Error as error:
         raise _in_words(error, path) from error
+    except UnicodeDecodeError as error:
+        raise DamagedCasebook(f"{path} is damaged (text in it is no text)") from error
 
 
 def _in_words(error: sqlite3.Error, path: Path) -> CasebookError:

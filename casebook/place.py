@@ -68,6 +68,7 @@ def prepare(path: Path, *, group: bool) -> None:
         descriptor = os.open(path, os.O_CREAT | os.O_EXCL | os.O_RDWR, with_mode)
         os.fchmod(descriptor, with_mode)  # whatever the umask says; -wal and -shm take the same
         os.close(descriptor)
+        _sync_folder(path.parent)
     except FileExistsError:
         return  # another process was faster
     except PermissionError as error:
@@ -76,10 +77,25 @@ def prepare(path: Path, *, group: bool) -> None:
         raise CasebookError(f"{path} cannot be made: {error.strerror}") from error
 
 
+def _sync_folder(folder: Path) -> None:
+    """Have the new file's name on the disk too, where the system can do that."""
+    if not hasattr(os, "O_DIRECTORY"):
+        return
+    descriptor = os.open(folder, os.O_RDONLY | os.O_DIRECTORY)
+    try:
+        os.fsync(descriptor)
+    except OSError:
+        pass  # some network file systems sync names by themselves and refuse to be asked
+    finally:
+        os.close(descriptor)
+
+
 def make_folder(folder: Path, *, group: bool) -> None:
     """Make a folder for its owner only, or one whose files belong to its group (setgid)."""
     if folder.is_dir():
         return
+    if folder.exists():
+        raise NotACasebook(f"{folder} is a file; a casebook in it cannot be")
     folder.mkdir(parents=True, exist_ok=True)
     folder.chmod(0o2770 if group else 0o700)
 

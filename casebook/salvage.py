@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import sqlite3
 from contextlib import closing
 from pathlib import Path
 
@@ -12,6 +11,7 @@ from casebook.book import open_casebook
 from casebook.errors import CasebookError
 from casebook.foreign import open_foreign, read_items
 from casebook.merge import MergeReport, merge_items
+from casebook.walk import UNREADABLE
 
 
 class Damage(msgspec.Struct, frozen=True, kw_only=True):
@@ -47,7 +47,7 @@ def _integrity(path: Path) -> list[str]:
     try:
         with closing(open_foreign(path)) as connection:
             rows = connection.execute("PRAGMA integrity_check(20)").fetchall()
-    except (sqlite3.Error, CasebookError) as error:
+    except (*UNREADABLE, CasebookError) as error:
         return [str(error)]
     return [str(row[0]) for row in rows if row[0] != "ok"]
 

@@ -11,6 +11,9 @@ _ABOVE: Final = f"SELECT {_COLUMNS} FROM entry WHERE seq > ? ORDER BY seq"
 _ONE: Final = f"SELECT {_COLUMNS} FROM entry WHERE seq = ?"
 _LONGEST_GAP: Final = 200_000
 
+UNREADABLE: Final = (sqlite3.DatabaseError, UnicodeDecodeError)
+"""What comes of a damaged page: SQLite's error, or an error whose own text is damaged."""
+
 Row = tuple[Any, ...]
 
 
@@ -46,7 +49,7 @@ def walk(connection: sqlite3.Connection) -> Iterator[Row | Gap]:
                 yield row
             else:
                 return
-        except sqlite3.DatabaseError as error:
+        except UNREADABLE as error:
             why = str(error)
         # The row before the bad one may have been lost with it: go on by single numbers.
         row_after = _next_readable(connection, last)
@@ -66,7 +69,7 @@ def _next_readable(connection: sqlite3.Connection, last: int) -> Row | None:
             return None
         try:
             row = connection.execute(_ONE, (seq,)).fetchone()
-        except sqlite3.DatabaseError:
+        except UNREADABLE:
             continue
         if row is not None and row[-1] == seq:
             return tuple(row)
@@ -78,7 +81,7 @@ def _highest(connection: sqlite3.Connection) -> int | None:
     for ask in ("SELECT max(seq) FROM entry", "SELECT max(rowid) FROM entry INDEXED BY entry_by_case"):
         try:
             found = connection.execute(ask).fetchone()[0]
-        except sqlite3.DatabaseError:
+        except UNREADABLE:
             continue
         return int(found or 0)
     return None

@@ -1,6 +1,7 @@
 """A casebook in a throw-away folder, and a case sheet of the invented plant."""
 
 import math
+import stat
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -12,6 +13,10 @@ from casebook.book import Casebook, open_casebook
 
 def value(text: str, number: float, unit: str, **more: object) -> Value:
     return Value(text=text, number=number, unit=unit, **more)
+
+
+def mode(path: Path) -> int:
+    return stat.S_IMODE(path.stat().st_mode)
 
 
 def a_sheet(tag: str = "P-104", **changes: object) -> CaseSheet:

@@ -1,14 +1,18 @@
 """What a person does with a casebook: log, look up, list, search, correct."""
 
 import time
+from datetime import UTC, datetime, timedelta
 
 import pytest
 
+from calc.sheet import Machine
 from casebook import bodies as b
 from casebook.book import Casebook
 from casebook.errors import BadEntry, UnknownCase
+from rules.answer import Band, Diagnosis, Energise, FaultOdds, Finding
 
 from .conftest import a_sheet
+from .makers import START
 
 
 def test_a_logged_sheet_folds_to_the_same_sheet(book: Casebook):
@@ -114,6 +118,50 @@ def test_a_screen_learns_which_cases_changed(book: Casebook):
     assert news.cases == (second,)
     assert first in book.changed_since(0).cases
     assert book.changed_since(news.token).cases == ()
+
+
+def test_what_is_known_of_a_machine_is_what_was_said_last(book: Casebook):
+    assert book.machine("P-104") is None
+    plate = a_sheet().machine.nameplate
+    book.log_sheet(a_sheet(), "Ada", at=START)
+    bare = Machine(kind="induction_3ph", tag="p-104", starter="star_delta")
+    book.log_sheet(a_sheet(machine=bare), "Bo", at=START + timedelta(days=1))
+    assert book.machine("P-104") == Machine(
+        kind="induction_3ph", tag="p-104", nameplate=plate, starter="star_delta", mount="rigid"
+    )
+
+
+def test_a_case_from_a_clock_in_the_future_does_not_lead_the_list_for_ever(book: Casebook):
+    future = book.log_sheet(a_sheet("F-1"), "Ada", at=datetime.now(UTC) + timedelta(days=3650))
+    today = book.log_sheet(a_sheet(), "Ada")
+    assert [row.id for row in book.cases()] == [today, future]
+
+
+def test_what_the_engine_said_is_kept_as_it_was(book: Casebook):
+    said = Diagnosis(
+        expected=(Band(measure="speed", state="loaded", low=1440.0, mid=1455.0, high=1470.0, unit="rpm"),),
+        faults=(
+            FaultOdds(
+                id="ground_fault",
+                probability=0.7,
+                within=(FaultOdds(id="winding_ground_fault", probability=0.6),),
+            ),
+            FaultOdds(id="other", probability=0.3),
+        ),
+        findings=(Finding(id="insulation_below_minimum", verdict="stop", says="0.4 Mohm", source="IEEE 43"),),
+        energise=Energise(gate="shut", needs=("insulation_resistance",), because=("0.4 Mohm",)),
+    )
+    case = book.log_sheet(a_sheet(), "Ada")
+    book.record(case, b.Shown.of(said, program="0.1.0"), person="Ada")
+    told = book.case(case).shown
+    assert told is not None
+    assert told.what.expected[0].high == 1470.0
+    assert told.what.faults[0].within[0].id == "winding_ground_fault"
+    assert told.what.findings[0].source == "IEEE 43"
+    assert told.what.energise == b.ShownGate(
+        gate="shut", needs=("insulation_resistance",), because=("0.4 Mohm",)
+    )
+    assert book.cases()[0].suspect == "ground_fault"
 
 
 def test_machines_are_offered_by_the_beginning_of_their_tag(book: Casebook):

@@ -100,6 +100,14 @@ def test_a_reading_beyond_the_meter_is_no_point_of_a_trend(book: Casebook):
     assert trend_of(series, now=NOW).readings == 0
 
 
+def test_a_slow_rise_of_resistance_is_said_in_per_cent(book: Casebook):
+    for months in range(0, 49, 8):
+        log(book, months, winding(2.0 * 1.04 ** (-months / 12), 25.0))
+    (series,) = book.history("P-104").of("winding_resistance")
+    words = trend_of(series, now=NOW).words
+    assert words.startswith("winding resistance rises by 4.0 % a year (")
+
+
 def test_a_limit_that_is_passed_is_said(book: Casebook):
     for months in range(0, 37, 6):
         log(book, months, insulation(1e6 * 2 ** (months / 9)))
