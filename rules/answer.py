@@ -1,4 +1,4 @@
-"""The answer for one case sheet, as types. ``tui`` shows it; ``as_json`` is the contract of case-sheet format 1."""
+"""The answer for one case sheet, as types; ``tui.jsonout`` writes it as the contract has it."""
 
 from __future__ import annotations
 
@@ -94,7 +94,7 @@ class GateLine(msgspec.Struct, frozen=True, kw_only=True):
 
 
 class Energise(msgspec.Struct, frozen=True, kw_only=True):
-    """The gate. It starts shut; it never says that energising is allowed, only that nothing recorded forbids it."""
+    """The gate. It starts shut, and says at most that nothing recorded forbids energising."""
 
     gate: Literal["shut", "no_finding_forbids"]
     needs: tuple[str, ...] = ()
@@ -133,6 +133,8 @@ class Diagnosis(msgspec.Struct, frozen=True, kw_only=True):
     energise: Energise = Energise(gate="shut")
     cautions: tuple[str, ...] = ()
     slips: tuple[Slip, ...] = ()
+    decision: str = ""
+    """What the odds ask to be done, in words; no permission."""
     turns: tuple[Turn, ...] = ()
     plate_remarks: tuple[str, ...] = ()
     notes: tuple[str, ...] = ()

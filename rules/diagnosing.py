@@ -10,7 +10,7 @@ import msgspec
 from calc.kinds import twin_of
 from calc.quantities import KINDS
 from calc.sheet import CaseSheet
-from rules.answer import Band, Diagnosis, FaultOdds
+from rules.answer import Band, Diagnosis, FaultOdds, Turn
 from rules.cautions import cautions_for
 from rules.findings import findings
 from rules.gate import gate
@@ -23,6 +23,7 @@ from rules.weigh.propose import propose
 from rules.weigh.reasons import reasons, rival
 from rules.weigh.settings import weighing
 from rules.weigh.slips import slips
+from rules.weigh.turning import decision_of, turns
 
 SHOWN_REASONS = 6  # faults that get their reasons written out
 NO_MODEL = "none"
@@ -88,8 +89,24 @@ def diagnose(
             measures=tuple(dict.fromkeys(i.measure for i in items[:3] if i.measure)),
         ),
         slips=slips(posterior),
+        decision=decision_of(posterior),
         notes=_notes(posterior),
     )
+
+
+def what_would_turn(
+    sheet: CaseSheet, *, knowledge: Knowledge, odds: Mapping[str, float] | None = None
+) -> tuple[Turn, ...]:
+    """Return the readings, with their values, that would turn the decision; empty without a model.
+
+    Each is proved by weighing the sheet with it, so this takes some tenths of a second.
+    """
+    twin = twin_of(sheet.machine)
+    if twin is None or not faults_of(knowledge, sheet.machine.kind):
+        return ()
+    posterior = weigh(sheet, knowledge, twin, odds)
+    items = propose(posterior, knowledge, gate(sheet, knowledge, suspects=posterior.odds))
+    return turns(posterior, knowledge, items, odds)
 
 
 def expect(sheet: CaseSheet, *, knowledge: Knowledge, name: str = "") -> Diagnosis:

@@ -24,6 +24,7 @@ class Outlook:
     slope: Floats
     error: Floats
     transform: Transform
+    blank: Seen
 
 
 def own_error(
@@ -72,9 +73,7 @@ def outlooks(
         meter = meters.get(one.ask.measure, InstrumentError(share=0.03))
         typical = untransform(y[:1, group.start], one.transform)[0]
         error = own_error(twin.model_error(one.ask), one.transform, meter, typical, len(one.y))
-        found.append(
-            Outlook(ask=one.ask, mean=y[:, group], slope=dy[:, group], error=error, transform=one.transform)
-        )
+        found.append(Outlook(one.ask, y[:, group], dy[:, group], error, one.transform, one))
     return found
 
 

@@ -30,9 +30,11 @@ from rules.weigh.instruments import instrument_errors
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
+from rules.weigh.sight import smallest_seen
 from rules.weigh.soft import answer_chance, shape, spread_of
 
 _KIT_ALWAYS = frozenset({"eyes"})
+SEEN_FOR = 3  # proposals that say what the meter can show
 
 
 @dataclass(frozen=True)
@@ -78,7 +80,10 @@ def propose(
     )
     open_items = [c for c in worth if not c.behind_gate]
     why = wording.why(posterior, lead.faults, lead.share, lead.label)
-    items = [_item(c, posterior, knowledge, lead, why) for c in open_items[:limit]]
+    items = [
+        _item(c, posterior, knowledge, lead, why, sees=place < SEEN_FOR)
+        for place, c in enumerate(open_items[:limit])
+    ]
     return tuple(_with_gate(items, worth, posterior, knowledge, gate)[:limit])
 
 
@@ -89,7 +94,7 @@ def _with_gate(
     knowledge: Knowledge,
     gate: GateState,
 ) -> list[NextItem]:
-    """Add what the gate still needs, where a reading behind it is worth taking; first, if it is worth much more."""
+    """Add what the gate still needs where a reading behind it is worth taking; first, if worth much more."""
     behind = next((c for c in worth if c.behind_gate), None)
     if behind is None:
         return items
@@ -134,7 +139,7 @@ def _gate_item(ask: str, needs: str, sheet: CaseSheet, knowledge: Knowledge) -> 
 
 
 def _item(
-    candidate: Candidate, posterior: Posterior, knowledge: Knowledge, lead: Leading, why: str
+    candidate: Candidate, posterior: Posterior, knowledge: Knowledge, lead: Leading, why: str, *, sees: bool
 ) -> NextItem:
     bits = round(candidate.gain / math.log(2.0), 4)
     if candidate.known is not None:
@@ -160,6 +165,7 @@ def _item(
         hazards=how.hazards,
         why=why,
         expect=wording.expect(candidate.look, lead, posterior, knowledge, measure, state),
+        sees=smallest_seen(posterior, candidate.look, lead.hypotheses) if sees and candidate.look else "",
     )
 
 

@@ -26,6 +26,7 @@ class ProposalSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown
     least_bits: float
     least_chance: float
     part_weight: float
+    visible_sigmas: float
     access: dict[str, float]
     arrange_minutes: dict[str, float]
 
@@ -62,6 +63,7 @@ class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=
     proposal: ProposalSettings
     slip: SlipSettings
     pairs: PairSettings
+    decisions: dict[str, str]
 
 
 @cache

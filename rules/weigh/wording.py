@@ -41,7 +41,7 @@ def figure(number: float) -> str:
     """Three significant digits, without a power of ten."""
     if not math.isfinite(number):
         return "open"
-    if number == 0.0:
+    if abs(number) < 1e-6:
         return "0"
     digits = max(0, 2 - math.floor(math.log10(abs(number))))
     return f"{number:.{min(digits, 6)}f}"
