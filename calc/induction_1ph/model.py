@@ -112,7 +112,7 @@ class SinglePhaseTwin:
     def possible(self, z: Floats, attributes: Attributes) -> Mapping[str, Floats]:
         """For each state, the chance that such a motor can be in it: shape (rows,), 0.0 to 1.0."""
         site = self.site(z, attributes)
-        pulled_out = turning(site, attributes, "loaded").running.stalled
+        pulled_out = ~turning(site, attributes, "loaded").running.carries
         found = found_in(attributes, site.has_switch)
         always = np.ones(len(z))
         return {

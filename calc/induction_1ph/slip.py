@@ -11,20 +11,26 @@ from calc.induction_1ph.machine import Connected, Motor, Setting, connect, run_a
 from calc.twin import Flags, Floats
 
 # Slips looked at first, in multiples of the rated slip: the torque is nearly straight below the third.
-_STEPS = np.array([0.15, 0.75, 1.6, 3.3, 7.0])
+_STEPS = np.array([0.15, 0.75, 1.6, 3.0, 4.8, 7.5])
+_BEYOND = 5.0  # how fast the slip goes up past the pull-out point
 _LARGEST = 0.6
+_STANDSTILL = 0.85
 _SMALLEST = 2e-5
 _REFINEMENTS = 2
 
 
 @dataclass(frozen=True)
 class Running:
-    """A motor in one state, each of shape (rows,). A stalled one has slip 1."""
+    """A motor in one state, each of shape (rows,).
+
+    ``carries``: the load is not above the pull-out torque. A stalled motor has slip 1.
+    """
 
     slip: Floats
     currents: Currents
     voltage_v: Floats
     stalled: Flags
+    carries: Flags
 
 
 def run_loaded(machine: Motor, setting: Setting, load_w: Floats, standing: Flags) -> Running:
@@ -42,7 +48,9 @@ def run_loaded(machine: Motor, setting: Setting, load_w: Floats, standing: Flags
     Returns
     -------
     Running
-        Rows whose load is above the pull-out torque, or that stand, at slip 1.
+        Rows that stand at slip 1. Rows with a load above the pull-out torque slip past the
+        pull-out point as the load does, up to standstill: they do not last, but somebody
+        may read them.
 
     Notes
     -----
@@ -52,7 +60,6 @@ def run_loaded(machine: Motor, setting: Setting, load_w: Floats, standing: Flags
     """
     connected = connect(machine, setting)
     guess = _cross(machine, connected, load_w)
-    stalled = standing | ~guess.carried
     slip, slope, emf = guess.slip, guess.slope, guess.emf_v
     last_slip, last_gap = slip, np.zeros_like(slip)
     for turn in range(_REFINEMENTS):
@@ -63,9 +70,11 @@ def run_loaded(machine: Motor, setting: Setting, load_w: Floats, standing: Flags
             slope = _secant(slip - last_slip, gap - last_gap, slope)
         last_slip, last_gap = slip, gap
         slip = np.clip(slip - gap / slope, 0.3 * slip, np.minimum(2.0 * slip, 0.95))
+    slip = np.where(guess.carried, slip, guess.past)
+    stalled = standing | (slip > _STANDSTILL)
     slip = np.where(stalled, 1.0, slip)
     currents, voltage = run_at(connected, slip, emf)
-    return Running(slip=slip, currents=currents, voltage_v=voltage, stalled=stalled)
+    return Running(slip, currents, voltage, stalled=stalled, carries=guess.carried & ~standing)
 
 
 def _secant(moved: Floats, gained: Floats, slope: Floats) -> Floats:
@@ -77,12 +86,16 @@ def _secant(moved: Floats, gained: Floats, slope: Floats) -> Floats:
 
 @dataclass(frozen=True)
 class _Crossing:
-    """First guess at the crossing: slip, slope of the torque [W], induced voltage; whether there is one."""
+    """First guess at the crossing: slip, slope of the torque [W], induced voltage; whether there is one.
+
+    ``past`` is the slip beyond the pull-out point where there is none.
+    """
 
     slip: Floats
     slope: Floats
     emf_v: Floats
     carried: Flags
+    past: Floats
 
 
 def _cross(machine: Motor, connected: Connected, load_w: Floats) -> _Crossing:
@@ -110,4 +123,7 @@ def _cross(machine: Motor, connected: Connected, load_w: Floats) -> _Crossing:
     slope = rise + 2.0 * bend * (slip - a)
     least = 0.1 * np.maximum(np.abs(ab), load_w)
     emf = np.abs(currents.forward_emf[rows, index])
-    return _Crossing(slip=slip, slope=np.maximum(slope, least), emf_v=emf, carried=carried)
+    peak = np.argmax(gaps, axis=1)
+    short = -gaps[rows, peak] / np.maximum(load_w, 1e-9)
+    past = np.clip(slips[rows, peak] * (1.0 + _BEYOND * short), 0.0, 1.0)
+    return _Crossing(slip, np.maximum(slope, least), emf, carried, past)

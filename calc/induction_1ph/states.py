@@ -115,7 +115,7 @@ def at_standstill(site: Site, attributes: Attributes) -> Standing:
     slip = np.ones_like(site.load)
     currents, volt = run_at(connect(site.machine, setting), slip, 0.5 * setting.supply_v)
     stalled = np.ones(len(slip), dtype=np.bool_)
-    found = Running(slip=slip, currents=currents, voltage_v=volt, stalled=stalled)
+    found = Running(slip, currents, volt, stalled=stalled, carries=~stalled)
     return _standing(site, attributes, found, seen)
 
 
@@ -192,6 +192,7 @@ def _merge(pick: np.ndarray[tuple[int], np.dtype[np.bool_]], yes: Standing, no: 
             currents=replace(currents, **mixed),
             voltage_v=np.where(pick, yes.running.voltage_v, no.running.voltage_v),
             stalled=no.running.stalled,
+            carries=no.running.carries,
         ),
         line=np.where(pick, yes.line, no.line),
         capacitor_v=np.where(pick, yes.capacitor_v, no.capacitor_v),
