@@ -51,8 +51,8 @@ class Magnet:
 
     def flux(self, current: Floats) -> Floats:
         """Flux over rated flux at an armature current."""
-        main = self._main(current)
-        return np.maximum(main * self.factor * (1.0 - self.reaction * np.minimum(current, 4.0)), 0.003)
+        weakened = self.factor * (1.0 - self.reaction * np.minimum(current, 4.0))
+        return np.maximum(self._main(current) * weakened, 0.003)
 
     def _main(self, current: Floats) -> Floats:
         if self.permanent:
@@ -71,7 +71,7 @@ class Magnet:
         aid = self.series * current
         total = self.shunt + aid
         slope = aid / np.where(np.abs(total) < 1e-3, 1e-3, total) / (1.0 + (self.bend * total) ** 2)
-        return np.clip(slope, -0.6, 1.0)
+        return np.minimum(np.maximum(slope, -0.6), 1.0)
 
 
 @dataclass(frozen=True)
@@ -109,7 +109,8 @@ def operate(
         flux = magnet.flux(current)
         needed = shaft_torque + drag + _losses(rotating, _speed(armature, current, flux))
         step = np.log(needed / (flux * current)) / (1.0 + magnet.growth(current))
-        current = np.clip(current * np.exp(np.clip(step, -1.5, 1.5)), 1e-3, most)
+        grown = current * np.exp(np.minimum(np.maximum(step, -1.5), 1.5))
+        current = np.minimum(np.maximum(grown, 1e-3), most)
     flux = magnet.flux(current)
     speed = _speed(armature, current, flux)
     needed = shaft_torque + drag + _losses(rotating, speed)

@@ -242,7 +242,7 @@ def _field(plate: Plate, draw: _Draw, base: Mapping[str, Floats]) -> dict[str, F
     current = draw.spread("coil", plate.field_current_spread, plate.field_current_a)
     if plate.field_current_spread > 0.1:
         current = current * _size(plate, draw) ** (1.0 + FIELD_POWER[1]) * plate.field_voltage_v / supply
-    free = 0.36 * draw.share("margin", -0.7)
+    free = 0.36 * draw.share("margin", -0.5)
     separate = plate.kind == "dc_separately_excited"
     held = np.clip((free - 0.05) / 0.1, 0.0, 1.0) if separate else np.zeros_like(free)
     held = held * held * (3.0 - 2.0 * held)

@@ -66,6 +66,15 @@ class DcTwin:
         bench = Bench(self.plate, rows(self.plate, z), attributes)
         return [np.asarray(TABLE[ask.measure][1](bench, ask))[:, None] for ask in asks]
 
+    def back_emf(self, z: Floats, attributes: Mapping[str, Floats], *, state: str) -> Floats:
+        """Volts induced in the armature in a state of ``calc.dc.states.STATES``, V, shape (rows,).
+
+        What the terminals show less resistance and brush drop; zero where the shaft stands.
+        """
+        bench = Bench(self.plate, rows(self.plate, z), attributes)
+        now, m = bench.state(state), bench.machine
+        return np.asarray(m.emf * now.flux * now.speed * m.volt)
+
     def plate_misfit(self, z: Floats) -> Floats:
         """Return no residuals: every row of latents is a machine that fits the plate."""
         return np.zeros((len(z), 0))

@@ -32,7 +32,7 @@ _LEVEL: Final = {
     "ripple_voltage": 0.10,
     "ripple_frequency": 0.08,
     "open_circuit_voltage": 0.012,
-    "bar_drop_spread": 0.22,
+    "bar_drop_spread": 0.17,
     "bar_drop_max": 0.04,
     "starting_time": 0.9,
 }

@@ -188,7 +188,7 @@ class Bench:
             volts=pick(self.supply, limited.volts, still.volts),
             current=pick(point.current, limited.current, still.current),
             speed=pick(point.speed, limited.speed, 0.0),
-            flux=point.flux,
+            flux=np.where(held, limited.flux, point.flux),
             field_v=field[1],
             field_a=field[0],
             runs=((point.runs | held) & ~down).astype(np.float64),

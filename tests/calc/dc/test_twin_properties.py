@@ -125,3 +125,19 @@ def test_two_faults_at_once_are_the_union_of_their_attributes(kind, z):
     assert (attributes["volts_below"] > 0.05).all()
     assert (attributes["friction"] > 0.001).all()
     assert all(np.isfinite(a).all() for a in twin.predict(z[:, : twin.dim], attributes, covered(twin)))
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_back_emf_is_terminal_volts_less_resistance_and_brushes(kind):
+    twin = fit(machine(kind))
+    z = np.random.default_rng(8).standard_normal((200, twin.dim))
+    made = rows(twin.plate, z)
+    bench = Bench(twin.plate, made, rows_of(twin, 200))
+    now = bench.state("loaded")
+    runs = now.runs > 0.5
+    rise = 0.25 + 0.5 * np.minimum(made.load, 1.5)
+    left = (now.volts - now.current * bench.resistance(rise) - made.brush) * made.volt
+    np.testing.assert_allclose(
+        twin.back_emf(z, rows_of(twin, 200), state="loaded")[runs], left[runs], rtol=1e-6
+    )
+    assert (twin.back_emf(z, rows_of(twin, 200), state="stalled") == 0.0).all()
