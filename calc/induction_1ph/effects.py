@@ -9,7 +9,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import Final
 
-from calc.induction_1ph.plate import HAS_RUN_CAPACITOR, HAS_START_CAPACITOR, SPLIT_PHASE
+from calc.induction_1ph.designs import HAS_RUN_CAPACITOR, HAS_START_CAPACITOR, SPLIT_PHASE
 from calc.twin import Mode, Severity
 
 # design: index among the designs that the plate allows.

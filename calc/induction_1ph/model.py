@@ -9,9 +9,10 @@ import numpy as np
 from calc.induction_1ph import priors
 from calc.induction_1ph.chances import found_in
 from calc.induction_1ph.circuit import square
+from calc.induction_1ph.designs import HAS_START_CAPACITOR, SPLIT_PHASE
 from calc.induction_1ph.effects import DEFAULTS, VARIANTS, enumerate_modes
 from calc.induction_1ph.machine import connect, run_at
-from calc.induction_1ph.plate import HAS_START_CAPACITOR, SPLIT_PHASE, Plate, read_plate
+from calc.induction_1ph.plate import Plate, read_plate
 from calc.induction_1ph.plate_fit import NDIndex, fit_plate, rated_setting
 from calc.induction_1ph.readings import COVERED, error_of, predict_one, transform_of
 from calc.induction_1ph.states import Attributes, Site, Standing, at_standstill, turning

@@ -6,15 +6,10 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from calc.induction_1ph import stand_in
+from calc.induction_1ph.designs import CAPACITOR_RUN, CAPACITOR_START, CAPACITOR_START_RUN, SPLIT_PHASE
+from calc.induction_1ph.stand_in import positive, ratio
 from calc.sheet import Machine, Nameplate, Reading, Value
-
-SPLIT_PHASE = "split_phase"
-CAPACITOR_START = "capacitor_start"
-CAPACITOR_RUN = "capacitor_run"
-CAPACITOR_START_RUN = "capacitor_start_run"
-DESIGNS = (SPLIT_PHASE, CAPACITOR_START, CAPACITOR_RUN, CAPACITOR_START_RUN)
-HAS_RUN_CAPACITOR = frozenset({CAPACITOR_RUN, CAPACITOR_START_RUN})
-HAS_START_CAPACITOR = frozenset({CAPACITOR_START, CAPACITOR_START_RUN})
 
 # Input volt-amperes per watt of output at rated load and 500 W, its spread in the logarithm, and the
 # exponents with which it goes with output and poles. Common practice; NEC Table 430.248 currents give
@@ -127,30 +122,30 @@ def read_plate(machine: Machine, readings: Sequence[Reading] = ()) -> Plate:
 
     """
     plate = machine.nameplate
-    speed = plate.number("speed") or _running_speed(readings)
+    speed = plate.number("speed") or stand_in.running_speed(readings)
     told = plate.number("voltage") or _nominal(machine.supply.nominal_voltage)
     frequency = plate.number("frequency") or _nominal(machine.supply.nominal_frequency)
-    frequency = frequency or _frequency(speed, told, readings)
-    voltage = told or _voltage_class(plate, frequency, readings)
-    poles = _poles(plate, frequency, speed)
+    frequency = frequency or stand_in.frequency(speed, told, readings)
+    voltage = told or stand_in.voltage_class(plate, frequency, readings)
+    poles = stand_in.poles_of(plate, frequency, speed)
     slip, slip_sigma = _slip(plate.speed, frequency, poles, plate.number("power"))
     current, current_sigma = _current(plate, voltage)
-    power, power_sigma = _power(plate, voltage, current)
+    power, power_sigma = _power(plate, voltage, frequency, current)
     start, start_sigma = _start_capacitor(plate.start_capacitor)
     return Plate(
         voltage_v=voltage,
         frequency_hz=frequency,
         poles=poles,
         power_w=power,
-        power_told=_positive(plate.number("power")) is not None,
+        power_told=positive(plate.number("power")) is not None,
         power_sigma=power_sigma,
         current_a=current,
         current_sigma=current_sigma,
         slip=slip,
         slip_sigma=slip_sigma,
-        power_factor=_share(plate.number("power_factor")),
-        efficiency=_share(plate.number("efficiency")),
-        run_f=_positive(plate.number("run_capacitor")),
+        power_factor=ratio(plate.number("power_factor")),
+        efficiency=ratio(plate.number("efficiency")),
+        run_f=positive(plate.number("run_capacitor")),
         start_f=start,
         start_sigma=start_sigma,
         rise_k=RISE_K.get((plate.insulation_class or "").upper(), _DEFAULT_RISE_K),
@@ -160,68 +155,14 @@ def read_plate(machine: Machine, readings: Sequence[Reading] = ()) -> Plate:
     )
 
 
-def _positive(number: float | None) -> float | None:
-    return number if number is not None and math.isfinite(number) and number > 0.0 else None
-
-
 def _nominal(value: Value | None) -> float | None:
-    return _positive(value.number) if value is not None and value.is_read else None
+    return positive(value.number) if value is not None and value.is_read else None
 
 
 def _site_voltage(machine: Machine, voltage_v: float) -> float:
     """Voltage to expect: the site's nominal one where it is told and belongs to the plate's class."""
     nominal = _nominal(machine.supply.nominal_voltage)
     return nominal if nominal is not None and abs(nominal / voltage_v - 1.0) < 0.12 else voltage_v
-
-
-def _share(number: float | None) -> float | None:
-    """Return a power factor or an efficiency as a ratio, told in per cent or as such."""
-    if number is None or not math.isfinite(number):
-        return None
-    ratio = number / 100.0 if number > 1.5 else number
-    return min(ratio, 0.999) if ratio > 0.05 else None
-
-
-def _frequency(speed_rpm: float | None, voltage_v: float | None, readings: Sequence[Reading]) -> float:
-    """50 or 60 Hz: as read, else by the synchronous speed just above the speed, else by voltage."""
-    read = [r.numbers[0] for r in readings if r.measure == "supply_frequency" and r.values[0].is_read]
-    if read:
-        return 60.0 if read[-1] > 55.0 else 50.0
-    if speed_rpm is not None and speed_rpm > 500.0:
-        slips = {f: min(s for s in _slips(f, speed_rpm) if s > -0.003) for f in (50.0, 60.0)}
-        return min(slips, key=lambda f: slips[f])
-    return 60.0 if voltage_v is not None and voltage_v < 130.0 else 50.0
-
-
-def _slips(frequency_hz: float, speed_rpm: float) -> list[float]:
-    return [1.0 - speed_rpm * poles / (120.0 * frequency_hz) for poles in (2, 4, 6, 8)] + [1.0]
-
-
-def _voltage_class(plate: Nameplate, frequency_hz: float, readings: Sequence[Reading]) -> float:
-    """115 V or 230 V: by what was read at the terminals, else by plate output and current."""
-    read = [r.numbers[0] for r in readings if r.measure == "supply_voltage" and r.values[0].is_read]
-    live = [v for v in read if 50.0 < v < 1000.0]
-    if live:
-        return 115.0 if max(live) < (160.0 if frequency_hz > 55.0 else 125.0) else 230.0
-    power, current = _positive(plate.number("power")), _positive(plate.number("current"))
-    if power is not None and current is not None and frequency_hz > 55.0:
-        return 115.0 if 230.0 * current / power > 4.2 else 230.0
-    return 230.0
-
-
-def _running_speed(readings: Sequence[Reading]) -> float | None:
-    read = [r.numbers[0] for r in readings if r.measure == "speed" and r.values[0].is_read]
-    turning = [v for v in read if v > 300.0]
-    return max(turning) if turning else None
-
-
-def _poles(plate: Nameplate, frequency_hz: float, speed_rpm: float | None) -> int:
-    told = plate.number("poles")
-    if told is not None and told >= 2.0 and math.isfinite(told):
-        return 2 * max(round(told / 2.0), 1)
-    if speed_rpm is None or not 100.0 < speed_rpm < 60.0 * frequency_hz:
-        return 4
-    return 2 * max(math.floor(60.0 * frequency_hz / speed_rpm), 1)
 
 
 def _slip(speed: Value | None, frequency_hz: float, poles: int, power_w: float | None) -> tuple[float, float]:
@@ -242,26 +183,36 @@ def _slip(speed: Value | None, frequency_hz: float, poles: int, power_w: float |
 def _current(plate: Nameplate, voltage_v: float) -> tuple[float | None, float]:
     """Rated current: told, or from output, efficiency and power factor."""
     told = plate.current
-    number = _positive(plate.number("current"))
+    number = positive(plate.number("current"))
     if number is not None and told is not None:
         return number, math.hypot(0.02, told.resolution / math.sqrt(12.0) / number)
     power, pf, efficiency = (
-        _positive(plate.number("power")),
-        _share(plate.number("power_factor")),
-        _share(plate.number("efficiency")),
+        positive(plate.number("power")),
+        ratio(plate.number("power_factor")),
+        ratio(plate.number("efficiency")),
     )
     if power is not None and pf is not None and efficiency is not None:
         return power / (voltage_v * pf * efficiency), 0.04
     return None, 0.0
 
 
-def _power(plate: Nameplate, voltage_v: float, current_a: float | None) -> tuple[float, float]:
-    """Rated output: told, or from current with usual volt-amperes per watt."""
-    told = _positive(plate.number("power"))
+def _power(
+    plate: Nameplate, voltage_v: float, frequency_hz: float, current_a: float | None
+) -> tuple[float, float]:
+    """Rated output: told, or from current with usual volt-amperes per watt, or from the capacitors."""
+    told = positive(plate.number("power"))
     if told is not None:
         return told, 0.0
     if current_a is not None:
         return voltage_v * current_a / _USUAL_VOLT_AMPERES, 0.0
+    per_farad = 2.0 * math.pi * frequency_hz * voltage_v**2
+    for field, var_per_watt, spread in (
+        ("run_capacitor", stand_in.RUN_VAR, 0.3),
+        ("start_capacitor", stand_in.START_VAR, 0.4),
+    ):
+        farad = positive(plate.number(field))
+        if farad is not None:
+            return per_farad * farad / var_per_watt, spread
     return _DEFAULT_POWER_W, 0.9
 
 

@@ -16,8 +16,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from calc.induction_1ph import priors
+from calc.induction_1ph.designs import DESIGNS, HAS_RUN_CAPACITOR
 from calc.induction_1ph.machine import Motor, Setting, capacitor_ohm, connect, motor, run_at
-from calc.induction_1ph.plate import DESIGNS, HAS_RUN_CAPACITOR, Plate
+from calc.induction_1ph.plate import Plate
 from calc.twin import Flags, Floats
 
 NDIndex = NDArray[np.intp]

@@ -7,7 +7,7 @@ textbook machines (Fitzgerald 9.2 and 9.5, Guru 10.3, Hubert 6.1), which lie ins
 
 from __future__ import annotations
 
-from calc.induction_1ph.plate import CAPACITOR_RUN, CAPACITOR_START, CAPACITOR_START_RUN, SPLIT_PHASE
+from calc.induction_1ph.designs import CAPACITOR_RUN, CAPACITOR_START, CAPACITOR_START_RUN, SPLIT_PHASE
 
 # name -> (median, spread) at REFERENCE. magnetising: at rated flux. auxiliary_*: ratio to the main
 # winding's own. friction: of rated output. Main and rotor leakage are taken to be alike.

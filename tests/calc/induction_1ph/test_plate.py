@@ -95,3 +95,24 @@ def test_the_plate_current_tells_split_phase_from_capacitor_run():
     low = fit_plate(read_plate(machine({**SPLIT, "power": 370, "current": 2.4})))
     place = high.known.designs.index("capacitor_run")
     assert high.weights[place] < 0.05 < low.weights[place]
+
+
+@pytest.mark.parametrize(("speed", "frequency"), [(1725, 60.0), (1440, 50.0), (1140, 60.0), (2850, 50.0)])
+def test_the_speed_tells_the_frequency_where_the_plate_does_not(speed, frequency):
+    fields = {"voltage": 230, "speed": speed}
+    assert read_plate(machine(fields)).frequency_hz == frequency
+
+
+def test_output_and_run_capacitor_tell_the_voltage_class():
+    fields = {"power": 186, "frequency": 60, "run_capacitor": 20e-6}
+    assert read_plate(machine(fields)).voltage_v == 115.0
+    assert read_plate(machine({**fields, "run_capacitor": 6e-6})).voltage_v == 230.0
+
+
+def test_a_run_capacitor_alone_tells_the_size():
+    small, large = (
+        read_plate(machine({"voltage": 230, "frequency": 50, "run_capacitor": farad})).power_w
+        for farad in (8e-6, 80e-6)
+    )
+    assert large == pytest.approx(10.0 * small)
+    assert 100.0 < small < 500.0
