@@ -15,7 +15,8 @@ if TYPE_CHECKING:
     from rules.answer import Band, Diagnosis, Energise, FaultOdds, Finding, NextItem
     from rules.knowledge import Knowledge
 
-FAULTS_SHOWN, REASONS_SHOWN, FINDINGS_SHOWN, CAUTIONS_SHOWN, NEEDS_SHOWN = 4, 3, 5, 3, 4
+FAULTS_SHOWN, REASONS_SHOWN, FINDINGS_SHOWN, CAUTIONS_SHOWN = 4, 3, 3, 2
+FORBIDS_SHOWN, GATE_SHOWN = 3, 4  # lines of the gate: what forbids, and with what is needed
 LEAST_SHOWN = 0.01  # odds of a fault that is still listed
 LEAST_WITHIN = 0.05  # odds of a cause inside it
 NOTHING_FORBIDS = "no recorded finding forbids energising; site rules and licensed practice decide"
@@ -68,13 +69,14 @@ def gate_lines(energise: Energise) -> list[str]:
     if energise.gate != "shut":
         return paragraph(energise.says or NOTHING_FORBIDS, first="Energising: ")
     shown = paragraph(energise.says or "The gate is shut.", first="Energising: ")
-    for line in energise.lines:
-        if line.status == "forbids":
-            shown += paragraph(line.because or line.needs, first="  forbids  ")
-    needed = [line.needs for line in energise.lines if line.status == "needed"]
-    for need in needed[:NEEDS_SHOWN]:
-        shown += paragraph(need, first="  needs    ")
-    return shown + _more(needed, NEEDS_SHOWN)
+    forbids = _unique(line.because or line.needs for line in energise.lines if line.status == "forbids")
+    needs = _unique(line.needs for line in energise.lines if line.status == "needed")
+    for text in forbids[:FORBIDS_SHOWN]:
+        shown += paragraph(text, first="  forbids  ")
+    room = GATE_SHOWN - min(len(forbids), FORBIDS_SHOWN)
+    for text in needs[:room]:
+        shown += paragraph(text, first="  needs    ")
+    return shown + _more([*forbids[FORBIDS_SHOWN:], *needs[room:]], 0)
 
 
 def finding_lines(findings: Sequence[Finding]) -> list[str]:
@@ -177,6 +179,11 @@ def titled(title: str, lines: list[str]) -> list[str]:
 def _odds_line(fault: FaultOdds, knowledge: Knowledge) -> list[str]:
     """Return a fault with its odds."""
     return paragraph(fault.name or fault_name(fault.id, knowledge), first=f"  {percent(fault.probability)}  ")
+
+
+def _unique(texts: Iterable[str]) -> list[str]:
+    """Return texts in their order, each once."""
+    return list(dict.fromkeys(texts))
 
 
 def _more(items: Sequence[object], shown: int) -> list[str]:
