@@ -74,3 +74,7 @@ class BadEntry(CasebookError):  # noqa: N818
         self.given = given
         self.allowed = allowed
         super().__init__(f"{field} is {given!r:.80}; it must be {allowed}")
+
+
+class BadRow(ValueError):  # noqa: N818
+    """A row of a casebook file holds what no program wrote there: the file is damaged."""

@@ -28,7 +28,6 @@ from casebook.wire import entry_of_line, read_lines
 
 _MAGIC: Final = b"SQLite format 3\0"
 _MAX_CELL: Final = 4 * MAX_BODY
-_ROW: Final = tuple[str, str, str, str, int, str, int, str | None, str]
 
 
 class Item(NamedTuple):
@@ -165,7 +164,6 @@ def _in_utc(text: str) -> str:
 def _entry_of_foreign_row(row: tuple[Any, ...]) -> Entry:
     """Return the checked entry of a row. Raises ``BadEntry``."""
     try:
-        msgspec.convert(row, type=_ROW)
         row[8].encode()
         body_json = canonical_json(msgspec.json.decode(row[8]))
         entry = entry_of_row((*row[:3], _in_utc(row[3]), *row[4:8], body_json))

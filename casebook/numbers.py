@@ -13,6 +13,8 @@ from __future__ import annotations
 from typing import Final
 from uuid import UUID
 
+from casebook.errors import BadRow
+
 ALPHABET: Final = "0123456789ABCDEFGHJKMNPQRSTVWXYZ"
 SHOWN: Final = 6
 LENGTH: Final = 12
@@ -24,7 +26,10 @@ def full_number(case: str) -> str:
 
     They are the low 60 bits of the id, read from its end, where it is random.
     """
-    bits = UUID(case).int
+    try:
+        bits = UUID(case).int
+    except ValueError as error:
+        raise BadRow(f"{case!r:.40} is no id of a case") from error
     return "".join(ALPHABET[(bits >> (5 * place)) & 31] for place in range(LENGTH))
 
 

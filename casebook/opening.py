@@ -14,8 +14,11 @@ from tempfile import TemporaryDirectory
 from typing import Final, NamedTuple
 from urllib.parse import quote
 
+import msgspec
+
 from casebook import heads, place, schema
 from casebook.errors import (
+    BadRow,
     CasebookBusy,
     CasebookError,
     DamagedCasebook,
@@ -243,8 +246,8 @@ def translated(path: Path) -> Iterator[None]:
         yield
     except sqlite3.Error as error:
         raise _in_words(error, path) from error
-    except UnicodeDecodeError as error:
-        raise DamagedCasebook(f"{path} is damaged (text in it is no text)") from error
+    except (UnicodeDecodeError, BadRow, msgspec.DecodeError) as error:
+        raise DamagedCasebook(f"{path} is damaged ({error})") from error
 
 
 def _in_words(error: sqlite3.Error, path: Path) -> CasebookError:

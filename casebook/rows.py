@@ -5,12 +5,19 @@ from __future__ import annotations
 from datetime import UTC, datetime
 from typing import Any, Final
 
+import msgspec
+
 from casebook.entry import Entry
+from casebook.errors import BadRow
 
 INSERT: Final = (
     "INSERT INTO entry (id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body)"
     " VALUES (?,?,?,?,?,?,?,?,?) ON CONFLICT (id) DO NOTHING"
 )
+
+
+# id, case, person, time_utc, offset_minutes, kind, body_version, after, body
+_ROW: Final = tuple[str, str, str, str, int, str, int, str | None, str]
 
 
 def stamp(moment: datetime) -> str:
@@ -19,8 +26,11 @@ def stamp(moment: datetime) -> str:
 
 
 def moment_of(text: str) -> datetime:
-    """Return the aware moment that a stamp says."""
-    return datetime.fromisoformat(text)
+    """Return the aware moment that a stamp says. Raises ``BadRow``."""
+    try:
+        return datetime.fromisoformat(text)
+    except (ValueError, TypeError) as error:
+        raise BadRow(f"{text!r:.40} is no time") from error
 
 
 def row_of_entry(entry: Entry) -> tuple[object, ...]:
@@ -39,15 +49,19 @@ def row_of_entry(entry: Entry) -> tuple[object, ...]:
 
 
 def entry_of_row(row: tuple[Any, ...]) -> Entry:
-    """Return the entry that a row holds."""
+    """Return the entry that a row holds. Raises ``BadRow``."""
+    try:
+        one = msgspec.convert(row, type=_ROW)
+    except msgspec.ValidationError as error:
+        raise BadRow(f"a row holds no entry ({error})") from error
     return Entry(
-        id=row[0],
-        case=row[1],
-        person=row[2],
-        time_utc=moment_of(row[3]),
-        offset_minutes=row[4],
-        kind=row[5],
-        body_version=row[6],
-        after=row[7],
-        body_json=row[8],
+        id=one[0],
+        case=one[1],
+        person=one[2],
+        time_utc=moment_of(one[3]),
+        offset_minutes=one[4],
+        kind=one[5],
+        body_version=one[6],
+        after=one[7],
+        body_json=one[8],
     )

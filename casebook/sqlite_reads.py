@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import sqlite3
 import threading
-from collections.abc import Iterable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from contextlib import contextmanager
 from pathlib import Path
-from typing import Any, Final
+from typing import Any, Final, TypeVar
 
 import msgspec
 
@@ -23,6 +23,7 @@ _ROW_COLUMNS: Final = (
     "h.place, h.case_id, h.number, h.status, h.opened_utc, h.last_utc, h.entries, h.tag, h.kind,"
     " h.complaint, h.suspect, h.found, h.confirmed, h.persons"
 )
+T = TypeVar("T")
 _END: Final = 2**62
 _BATCH: Final = 1000
 
@@ -42,27 +43,22 @@ class SqliteReads:
     def all_entries(self) -> Iterator[Entry]:
         """Yield every entry in the order in which they came, without holding them all."""
         last = 0
-        while rows := self._rows(
-            f"SELECT seq, {_ENTRY_COLUMNS} FROM entry WHERE seq > ? ORDER BY seq LIMIT ?", (last, _BATCH)
-        ):
-            for row in rows:
-                yield entry_of_row(row[1:])
-            last = rows[-1][0]
+        ask = f"SELECT {_ENTRY_COLUMNS}, seq FROM entry WHERE seq > ? ORDER BY seq LIMIT ?"
+        while rows := self._made(lambda row: (entry_of_row(row[:-1]), row[-1]), ask, (last, _BATCH)):
+            yield from (entry for entry, _ in rows)
+            last = rows[-1][1]
 
     def held(self, ids: Iterable[str]) -> dict[str, Entry]:
         """Return those of these entry ids that are there, with their entries."""
         with self._reading():
             ask = f"SELECT {_ENTRY_COLUMNS} FROM entry WHERE id = ?"
             rows = [self._connection.execute(ask, (one,)).fetchone() for one in ids]
-        return {row[0]: entry_of_row(row) for row in rows if row}
+            return {row[0]: entry_of_row(row) for row in rows if row}
 
     def taken_in(self, *, limit: int = 20) -> list[TakenIn]:
         """Return the merges into this file, newest first."""
         ask = "SELECT taken_utc, source, entries, new, refused FROM taken_in ORDER BY rowid DESC LIMIT ?"
-        return [
-            TakenIn(taken_utc=moment_of(taken), source=source, entries=entries, new=new, refused=refused)
-            for taken, source, entries, new, refused in self._rows(ask, (limit,))
-        ]
+        return self._made(_taken_of_row, ask, (limit,))
 
     def last_id(self, case: str) -> str | None:
         """Return the id of a case's last entry in reading order."""
@@ -103,10 +99,7 @@ class SqliteReads:
             " WHERE machine_key >= ? AND machine_key < ? AND machine_key <> ''"
             " GROUP BY machine_key ORDER BY machine_key LIMIT ?"
         )
-        return [
-            MachineRow(tag=tag, kind=kind, cases=cases, last_utc=moment_of(last))
-            for tag, kind, cases, last in self._rows(ask, (key, key + "\U0010ffff", limit))
-        ]
+        return self._made(_machine_of_row, ask, (key, key + "\U0010ffff", limit))
 
     def machine_cases(self, tag: str) -> tuple[str, ...]:
         """Return the ids of a machine's cases, oldest activity first."""
@@ -121,9 +114,9 @@ class SqliteReads:
             " odds, observations FROM outcome"
             " WHERE case_id > ? AND (kind = ? OR ? = '') ORDER BY case_id LIMIT ?"
         )
-        while rows := self._rows(ask, (last, kind, kind, _BATCH)):
-            yield from (_outcome_of_row(row) for row in rows)
-            last = rows[-1][0]
+        while outcomes := self._made(_outcome_of_row, ask, (last, kind, kind, _BATCH)):
+            yield from outcomes
+            last = outcomes[-1].case
 
     def changed_since(self, token: int) -> Changes:
         """Return what came in since a token of an earlier answer; cheap when nothing did."""
@@ -146,9 +139,22 @@ class SqliteReads:
         with self._reading():
             return self._connection.execute(ask, values).fetchall()
 
+    def _made(self, make: Callable[[tuple[Any, ...]], T], ask: str, values: tuple[object, ...]) -> list[T]:
+        """Return what is made of each row; a row that makes no sense is told as damage."""
+        with self._reading():
+            return [make(row) for row in self._connection.execute(ask, values)]
+
     def _case_rows(self, rows: list[tuple[Any, ...]]) -> list[CaseRow]:
         with self._reading():
             return [heads.case_row(self._connection, row) for row in rows]
+
+
+def _machine_of_row(row: tuple[Any, ...]) -> MachineRow:
+    return MachineRow(tag=row[0], kind=row[1], cases=row[2], last_utc=moment_of(row[3]))
+
+
+def _taken_of_row(row: tuple[Any, ...]) -> TakenIn:
+    return TakenIn(taken_utc=moment_of(row[0]), source=row[1], entries=row[2], new=row[3], refused=row[4])
 
 
 def _outcome_of_row(row: tuple[Any, ...]) -> Outcome:

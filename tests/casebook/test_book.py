@@ -137,6 +137,13 @@ def test_a_case_from_a_clock_in_the_future_does_not_lead_the_list_for_ever(book:
     assert [row.id for row in book.cases()] == [today, future]
 
 
+def test_a_thousand_cases_of_one_moment_are_all_listed(book: Casebook):
+    bodies = [b.Opened(kind="induction_3ph", complaint="noisy")]
+    with book.store.atomic():
+        cases = {book.open_case(bodies, person="Ada", at=START) for _ in range(1000)}
+    assert {row.id for row in book.cases(limit=2000)} == cases
+
+
 def test_what_the_engine_said_is_kept_as_it_was(book: Casebook):
     said = Diagnosis(
         expected=(Band(measure="speed", state="loaded", low=1440.0, mid=1455.0, high=1470.0, unit="rpm"),),

@@ -1,10 +1,14 @@
 """Files of other programs, other versions, and damaged ones."""
 
+import contextlib
 import sqlite3
 from pathlib import Path
 
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
+from casebook import bodies as b
 from casebook import schema
 from casebook.book import open_casebook
 from casebook.errors import (
@@ -106,6 +110,42 @@ def damaged(path: Path, cases: int = 60) -> int:
         file.seek(pages[len(pages) // 2] * size)
         file.write(b"\x5a" * size)
     return count
+
+
+def use_with_bytes_changed(folder: Path, data: st.DataObject) -> None:
+    """Everything that screens do, on a casebook with bytes changed: it works, or it is said in words."""
+    path = folder / "casebook.db"
+    with open_casebook(path) as book:
+        case = book.log_sheet(a_sheet(), "Ada")
+        book.record(case, b.Closed(found="overload", confirmed="repair"), person="Ada")
+    raw = bytearray(path.read_bytes())
+    for _ in range(data.draw(st.integers(1, 30))):
+        raw[data.draw(st.integers(0, len(raw) - 1))] = data.draw(st.integers(0, 255))
+    path.write_bytes(raw)
+    try:
+        with open_casebook(path, timeout_s=0.5) as book:
+            for use in (
+                book.cases, book.scoreboard, book.machines, lambda: book.case(case),
+                lambda: book.search("trips"), lambda: book.history("P-104"), lambda: book.record(case, b.Note(text="x"), person="Ada"),
+                lambda: book.log_sheet(a_sheet(), "Bo"), lambda: list(book.store.all_entries()),
+            ):  # fmt: skip
+                with contextlib.suppress(CasebookError):
+                    use()
+    except CasebookError as error:
+        assert str(error)
+
+
+@settings(max_examples=30, deadline=None)
+@given(st.data())
+def test_a_casebook_with_some_bytes_changed_works_or_says_why(tmp_path_factory, data):
+    use_with_bytes_changed(tmp_path_factory.mktemp("damage"), data)
+
+
+@pytest.mark.long
+@settings(max_examples=600, deadline=None)
+@given(st.data())
+def test_a_casebook_with_bytes_changed_at_random_works_or_says_why(tmp_path_factory, data):
+    use_with_bytes_changed(tmp_path_factory.mktemp("damage"), data)
 
 
 def leaf_pages(path: Path, size: int) -> list[int]:
