@@ -10,12 +10,14 @@ from typing import TYPE_CHECKING, Any, Final
 
 from rich.text import Text
 from textual.app import App
+from textual.events import Event, Key
 
 from tui import look, mishaps
 from tui.desk import Desk
 from tui.driver import cell_driver
 from tui.screens.casebook import CasebookPage
-from tui.screens.page import Page
+from tui.screens.page import Page, refusal
+from tui.typeahead import TypeAhead
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -45,6 +47,7 @@ class PlatesideApp(App[int]):
         self.desk = Desk(casebook, rules=rules, person=person)
         self.braille = bool(os.environ.get("PLATESIDE_BRAILLE")) and not ascii_only
         self._plain = look.AsciiFilter()
+        self.ahead = TypeAhead(self)
 
     def get_line_filters(self) -> Sequence[LineFilter]:
         """Add the ASCII filter where the terminal needs it."""
@@ -53,12 +56,18 @@ class PlatesideApp(App[int]):
 
     async def on_mount(self) -> None:
         """Show the casebook, then load what is heavy."""
-        with contextlib.suppress(NotImplementedError, RuntimeError, ValueError):  # only on a main thread
+        if not self.is_headless:
             loop = asyncio.get_running_loop()
             loop.add_signal_handler(signal.SIGTERM, self.on_terminate)
             loop.add_signal_handler(signal.SIGHUP, self.on_hang_up)
         await self.push_screen(CasebookPage())
         self.call_after_refresh(self.load)
+
+    async def on_event(self, event: Event) -> None:
+        """Hand events on; a key waits while the page that it is meant for opens."""
+        if isinstance(event, Key) and not event.is_forwarded and self.ahead.holds(event):
+            return
+        await super().on_event(event)
 
     def load(self) -> None:
         """Load rules and engine off the event loop."""
@@ -129,16 +138,16 @@ class PlatesideApp(App[int]):
         """Return in one line what went wrong; the details of a mistake of the program go to the log file."""
         from calc.errors import PlatesideError
 
-        return str(error) if isinstance(error, PlatesideError) else mishaps.keep(error)
+        return refusal(error) if isinstance(error, PlatesideError) else mishaps.keep(error)
 
     def _handle_exception(self, error: Exception) -> None:
-        """Say what could not be done, such as a full disk, and go on; end only on a mistake of the program."""
+        """Say what could not be done, such as a full disk; end only on a mistake of the program."""
         from calc.errors import PlatesideError
 
         inner = getattr(error, "error", error)
         if isinstance(inner, PlatesideError) and self.is_running:
             page = self.pages()[-1]
-            page.say(str(inner))
+            page.say(refusal(inner))
         else:
             super()._handle_exception(error)
 

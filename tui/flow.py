@@ -9,9 +9,11 @@ from calc.quantities import KINDS
 from tui.plate_lines import typed_of
 from tui.screens.ask import Ask
 from tui.screens.nameplate import NameplatePage
+from tui.screens.page import refusal
 from tui.screens.person import USUAL, Person
 from tui.screens.pick import Choice, Pick
 from tui.screens.worksheet import Worksheet
+from tui.widgets.ruled import tagged
 from tui.words import kind_name
 
 if TYPE_CHECKING:
@@ -79,7 +81,7 @@ async def start(app: PlatesideApp, machine: Raw, complaint: str) -> None:
         sheet = sheet_from_plain({"format": 1, "machine": machine, "complaint": complaint, "kit": kit})
         visit = app.desk.open_case(sheet)
     except PlatesideError as error:
-        await app.push_screen_wait(Ask("The case could not be stored.", str(error)))
+        await app.push_screen_wait(Ask("The case could not be stored.", refusal(error)))
         return
     app.desk.drafts.drop(DRAFT)
     await app.push_screen_wait(Worksheet(visit))
@@ -109,7 +111,7 @@ async def pick_complaint(app: PlatesideApp, tag: str, kind: str) -> str | None:
     choices = [
         Choice(c.id, c.name, word="STOP" if c.stop else "", style="bold" if c.stop else "") for c in fitting
     ]
-    return await app.push_screen_wait(Pick(tag or "no tag", "What is wrong?", choices))
+    return await app.push_screen_wait(Pick(*tagged(tag, "What is wrong?"), choices))
 
 
 async def type_plate(app: PlatesideApp, tag: str, complaint: str, begun: dict[str, Any]) -> Raw | None:
@@ -119,7 +121,7 @@ async def type_plate(app: PlatesideApp, tag: str, complaint: str, begun: dict[st
     while True:
         if not kind:
             choices = [Choice(kind, KINDS[kind]) for kind in OFFERED_KINDS]
-            pick = Pick(tag or "no tag", "What kind of machine?", choices)
+            pick = Pick(*tagged(tag, "What kind of machine?"), choices)
             kind = await app.push_screen_wait(pick)
         if kind is None:
             return None

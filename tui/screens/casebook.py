@@ -52,7 +52,7 @@ class CasebookPage(Page[None]):
 
     def on_mount(self) -> None:
         """Put the focus on the list."""
-        self.query_one(OptionList).focus()
+        self.set_focus(self.query_one(OptionList))
 
     def on_screen_resume(self, _event: ScreenResume) -> None:
         """List anew: a case may have been added."""
@@ -102,7 +102,7 @@ class CasebookPage(Page[None]):
 
     def action_search(self) -> None:
         """Type a search."""
-        self.query_one(Input).focus()
+        self.set_focus(self.query_one(Input))
 
     def on_input_changed(self, _event: Input.Changed) -> None:
         """Search as it is typed."""
@@ -115,7 +115,7 @@ class CasebookPage(Page[None]):
         if text.strip() and self.shown:
             self.action_open()
         else:
-            self.query_one(OptionList).focus()
+            self.set_focus(self.query_one(OptionList))
 
     def action_cursor_down(self) -> None:
         """Move the bar down."""

@@ -45,7 +45,7 @@ class ClosingPage(FormPage[dict[str, str]]):
             ),
             Line("done", "done", "what was done", width=50),
             Line("parts", "parts", "parts that were fitted", width=40),
-            Line("minutes", "minutes", "time spent", hear=hear_minutes, width=8),
+            Line("minutes", "minutes", "time spent", hear=hear_minutes),
             Line("note", "remark", "for the next shift and the shop", width=40),
         ]
 
@@ -57,6 +57,10 @@ class ClosingPage(FormPage[dict[str, str]]):
         if self.retest:
             lines += rows("re-test", "; ".join(self.retest)[:RETEST_MOST], self.room, most=3)
         return lines
+
+    def on_mount(self) -> None:
+        """Start where it is said how the fault is known: the fault itself was just picked."""
+        self.go_to("confirmed")
 
     def hear_found(self, text: str) -> Heard:
         """Return the names of the faults, or what is not understood."""

@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 
 from textual.containers import Container
 from textual.widgets import Input
@@ -19,8 +19,10 @@ from tui.widgets.typed import TypedLine
 
 if TYPE_CHECKING:
     from textual.content import Content
+    from textual.timer import Timer
     from textual.widget import Widget
 
+REST_S: Final = 0.25
 Heard = tuple[str, bool]
 """What was understood, in words, and whether it can be kept."""
 
@@ -50,6 +52,7 @@ class FormPage(Page[Answer]):
         self.at = 0
         self.top = 0
         self.said: Heard = ("", True)
+        self.resting: Timer | None = None
 
     def form_lines(self) -> list[Line]:
         """Return the lines of the form."""
@@ -74,7 +77,7 @@ class FormPage(Page[Answer]):
 
     def on_mount(self) -> None:
         """Put the typed line on the first empty row."""
-        self.query_one(TypedLine).focus()
+        self.set_focus(self.query_one(TypedLine))
         self.go(self.at)
 
     # where the typed line stands
@@ -153,13 +156,21 @@ class FormPage(Page[Answer]):
 
     # typing
 
-    def on_input_changed(self, event: Input.Changed) -> None:
-        """Understand a line while it is typed."""
-        if event.value != self.texts[self.line.name]:
-            self.texts[self.line.name] = event.value
-            self.said = ("", True)
-            self.show_remarks()
-            self.show_lines()
+    def on_input_changed(self, _event: Input.Changed) -> None:
+        """Understand a line while it is typed; the remarks follow when the typing rests."""
+        if self.query_one(TypedLine).value == self.texts[self.line.name]:
+            return
+        self.keep_line()
+        self.show_lines()
+        if self.resting is not None:
+            self.resting.stop()
+        self.resting = self.set_timer(REST_S, self.rest)
+
+    def rest(self) -> None:
+        """Show the remarks on what is typed."""
+        self.said = ("", True)
+        self.show_remarks()
+        self.show_lines()
 
     def entered(self, text: str) -> None:
         """Keep the line and go to the next."""

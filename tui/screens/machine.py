@@ -11,7 +11,7 @@ from tui.look import STRONG
 from tui.plate_lines import plate_lines, typed_of
 from tui.screens.page import TextPage
 from tui.screens.worksheet_lines import band_number
-from tui.widgets.ruled import blank, pad, row, rows
+from tui.widgets.ruled import blank, pad, row, rows, tagged
 from tui.words import fault_name, kind_name, measure_name, plain, reading_text
 
 if TYPE_CHECKING:
@@ -82,7 +82,7 @@ class MachinePage(TextPage):
         machine = self.visit.sheet.machine
         typed = typed_of(sheet_of(machine))
         shown = [(line.word, typed[line.field]) for line in plate_lines(machine.kind) if line.field in typed]
-        out = rows(self.tag or "no tag", kind_name(machine.kind), self.room, style=STRONG)
+        out = rows(*tagged(self.tag, kind_name(machine.kind)), self.room, style=STRONG)
         abreast = max((self.room - 11) // COLUMN, 1)
         for start in range(0, len(shown), abreast):
             cells = [f"{word} {plain(text)}" for word, text in shown[start : start + abreast]]
@@ -111,7 +111,7 @@ class MachinePage(TextPage):
                 for logged in case.readings:
                     if logged.what.reading.measure == measure:
                         text = f"{day(logged.time_utc)}  {followed(logged.what.reading)}"
-                        out.append(row("history" if len(out) == 1 else "", text))
+                        out += rows("history" if len(out) == 1 else "", text, self.room, most=2)
         return out if len(out) > 1 else []
 
     def case_lines(self) -> list[Content]:
@@ -151,6 +151,4 @@ def day(moment: datetime) -> str:
 def followed(reading: Reading) -> str:
     """Return one reading of a history: measure, state, values, temperature."""
     at = f" at {reading.temperature.text}" if reading.temperature else ""
-    return (
-        f"{pad(f'{measure_name(reading.measure)}, {plain(reading.state)}', 40)} {reading_text(reading)}{at}"
-    )
+    return f"{plain(reading.measure)}, {plain(reading.state)}: {reading_text(reading)}{at}"

@@ -10,7 +10,8 @@ from tui.keys import bindings
 from tui.look import STRONG, WATCH
 from tui.plate_lines import Raw, hear, keep, machine_of, plate_lines
 from tui.screens.form import FormPage, Line
-from tui.widgets.ruled import rows
+from tui.screens.page import refusal
+from tui.widgets.ruled import rows, tagged
 from tui.words import kind_name
 
 if TYPE_CHECKING:
@@ -62,12 +63,8 @@ class NameplatePage(FormPage[Raw]):
 
     def head(self) -> list[Content]:
         """Return the tag and the kind."""
-        return rows(
-            self.tag or "no tag",
-            f"Nameplate of a {kind_name(self.kind)}; blank lines are allowed",
-            self.room,
-            style=STRONG,
-        )
+        text = f"Nameplate of a {kind_name(self.kind)}; blank lines are allowed"
+        return rows(*tagged(self.tag, text), self.room, style=STRONG)
 
     def remarks(self) -> list[Content]:
         """Return the contradictions in what stands there now."""
@@ -77,7 +74,7 @@ class NameplatePage(FormPage[Raw]):
         try:
             found = self.check(machine)
         except PlatesideError as error:
-            found = [str(error)]
+            found = [refusal(error)]
         lines: list[Content] = []
         for text in found[:REMARKS_SHOWN]:
             lines += rows("plate" if not lines else "", text, self.room, style=WATCH, most=2)

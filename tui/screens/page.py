@@ -8,6 +8,7 @@ from textual.content import Content
 from textual.screen import Screen
 from textual.widgets import Static
 
+from calc.errors import InputError, PlatesideError
 from tui.keys import key_line
 from tui.look import FAINT, WATCH
 from tui.widgets.ruled import INDENT, Ruled, fill, row
@@ -29,6 +30,8 @@ class Page(Screen[Answer]):
     """One ruled page: ``KEYS`` names its keys in ``tui.keys``, ``body`` is what stands above the key line."""
 
     KEYS: ClassVar[str] = "help"
+    is_ready = False
+    """Whether keys can come: everything stands and has the focus."""
 
     def compose(self) -> ComposeResult:
         """Yield the body and the key line."""
@@ -51,6 +54,10 @@ class Page(Screen[Answer]):
     def room(self) -> int:
         """Cells in a line."""
         return int(self.app.size.width)
+
+    def on_mount(self) -> None:
+        """Let keys come; Textual calls this after the ``on_mount`` of the page's own class."""
+        self.is_ready = True
 
     def on_resize(self, _event: Resize) -> None:
         """Lay the page out for the new size."""
@@ -100,6 +107,14 @@ class Page(Screen[Answer]):
     def action_leave(self) -> None:
         """Leave Plateside, after asking where something is unsaved."""
         self.plateside.leave()
+
+
+def refusal(error: PlatesideError) -> str:
+    """Return what is wrong with something typed and what is allowed, without the name of a file."""
+    if not isinstance(error, InputError):
+        return str(error)
+    said = [f"{problem.given}: {problem.allowed}".removeprefix(": ") for problem in error.problems]
+    return "; ".join(dict.fromkeys(said))
 
 
 class TextPage(Page[None]):

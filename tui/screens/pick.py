@@ -79,7 +79,7 @@ class Pick(Page[str]):
     def on_mount(self) -> None:
         """Put the focus on the line to type."""
         self.query_one("#list").can_focus = False
-        self.query_one(Input).focus()
+        self.set_focus(self.query_one(Input))
 
     def show(self) -> None:
         """Show the title, and the lines that match what is typed."""

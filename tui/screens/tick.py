@@ -40,7 +40,7 @@ class Tick(Page[dict[str, bool]]):
 
     def on_mount(self) -> None:
         """Put the focus on the list."""
-        self.query_one(OptionList).focus()
+        self.set_focus(self.query_one(OptionList))
 
     def show(self) -> None:
         """Show every question with its answer."""

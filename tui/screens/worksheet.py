@@ -70,7 +70,7 @@ class Worksheet(WorksheetTyping):
         typed.put(str(draft.get("typed", "")))
         if typed.value:
             self.say("From your draft; Enter stores it.", "")
-        typed.focus()
+        self.set_focus(typed)
         self.weigh()
 
     # what the screen shows
@@ -218,6 +218,8 @@ class Worksheet(WorksheetTyping):
     def weighed_now(self, weighed: Weighed | None, trouble: Exception | None) -> None:
         """Show a new answer."""
         self.is_weighing = False
+        if not self.is_attached:
+            return
         if self.again:
             self.again = False
             self.weigh()
@@ -228,8 +230,7 @@ class Worksheet(WorksheetTyping):
         if self.weighed is not None:
             odds = {fault.id: fault.probability for fault in self.weighed.diagnosis.faults}
             self.gate_now = gate(self.visit.sheet, self.visit.knowledge, suspects=odds)
-        if self.is_mounted:
-            self.show_blocks()
+        self.show_blocks()
 
     # drafts
 

@@ -114,6 +114,14 @@ class WorksheetKeys(Page[None]):
         self.visit.skip(item.key)
         self.stored(f"cannot be taken now: {key_words(item.key, self.visit.knowledge)}")
 
+    def action_cursor_up(self) -> None:
+        """Show older readings."""
+        self.action_older()
+
+    def action_cursor_down(self) -> None:
+        """Show newer readings."""
+        self.action_newer()
+
     def action_older(self) -> None:
         """Show older readings."""
         self.older = min(self.older + 3, max(len(self.visit.sheet.readings) - 1, 0))

@@ -14,7 +14,7 @@ from calc.quantities import MEASURES
 from calc.units import find_unit
 from tui.answer_text import NOTHING_FORBIDS, NOTHING_LEFT
 from tui.look import FAINT, STOP, STRONG, VERDICT_STYLE, VERDICT_WORD, WATCH
-from tui.widgets.ruled import INDENT, pad, row, rows
+from tui.widgets.ruled import INDENT, pad, row, rows, tagged
 from tui.widgets.scale import WIDTH as SCALE_WIDTH
 from tui.widgets.scale import scale, side
 from tui.words import complaint_name, fault_name, key_words, percent, plain, question, reading_text
@@ -50,12 +50,13 @@ def machine_lines(sheet: CaseSheet, number: str, knowledge: Knowledge, room: int
     stands = [plain(word) for word in (plate.connection, machine.starter, machine.load_type) if word]
     what = complaint_name(sheet.complaint, knowledge)
     text = f"{' '.join(shown)}{', ' if stands and shown else ''}{', '.join(stands)}" or "no plate"
+    word, text = tagged(machine.tag or "", text)
     tail = f"{what}   {number}"
     gap = room - INDENT - len(text) - len(tail)
     if gap >= 2:
-        return [row(machine.tag or "no tag", text, " " * gap, (tail, STRONG))]
+        return [row(word, text, " " * gap, (tail, STRONG))]
     return [
-        row(machine.tag or "no tag", pad(text, room - INDENT)),
+        row(word, pad(text, room - INDENT)),
         row("", (pad(tail, room - INDENT), STRONG)),
     ]
 

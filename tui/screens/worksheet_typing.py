@@ -8,6 +8,7 @@ from textual.widgets import Input
 from calc.errors import PlatesideError
 from rules.answer import NextItem
 from tui.look import FAINT
+from tui.screens.page import refusal
 from tui.screens.worksheet_keys import WorksheetKeys
 from tui.widgets.typed import TypedLine
 from tui.words import question
@@ -18,17 +19,19 @@ YES_WORDS = {"y": True, "yes": True, "n": False, "no": False}
 class WorksheetTyping(WorksheetKeys):
     """Understands while it is typed; Enter stores, or does what comes first."""
 
-    def on_input_changed(self, event: Input.Changed) -> None:
-        """Say in words what is understood, while it is typed."""
-        text, item = event.value.strip(), self.target
+    def on_input_changed(self, _event: Input.Changed) -> None:
+        """Say in words what is understood while it is typed; an empty line leaves what was said."""
+        text, item = self.query_one(TypedLine).value.strip(), self.target
+        if not text:
+            return
         self.sure_of = "" if self.sure_of != text else self.sure_of
-        if not text or item is None or item.state is None or text[:1].isalpha():
+        if item is None or item.state is None or text[:1].isalpha():
             self.say("")
             return
         try:
             understood = self.visit.understand(str(item.measure), item.state, text)
         except PlatesideError as error:
-            self.say(str(error), FAINT)
+            self.say(refusal(error), FAINT)
         else:
             self.say(understood.echo, "")
 
@@ -47,8 +50,8 @@ class WorksheetTyping(WorksheetKeys):
 
     def give_back(self, text: str) -> None:
         """Put text that was not stored back in the line, unless something else is typed there by now."""
-        typed = self.query_one(TypedLine)
-        if not typed.value:
+        typed = next(iter(self.query(TypedLine)), None)  # the page may be gone
+        if typed is not None and not typed.value:
             typed.put(text)
 
     @work(group="enter")
@@ -107,11 +110,11 @@ class WorksheetTyping(WorksheetKeys):
         try:
             understood = self.visit.understand(str(item.measure), str(item.state), text)
         except PlatesideError as error:
-            self.say(str(error))
+            self.say(refusal(error))
             return False
         if understood.asks and self.sure_of != text:
             self.sure_of = text
-            self.say(f"{understood.asks} Enter again keeps it.")
+            self.say(f"{understood.asks.rstrip('.?')}. Is it so? Enter again keeps it.")
             return False
         if self.correcting:
             self.visit.correct(self.correcting, understood)

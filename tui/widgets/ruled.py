@@ -42,6 +42,13 @@ def wrapped(text: str, room: int, most: int = 99) -> list[str]:
     return lines
 
 
+def tagged(tag: str, text: str) -> tuple[str, str]:
+    """Return margin word and text of a line about a machine; a tag too long for the margin leads the text."""
+    if width(tag) < MARGIN:
+        return tag or "no tag", text
+    return "machine", f"{tag}: {text}"
+
+
 def blank() -> Content:
     """Return a line with the rule only."""
     return row("")

@@ -2,20 +2,26 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Any, Protocol, cast
+from typing import TYPE_CHECKING, Protocol, cast
 
 from textual.widgets import Input
 from textual.widgets.input import Selection
 
 if TYPE_CHECKING:
-    from textual.screen import Screen
+    from textual.events import Key
 
 
 class TakesLines(Protocol):
-    """A page that is told of each line that is entered."""
+    """A page that is told of each line that is entered, and moves its bar or its line."""
 
     def entered(self, text: str) -> None:
         """Take the text of the line."""
+
+    def action_cursor_up(self) -> None:
+        """Go up."""
+
+    def action_cursor_down(self) -> None:
+        """Go down."""
 
 
 class TypedLine(Input):
@@ -25,10 +31,18 @@ class TypedLine(Input):
         super().__init__(value, placeholder=placeholder, compact=True, id=id, select_on_focus=False)
         self.cursor_blink = False
 
-    async def action_submit(self) -> None:
-        """Hand the text to the page before the next key is read."""
-        page: Screen[Any] = self.screen
-        cast("TakesLines", page).entered(self.value)
+    def on_key(self, event: Key) -> None:
+        """Take Enter, up and down at once: as bindings they would wait while letters overtake them."""
+        page = cast("TakesLines", self.screen)
+        deed = {
+            "enter": lambda: page.entered(self.value),
+            "up": page.action_cursor_up,
+            "down": page.action_cursor_down,
+        }.get(event.key)
+        if deed is not None:
+            event.stop()
+            event.prevent_default()
+            deed()
 
     def put(self, text: str, *, chosen: bool = False) -> None:
         """Put another text in the line without telling; ``chosen`` text goes with the next letter."""

@@ -1,0 +1,280 @@
+"""Whole visits by keys: from the casebook to the closed entry. Each test is a task that a technician has."""
+
+from __future__ import annotations
+
+from collections.abc import Awaitable, Callable
+from pathlib import Path
+
+from textual.pilot import Pilot
+
+from tests.tui.helpers import SMALL, keys, known_machine, new_app, screen_text, settled, until
+from tui.application import PlatesideApp
+from tui.screens.casebook import CasebookPage
+from tui.screens.worksheet import Worksheet
+
+PLATE = ("7.5 kW", "400", "14.9", "50", "1455", ".84", "88.7", "d")
+
+
+async def to_worksheet(pilot: Pilot[int], tag: str = "P-104", complaint: str = "runs hot") -> None:
+    """Go from the casebook to the worksheet of a known machine."""
+    await keys(pilot, "n")
+    await until(pilot, "Which machine")
+    await keys(pilot, *tag, "enter")
+    await until(pilot, "What is wrong")
+    await keys(pilot, *complaint, "enter")
+    await until(pilot, "faults")
+    await settled(pilot)
+
+
+async def test_a_new_machine_goes_from_its_plate_to_a_worksheet_that_knows_what_to_read_next(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await keys(pilot, "n")
+        await until(pilot, "Which machine")
+        await keys(pilot, *"P-104", "enter")
+        await until(pilot, "What is wrong")
+        await keys(pilot, *"runs hot", "enter")
+        await until(pilot, "What kind")
+        await keys(pilot, "enter")
+        await until(pilot, "Nameplate")
+        for line in PLATE:
+            await keys(pilot, *line, "enter")
+        await keys(pilot, "f8")
+        await until(pilot, "faults")
+        sheet = app.desk.visit(app.desk.book.cases()[0].id).sheet
+    assert sheet.machine.nameplate.number("power") == 7500.0
+    assert sheet.machine.nameplate.number("current") == 14.9
+    assert sheet.machine.nameplate.connection == "delta"
+    assert sheet.complaint == "runs_hot"
+
+
+async def test_a_known_machine_brings_its_plate(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        assert "7.5 kW 400 V 14.9 A 1455 rpm" in screen_text(app)
+
+
+async def test_a_reading_is_echoed_in_words_before_and_is_on_disk_after_enter(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"line current loaded", "enter")
+        await keys(pilot, *"15.2/15.9/14.8")
+        await until(pilot, "L1 15.2 A, L2 15.9 A, L3 14.8 A")
+        assert not newest(app).readings
+        await keys(pilot, "enter")
+        await until(pilot, "Before readings in the state 'loaded'")
+        await keys(pilot, "enter")
+        await until(pilot, "stored")
+        assert newest(app).readings[0].what.reading.numbers == (15.2, 15.9, 14.8)
+
+
+async def test_a_value_that_can_hardly_be_is_asked_about_once(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"supply voltage loaded", "enter")
+        await keys(pilot, *"4010 398 402", "enter")
+        await until(pilot, "Before readings")
+        await keys(pilot, "enter")
+        await until(pilot, "Enter again keeps it")
+        assert not newest(app).readings
+        await keys(pilot, "enter")
+        await until(pilot, "stored")
+        assert newest(app).readings[0].what.reading.numbers[0] == 4010.0
+
+
+async def test_what_is_no_reading_stays_in_the_line_and_nothing_is_stored(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"line current loaded", "enter", *"15.2 15.9", "enter")
+        await until(pilot, "Before readings")
+        await keys(pilot, "enter")
+        await until(pilot, "three values")
+        assert "15.2 15.9" in screen_text(app)
+        assert not newest(app).readings
+
+
+async def test_an_isolated_reading_waits_for_the_isolation_record(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"winding resistance", "enter", *"1.91 1.92 1.90", "enter")
+        await until(pilot, "Isolation of P-104")
+        await keys(pilot, "f8")
+        await until(pilot, "Not proved")
+        assert not newest(app).isolation
+        await keys(pilot, "y", "enter", "y", "enter", "enter")
+        await until(pilot, "stored")
+        case = newest(app)
+    assert case.isolation[0].what.by == "R. Varga"
+    assert case.isolation[0].what.proved_dead
+    assert case.readings[0].what.reading.measure == "winding_resistance"
+
+
+async def test_a_reading_behind_the_shut_gate_is_asked_about_and_n_stores_nothing(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot, complaint="smoke")
+        assert "SHUT" in screen_text(app)
+        await keys(pilot, "f3", *"line current loaded", "enter")
+        await until(pilot, "GATE SHUT")
+        await keys(pilot, *"15.2 15.9 14.8", "enter")
+        await until(pilot, "Was it read already")
+        await keys(pilot, "n")
+        await pilot.pause()
+        assert not newest(app).readings
+        assert "15.2 15.9 14.8" in screen_text(app)
+
+
+async def test_a_skipped_reading_is_not_proposed_again(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        page = app.screen
+        assert isinstance(page, Worksheet) and page.target is not None
+        skipped = page.target.key
+        await keys(pilot, "f4")
+        await until(pilot, "cannot be taken now")
+        await settled(pilot)
+        assert page.target is not None and page.target.key != skipped
+        assert newest(app).skipped[0].what.key == skipped
+
+
+async def test_a_wrong_reading_is_typed_anew_and_the_log_keeps_both(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"line current loaded", "enter", *"15.2 15.9 1.48", "enter")
+        await until(pilot, "Before readings")
+        await keys(pilot, "enter")
+        await until(pilot, "stored")
+        await settled(pilot)
+        await keys(pilot, "ctrl+r")
+        await until(pilot, "What was wrong?")
+        await keys(pilot, "enter")
+        await until(pilot, "type it anew")
+        await keys(pilot, "enter")
+        await keys(pilot, *"15.2 15.9 14.8", "enter")
+        await until(pilot, "stored")
+        case = newest(app)
+    assert [one.what.reading.numbers for one in case.readings] == [(15.2, 15.9, 14.8)]
+    assert sum(line.entry.kind == "reading" for line in case.lines) == 1
+    assert sum(line.entry.kind == "correction" for line in case.lines) == 1
+
+
+async def test_what_was_seen_is_ticked_with_y_and_n(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f7")
+        await until(pilot, "What was seen")
+        await keys(pilot, "y", "n", "enter")
+        await until(pilot, "stored")
+        answers = newest(app).observations
+    assert sorted(answers.values()) == [False, True]
+
+
+async def test_a_case_is_closed_with_what_was_found_and_how_it_is_known(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f8")
+        await until(pilot, "What was it really")
+        await keys(pilot, *"cooling", "enter")
+        await until(pilot, "known by")
+        await keys(pilot, "r", "enter", *"fins cleaned", "enter", "f8")
+        await until(pilot, "Cases, newest first")
+        closed = newest(app).closed
+    assert closed is not None
+    assert (closed.what.found, closed.what.confirmed, closed.what.done) == (
+        "cooling_lost",
+        "repair",
+        "fins cleaned",
+    )
+
+
+async def test_a_closed_case_is_shown_as_it_was_and_can_go_on(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f8", *"cooling", "enter")
+        await until(pilot, "known by")
+        await keys(pilot, "f8")
+        await until(pilot, "Cases, newest first")
+        await keys(pilot, "enter")
+        await until(pilot, "known by: believed")
+        await keys(pilot, "f8")
+        await until(pilot, "faults")
+        assert newest(app).status == "open"
+
+
+async def test_the_search_narrows_while_it_is_typed(tmp_path: Path):
+    app = known_machine(known_machine(new_app(tmp_path)), tag="FAN-7")
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "FAN-7")
+        await keys(pilot, "slash", *"p10")
+        await pilot.pause()
+        text = screen_text(app)
+        assert "P-104" in text and "FAN-7" not in text
+
+
+async def test_a_routine_case_takes_fewer_than_sixty_keystrokes_beyond_the_digits(tmp_path: Path):
+    """Known machine, complaint, six readings, closed; issue 6 names the number."""
+    app = known_machine(new_app(tmp_path))
+    pressed = 0
+    async with app.run_test(size=SMALL) as pilot:
+
+        async def press(*wanted: str) -> None:
+            nonlocal pressed
+            pressed += sum(not (key.isdigit() or key in {".", "space", " "}) for key in wanted)
+            await keys(pilot, *wanted)
+
+        await press("n", "p", "enter", *"rout", "enter")
+        await until(pilot, "faults")
+        for _ in range(30):
+            await settled(pilot)
+            if len(newest(app).readings) == 6:
+                break
+            await take_what_is_proposed(pilot, press)
+        await press("f8", "enter")
+        await until(pilot, "known by")
+        await press("f8")
+        await until(pilot, "Cases, newest first")
+        assert isinstance(app.screen, CasebookPage)
+        case = newest(app)
+    assert case.status == "closed"
+    assert len(case.readings) == 6
+    assert pressed < 60
+
+
+async def take_what_is_proposed(pilot: Pilot[int], press: Callable[..., Awaitable[None]]) -> None:
+    """Do what stands beside next: what comes first, then the middle of the band; skip a question."""
+    page = pilot.app.screen
+    assert isinstance(page, Worksheet) and page.target is not None and page.diagnosis is not None
+    item = page.target
+    if item.observation:
+        await press("f4")
+        return
+    first = page.wanted_first()
+    bands = {(band.measure, band.state): band for band in page.diagnosis.expected}
+    band = bands.get((str(item.measure), str(item.state)))
+    value = f"{band.mid:.4g}" if band else "40"
+    many = 3 if "three" in page.asks_for(item) else 1
+    await press(*" ".join([value] * many), "enter")
+    if first == "isolation":
+        await until(pilot, "Isolation of")
+        await press("y", "enter", "y", "f8")
+    elif first == "acknowledge":
+        await until(pilot, "Before readings")
+        await press("enter")
+    await settled(pilot)
+    if "Enter again" in screen_text(pilot.app):
+        await press("enter")
+
+
+def newest(app: PlatesideApp):
+    """The newest case as the casebook has it on disk."""
+    return app.desk.book.case(app.desk.book.cases()[0].id)

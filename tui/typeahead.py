@@ -1,0 +1,77 @@
+"""Keeps what is typed ahead for the page that it is meant for.
+
+On a slow line keys arrive in bursts: "n", a tag and Enter at once, before the page that
+asks for the tag is there. A key that may open or leave a page holds the keys behind it
+back until the page on top is ready; then they go on in their order.
+"""
+
+from __future__ import annotations
+
+from collections import deque
+from typing import TYPE_CHECKING, Final
+
+from textual.widgets import Input
+
+if TYPE_CHECKING:
+    from textual.events import Key
+
+    from tui.application import PlatesideApp
+
+QUIET_S: Final = 0.03
+"""How long a page must be left alone before it counts as the one that stays."""
+PATIENCE: Final = 100
+"""How many quiet times are waited for a page that does not get ready."""
+EDITING: Final = frozenset(
+    {
+        "backspace",
+        "delete",
+        "left",
+        "right",
+        "home",
+        "end",
+        "up",
+        "down",
+        "pageup",
+        "pagedown",
+        "space",
+        "tab",
+    }
+)
+
+
+class TypeAhead:
+    """Stands between the keyboard and the pages."""
+
+    def __init__(self, app: PlatesideApp) -> None:
+        self.app = app
+        self.held: deque[Key] = deque()
+        self.is_holding = False
+        self.waited = 0
+
+    def holds(self, event: Key) -> bool:
+        """Hold a key back where an earlier one is still at work; else note whether this one will be."""
+        if self.is_holding:
+            self.held.append(event)
+            return True
+        if self.is_decisive(event):
+            self.is_holding, self.waited = True, 0
+            self.app.set_timer(QUIET_S, self.go_on)
+        return False
+
+    def is_decisive(self, event: Key) -> bool:
+        """Whether a key may open or leave a page."""
+        types = isinstance(self.app.focused, Input)
+        return event.key not in EDITING and not (types and event.is_printable)
+
+    async def go_on(self) -> None:
+        """Hand on what is held, up to the next decisive key, once the page on top is ready."""
+        if not self.app.pages():  # the last page is gone: the program is ending
+            self.held.clear()
+            return
+        self.waited += 1
+        if self.waited < PATIENCE and any(not page.is_ready for page in self.app.pages()[-1:]):
+            self.app.set_timer(QUIET_S, self.go_on)
+            return
+        self.is_holding = False
+        while self.held and not self.is_holding:
+            await self.app.on_event(self.held.popleft())
