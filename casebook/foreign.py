@@ -163,6 +163,8 @@ def _in_utc(text: str) -> str:
 
 def _entry_of_foreign_row(row: tuple[Any, ...]) -> Entry:
     """Return the checked entry of a row. Raises ``BadEntry``."""
+    if not isinstance(row[8], str):
+        raise BadEntry("body", row[8], "JSON text")
     try:
         row[8].encode()
         body_json = canonical_json(msgspec.json.decode(row[8]))

@@ -26,7 +26,7 @@ from casebook.wire import entry_of_line
 from . import makers
 from .conftest import a_sheet
 
-FEW = settings(max_examples=25, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+FEW = settings(max_examples=15, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
 
 
 def filled(entries: Iterable[Entry]) -> Casebook:

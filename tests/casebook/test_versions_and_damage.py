@@ -126,7 +126,8 @@ def use_with_bytes_changed(folder: Path, data: st.DataObject) -> None:
         with open_casebook(path, timeout_s=0.5) as book:
             for use in (
                 book.cases, book.scoreboard, book.machines, lambda: book.case(case),
-                lambda: book.search("trips"), lambda: book.history("P-104"), lambda: book.record(case, b.Note(text="x"), person="Ada"),
+                lambda: book.search("trips"), lambda: book.history("P-104"),
+                lambda: book.record(case, b.Note(text="x"), person="Ada"),
                 lambda: book.log_sheet(a_sheet(), "Bo"), lambda: list(book.store.all_entries()),
             ):  # fmt: skip
                 with contextlib.suppress(CasebookError):
