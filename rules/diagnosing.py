@@ -56,7 +56,7 @@ def diagnose(
         A kind without a model gets limits, gate and cautions, and ``model`` says "none".
 
     """
-    twin = twin_of(sheet.machine)
+    twin = twin_of(sheet.machine, sheet.readings)
     crossed = findings(sheet, knowledge)
     if twin is None or not faults_of(knowledge, sheet.machine.kind):
         state = gate(sheet, knowledge)
@@ -101,7 +101,7 @@ def what_would_turn(
 
     Each is proved by weighing the sheet with it, so this takes some tenths of a second.
     """
-    twin = twin_of(sheet.machine)
+    twin = twin_of(sheet.machine, sheet.readings)
     if twin is None or not faults_of(knowledge, sheet.machine.kind):
         return ()
     posterior = weigh(sheet, knowledge, twin, odds)
@@ -111,7 +111,7 @@ def what_would_turn(
 
 def expect(sheet: CaseSheet, *, knowledge: Knowledge, name: str = "") -> Diagnosis:
     """Return only what a healthy machine of this plate should read."""
-    twin = twin_of(sheet.machine)
+    twin = twin_of(sheet.machine, sheet.readings)
     if twin is None:
         kind = KINDS.get(sheet.machine.kind, sheet.machine.kind)
         return Diagnosis(sheet=name, model=NO_MODEL, notes=(f"No model yet for a {kind}.",))

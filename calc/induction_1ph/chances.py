@@ -67,7 +67,9 @@ def found_in(attributes: Mapping[str, Floats], has_switch: Floats) -> Found:
     """
     switch = has_switch > 0.5
     earth = attributes["earth_ohm"] < 1e8
-    present = [(attributes[name] > 1e-6, chances) for name, chances in _FLAGS.items()]
+    present = [
+        (attributes[name] > 1e-6, chances) for name, chances in _FLAGS.items() if attributes[name].any()
+    ]
     present += [
         ((attributes["run_open"] > 0.5) & ~switch, _RUN_OPEN),
         ((attributes["run_shorted"] > 0.5) & ~switch, _RUN_SHORTED),
@@ -80,6 +82,8 @@ def found_in(attributes: Mapping[str, Floats], has_switch: Floats) -> Found:
     ]
     moves, free, loaded = (np.ones_like(has_switch) for _ in range(3))
     for flag, (stands, runs_free, runs_loaded) in present:
+        if not flag.any():
+            continue
         moves = moves * np.where(flag, 1.0 - stands, 1.0)
         free = free * np.where(flag, runs_free, 1.0)
         loaded = loaded * np.where(flag, runs_loaded, 1.0)

@@ -11,7 +11,7 @@ from calc.induction_3ph import effects, thermal
 from calc.induction_3ph.network import path_resistance, terminal_resistance
 from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, Circuit, circuit, read_base
 from calc.induction_3ph.states import StateResult, Supply, solve, supply
-from calc.sheet import Machine
+from calc.sheet import Machine, Reading
 from calc.twin import Ask, Floats, Mode, ModelError, Severity, Transform, standard_normal_cdf
 
 _STANDING = {"stalled", "starting"}
@@ -269,12 +269,13 @@ def _scaled(mode: Mode, attribute: str, factor: float) -> Mode:
     return replace(mode, severity=severity)
 
 
-def fit(machine: Machine) -> InductionTwin:
+def fit(machine: Machine, *, readings: Sequence[Reading] = ()) -> InductionTwin:
     """Make the twin of a machine from its sheet.
 
-    Any plate field may be blank; what is missing becomes spread.
+    Any plate field may be blank; what is missing becomes spread, and ``readings`` then tell
+    its class (poles, nominal voltage, rough size), never its state.
     """
-    base = read_base(machine)
+    base = read_base(machine, readings)
     nominal = machine.supply.nominal_voltage
     volts = nominal.number if nominal is not None and nominal.is_read else base.voltage_v
     exponent = {"fan": 2.0, "pump_centrifugal": 2.0}.get(machine.load_type or "", 0.0)

@@ -9,6 +9,7 @@ rated line voltage and plate current, star-equivalent.
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -16,7 +17,8 @@ import numpy as np
 from calc.errors import RangeError
 from calc.lookup import code_letter_kva_per_hp
 from calc.nameplate import synchronous_speed_rpm
-from calc.sheet import Machine, Nameplate, Value
+from calc.induction_3ph.context import filled
+from calc.sheet import Machine, Nameplate, Reading
 from calc.twin import Floats
 from calc.typical import typical_efficiency, typical_locked_rotor_ratio, typical_power_factor
 
@@ -67,6 +69,8 @@ class Base:
     loss_share: float
     loss_spread: float
     size_spread: float
+    output_spread: float
+    level_spread: float
     current_spread: float
     power_factor: float | None
     power_factor_spread: float
@@ -112,22 +116,25 @@ class Circuit:
     slip: Floats
     flux: Floats
     rise_k: Floats
-    size: Floats
 
 
-def read_base(machine: Machine) -> Base:
-    """Take the plate apart; what it does not say gets a typical value and a wide spread."""
+def read_base(machine: Machine, readings: Sequence[Reading] = ()) -> Base:
+    """Take the plate apart; what it does not say gets a typical value and a wide spread.
+
+    ``readings`` only tell the class of a machine whose plate cannot be read.
+    """
+    machine, missing = filled(machine, readings)
     plate = machine.nameplate
-    frequency = plate.number("frequency") or _supply(machine.supply.nominal_frequency) or 50.0
-    voltage = plate.number("voltage") or _supply(machine.supply.nominal_voltage) or 400.0
-    power, current, size_spread = _size(plate, voltage)
-    poles = _poles(plate, frequency)
+    frequency = plate.number("frequency") or 50.0
+    voltage = plate.number("voltage") or 400.0
+    power, current = _size(plate, voltage)
+    poles = missing.poles or _poles(plate, frequency)
     efficiency = plate.number("efficiency")
     typical = typical_efficiency(power_w=power, poles=poles, frequency_hz=frequency)
     eta = _share(efficiency) if efficiency else typical
     pf = plate.number("power_factor")
     current_spread = 0.018
-    if plate.current is None:
+    if missing.current and not missing.power:
         pf_guess = pf if pf else typical_power_factor(power_w=power, poles=poles)
         current = power / (math.sqrt(3.0) * voltage * eta * pf_guess)
         current_spread = 0.03 if pf and efficiency else 0.08
@@ -144,7 +151,10 @@ def read_base(machine: Machine) -> Base:
         slip_spread=slip_spread,
         loss_share=1.0 / eta - 1.0,
         loss_spread=0.07 if efficiency else 0.26,
-        size_spread=size_spread,
+        # Neither output nor current: the whole machine may be larger or smaller. Current alone: the output may.
+        size_spread=0.45 if missing.power and missing.current else 0.0,
+        output_spread=0.16 if missing.power and not missing.current else 0.0,
+        level_spread=0.045 if missing.voltage else 0.0,
         current_spread=current_spread,
         power_factor=pf,
         power_factor_spread=0.012 + 0.04 * (1.0 - pf) if pf else 1.0,
@@ -156,10 +166,6 @@ def read_base(machine: Machine) -> Base:
     )
 
 
-def _supply(value: Value | None) -> float | None:
-    return value.number if value is not None and value.is_read else None
-
-
 def _share(percent_or_share: float) -> float:
     share = percent_or_share / 100.0 if percent_or_share > 1.0 else percent_or_share
     return min(max(share, 0.3), 0.985)
@@ -169,17 +175,16 @@ def _connection(word: str | None) -> str | None:
     return {"double_star": "star", "double_delta": "delta"}.get(word or "", word)
 
 
-def _size(plate: Nameplate, voltage: float) -> tuple[float, float, float]:
-    """Output, current, and the spread of the size where the plate tells neither."""
+def _size(plate: Nameplate, voltage: float) -> tuple[float, float]:
+    """Output and current; a current that the plate lacks is 0 here and follows from the output."""
     power, current = plate.number("power"), plate.number("current")
-    if power and current:
-        return power, current, 0.0
     if power:
-        return power, 0.0, 0.0
+        return power, current or 0.0
     if current:
         apparent = math.sqrt(3.0) * voltage * current
-        return 0.72 * apparent if apparent > 3e3 else 0.6 * apparent, current, 0.0
-    return 7500.0, 0.0, 1.3
+        return (0.74 if apparent > 3e3 else 0.6) * apparent, current
+    apparent = math.sqrt(3.0) * voltage * 15.0
+    return 0.74 * apparent, 15.0
 
 
 def _poles(plate: Nameplate, frequency: float) -> int:
@@ -257,8 +262,9 @@ def circuit(base: Base, z: Floats) -> Circuit:
 
     """
     column = {name: z[:, place] for name, place in INDEX.items()}
-    current = np.exp(base.current_spread * column["current"])
-    p_out = np.full(len(z), base.power_w / base.apparent_va)
+    size = np.exp(base.size_spread * column["size"])
+    current = size * np.exp(base.current_spread * column["current"])
+    p_out = size * np.exp(base.output_spread * column["size"]) * base.power_w / base.apparent_va
     losses = p_out * base.loss_share * np.exp(base.loss_spread * column["losses"])
     p_in = p_out + losses
     current = np.maximum(current, p_in / 0.955)
@@ -272,7 +278,7 @@ def circuit(base: Base, z: Floats) -> Circuit:
     core_share = 1.0 / (1.0 + np.exp(0.35 - 0.42 * column["core_share"]))
     r1 = rest * (1.0 - core_share) / current**2 * np.exp(0.06 * column["resistance"])
     core = rest * core_share
-    x_locked, r2_locked, x_run = _leakage(base, column, slip, p_gap, current, r1)
+    x_locked, r2_locked, x_run = _leakage(base, column, slip, p_gap, current, r1, size)
     x1 = 0.5 * x_run
     x2 = x_run - x1
     angle = np.arccos(np.clip(p_in / current, 0.2, 0.999))
@@ -282,7 +288,7 @@ def circuit(base: Base, z: Floats) -> Circuit:
     r2 = slip * _rotor_ratio(flux, p_gap, x2)
     rotor = e_gap / (r2 / slip + 1j * x2)
     reactive = np.imag(e_gap * np.conj(phasor - rotor))
-    xm = flux**2 / np.maximum(reactive, 0.12)
+    xm = flux**2 / np.maximum(reactive, 0.12 * size)
     return Circuit(
         r1=r1,
         x1=x1,
@@ -300,7 +306,6 @@ def circuit(base: Base, z: Floats) -> Circuit:
         slip=slip,
         flux=flux,
         rise_k=base.rise_k * np.exp(0.22 * column["rise"]),
-        size=np.exp(base.size_spread * column["size"]),
     )
 
 
@@ -311,17 +316,18 @@ def _leakage(
     p_gap: Floats,
     current: Floats,
     r1: Floats,
+    size: Floats,
 ) -> tuple[Floats, Floats, Floats]:
     """Locked leakage reactance and rotor resistance, and the unsaturated leakage when running."""
     ratio = base.locked_ratio * np.exp(base.locked_spread * column["locked"])
-    impedance = 1.0 / ratio
+    impedance = 1.0 / (ratio * size)
     r2_hot = slip * p_gap / current**2
     r2_locked = r2_hot * (1.0 + 0.6 * np.exp(0.6 * column["deep_bar"]))
     resistive = np.minimum(0.85 * r1 + r2_locked, 0.85 * impedance)
     r2_locked = np.maximum(resistive - 0.85 * r1, 0.1 * resistive)
     x_locked = np.sqrt(impedance**2 - resistive**2)
     x_run = x_locked * (1.0 + 0.25 * np.exp(0.6 * column["leakage"]))
-    return x_locked, r2_locked, np.minimum(x_run, 0.45)
+    return x_locked, r2_locked, np.minimum(x_run, 0.45 / size)
 
 
 def _rotor_ratio(flux: Floats, p_gap: Floats, x2: Floats) -> Floats:

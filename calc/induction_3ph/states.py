@@ -51,7 +51,9 @@ class StateResult:
 
 def supply(base: Base, z: Floats, rows: Mapping[str, Floats], nominal: float, inverter: bool) -> Supply:
     """Build the supply of each row: level, unbalance, frequency, regulation."""
-    level = nominal * (1.0 + rows["level"] + rows["level_sd"] * z[:, INDEX["level"]])
+    level = nominal * (
+        1.0 + rows["level"] + np.hypot(rows["level_sd"], base.level_spread) * z[:, INDEX["level"]]
+    )
     sway = 0.0008 * z[:, INDEX["frequency"]]
     frequency = 1.0 + rows["frequency_change"] + sway
     if inverter:
