@@ -12,7 +12,7 @@ from calc.twin import Flags, Floats
 
 # Slips looked at first, in multiples of the rated slip: the torque is nearly straight below the third.
 _STEPS = np.array([0.2, 0.9, 2.0, 3.8, 6.8])
-_BEYOND = 5.0  # how fast the slip goes up past the pull-out point
+_BEYOND = 8.0  # how fast the slip goes up past the pull-out point
 _LARGEST = 0.6
 _STANDSTILL = 0.85
 _SMALLEST = 2e-5

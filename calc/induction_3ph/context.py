@@ -14,7 +14,10 @@ import msgspec
 from calc.sheet import Machine, Nameplate, Reading, Value
 
 # Nominal voltages in common use (IEC 60038 and ANSI C84.1, with their neighbours). [V]
-_STANDARD_V = (110, 208, 220, 230, 240, 380, 400, 415, 440, 460, 480, 500, 525, 575, 600, 660, 690, 2300, 3300, 4160, 6000, 6600, 11000)  # fmt: skip
+_STANDARD_V = (
+    *(110, 208, 220, 230, 240, 380, 400, 415, 440, 460, 480, 500, 525, 575, 600, 660, 690),
+    *(2300, 3300, 4160, 6000, 6600, 11000),
+)
 _SIXTY_HZ_V = frozenset({208, 460, 480, 575, 600, 2300, 4160})
 # Rated over read current, by state (common practice).
 _RATED_OVER = {"loaded": 1.25, "light_load": 2.0, "no_load": 2.4, "starting": 0.18, "stalled": 0.17}

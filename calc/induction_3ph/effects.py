@@ -107,7 +107,7 @@ def _series_resistance(severity: tuple[float, float]) -> tuple[Mode, ...]:
 
 
 def _open_line(_severity: tuple[float, float]) -> tuple[Mode, ...]:
-    """One line open before or behind the volt meter, or on the primary of a delta-star transformer (1 : 2 : 1)."""
+    """One line open before or behind the volt meter, or before a delta-star transformer (1 : 2 : 1)."""
     here = _with_stall(_lines("open_line", {0: 0.46, 1: 0.46}, line_r=OPEN), 0.5)
     upstream = tuple(
         replace(

@@ -15,9 +15,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from calc.errors import RangeError
+from calc.induction_3ph.context import filled
 from calc.lookup import code_letter_kva_per_hp
 from calc.nameplate import synchronous_speed_rpm
-from calc.induction_3ph.context import filled
 from calc.sheet import Machine, Nameplate, Reading
 from calc.twin import Floats
 from calc.typical import typical_efficiency, typical_locked_rotor_ratio, typical_power_factor
@@ -151,7 +151,7 @@ def read_base(machine: Machine, readings: Sequence[Reading] = ()) -> Base:
         slip_spread=slip_spread,
         loss_share=1.0 / eta - 1.0,
         loss_spread=0.07 if efficiency else 0.26,
-        # Neither output nor current: the whole machine may be larger or smaller. Current alone: the output may.
+        # Neither output nor current: the whole machine may be larger or smaller; current alone: the output.
         size_spread=0.45 if missing.power and missing.current else 0.0,
         output_spread=0.16 if missing.power and not missing.current else 0.0,
         level_spread=0.045 if missing.voltage else 0.0,

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import itertools
+import math
 
 import numpy as np
 
@@ -12,6 +13,16 @@ from rules.answer import Slip
 from rules.weigh.posterior import Posterior
 from rules.weigh.settings import weighing
 from rules.weigh.wording import title, values_of
+
+# Slips of the pen: a decimal point, a unit prefix, line for phase.
+_FACTORS = (
+    ("the decimal point one place to the right", 10.0),
+    ("the decimal point one place to the left", 0.1),
+    ("a unit a thousand times larger", 1000.0),
+    ("a unit a thousand times smaller", 0.001),
+    ("line instead of phase value", math.sqrt(3.0)),
+    ("phase instead of line value", 1.0 / math.sqrt(3.0)),
+)
 
 
 def slips(posterior: Posterior) -> tuple[Slip, ...]:
@@ -37,16 +48,17 @@ def _distance(seen: Seen, y: Floats, predicted: Floats) -> float:
 def _text(seen: Seen, predicted: Floats, mended: float) -> str:
     name = title(seen.ask.key)
     values = values_of(seen.y, seen.transform)
-    trials: list[tuple[str, Floats]] = [
-        (f"a factor of {factor:g} (decimal point or unit)", values * factor)
-        for factor in (10.0, 0.1, 1000.0, 0.001, np.sqrt(3.0), 1 / np.sqrt(3.0))
-    ]
+    trials: list[tuple[str, Floats]] = []
+    if seen.transform.kind != "linear" or seen.transform.scale != 1.0:
+        trials += [(f"{words} in the number", values * factor) for words, factor in _FACTORS]
     if len(values) == 3:
         trials += [
             ("another order of the three values", values[list(order)])
             for order in itertools.permutations(range(3))
             if order != (0, 1, 2)
         ]
+    if not trials:
+        return f"{name} fits no fault and no sound machine. Repeat it"
     scored = [
         (_distance(seen, project(trial[None, :], seen.transform)[0], predicted), words)
         for words, trial in trials
