@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 
 import msgspec
 
@@ -17,6 +17,7 @@ from rules.gate import gate
 from rules.knowledge import Fault, Knowledge, Refinement
 from rules.weigh import soft
 from rules.weigh.bands import bands
+from rules.weigh.conditioned import conditioned
 from rules.weigh.instruments import instrument_errors
 from rules.weigh.posterior import OTHER, Posterior, faults_of, weigh
 from rules.weigh.propose import propose
@@ -34,7 +35,7 @@ def diagnose(
     sheet: CaseSheet,
     *,
     knowledge: Knowledge,
-    odds: Mapping[str, float] | None = None,
+    own: Mapping[str, Sequence[float]] | None = None,
     name: str = "",
 ) -> Diagnosis:
     """Weigh one case sheet.
@@ -44,9 +45,9 @@ def diagnose(
     sheet : CaseSheet
         Machine, complaint, readings, observations.
     knowledge : Knowledge
-        From :func:`rules.loading.load_knowledge`.
-    odds : mapping of str to float, optional
-        Starting odds per fault where the shop's own confirmed cases shift them.
+        From :func:`rules.loading.load_knowledge`, or :func:`rules.learned.with_counts` of it.
+    own : mapping, optional
+        What this machine's windings read before, when they were sound: measure to values at 25 degC. [ohm]
     name : str
         The sheet's path as given, for the answer.
 
@@ -69,7 +70,8 @@ def diagnose(
             cautions=cautions_for(sheet, knowledge, states=(), faults=()),
             notes=(f"No model yet for a {kind}: limits and cautions only, no odds.",),
         )
-    posterior = weigh(sheet, knowledge, twin, odds)
+    twin = conditioned(twin, own or {}, knowledge)
+    posterior = weigh(sheet, knowledge, twin)
     state = gate(sheet, knowledge, suspects=posterior.odds)
     items = propose(posterior, knowledge, state)
     leading = [k for k, p in posterior.odds.items() if p > 0.1 and k not in {OTHER, "healthy"}]
@@ -95,7 +97,7 @@ def diagnose(
 
 
 def what_would_turn(
-    sheet: CaseSheet, *, knowledge: Knowledge, odds: Mapping[str, float] | None = None
+    sheet: CaseSheet, *, knowledge: Knowledge, own: Mapping[str, Sequence[float]] | None = None
 ) -> tuple[Turn, ...]:
     """Return the readings, with their values, that would turn the decision; empty without a model.
 
@@ -104,9 +106,10 @@ def what_would_turn(
     twin = twin_of(sheet.machine, sheet.readings)
     if twin is None or not faults_of(knowledge, sheet.machine.kind):
         return ()
-    posterior = weigh(sheet, knowledge, twin, odds)
+    twin = conditioned(twin, own or {}, knowledge)
+    posterior = weigh(sheet, knowledge, twin)
     items = propose(posterior, knowledge, gate(sheet, knowledge, suspects=posterior.odds))
-    return turns(posterior, knowledge, items, odds)
+    return turns(posterior, knowledge, items)
 
 
 def expect(sheet: CaseSheet, *, knowledge: Knowledge, name: str = "") -> Diagnosis:

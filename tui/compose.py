@@ -24,8 +24,12 @@ if TYPE_CHECKING:
     from calc.sheet import CaseSheet, Machine
     from casebook.book import Casebook
     from casebook.fold import Case
-    from rules.answer import Band, Diagnosis, FaultOdds
+    from rules.answer import Band, Diagnosis, FaultOdds, Turn
     from rules.knowledge import Knowledge
+
+
+# A case closed with a fault of these parts left no reference of a sound winding.
+_WINDING_PARTS = frozenset({"winding", "connection", "armature", "field"})
 
 
 @dataclass(frozen=True)
@@ -43,6 +47,7 @@ class Visit:
         self.book = book
         self.person = person
         self.knowledge = knowledge
+        self.use_learned = True
         self.case: Case = book.case(case)
         self._weighed: Weighed | None = None
         self._weighed_sheet: CaseSheet | None = None
@@ -178,9 +183,37 @@ class Visit:
         sheet = self.sheet
         if self._weighed is None or sheet != self._weighed_sheet:
             before = self._weighed.diagnosis if self._weighed else None
-            now = weigh(sheet, self.knowledge, name=self.number)
+            now = weigh(sheet, self.learned_knowledge(), name=self.number, own=self.own_windings())
             self._weighed, self._weighed_sheet = Weighed(now, moved(before, now)), sheet
         return self._weighed
+
+    def learned_knowledge(self) -> Knowledge:
+        """Return the knowledge, shifted by the shop's own confirmed cases where that is switched on."""
+        if not self.use_learned:
+            return self.knowledge
+        from rules.learned import Counts, with_counts
+
+        plate = self.sheet.machine.nameplate
+        counts = self.book.learned(self.kind, plate.number("power"))
+        plain = Counts(faults=counts.faults, complaints=counts.complaints, observations=counts.observations)
+        return with_counts(self.knowledge, self.kind, plain)
+
+    def own_windings(self) -> dict[str, tuple[float, ...]]:
+        """Return what this machine's sound windings read in earlier cases, at 25 degC. [ohm]"""
+        from casebook.history import own_references
+
+        tag = self.sheet.machine.tag
+        if not tag:
+            return {}
+        spoilt = [f.id for f in self.knowledge.faults.values() if f.part in _WINDING_PARTS]
+        found = own_references(self.book.history(tag), leave_out=self.case.id, spoilt_by=spoilt)
+        return {measure: reference.numbers_at_25_c for measure, reference in found.items()}
+
+    def turns(self) -> tuple[Turn, ...]:
+        """Return the readings that would turn the decision; takes some tenths of a second."""
+        from rules.diagnosing import what_would_turn
+
+        return what_would_turn(self.sheet, knowledge=self.learned_knowledge(), own=self.own_windings())
 
     def conclude(self, fault: FaultOdds, *, decision: str = "", note: str = "") -> str:
         """Store what the technician concludes before it is confirmed."""
@@ -227,11 +260,17 @@ def recall(book: Casebook, tag: str) -> Machine | None:
     return cases[-1].machine if cases else None
 
 
-def weigh(sheet: CaseSheet, knowledge: Knowledge, *, name: str = "") -> Diagnosis:
+def weigh(
+    sheet: CaseSheet,
+    knowledge: Knowledge,
+    *,
+    name: str = "",
+    own: Mapping[str, Sequence[float]] | None = None,
+) -> Diagnosis:
     """Weigh one sheet. The engine is loaded at the first call."""
     from rules.diagnosing import diagnose
 
-    return diagnose(sheet, knowledge=knowledge, name=name)
+    return diagnose(sheet, knowledge=knowledge, name=name, own=own)
 
 
 def moved(before: Diagnosis | None, now: Diagnosis) -> dict[str, float]:

@@ -117,9 +117,7 @@ def _error(errors: Mapping[str, InstrumentError], reading: Reading) -> Instrumen
     return errors.get(reading.measure, InstrumentError(share=0.03))
 
 
-def weigh(
-    sheet: CaseSheet, knowledge: Knowledge, twin: Twin, odds: Mapping[str, float] | None = None
-) -> Posterior:
+def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
     """Weigh one sheet.
 
     Parameters
@@ -130,13 +128,11 @@ def weigh(
         Faults, observations, complaints, readings.
     twin : Twin
         The model of this machine.
-    odds : mapping, optional
-        Starting odds per fault; the shipped ones of the kind where it is None.
 
     """
     w = weighing()
     faults = faults_of(knowledge, twin.kind)
-    start = {f.id: (odds or {}).get(f.id, f.odds[twin.kind]) for f in faults}
+    start = {f.id: f.odds[twin.kind] for f in faults}
     hypotheses, modes = hypotheses_of(faults, twin, start)
     seen, direct, rest = split_readings(sheet, twin, knowledge)
     data = frame(seen)

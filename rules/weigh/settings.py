@@ -64,6 +64,7 @@ class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=
     slip: SlipSettings
     pairs: PairSettings
     decisions: dict[str, str]
+    learned_weight: float
 
 
 @cache

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 import msgspec
@@ -56,7 +56,6 @@ def turns(
     posterior: Posterior,
     knowledge: Knowledge,
     items: tuple[NextItem, ...],
-    odds: Mapping[str, float] | None = None,
 ) -> tuple[Turn, ...]:
     """Return readings that would turn the decision; each was weighed with its value and did.
 
@@ -72,7 +71,7 @@ def turns(
     found: list[Turn] = []
     for item in items[:_TRIED]:
         for supposed in _suppositions(posterior, knowledge, item, now):
-            then = decision_of(weigh(supposed.sheet, knowledge, posterior.twin, odds))
+            then = decision_of(weigh(supposed.sheet, knowledge, posterior.twin))
             if then != now:
                 found.append(_turn(supposed, now, then))
                 break
