@@ -18,7 +18,7 @@ if TYPE_CHECKING:
 Raw = dict[str, Any]
 YES_NO: Final = {"yes": "yes", "no": "no"}
 _SIGNS: Final = {
-    "y": "star", "d": "delta", "yy": "double_star", "dd": "double_delta", "δ": "delta", "△": "delta", "wye": "star",
+    "y": "star", "d": "delta", "yy": "double_star", "dd": "double_delta", "wye": "star", "δ": "delta", "△": "delta",
 }  # fmt: skip
 """How plates write a connection."""
 
@@ -83,14 +83,14 @@ _DC: Final = (
     _CLASS, _AMBIENT, _DUTY,
 )  # fmt: skip
 _STANDS: Final = (
-    PlateLine("nominal_voltage", "SITE V", "nominal volts of the supply here", "voltage", "V", place="supply"),
+    PlateLine("nominal_voltage", "SITE V", "nominal volts here", "voltage", "V", place="supply"),
     PlateLine("nominal_frequency", "SITE HZ", "nominal frequency here", "frequency", "Hz", place="supply"),
     PlateLine("source", "FED BY", "mains, inverter, generator ...", choices=words.SOURCES, place="supply"),
     PlateLine("cable_length", "CABLE", "length of the motor cable, m or ft", "cable", "m", place="supply"),
-    PlateLine("starter", "STARTER", "direct, star delta, soft starter ...", choices=words.STARTERS, place="machine"),
+    PlateLine("starter", "STARTER", "direct, star delta, inverter ...", choices=words.STARTERS, place="machine"),
     PlateLine("type", "LOAD", "pump, fan, conveyor, hoist ...", choices=words.LOADS, place="load"),
     PlateLine("mount", "MOUNT", "rigid or flexible", choices=words.MOUNTS, place="machine"),
-    PlateLine("hazardous_area", "EX AREA", "explosive atmosphere: yes or no", choices=YES_NO, place="machine"),
+    PlateLine("hazardous_area", "EX AREA", "explosive air: yes or no", choices=YES_NO, place="machine"),
     PlateLine("brake", "BRAKE", "yes or no", choices=YES_NO, place="machine"),
     PlateLine(
         "thermal_protector", "TH PROT", "none, manual or automatic reset", choices=words.PROTECTORS,
@@ -119,14 +119,14 @@ def hear(line: PlateLine, text: str) -> tuple[str, bool]:
 
 
 def keep(line: PlateLine, text: str) -> str | list[str]:
-    """Return what the sheet holds for a line: text with its unit, a choice, or a list where the plate names two.
+    """Return what the sheet holds for a line: text with its unit, a choice, or a list for two ratings.
 
     Raises ValueTextError where the text is nothing of the kind.
     """
     text = text.strip()
     parts = [part.strip() for part in text.split("/")]
     if len(parts) > 1 and line.field in {"voltage", "current", "connection"}:
-        unit = parts[-1].lstrip("0123456789., ")
+        unit = parts[-1].lstrip("0123456789., ") if line.dimension else ""
         return [_one(line, part if not unit or unit in part else f"{part} {unit}") for part in parts]
     return _one(line, text)
 
@@ -168,7 +168,7 @@ def _choice(line: PlateLine, text: str) -> str:
 
 
 def machine_of(kind: str, tag: str, typed: dict[str, str]) -> Raw:
-    """Return the machine as a case sheet holds it, from the lines as typed. Lines that are blank are left out."""
+    """Return the machine as a case sheet holds it, from the lines as typed; blank ones are left out."""
     machine: Raw = {"kind": kind}
     if tag:
         machine["tag"] = tag

@@ -13,6 +13,7 @@ from textual.widgets.option_list import Option
 from tui.keys import bindings
 from tui.look import FAINT, STRONG, WATCH
 from tui.screens.page import Page
+from tui.widgets.lines import Lines
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
 from tui.widgets.typed import TypedLine
 
@@ -46,13 +47,13 @@ class CasebookPage(Page[None]):
         return [
             Ruled(id="title"),
             Horizontal(Static(row("search"), id="mark", markup=False), typed, id="entry"),
-            OptionList(id="list", markup=False, compact=True),
+            Lines(),
             Ruled(id="said"),
         ]
 
     def on_mount(self) -> None:
         """Put the focus on the list."""
-        self.set_focus(self.query_one(OptionList))
+        self.set_focus(self.query_one(Lines))
 
     def on_screen_resume(self, _event: ScreenResume) -> None:
         """List anew: a case may have been added."""
@@ -75,17 +76,12 @@ class CasebookPage(Page[None]):
         desk, typed = self.plateside.desk, self.query_one(Input).value
         self.shown = desk.rows(typed, limit=MOST)
         self.waiting = [name for name in desk.drafts.names() if name == "new_case"] if not typed else []
-        picker = self.query_one(OptionList)
+        picker = self.query_one(Lines)
         at = picker.highlighted or 0
-        picker.clear_options()
         now = datetime.now(UTC)
-        lines = [self.draft_line(name) for name in self.waiting] + [
-            case_line(case, now, self.room) for case in self.shown
-        ]
-        picker.add_options([Option(line) for line in lines])
-        if lines:
-            picker.highlighted = min(at, len(lines) - 1)
-        elif typed:
+        lines = [self.draft_line(name) for name in self.waiting]
+        picker.show([*lines, *(case_line(case, now, self.room) for case in self.shown)], at=at)
+        if typed and not self.shown:
             picker.add_option(Option(row("", ("no case holds all of these words", FAINT)), disabled=True))
 
     def draft_line(self, name: str) -> Content:
@@ -108,22 +104,22 @@ class CasebookPage(Page[None]):
         """Search as it is typed."""
         self.list_cases()
         if self.shown:
-            self.query_one(OptionList).highlighted = 0
+            self.query_one(Lines).highlighted = 0
 
     def entered(self, text: str) -> None:
         """Open what the search found first, or go back to the list."""
         if text.strip() and self.shown:
             self.action_open()
         else:
-            self.set_focus(self.query_one(OptionList))
+            self.set_focus(self.query_one(Lines))
 
     def action_cursor_down(self) -> None:
         """Move the bar down."""
-        self.query_one(OptionList).action_cursor_down()
+        self.query_one(Lines).action_cursor_down()
 
     def action_cursor_up(self) -> None:
         """Move the bar up."""
-        self.query_one(OptionList).action_cursor_up()
+        self.query_one(Lines).action_cursor_up()
 
     def on_option_list_option_selected(self, _event: OptionList.OptionSelected) -> None:
         """Open on Enter."""
@@ -131,7 +127,7 @@ class CasebookPage(Page[None]):
 
     def under_bar(self) -> CaseRow | None:
         """Return the case under the bar."""
-        at = self.query_one(OptionList).highlighted
+        at = self.query_one(Lines).highlighted
         place = -1 if at is None else at - len(self.waiting)
         return self.shown[place] if 0 <= place < len(self.shown) else None
 
@@ -140,7 +136,7 @@ class CasebookPage(Page[None]):
         """Open the case under the bar, or take up the draft."""
         from tui.flow import new_case, open_case
 
-        at, case = self.query_one(OptionList).highlighted, self.under_bar()
+        at, case = self.query_one(Lines).highlighted, self.under_bar()
         if case is not None:
             await open_case(self.plateside, case.id)
         elif at is not None and at < len(self.waiting):

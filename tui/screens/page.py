@@ -71,7 +71,7 @@ class Page(Screen[Answer]):
         """Show the key line, or what the terminal lacks."""
         size = self.app.size
         if size.width < NARROWEST or size.height < LOWEST:
-            text = f"needs {NARROWEST} x {LOWEST}, has {size.width} x {size.height}"
+            text = f"needs {NARROWEST}x{LOWEST}"
         else:
             text = key_line(self.KEYS, self.room - INDENT)
         self.query_one("#keys", Static).update(row("keys", (text, FAINT)))

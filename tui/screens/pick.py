@@ -6,12 +6,13 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from textual.containers import Horizontal
-from textual.widgets import Input, OptionList, Static
+from textual.widgets import Input, Static
 from textual.widgets.option_list import Option
 
 from tui.keys import bindings
 from tui.look import FAINT, PLAIN
 from tui.screens.page import Page
+from tui.widgets.lines import Lines
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
 from tui.widgets.typed import TypedLine
 
@@ -73,12 +74,12 @@ class Pick(Page[str]):
         return [
             Ruled(id="title"),
             Horizontal(Static("", id="mark", markup=False), TypedLine(self.typed), id="entry"),
-            OptionList(id="list", markup=False, compact=True),
+            Lines(),
         ]
 
     def on_mount(self) -> None:
         """Put the focus on the line to type."""
-        self.query_one("#list").can_focus = False
+        self.query_one(Lines).can_focus = False
         self.set_focus(self.query_one(Input))
 
     def show(self) -> None:
@@ -100,12 +101,9 @@ class Pick(Page[str]):
         made = self.fresh(text.strip())
         if made is not None and all(choice.key != made.key for choice in self.shown):
             self.shown.append(made)
-        picker = self.query_one("#list", OptionList)
-        picker.clear_options()
-        picker.add_options([Option(self.line(choice)) for choice in self.shown])
-        if self.shown:
-            picker.highlighted = 0
-        elif text:
+        picker = self.query_one(Lines)
+        picker.show([self.line(choice) for choice in self.shown])
+        if not self.shown and text:
             picker.add_option(Option(row("", ("nothing matches", FAINT)), disabled=True))
 
     def line(self, choice: Choice) -> Content:
@@ -116,11 +114,11 @@ class Pick(Page[str]):
 
     def action_cursor_down(self) -> None:
         """Move the bar down."""
-        self.query_one("#list", OptionList).action_cursor_down()
+        self.query_one(Lines).action_cursor_down()
 
     def action_cursor_up(self) -> None:
         """Move the bar up."""
-        self.query_one("#list", OptionList).action_cursor_up()
+        self.query_one(Lines).action_cursor_up()
 
     def entered(self, text: str) -> None:
         """Take the line under the bar, as the text last typed has it."""
@@ -130,6 +128,6 @@ class Pick(Page[str]):
 
     def action_choose(self) -> None:
         """Answer with the line under the bar."""
-        at = self.query_one("#list", OptionList).highlighted
+        at = self.query_one(Lines).highlighted
         if at is not None and at < len(self.shown):
             self.dismiss(self.shown[at].key)

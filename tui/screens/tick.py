@@ -5,11 +5,11 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from textual.widgets import OptionList
-from textual.widgets.option_list import Option
 
 from tui.keys import bindings
 from tui.look import STRONG
 from tui.screens.page import Page
+from tui.widgets.lines import Lines
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
 
 if TYPE_CHECKING:
@@ -36,22 +36,20 @@ class Tick(Page[dict[str, bool]]):
 
     def body(self) -> list[Widget]:
         """Return title and list."""
-        return [Ruled(id="title"), OptionList(id="list", markup=False, compact=True)]
+        return [Ruled(id="title"), Lines()]
 
     def on_mount(self) -> None:
         """Put the focus on the list."""
-        self.set_focus(self.query_one(OptionList))
+        self.set_focus(self.query_one(Lines))
 
     def show(self) -> None:
         """Show every question with its answer."""
         super().show()
         title = "What was seen, heard or smelt? y, n, Space; a blank line was not looked at."
         self.query_one("#title", Ruled).show(rows("seen", title, self.room, style=STRONG))
-        picker = self.query_one(OptionList)
+        picker = self.query_one(Lines)
         at = picker.highlighted or 0
-        picker.clear_options()
-        picker.add_options([Option(self.line(name, text)) for name, text in self.questions])
-        picker.highlighted = at if self.questions else None
+        picker.show([self.line(name, text) for name, text in self.questions], at=at)
 
     def line(self, name: str, text: str) -> Content:
         """Return one question as a ruled line."""
@@ -64,14 +62,14 @@ class Tick(Page[dict[str, bool]]):
 
     def action_next_answer(self) -> None:
         """Change the answer under the bar."""
-        at = self.query_one(OptionList).highlighted
+        at = self.query_one(Lines).highlighted
         if at is not None:
             answer = AFTER[self.answers[self.questions[at][0]]]
             self.put(answer if answer is not None or self.questions[at][0] not in self.before else True)
 
     def put(self, answer: bool | None) -> None:
         """Set the answer under the bar."""
-        picker = self.query_one(OptionList)
+        picker = self.query_one(Lines)
         if picker.highlighted is not None:
             name, text = self.questions[picker.highlighted]
             self.answers[name] = answer
@@ -79,13 +77,13 @@ class Tick(Page[dict[str, bool]]):
 
     def action_cursor_down(self) -> None:
         """Move the bar down, not past the end."""
-        picker = self.query_one(OptionList)
+        picker = self.query_one(Lines)
         if picker.highlighted is not None:
             picker.highlighted = min(picker.highlighted + 1, len(self.questions) - 1)
 
     def action_cursor_up(self) -> None:
         """Move the bar up."""
-        picker = self.query_one(OptionList)
+        picker = self.query_one(Lines)
         if picker.highlighted is not None:
             picker.highlighted = max(picker.highlighted - 1, 0)
 

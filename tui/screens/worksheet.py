@@ -14,6 +14,7 @@ from rules.gate import gate
 from tui.keys import bindings
 from tui.look import FAINT, STOP, STRONG, WATCH
 from tui.screens import worksheet_lines as blocks
+from tui.screens.reasons import reason_lines
 from tui.screens.worksheet_choices import values_wanted
 from tui.screens.worksheet_typing import WorksheetTyping
 from tui.widgets.ruled import Ruled, fill, row, rows
@@ -29,6 +30,10 @@ if TYPE_CHECKING:
 
 BELOW = 4
 """Lines below the blocks: two for what was understood, the line to type, the keys."""
+
+
+HIGH, MOST_REASONS = 32, 6
+"""Screens from this height on also say why, in so many lines."""
 
 
 class Worksheet(WorksheetTyping):
@@ -128,13 +133,20 @@ class Worksheet(WorksheetTyping):
                 (blocks.fault_lines(answer, self.weighed.moved, visit.knowledge, room), 3),
                 (reads, 3),
                 (findings, 2),
+                (self.why_lines(height), 0),
             ],
             height,
         )
-        order = (0, 1, 2, 6, 4, 5, 3)
+        order = (0, 1, 2, 6, 4, 7, 5, 3)
         lines = [shared[index] for index in order]
         spare = height - sum(map(len, lines))
         return self.spread(lines, spare)
+
+    def why_lines(self, height: int) -> list[Content]:
+        """Return what speaks for and against the likeliest fault, on screens that have the room."""
+        if height < HIGH or self.diagnosis is None or not self.diagnosis.faults:
+            return []
+        return reason_lines(self.diagnosis.faults[0], self.room)[:MOST_REASONS]
 
     @staticmethod
     def spread(lines: list[list[Content]], spare: int) -> list[Content]:
