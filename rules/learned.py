@@ -54,7 +54,7 @@ def with_counts(knowledge: Knowledge, kind: str, counts: Counts) -> Knowledge:
             odds={**whole.odds, kind: max(share * total, 1e-6)},
             observations_by_kind={
                 **whole.observations_by_kind,
-                kind: _chances(fault, knowledge, counts, weight),
+                kind: chances,
             },
             complaints_by_kind={**whole.complaints_by_kind, kind: _complaints(fault, counts, weight)},
         )
