@@ -96,8 +96,20 @@ class SinglePhaseTwin:
         return enumerate_modes(effect, self.designs, weights, severity, picked)
 
     def covers(self, ask: Ask) -> bool:
-        """Whether the model predicts this reading."""
-        return ask.state in COVERED.get(ask.measure, frozenset())
+        """Whether the model predicts this reading; none of a part that the motor most likely has not."""
+        if ask.state not in COVERED.get(ask.measure, frozenset()):
+            return False
+        return self._chance_of_part(ask) >= _LEAST_PART
+
+    def _chance_of_part(self, ask: Ask) -> float:
+        """Chance that the motor has the capacitor that is to be read."""
+        run, start = self._fit.known.has_run, self._has_start
+        has = {
+            "run_capacitance": run,
+            "start_capacitance": start,
+            "capacitor_voltage": run if ask.state in RUNNING_STATES else np.maximum(run, start),
+        }.get(ask.measure)
+        return 1.0 if has is None else float(has @ self.weights)
 
     def predict(self, z: Floats, attributes: Attributes, asks: Sequence[Ask]) -> list[Floats]:
         """Predict readings: one array of shape (rows, 1) per reading asked for, in inner units."""
@@ -201,3 +213,5 @@ class SinglePhaseTwin:
 
 _LEAST_SHARE = 0.02
 """A design that the plate makes less likely than this is not looked at."""
+_LEAST_PART = 0.35
+"""A capacitor that the motor less likely has than this is not asked for; one that was read is there."""

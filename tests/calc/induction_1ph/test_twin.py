@@ -10,8 +10,9 @@ from calc.induction_1ph.effects import DEFAULTS, VARIANTS
 from calc.induction_1ph.readings import COVERED
 from calc.induction_1ph.states import torque_asked, turning
 from calc.quantities import MEASURES
+from calc.sheet import Reading
 from calc.twin import Ask, attribute_rows
-from tests.calc.induction_1ph.plates import ALL, BOTH, RUN, SPLIT, START, machine, one
+from tests.calc.induction_1ph.plates import ALL, BOTH, RUN, SPLIT, START, machine, one, value
 
 ASKS = [Ask(measure, state) for measure, states in COVERED.items() for state in sorted(states)]
 
@@ -121,10 +122,23 @@ def test_a_severity_range_replaces_the_usual_one():
 
 
 def test_the_model_covers_only_readings_of_its_circuit():
-    twin = fit(machine(RUN))
+    twin = fit(machine(BOTH))
     assert all(twin.covers(ask) for ask in ASKS)
     assert not twin.covers(Ask("vibration_velocity", "loaded"))
     assert not twin.covers(Ask("main_resistance", "loaded"))
+
+
+def test_a_capacitor_is_asked_for_only_where_there_is_likely_one():
+    twin = fit(machine(RUN))
+    assert twin.covers(Ask("run_capacitance", "isolated"))
+    assert twin.covers(Ask("capacitor_voltage", "starting"))
+    assert not twin.covers(Ask("start_capacitance", "isolated"))
+    assert not fit(machine(START)).covers(Ask("capacitor_voltage", "loaded"))
+
+
+def test_a_capacitor_that_was_read_is_weighed_though_the_plate_is_silent():
+    read = Reading(measure="start_capacitance", state="isolated", values=(value(250e-6, "F"),))
+    assert fit(machine(RUN), readings=(read,)).covers(Ask("start_capacitance", "isolated"))
 
 
 @pytest.mark.parametrize("measure", COVERED)
