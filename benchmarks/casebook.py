@@ -223,7 +223,7 @@ def measure_merging(folder: Path, book: Casebook, entries: int) -> None:
         ("a casebook, half, all known", other),
     ):
         start = time.perf_counter()
-        report = merge_file(book, path, progress=lambda done, of: None)
+        report = merge_file(book, path, progress=lambda *at: None)
         row(
             f"merge {report.entries} {what}",
             f"{time.perf_counter() - start:.1f} s",

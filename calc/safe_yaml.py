@@ -92,6 +92,11 @@ def read_document(path: str | os.PathLike[str], *, limits: Limits = SHEET_LIMITS
     except (OSError, ValueError) as error:
         reason = error.strerror if isinstance(error, OSError) and error.strerror else "no path of a file"
         raise _wrong(file, reason, "a file that can be read") from error
+    return document_from_bytes(raw, file=file, limits=limits)
+
+
+def document_from_bytes(raw: bytes, *, file: str, limits: Limits = SHEET_LIMITS) -> Document:
+    """Turn the bytes of one document into plain data; raises ``InputError`` as ``read_document``."""
     if len(raw) > limits.bytes:
         raise _wrong(file, f"longer than {limits.bytes} bytes", f"at most {limits.bytes} bytes")
     if raw[:2] in {b"\xff\xfe", b"\xfe\xff"}:

@@ -23,7 +23,7 @@ def read_sheet(path: str | os.PathLike[str]) -> CaseSheet:
         With every problem of the sheet: file, line, field, given, allowed.
 
     """
-    return _decoded(read_document(path))
+    return sheet_from_document(read_document(path))
 
 
 def sheet_from_text(text: str, *, file: str) -> CaseSheet:
@@ -35,7 +35,7 @@ def sheet_from_text(text: str, *, file: str) -> CaseSheet:
         As ``read_sheet``.
 
     """
-    return _decoded(load_document(text, file=file))
+    return sheet_from_document(load_document(text, file=file))
 
 
 def sheet_from_plain(data: Mapping[str, object], *, file: str = "") -> CaseSheet:
@@ -47,10 +47,11 @@ def sheet_from_plain(data: Mapping[str, object], *, file: str = "") -> CaseSheet
         As ``read_sheet``, without lines.
 
     """
-    return _decoded(Document(file, _as_text(data), {}))
+    return sheet_from_document(Document(file, _as_text(data), {}))
 
 
-def _decoded(document: Document) -> CaseSheet:
+def sheet_from_document(document: Document) -> CaseSheet:
+    """Read a case sheet from plain data with its lines; raises ``InputError`` as ``read_sheet``."""
     decoder = Decoder(document)
     sheet = decoder.sheet()
     if sheet is None:

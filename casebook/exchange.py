@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import csv
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from datetime import UTC, datetime, timedelta
+from itertools import islice
 from pathlib import Path
-from typing import BinaryIO, Final, TextIO
+from typing import TYPE_CHECKING, BinaryIO, Final, TextIO
 
 import msgspec
 
@@ -19,6 +20,9 @@ from casebook.foreign import Item
 from casebook.history import inner_unit, moment_of_reading
 from casebook.merge import MergeReport, Progress, is_sheet, merge_file, merge_items
 from casebook.wire import write_lines
+
+if TYPE_CHECKING:
+    from calc.sheet_stream import SheetAt
 
 # A spreadsheet takes a cell that begins so for a formula (CSV injection; OWASP names these).
 _FORMULA: Final = ("=", "+", "-", "@", "\t", "\r", "\n", "|", "%")
@@ -64,28 +68,43 @@ def entries_of_sheet(sheet: CaseSheet, person: str, *, source: str) -> list[Entr
     case = id_from_content("case", clean_line(person), *content)
     times = [moment for reading in sheet.readings if (moment := moment_of_reading(reading)) is not None]
     start = min(times, default=datetime.now().astimezone())
-    bodies = (*bodies_of_sheet(sheet), Note(text=f"taken in from {clean_line(source)[:80]}"))
+    origin = Note(text=f"taken in from {clean_line(source)[:80]}")
     entries: list[Entry] = []
-    for place, body in enumerate(bodies):
+    for place, body in enumerate((*bodies_of_sheet(sheet), origin)):
         entry = make_entry(
             body,
             case=case,
             person=person,
             after=entries[-1].id if entries else None,
             at=start + timedelta(microseconds=place),
-            entry_id=id_from_content(case, str(place)),
+            # The sheet may come again in another file, which is another note on the same case.
+            entry_id=id_from_content(case, origin.text if body is origin else str(place)),
         )
         entries.append(entry)
     return entries
 
 
 def merge_any(book: Casebook, path: Path, person: str, *, progress: Progress | None = None) -> MergeReport:
-    """Merge a casebook, JSON Lines or a case sheet, whichever a file is."""
+    """Merge a casebook, JSON Lines, or case sheets (one or many), whichever a file is."""
     if not is_sheet(path):
         return merge_file(book, path, progress=progress)
     from calc.sheet_io import read_sheet  # noqa: PLC0415  (YAML only where a sheet comes)
+    from calc.sheet_stream import read_sheets  # noqa: PLC0415
 
-    return merge_sheet(book, read_sheet(path), person, source=path.name)
+    if sum(1 for _ in islice(read_sheets(path), 2)) < 2:
+        return merge_sheet(book, read_sheet(path), person, source=path.name)
+    items = _items_of_sheets(read_sheets(path), person, source=path.name)
+    return merge_items(book, items, source=path.name, progress=progress)
+
+
+def _items_of_sheets(sheets: Iterable[SheetAt], person: str, *, source: str) -> Iterator[Item]:
+    """Yield the entries of every sheet that can be read, and why where one cannot."""
+    for found in sheets:
+        where = f"the sheet from line {found.line}"
+        if found.sheet is not None:
+            yield from (Item(where, one) for one in entries_of_sheet(found.sheet, person, source=source))
+        else:
+            yield Item(where, None, str(found.error))
 
 
 def export_csv(cases: Iterable[Case], file: TextIO) -> int:

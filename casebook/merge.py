@@ -9,9 +9,10 @@ from __future__ import annotations
 import time
 from collections.abc import Callable, Iterable, Iterator
 from datetime import UTC, datetime
+from functools import partial
 from itertools import islice
 from pathlib import Path
-from typing import Final
+from typing import Final, Literal
 
 import msgspec
 
@@ -20,7 +21,9 @@ from casebook.entry import Entry, clean_line
 from casebook.foreign import Item, count_items, kind_of_file, read_items
 from casebook.store import TakenIn
 
-Progress = Callable[[int, int], None]
+Stage = Literal["taking in", "updating lists"]
+Progress = Callable[[Stage, int, int], None]
+"""Told which stage a merge is in, how much of it is done, and of how much; 0 is not known."""
 _BATCH: Final = 2000
 _REFUSALS_KEPT: Final = 200
 _TURN_S: Final = 0.01  # between batches others get their turn to write
@@ -63,7 +66,7 @@ class MergeReport(msgspec.Struct, kw_only=True):
 def merge_file(book: Casebook, path: Path, *, progress: Progress | None = None) -> MergeReport:
     """Merge another casebook, or entries as JSON Lines, into a casebook.
 
-    ``progress(done, of)`` is called between batches. Raises ``CasebookError`` when
+    ``progress(stage, done, of)`` is called between batches. Raises ``CasebookError`` when
     the file as a whole cannot be read; single bad entries are in the report.
     """
     expected = count_items(path) if progress is not None else 0
@@ -89,10 +92,10 @@ def merge_items(
         for batch in _batches(items):
             _take_in(book, batch, report)
             if progress is not None:
-                progress(report.entries, max(expected, report.entries))
+                progress("taking in", report.entries, max(expected, report.entries) if expected else 0)
             time.sleep(_TURN_S)
     finally:
-        book.store.catch_up()
+        book.store.catch_up(partial(progress, "updating lists") if progress else None)
     if report.new or report.refused:
         _remember(book, report)
     return report

@@ -59,7 +59,7 @@ def _report(parser: argparse.ArgumentParser) -> None:
 
 def _merge(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
-        "files", nargs="+", metavar="FILE", help="another casebook, exported JSON lines, or a case sheet"
+        "files", nargs="+", metavar="FILE", help="another casebook, exported JSON lines, or case sheets"
     )
 
 
@@ -68,6 +68,7 @@ def _export(parser: argparse.ArgumentParser) -> None:
     form = parser.add_mutually_exclusive_group()
     form.add_argument("--json-lines", action="store_true", help="every entry, one JSON object per line")
     form.add_argument("--csv", action="store_true", help="the readings as a table")
+    form.add_argument("--to", metavar="FOLDER", help="one sheet a file in this folder; none is written over")
 
 
 def _copy(parser: argparse.ArgumentParser) -> None:

@@ -151,11 +151,12 @@ def test_one_bad_line_is_left_out_and_the_others_come_in(book: Casebook, tmp_pat
         with (tmp_path / "x.jsonl").open("wb") as file:
             count = export_lines(other, file)
             file.write(b'{"id": 7}\n\n')
-    progress: list[tuple[int, int]] = []
+    progress: list[tuple[str, int, int]] = []
     report = merge_file(book, tmp_path / "x.jsonl", progress=lambda *at: progress.append(at))
     assert (report.new, report.refused) == (count, 1)
     assert report.refusals[0].where == f"line {count + 1}"
-    assert progress[-1][0] == count + 1
+    assert ("taking in", count + 1, count + 2) in progress  # the blank line was counted, too
+    assert progress[-1] == ("updating lists", 1, 1)
     assert report.says == f"x.jsonl: {count} new entries in 1 case, 0 known before, 1 left out"
 
 

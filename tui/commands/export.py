@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 import sys
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from calc.sheet_io import sheet_to_yaml
 from casebook.book import Casebook, open_casebook
 from casebook.exchange import export_csv, export_lines, sheet_for_export
 from tui import cli, places
-from tui.output import say
+from tui.output import say, warn
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -21,16 +22,35 @@ PAGE = 500
 
 
 def run(arguments: Namespace) -> int:
-    """Write the named cases, or all, to standard output."""
+    """Write the named cases, or all, to standard output or as files."""
     with open_casebook(places.existing_casebook(arguments)) as book:
         if arguments.json_lines:
             export_lines(book, sys.stdout.buffer, arguments.cases or None)
         elif arguments.csv:
             sys.stdout.reconfigure(newline="")  # type: ignore[union-attr]  # the writer ends its own lines
             export_csv(_cases(book, arguments.cases), sys.stdout)
+        elif arguments.to:
+            return _files(book, arguments.cases, Path(arguments.to).expanduser())
         else:
             _sheets(book, arguments.cases)
     return cli.DONE
+
+
+def _files(book: Casebook, names: list[str], folder: Path) -> int:
+    """Write cases as one file each, named by their numbers; return the exit status."""
+    folder.mkdir(parents=True, exist_ok=True)
+    status = cli.DONE
+    for case in _cases(book, names):
+        path = folder / f"{book.number(case.id)}.yaml"
+        try:
+            with path.open("x", encoding="utf-8", newline="\n") as file:
+                file.write(sheet_to_yaml(sheet_for_export(case)))
+        except FileExistsError:
+            warn(f"{path} exists already and stays as it is")
+            status = cli.FAILED
+        else:
+            say(str(path))
+    return status
 
 
 def _sheets(book: Casebook, names: list[str]) -> None:

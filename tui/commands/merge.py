@@ -1,8 +1,7 @@
-"""``plateside merge``: take in another casebook, exported entries, or a mailed case sheet."""
+"""``plateside merge``: take in another casebook, exported entries, or case sheets."""
 
 from __future__ import annotations
 
-import sys
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -11,11 +10,10 @@ from casebook.book import Casebook, open_casebook
 from casebook.exchange import merge_any
 from tui import cli, people, places
 from tui.output import say, warn
+from tui.progress import Bar
 
 if TYPE_CHECKING:
     from argparse import Namespace
-
-    from casebook.merge import Progress
 
 REFUSALS_SHOWN = 20
 
@@ -25,7 +23,7 @@ def run(arguments: Namespace) -> int:
     paths = [Path(name).expanduser() for name in arguments.files]
     missing = [path for path in paths if not path.exists()]
     for path in missing:
-        warn(f"{path}: no such file; a casebook, exported entries or a case sheet")
+        warn(f"{path}: no such file; a casebook, exported entries or case sheets")
     if len(missing) == len(paths):
         return cli.WRONG_INPUT
     worst = cli.WRONG_INPUT if missing else cli.DONE
@@ -38,24 +36,18 @@ def run(arguments: Namespace) -> int:
 
 def _one(book: Casebook, path: Path) -> int:
     """Merge one file and say what came of it; return the exit status."""
+    bar = Bar(path.name)
     try:
-        report = merge_any(book, path, people.login_name(), progress=_progress(path))
+        report = merge_any(book, path, people.login_name(), progress=bar.show if bar.is_seen else None)
     except PlatesideError as error:
+        bar.end()
         warn(str(error))
         return cli.WRONG_INPUT if isinstance(error, InputError) else cli.FAILED
+    finally:
+        bar.end()
     say(report.says)
     for refusal in report.refusals[:REFUSALS_SHOWN]:
         warn(f"left out: {refusal.where}: {refusal.why}")
+    if report.refused > REFUSALS_SHOWN:
+        warn(f"and {report.refused - REFUSALS_SHOWN} more were left out")
     return cli.FAILED if report.refused else cli.DONE
-
-
-def _progress(path: Path) -> Progress | None:
-    """Return what shows how far a merge is, on a terminal only."""
-    if not sys.stderr.isatty():
-        return None
-
-    def show(done: int, of: int) -> None:
-        end = "\n" if done >= of else ""
-        print(f"\r{path.name}: {done} of {of} entries", end=end, file=sys.stderr, flush=True)
-
-    return show
