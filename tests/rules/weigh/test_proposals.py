@@ -21,9 +21,9 @@ STOPS = ("shock_from_frame", "smoke_or_burning")
 
 @cache
 def sheets():
-    """Some seventy sheets of anything, all kinds with a model."""
+    """Some fifty sheets of anything, all kinds with a model."""
     found = []
-    for seed in range(5000, 5110):
+    for seed in range(5000, 5070):
         try:
             found.append(sheet_from_plain(nonsense(seed, wild=0.0, kinds=tuple(KINDS_HERE))))
         except InputError:
@@ -49,7 +49,7 @@ def gate_of(sheet, found):
 
 
 def test_the_sample_is_worth_asking():
-    assert len(answered()) > 50
+    assert len(answered()) > 30
     assert sum(len(found.next) for _, found in answered()) > 200
 
 
@@ -83,7 +83,7 @@ def test_after_a_complaint_that_means_stop_nothing_energised_is_proposed(kind, c
 
 
 def test_over_low_insulation_nothing_energised_is_proposed_whatever_else_is_known():
-    for sheet in sheets()[::3]:
+    for sheet in sheets()[::4]:
         low = msgspec.structs.replace(sheet, readings=(*sheet.readings, insulation("0.7 Mohm")))
         for item in answer(low).next:
             assert states_of(item) - ENERGISED_STATES, (low, item.key)

@@ -191,7 +191,7 @@ def test_a_reading_that_nobody_weighs_changes_nothing_and_is_named():
     known = {r.measure for r in posterior.direct} | {s.ask.measure for s in posterior.data.seen}
     measure = next(
         m for m in ("starts_per_hour", "drive_current", "dc_bus_voltage", "overload_class", "brake_voltage")
-        if m not in known and not any({m, f"{m}@standby"} & set(f.readings) for f in knowledge.faults.values())
+        if m not in known and not any({m, f"{m}@standby"} & {*f.readings} for f in knowledge.faults.values())
     )  # fmt: skip
     more = with_readings(sheet, [*sheet.readings, typed(measure, "standby", [4.0])])
     assert apart(odds(sheet), odds(more)) < 1e-12
@@ -336,6 +336,19 @@ def test_a_plate_that_contradicts_itself_does_not_decide_the_case(efficiency):
     found = odds(msgspec.structs.replace(sheet, machine=machine))
     assert all(math.isfinite(chance) for chance in found.values())
     assert found[OTHER] < 0.5
+
+
+@pytest.mark.parametrize("rpm", ["2890 rpm", "1455 rpm", "955 rpm"])
+def test_any_usual_speed_of_a_motor_whose_plate_cannot_be_read_is_no_fault(rpm):
+    found = answer(case("routine_check", reading("speed", "loaded", rpm), plate=False))
+    assert found.faults[0].id == "healthy"
+
+
+@pytest.mark.xfail(strict=True, reason="50 Hz is taken for granted where neither plate nor supply says")
+@pytest.mark.parametrize("rpm", ["3510 rpm", "1755 rpm", "1165 rpm"])
+def test_a_usual_speed_on_60_hz_of_a_motor_whose_plate_cannot_be_read_is_no_fault(rpm):
+    found = answer(case("routine_check", reading("speed", "loaded", rpm), plate=False))
+    assert found.faults[0].id == "healthy"
 
 
 @pytest.mark.xfail(strict=True, reason="the band of the ripple voltage runs over every number")
