@@ -52,7 +52,8 @@ def main() -> int:
         there = [
             (title, words) for title, words in parts if (ROOT / f"{words[0].replace('.', '/')}.py").exists()
         ]
-        return 0 if all([part(title, words) for title, words in there]) else 1
+        failed = [title for title, words in there if not part(title, words)]
+        return 1 if failed else 0
 
 
 if __name__ == "__main__":

@@ -1,6 +1,7 @@
 """Grade folders of cases and print the table of accuracy.
 
-``python -m benchmarks.accuracy FOLDER... [--limit N] [--shift NAME] [--interactive] [--per-fault] [--json FILE]``
+``python -m benchmarks.accuracy FOLDER... [--limit N] [--shift NAME] [--interactive]
+[--per-fault] [--json FILE]``
 
 Every case is answered three times: as received, with every reading that could be had and, with
 ``--interactive``, in a visit that answers up to eight proposals. The same folders give the same

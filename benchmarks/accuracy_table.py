@@ -62,7 +62,10 @@ def _visit_lines(visits: Visits) -> Iterator[str]:
 def _times(report: Report) -> Iterator[str]:
     took = np.array(report.took_ms)
     middle, high, worst = np.median(took), np.quantile(took, 0.95), np.max(took)
-    yield f"process time of an answer: {middle:.0f} ms median, {high:.0f} ms in 95 %, {worst:.0f} ms worst ({len(took)} answers)"
+    yield (
+        f"process time of an answer: {middle:.0f} ms median, 95 % below {high:.0f} ms,"
+        f" {worst:.0f} ms worst ({len(took)} answers)"
+    )
 
 
 def _bands(title: str, bands: dict[str, BandScore]) -> Iterator[str]:
@@ -70,7 +73,7 @@ def _bands(title: str, bands: dict[str, BandScore]) -> Iterator[str]:
     for key, band in bands.items():
         yield (
             f"  {key:36} n {band.coverage.n:4}  holds {band.coverage.as_share():22}"
-            f"  width {band.width:.2f}  reading/mid {band.reading_over_mid:.3f}"
+            f"  width {band.width:.3f}  reading/mid {band.reading_over_mid:.3f}"
         )
 
 

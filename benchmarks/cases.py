@@ -17,10 +17,11 @@ from typing import Any
 import numpy as np
 
 from benchmarks.generator.design import Motor, draw_motor
+from benchmarks.generator.faults import draw_trouble
 from benchmarks.generator.meters import draw_meters, read_everything
 from benchmarks.generator.noticing import answers, complaint, first_look, habits, signs_of
 from benchmarks.generator.running import Operation, operate
-from benchmarks.generator.trouble import Site, Trouble, draw_site, draw_trouble
+from benchmarks.generator.trouble import Site, Trouble, draw_site
 from benchmarks.graded import Case, save_case
 
 LOADS = {
@@ -58,7 +59,7 @@ def _draw_fault(random: np.random.Generator) -> str:
 
 
 def _is_apt(motor: Motor, site: Site, trouble: Trouble, operation: Operation) -> bool:
-    """Return whether the drawn case is one: sound machines start, a relay set low has something to trip on."""
+    """Return whether the case is one: sound machines start, a relay set low has something to trip on."""
     if trouble.fault == "healthy":
         return operation.mode == "runs"
     if trouble.relay_setting is not None:
@@ -117,7 +118,7 @@ def _case(
 
 
 def _circuit(motor: Motor) -> dict[str, Any]:
-    return dict(_plain(asdict(motor.winding) | {k: v for k, v in asdict(motor.rated).items()}))
+    return dict(_plain(asdict(motor.winding) | asdict(motor.rated)))
 
 
 def _plain(found: Any) -> Any:

@@ -33,7 +33,7 @@ class Case:
     @property
     def is_healthy(self) -> bool:
         """Whether nothing is wrong with the machine."""
-        return self.truth["fault"] == "healthy"
+        return bool(self.truth["fault"] == "healthy")
 
     @property
     def severity(self) -> str:

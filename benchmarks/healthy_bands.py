@@ -40,7 +40,7 @@ class BandScore:
 
 
 def score_bands(cases: Sequence[Case], answers: Sequence[Plain], *, twins: bool) -> dict[str, BandScore]:
-    """Score bands per quantity: on healthy cases, or with ``twins`` on what a faulty case reads without its fault."""
+    """Score bands per quantity on healthy cases, or with ``twins`` on faulty ones without their fault."""
     found: dict[str, list[tuple[bool, float, float]]] = {}
     for case, answer in zip(cases, answers, strict=True):
         if case.is_healthy is twins:

@@ -16,11 +16,14 @@ from benchmarks.scoring import Score, score
 from benchmarks.shifts import SHIFTS, shifted
 
 MOST_POINTS = 5.0  # target: top-1 lost with all readings
-HEAD = f"{'shift':20}{'first right':>24}{'points lost':>12}{'log-loss':>22}{'calibration':>22}{'healthy accused':>22}{'errors':>8}"
+HEAD = (
+    f"{'shift':20}{'first right':>24}{'points lost':>12}{'log-loss':>22}{'calibration':>22}"
+    f"{'healthy accused':>22}{'errors':>8}"
+)
 
 
 def rows(cases: Sequence[Case], answer: Answer, names: Sequence[str]) -> Iterator[str]:
-    """Yield the lines of the table: unshifted first, all readings; as received in brackets of its own table."""
+    """Yield the lines of both tables, with all readings and as received; unshifted first."""
     for title, complete in (("all readings", True), ("as received", False)):
         plain = _scored(cases, answer, complete)
         yield f"{title} (points lost: target at most {MOST_POINTS:g})"

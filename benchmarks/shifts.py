@@ -17,7 +17,7 @@ from typing import TypeAlias
 import numpy as np
 
 from benchmarks.graded import Case, Plain
-from benchmarks.texts import number_of, shown, stepped, unit_of, values_of, with_values
+from benchmarks.texts import number_of, shown, stepped, turned, unit_of, values_of, with_values
 
 Random: TypeAlias = np.random.Generator
 Change: TypeAlias = Callable[[Plain], Plain]
@@ -46,6 +46,7 @@ _PREFIXES = {
     "kV": "V",
     "kohm": "ohm",
 }
+_NO_POINT = frozenset({"degC", "dB"})  # read in whole numbers: there two digits change places
 _OHMS = frozenset(
     {
         "winding_resistance",
@@ -78,7 +79,7 @@ def coarse_meters(case: Case, random: Random) -> Case:
 
 
 def gross_slips(case: Case, random: Random) -> Case:
-    """One reading in fifty is noted wrongly: decimal point, order of the phases, or prefix of the unit."""
+    """One reading in fifty is noted wrongly: decimal point, digits, order of the phases, prefix."""
     keys = sorted({*case.truth["readings"], *map(_key, case.sheet.get("readings") or [])})
     wrong = {key: int(random.integers(3)) for key in keys if random.random() < SLIP_CHANCE}
     up = bool(random.integers(2))
@@ -200,5 +201,8 @@ def _slipped(reading: Plain, kind: int, up: bool, places: np.ndarray) -> Plain:
     if kind == 1 and all(unit_of(text) in _PREFIXES for text in texts):
         return with_values(reading, [f"{text.split()[0]} {_PREFIXES[unit_of(text)]}" for text in texts])
     at = int(places[0]) % len(texts)
-    texts[at] = shown(texts[at], 10.0 if up else 0.1)
+    if unit_of(texts[at]) in _NO_POINT:
+        texts[at] = turned(texts[at])
+    else:
+        texts[at] = shown(texts[at], 10.0 if up else 0.1)
     return with_values(reading, texts)

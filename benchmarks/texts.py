@@ -34,7 +34,7 @@ def unit_of(text: str) -> str:
 
 
 def stepped(number: float, step: float, unit: str) -> str:
-    """Return a number as a display with such steps shows it: 0.1 ohm steps show "0.4 ohm", never "0.40 ohm"."""
+    """Return a number as a display with such steps shows it: "0.4 ohm" in steps of 0.1 ohm."""
     decimals = max(0, math.ceil(-math.log10(step) - 1e-9))
     return f"{round(number / step) * step:.{decimals}f} {unit}".strip()
 
@@ -46,3 +46,14 @@ def shown(text: str, factor: float) -> str:
     value = float(number) * factor
     decimals = max(0, digits - 1 - math.floor(math.log10(abs(value)))) if value else 0
     return f"{value:.{decimals}f} {unit}".strip()
+
+
+def turned(text: str) -> str:
+    """Return a text with its last two digits in the wrong order."""
+    number, _, unit = text.partition(" ")
+    places = [place for place, sign in enumerate(number) if sign.isdigit()][-2:]
+    signs = list(number)
+    if len(places) == 2:
+        one, other = places
+        signs[one], signs[other] = signs[other], signs[one]
+    return f"{''.join(signs)} {unit}".strip()

@@ -197,7 +197,7 @@ def _once(machine: Winding, feeder: Feeder, wound: Wound, slip: Floats, gap: Flo
     rotor = [machine.rotor_admittance(s, feeder.hertz, leak, wound.rotor_heat) for s in (slip, 2.0 - slip)]
     cable = np.array([1.0 / (feeder.cable_ohm + max(r, 1e-6)) for r in feeder.after_ohm])
     return Flow(
-        volts=volts,
+        volts=np.asarray(volts),
         line_a=(volts[:, STARTER : STARTER + 3] - volts[:, MOTOR : MOTOR + 3]) * cable,
         forward_w=3 * np.abs(forward) ** 2 * rotor[0].real,
         backward_w=3 * np.abs(backward) ** 2 * rotor[1].real,

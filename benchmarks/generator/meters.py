@@ -208,15 +208,12 @@ def _turning(
     point: Point,
 ) -> list[Plain]:
     sync = 120 * operation.hertz / motor.rated.poles
+    shaking = vibration(motor, trouble, state) * meters.vibration_gain * np.exp(random.normal(0, 0.08))
     rpm = sync * (1 - point.slip) * meters.tacho_gain + random.normal(0, 0.4)
     found = [
         _reading("speed", state, f"{rpm:.0f} rpm"),
         _power(point, state, meters, random),
-        _reading(
-            "vibration_velocity",
-            state,
-            f"{vibration(motor, trouble, state) * meters.vibration_gain * np.exp(random.normal(0, 0.08)):.1f} mm/s",
-        ),
+        _reading("vibration_velocity", state, f"{shaking:.1f} mm/s"),
         _reading("sideband_level", state, f"{_sideband(motor, trouble, point, random):.0f} dB"),
     ]
     if state == "loaded":

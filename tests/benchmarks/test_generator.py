@@ -20,9 +20,19 @@ from benchmarks.graded import load_cases, save_case
 from calc.sheet_io import read_sheet
 
 MACHINE = Winding(
-    voltage_v=400, current_a=9.0, frequency_hz=50, poles=4, stator_ohm=2.0, stator_leakage_ohm=4.0, magnetising_ohm=120,
-    iron_ohm=2500, rotor_leakage_ohm=2.0, outer_ohm=6.0, inner_ohm=2.5, inner_leakage_ohm=3.0,
-)  # fmt: skip
+    voltage_v=400,
+    current_a=9.0,
+    frequency_hz=50,
+    poles=4,
+    stator_ohm=2.0,
+    stator_leakage_ohm=4.0,
+    magnetising_ohm=120,
+    iron_ohm=2500,
+    rotor_leakage_ohm=2.0,
+    outer_ohm=6.0,
+    inner_ohm=2.5,
+    inner_leakage_ohm=3.0,
+)
 SLIPS = np.array([1.0, 0.3, 0.03, 0.001])
 
 
@@ -72,8 +82,14 @@ def test_star_in_place_of_delta_takes_a_third_of_the_current():
 
 def test_terminal_ohms_of_star_and_delta_and_of_an_open_phase():
     feeder = balanced(MACHINE, 400, 50)
-    ohms = {name: terminal_ohms(MACHINE, joined_as_rated(MACHINE, **more), feeder, cold=0.5) for name, more in
-            {"delta": {}, "star": {"is_delta": False}, "open": {"extra_ohm": (OPEN_OHM, 0.0, 0.0)}}.items()}  # fmt: skip
+    ohms = {
+        name: terminal_ohms(MACHINE, joined_as_rated(MACHINE, **more), feeder, cold=0.5)
+        for name, more in {
+            "delta": {},
+            "star": {"is_delta": False},
+            "open": {"extra_ohm": (OPEN_OHM, 0.0, 0.0)},
+        }.items()
+    }
     assert ohms["delta"] == pytest.approx([2 / 3] * 3, rel=1e-4)
     assert ohms["star"] == pytest.approx([2.0] * 3, rel=1e-4)
     assert ohms["open"] == pytest.approx([2.0, 1.0, 1.0], rel=1e-4)

@@ -72,8 +72,13 @@ def test_severity_splits_at_three_and_seven_tenths():
 
 def test_of_two_faults_at_once_either_counts_and_their_odds_add():
     both = case("1", "overload", faults=["overload", "damp_insulation"])
-    joined = {"faults": [{"id": "damp_insulation+overload", "probability": 0.5}, {"id": "overload", "probability": 0.25},
-                         {"id": "healthy", "probability": 0.25}]}  # fmt: skip
+    joined = {
+        "faults": [
+            {"id": "damp_insulation+overload", "probability": 0.5},
+            {"id": "overload", "probability": 0.25},
+            {"id": "healthy", "probability": 0.25},
+        ]
+    }
     found = score([both], [joined])
     assert found.top1 == 1.0
     assert found.figures["log_loss"].value == pytest.approx(-math.log(0.75))
@@ -119,13 +124,25 @@ def test_nothing_to_count_is_no_share():
 
 
 def band(low, high, unit, **more):
-    return {"measure": "winding_resistance", "state": "isolated", "low": low, "mid": (low + high) / 2, "high": high, "unit": unit, **more}  # fmt: skip
+    return {
+        "measure": "winding_resistance",
+        "state": "isolated",
+        "low": low,
+        "mid": (low + high) / 2,
+        "high": high,
+        "unit": unit,
+        **more,
+    }
 
 
 def test_a_band_is_held_against_the_mean_of_three_at_its_own_temperature():
     # copper: 1.000 ohm at 20 degC is 254.5/294.5 -> 1.1572 ohm at 60 degC
-    reading = {"measure": "winding_resistance", "state": "isolated", "temperature": "20 degC",
-               "value": ["0.99 ohm", "1.00 ohm", "1.01 ohm"]}  # fmt: skip
+    reading = {
+        "measure": "winding_resistance",
+        "state": "isolated",
+        "temperature": "20 degC",
+        "value": ["0.99 ohm", "1.00 ohm", "1.01 ohm"],
+    }
     one = case("1", "healthy", 0.0, healthy_readings={"winding_resistance@isolated": reading})
     inside = {"expected": [band(1.15, 1.16, "ohm", temperature="60 degC")]}
     outside = {"expected": [band(0.99, 1.01, "ohm", temperature="60 degC")]}
