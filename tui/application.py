@@ -25,6 +25,7 @@ if TYPE_CHECKING:
 
     from rich.console import RenderableType
     from textual.filter import LineFilter
+    from textual.screen import Screen
 
 TERMINATED: Final = 128 + signal.SIGTERM
 
@@ -42,7 +43,9 @@ class PlatesideApp(App[int]):
         # ansi_color must be told to the constructor: later is too late for NO_COLOR
         super().__init__(driver_class=cell_driver(), ansi_color=True)
         self.register_theme(look.THEME)
-        self.theme = look.THEME.name
+        # told before anything runs: a change of theme later would parse every style twice
+        self.set_reactive(App.theme, look.THEME.name)
+        self.stylesheet.set_variables(self.get_css_variables())
         self.ascii_only = ascii_only
         self.desk = Desk(casebook, rules=rules, person=person)
         self.braille = bool(os.environ.get("PLATESIDE_BRAILLE")) and not ascii_only
@@ -54,13 +57,16 @@ class PlatesideApp(App[int]):
         filters = super().get_line_filters()
         return [*filters, self._plain] if self.ascii_only else filters
 
-    async def on_mount(self) -> None:
-        """Show the casebook, then load what is heavy."""
+    def get_default_screen(self) -> Screen[Any]:
+        """Return the first page: the casebook."""
+        return CasebookPage()
+
+    def on_mount(self) -> None:
+        """Watch for a dropped line, and load what is heavy after the first page stands."""
         if not self.is_headless:
             loop = asyncio.get_running_loop()
             loop.add_signal_handler(signal.SIGTERM, self.on_terminate)
             loop.add_signal_handler(signal.SIGHUP, self.on_hang_up)
-        await self.push_screen(CasebookPage())
         self.call_after_refresh(self.load)
 
     async def on_event(self, event: Event) -> None:

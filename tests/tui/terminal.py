@@ -52,6 +52,8 @@ class Terminal:
             cwd=ROOT,
         )
 
+        self.process.delaybeforesend = None
+
     def pump(self, patience_s: float = 0.03) -> bool:
         """Read what is there; return False when the process has ended."""
         try:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING, Final
+
 from textual import work
 from textual.widgets import Input
 
@@ -13,14 +15,27 @@ from tui.screens.worksheet_keys import WorksheetKeys
 from tui.widgets.typed import TypedLine
 from tui.words import question
 
-YES_WORDS = {"y": True, "yes": True, "n": False, "no": False}
+if TYPE_CHECKING:
+    from textual.timer import Timer
+
+REST_S: Final = 0.12
+"""How long the typing must rest before it is said in words what is understood."""
+YES_WORDS: Final = {"y": True, "yes": True, "n": False, "no": False}
 
 
 class WorksheetTyping(WorksheetKeys):
     """Understands while it is typed; Enter stores, or does what comes first."""
 
+    resting: Timer | None = None
+
     def on_input_changed(self, _event: Input.Changed) -> None:
-        """Say in words what is understood while it is typed; an empty line leaves what was said."""
+        """Wait until the typing rests; every key before costs nothing but its own cell."""
+        if self.resting is not None:
+            self.resting.stop()
+        self.resting = self.set_timer(REST_S, self.rest)
+
+    def rest(self) -> None:
+        """Say in words what is understood; an empty line leaves what was said."""
         text, item = self.query_one(TypedLine).value.strip(), self.target
         if not text:
             return
@@ -38,6 +53,8 @@ class WorksheetTyping(WorksheetKeys):
     def entered(self, text: str) -> None:
         """Enter: take the text out of the line at once, then do the obvious with it."""
         text = text.strip()
+        if self.resting is not None:
+            self.resting.stop()
         if self.is_weighing and self.chosen is None:
             self.say("Weighing what was stored; Enter once more when it says what comes next.", "")
             return
