@@ -18,7 +18,6 @@ from rules.knowledge import Fault, Knowledge, Refinement
 from rules.weigh import soft
 from rules.weigh.bands import bands
 from rules.weigh.conditioned import conditioned
-from rules.weigh.instruments import instrument_errors
 from rules.weigh.posterior import OTHER, Posterior, faults_of, weigh
 from rules.weigh.propose import propose
 from rules.weigh.reasons import reasons, rival
@@ -27,6 +26,7 @@ from rules.weigh.slips import slips
 from rules.weigh.turning import decision_of, turns
 
 SHOWN_REASONS = 6  # faults that get their reasons written out
+SHOWN_CAUSES = 0.005  # odds from which a fault is split into its causes
 NO_MODEL = "none"
 _OTHER_NAME = "something else, or a reading gone wrong"
 
@@ -150,7 +150,7 @@ def _within(
     fault: Fault, probability: float, posterior: Posterior, knowledge: Knowledge
 ) -> tuple[FaultOdds, ...]:
     """Causes inside a fault; together they carry at most the fault's own odds."""
-    if not fault.within:
+    if not fault.within or probability < SHOWN_CAUSES:
         return ()
     ways = _ways(fault.id, posterior)
     left = max(1.0 - sum(r.share for r in fault.within), 0.0)
@@ -203,7 +203,7 @@ def _soft(fault: Fault, posterior: Posterior, knowledge: Knowledge) -> float:
     total = soft.complaint_table(sheet.complaint, [fault], knowledge, kind, w)[fault.id]
     for name, answer in sheet.observations.items():
         total += soft.observation_table(name, answer, [fault], knowledge, w)[fault.id]
-    tables = soft.direct_tables(posterior.direct, [fault], knowledge, instrument_errors(knowledge), w)
+    tables = soft.direct_tables(posterior.direct, [fault], knowledge, posterior.meters, w)
     return total + sum(table[fault.id] for table in tables.values())
 
 

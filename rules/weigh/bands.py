@@ -74,7 +74,7 @@ def bands(
 ) -> tuple[Band, ...]:
     """Return the bands of the healthy machine for every reading the twin or the knowledge covers."""
     data, fit = _basis(twin, posterior)
-    meters = instrument_errors(knowledge)
+    meters = instrument_errors(knowledge) if posterior is None else dict(posterior.meters)
     speed = sheet.machine.nameplate.number("speed")
     asks = asks_of(sheet, twin, speed)
     looks = outlooks(twin, twin.modes("none")[:1], fit.z[:1], asks, meters)

@@ -125,7 +125,10 @@ class Fitter:
         return w
 
     def active(self, modes: Sequence[Mode]) -> NDArray[np.int64]:
-        """Latents that change any reading asked for, or the plate's misfit, in any mode."""
+        """Latents that change any reading asked for, or the plate's misfit, in any effect."""
+        first = {mode.effect: mode for mode in reversed(modes)}
+        last = {mode.effect: mode for mode in modes}
+        modes = [*first.values(), *last.values()]
         base = np.full((len(modes), self.dim + 1, self.dim), 0.3)
         base[:, 1:] += 1.1 * np.eye(self.dim)
         y, plate = self.predict(modes, base)
@@ -236,29 +239,30 @@ def _finish(
     chosen: NDArray[np.int64],
     best: NDArray[np.int64],
 ) -> Fit:
-    """Evidence, covariance and per-reading densities at the fits."""
-    y, dy, plate, dp = fitter.slopes(modes, z, active, 0.12)
-    r = fitter.residual(y)
-    cost = fitter.reading_cost(r)
-    _, curvature = fitter.normal(dy, dp, fitter.weights(r))
-    freedom = 0.5 * np.linalg.slogdet(curvature)[1]
-    stretch = 0.5 * (z**2).sum(axis=1) + 0.5 * (plate**2).sum(axis=1)
+    """Evidence, covariance and per-reading densities at the fits; given-up modes keep the bound they had."""
+    alive = np.isin(best, chosen)
+    rows = np.flatnonzero(alive)
+    y, dy, _, dp = fitter.slopes([modes[i] for i in rows], z[rows], active, 0.12)
+    _, curvature = fitter.normal(dy, dp, fitter.weights(fitter.residual(y)))
+    predicted, misfit = fitter.predict(modes, z[:, None, :])
+    taken = 0.5 * np.linalg.slogdet(curvature)[1]
+    freedom = np.full(len(modes), taken.max())
+    freedom[rows] = taken
     covariance = np.repeat(np.eye(fitter.dim)[None], len(modes), axis=0)
-    covariance[:, active[:, None], active[None, :]] = np.linalg.inv(curvature)
+    covariance[rows[:, None, None], active[:, None], active[None, :]] = np.linalg.inv(curvature)
     slope = np.zeros((len(modes), len(fitter.data.y), fitter.dim))
-    slope[:, :, active] = dy
+    slope[rows[:, None, None], np.arange(len(fitter.data.y))[:, None], active] = dy
     constants = np.array(
         [t_constant(g.stop - g.start) - np.log(fitter.data.sigma[g]).sum() for g in fitter.data.groups]
     )
-    alive = np.isin(best, chosen)
     return Fit(
         z=z,
         evidence=-value - freedom + fitter.data.constant,
-        predicted=y,
+        predicted=predicted[:, 0],
         slope=slope,
         covariance=covariance,
-        log_likelihood=-cost + constants,
-        stretch=stretch,
+        log_likelihood=-fitter.reading_cost(fitter.residual(predicted[:, 0])) + constants,
+        stretch=0.5 * (z**2).sum(axis=1) + 0.5 * (misfit[:, 0] ** 2).sum(axis=1),
         freedom=freedom,
         alive=alive,
     )

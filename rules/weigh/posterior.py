@@ -42,6 +42,8 @@ class Posterior:
     log_other: float
     odds: Mapping[str, float]
     """Probability of every fault and of ``other``; sums to one."""
+    meters: Mapping[str, InstrumentError]
+    """What the usual instrument of each measure may be off by."""
     direct: tuple[Reading, ...] = ()
     """Readings weighed by their spread under each fault."""
     unweighed: tuple[Reading, ...] = ()
@@ -88,14 +90,13 @@ def hypotheses_of(
 
 
 def split_readings(
-    sheet: CaseSheet, twin: Twin, knowledge: Knowledge
+    sheet: CaseSheet, twin: Twin, knowledge: Knowledge, meters: Mapping[str, InstrumentError]
 ) -> tuple[list[Seen], list[Reading], list[Reading]]:
     """Sort readings into those the model predicts, those with a spread per fault, and the rest.
 
     Of several readings of one key the last counts.
     """
     newest = {(r.key, r.at, r.position, r.links): r for r in sheet.readings}
-    errors = instrument_errors(knowledge)
     healthy = knowledge.faults.get("healthy")
     seen: list[Seen] = []
     direct: list[Reading] = []
@@ -103,7 +104,7 @@ def split_readings(
     for reading in newest.values():
         made = None
         if twin.covers(context(reading)):
-            made = make_seen(reading, twin, _error(errors, reading))
+            made = make_seen(reading, twin, _error(meters, reading))
         if made is not None:
             seen.append(made)
         elif healthy is not None and soft.spread_of(healthy, None, reading.measure, reading.state):
@@ -134,9 +135,10 @@ def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
     faults = faults_of(knowledge, twin.kind)
     start = {f.id: f.odds[twin.kind] for f in faults}
     hypotheses, modes = hypotheses_of(faults, twin, start)
-    seen, direct, rest = split_readings(sheet, twin, knowledge)
+    meters = instrument_errors(knowledge)
+    seen, direct, rest = split_readings(sheet, twin, knowledge, meters)
     data = frame(seen)
-    case = Case(sheet, knowledge, twin, data, tuple(direct))
+    case = Case(sheet, knowledge, twin, data, tuple(direct), meters)
     single = _weighed(case, faults, hypotheses, modes)
     log_other = _log_other(data, twin, single.tables, start, w)
     both = _pairs(case, single, start, log_other)
@@ -154,6 +156,7 @@ def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
         log_joint=whole.joint,
         log_other=log_other,
         odds=_odds(whole.hypotheses, whole.joint, log_other, whole.faults),
+        meters=meters,
         direct=tuple(direct),
         unweighed=tuple(rest),
     )
@@ -168,6 +171,7 @@ class Case:
     twin: Twin
     data: Frame
     direct: tuple[Reading, ...]
+    meters: Mapping[str, InstrumentError]
 
 
 @dataclass(frozen=True)
@@ -195,7 +199,7 @@ def _weighed(
     }
     for name, answer in sorted(sheet.observations.items()):
         tables[name] = soft.observation_table(name, answer, faults, knowledge, w)
-    tables |= soft.direct_tables(case.direct, faults, knowledge, instrument_errors(knowledge), w)
+    tables |= soft.direct_tables(case.direct, faults, knowledge, case.meters, w)
     states = state_terms(sheet, knowledge, case.twin, modes, fit, w)
     joint = np.array(
         [

@@ -26,7 +26,6 @@ from rules.gate import GateState
 from rules.knowledge import Fault, Knowledge, Observation, ReadingRule
 from rules.weigh import wording
 from rules.weigh.hypothesis import Hypothesis
-from rules.weigh.instruments import instrument_errors
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
@@ -200,7 +199,7 @@ def _readings(
     s: ProposalSettings,
 ) -> list[Candidate]:
     sheet, twin = posterior.sheet, posterior.twin
-    meters = instrument_errors(knowledge)
+    meters = posterior.meters
     taken = {r.key for r in sheet.readings}
     chances: dict[str, float] = {}
     for state, flags in lead.possible.items():

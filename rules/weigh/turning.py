@@ -14,7 +14,6 @@ from calc.twin import Ask, Twin
 from calc.values import parse_value
 from rules.answer import NextItem, Turn
 from rules.knowledge import Knowledge
-from rules.weigh.instruments import instrument_errors
 from rules.weigh.posterior import OTHER, Posterior, weigh
 from rules.weigh.predict import in_usual_unit, outlooks
 from rules.weigh.settings import weighing
@@ -132,7 +131,7 @@ def _value_under(
     if twin.covers(ask):
         mode = posterior.modes[best.place]
         z = posterior.fit.z[best.place][None]
-        look = outlooks(twin, [mode], z, [ask], instrument_errors(knowledge))[0]
+        look = outlooks(twin, [mode], z, [ask], dict(posterior.meters))[0]
         return tuple(_typed(measure, float(v)) for v in values_of(look.mean[0], look.transform))
     by_id = {f.id: f for f in posterior.faults}
     spread = spread_of(by_id[fault], knowledge.faults.get("healthy"), measure, state)
