@@ -66,7 +66,7 @@ async def test_a_reading_is_echoed_in_words_before_and_is_on_disk_after_enter(tm
         await keys(pilot, "enter")
         await until(pilot, "Before readings in the state 'loaded'")
         await keys(pilot, "enter")
-        await until(pilot, "stored")
+        await until(pilot, "stored:")
         assert newest(app).readings[0].what.reading.numbers == (15.2, 15.9, 14.8)
 
 
@@ -81,7 +81,7 @@ async def test_a_value_that_can_hardly_be_is_asked_about_once(tmp_path: Path):
         await until(pilot, "Enter again keeps it")
         assert not newest(app).readings
         await keys(pilot, "enter")
-        await until(pilot, "stored")
+        await until(pilot, "stored:")
         assert newest(app).readings[0].what.reading.numbers[0] == 4010.0
 
 
@@ -107,7 +107,7 @@ async def test_an_isolated_reading_waits_for_the_isolation_record(tmp_path: Path
         await until(pilot, "Not proved")
         assert not newest(app).isolation
         await keys(pilot, "y", "enter", "y", "enter", "enter")
-        await until(pilot, "stored")
+        await until(pilot, "stored: winding resistance")
         case = newest(app)
     assert case.isolation[0].what.by == "R. Varga"
     assert case.isolation[0].what.proved_dead
@@ -150,7 +150,7 @@ async def test_a_wrong_reading_is_typed_anew_and_the_log_keeps_both(tmp_path: Pa
         await keys(pilot, "f3", *"line current loaded", "enter", *"15.2 15.9 1.48", "enter")
         await until(pilot, "Before readings")
         await keys(pilot, "enter")
-        await until(pilot, "stored")
+        await until(pilot, "stored:")
         await settled(pilot)
         await keys(pilot, "ctrl+r")
         await until(pilot, "What was wrong?")
@@ -158,7 +158,7 @@ async def test_a_wrong_reading_is_typed_anew_and_the_log_keeps_both(tmp_path: Pa
         await until(pilot, "type it anew")
         await keys(pilot, "enter")
         await keys(pilot, *"15.2 15.9 14.8", "enter")
-        await until(pilot, "stored")
+        await until(pilot, "stored:")
         case = newest(app)
     assert [one.what.reading.numbers for one in case.readings] == [(15.2, 15.9, 14.8)]
     assert sum(line.entry.kind == "reading" for line in case.lines) == 1
@@ -172,7 +172,7 @@ async def test_what_was_seen_is_ticked_with_y_and_n(tmp_path: Path):
         await keys(pilot, "f7")
         await until(pilot, "What was seen")
         await keys(pilot, "y", "n", "enter")
-        await until(pilot, "stored")
+        await until(pilot, "stored:")
         answers = newest(app).observations
     assert sorted(answers.values()) == [False, True]
 
