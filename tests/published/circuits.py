@@ -117,7 +117,6 @@ def product_circuit(machine: Published) -> Circuit:
         slip=one(machine.slip),
         flux=one(1.0),
         rise_k=one(60.0),
-        size=one(1.0),
     )
 
 
