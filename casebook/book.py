@@ -18,7 +18,7 @@ from casebook.entry import Entry, clean_line, encode_body, make_entry, new_id
 from casebook.errors import AmbiguousCase, BadEntry, UnknownCase
 from casebook.fold import Case, fold_case, fold_machine
 from casebook.history import MachineHistory, machine_history
-from casebook.learned import LearnedCounts, Score, learned_counts, scoreboard
+from casebook.learned import LearnedCounts, Score, learned_counts, learned_groups, scoreboard
 from casebook.numbers import SHOWN, full_number, read_number, shown_number
 from casebook.place import default_path
 from casebook.sqlite_store import SqliteStore
@@ -116,9 +116,13 @@ class Casebook:
         """Return one machine's readings over time."""
         return machine_history(tag, self.machine_cases(tag))
 
-    def learned(self, kind: str, power_w: float | None = None) -> LearnedCounts:
+    def learned(self, kind: str, power_w: float | None = None, *, leave_out: str = "") -> LearnedCounts:
         """Return the confirmed faults on machines of a kind and size, for the engine."""
-        return learned_counts(self.store.outcomes(kind), kind=kind, power_w=power_w)
+        return learned_counts(self.store.outcomes(kind), kind=kind, power_w=power_w, leave_out=leave_out)
+
+    def learned_groups(self, kind: str = "") -> list[LearnedCounts]:
+        """Return the confirmed faults by kind and size class; of one kind, or of all."""
+        return learned_groups(self.store.outcomes(kind))
 
     def scoreboard(self) -> list[Score]:
         """Return how well the odds did, all kinds first."""

@@ -1,8 +1,7 @@
 """What the shop's own confirmed faults say about the odds, and how well the first suspects did.
 
-Only faults confirmed by teardown or repair count. The shipped odds are a Dirichlet
-prior with the weight of a few cases; the shop's counts are added to it. Each shift can be shown and left
-out. Odds never open the gate, learned odds least of all.
+Only faults confirmed by teardown or repair count. Here they are counted; what the counts do to
+odds and chances is said in one place, ``rules.learned``.
 """
 
 from __future__ import annotations
@@ -17,7 +16,6 @@ import msgspec
 from casebook.store import Outcome
 
 CONFIRMED: Final = frozenset({"teardown", "repair"})
-PRIOR_CASES: Final = 5.0
 # Size classes by rated output, in W: decades, as motor lists are kept. Below 1 kW machines have
 # other tolerances (IEC 60034-1), above 100 kW other windings and starting.
 SIZE_EDGES_W: Final = (1e3, 1e4, 1e5)
@@ -37,15 +35,6 @@ class LearnedCounts(msgspec.Struct, frozen=True, kw_only=True):
     faults: dict[str, float] = {}
     complaints: dict[str, dict[str, float]] = {}
     observations: dict[str, dict[str, tuple[float, float]]] = {}
-
-
-class Shift(msgspec.Struct, frozen=True, kw_only=True):
-    """How one starting chance was moved by the shop's own cases."""
-
-    fault: str
-    shipped: float
-    shifted: float
-    cases: float
 
 
 class Bin(msgspec.Struct, frozen=True, kw_only=True):
@@ -81,28 +70,70 @@ def size_class(power_w: float | None, *, edges_w: tuple[float, ...] = SIZE_EDGES
     return None if power_w is None else sum(power_w >= edge for edge in edges_w)
 
 
-def learned_counts(outcomes: Iterable[Outcome], *, kind: str, power_w: float | None = None) -> LearnedCounts:
-    """Count the confirmed faults on machines of a kind and the size class of ``power_w`` (None: any)."""
+def learned_counts(
+    outcomes: Iterable[Outcome], *, kind: str, power_w: float | None = None, leave_out: str = ""
+) -> LearnedCounts:
+    """Count the confirmed faults on machines of a kind and the size class of ``power_w`` (None: any).
+
+    ``leave_out`` is the case at hand: it is no evidence for itself.
+    """
     size = size_class(power_w)
-    cases = 0
-    faults: dict[str, float] = {}
-    complaints: dict[str, dict[str, float]] = {}
-    seen: dict[str, dict[str, tuple[float, float]]] = {}
+    counting = _Counting(kind, size)
     for outcome in outcomes:
-        if outcome.kind != kind or outcome.confirmed not in CONFIRMED or not outcome.found:
-            continue
-        if size is not None and size_class(outcome.power_w) != size:
-            continue
-        cases += 1
+        is_alike = outcome.kind == kind and (size is None or size_class(outcome.power_w) == size)
+        if is_alike and is_confirmed(outcome) and outcome.case != leave_out:
+            counting.add(outcome)
+    return counting.counts()
+
+
+def learned_groups(outcomes: Iterable[Outcome]) -> list[LearnedCounts]:
+    """Count the confirmed faults by kind and size class, and once more for each kind as a whole.
+
+    The whole (``size`` None) is what holds for a machine whose plate says no rated output.
+    """
+    groups: dict[tuple[str, int | None], _Counting] = {}
+    for outcome in filter(is_confirmed, outcomes):
+        for size in {None, size_class(outcome.power_w)}:
+            key = (outcome.kind, size)
+            groups.setdefault(key, _Counting(*key)).add(outcome)
+    order = sorted(groups, key=lambda key: (key[0], -1 if key[1] is None else key[1]))
+    return [groups[key].counts() for key in order]
+
+
+def is_confirmed(outcome: Outcome) -> bool:
+    """Whether a closed case says what was found, and that it was seen or cured."""
+    return outcome.confirmed in CONFIRMED and bool(outcome.found)
+
+
+class _Counting:
+    """Counts of one kind and size class that grow case by case."""
+
+    def __init__(self, kind: str, size: int | None) -> None:
+        self.kind, self.size, self.cases = kind, size, 0
+        self.faults: dict[str, float] = {}
+        self.complaints: dict[str, dict[str, float]] = {}
+        self.seen: dict[str, dict[str, tuple[float, float]]] = {}
+
+    def add(self, outcome: Outcome) -> None:
+        """Count one confirmed case."""
+        self.cases += 1
         found = outcome.found.split("+")
         for fault in found:
             share = 1 / len(found)
-            faults[fault] = faults.get(fault, 0.0) + share
-            _add(complaints.setdefault(fault, {}), outcome.complaint, share)
-            _tally(seen.setdefault(fault, {}), outcome.observations, share)
-    return LearnedCounts(
-        kind=kind, size=size, cases=cases, faults=faults, complaints=complaints, observations=seen
-    )
+            _add(self.faults, fault, share)
+            _add(self.complaints.setdefault(fault, {}), outcome.complaint, share)
+            _tally(self.seen.setdefault(fault, {}), outcome.observations, share)
+
+    def counts(self) -> LearnedCounts:
+        """Return what was counted."""
+        return LearnedCounts(
+            kind=self.kind,
+            size=self.size,
+            cases=self.cases,
+            faults=self.faults,
+            complaints=self.complaints,
+            observations=self.seen,
+        )
 
 
 def _add(counts: dict[str, float], name: str, share: float) -> None:
@@ -115,66 +146,11 @@ def _tally(counts: dict[str, tuple[float, float]], observations: Mapping[str, bo
         counts[name] = (yes + share, no) if answer else (yes, no + share)
 
 
-def shifted_odds(
-    shipped: Mapping[str, float],
-    counts: Mapping[str, float],
-    weight: float = PRIOR_CASES,
-    *,
-    within: Mapping[str, str] | None = None,
-) -> dict[str, float]:
-    """Return starting odds after the shop's own counts: the mean of a Dirichlet distribution.
-
-    ``shipped`` sums to 1 and counts as ``weight`` cases. ``within`` maps a refinement to the
-    parent that carries its sum. Faults that ``shipped`` does not know count as "other" if
-    it has that, else not at all. Without counts the shipped odds come back.
-    """
-    total = sum(shipped.values())
-    if not total > 0 or not weight > 0:
-        raise ValueError("shipped odds and their weight must be above zero")
-    known = _known_counts(shipped, counts, within or {})
-    cases = sum(known.values())
-    return {
-        fault: (weight * odds / total + known.get(fault, 0.0)) / (weight + cases)
-        for fault, odds in shipped.items()
-    }
-
-
-def _known_counts(
-    shipped: Mapping[str, float], counts: Mapping[str, float], within: Mapping[str, str]
-) -> dict[str, float]:
-    known: dict[str, float] = {}
-    for fault, count in counts.items():
-        parent = fault if fault in shipped else within.get(fault, "other")
-        if parent in shipped:
-            known[parent] = known.get(parent, 0.0) + count
-    return known
-
-
-def shifted_chance(shipped: float, yes: float, no: float, weight: float = PRIOR_CASES) -> float:
-    """Return the chance of an observation after the shop's own counts: the mean of a Beta distribution."""
-    return (weight * shipped + yes) / (weight + yes + no)
-
-
-def shifts(shipped: Mapping[str, float], shifted: Mapping[str, float], counts: LearnedCounts) -> list[Shift]:
-    """Return what moved, the largest change first, to be shown before it is used."""
-    moved = [
-        Shift(
-            fault=fault,
-            shipped=before,
-            shifted=shifted.get(fault, before),
-            cases=counts.faults.get(fault, 0.0),
-        )
-        for fault, before in shipped.items()
-        if abs(shifted.get(fault, before) - before) > 1e-9
-    ]
-    return sorted(moved, key=lambda shift: -abs(shift.shifted - shift.shipped))
-
-
 def scoreboard(outcomes: Iterable[Outcome]) -> list[Score]:
     """Return how well the odds did: all kinds first (kind ""), then each kind by name."""
     tallies: dict[str, _Tally] = {}
     for outcome in outcomes:
-        if outcome.confirmed in CONFIRMED and outcome.found and outcome.odds:
+        if is_confirmed(outcome) and outcome.odds:
             for kind in ("", outcome.kind):
                 tallies.setdefault(kind, _Tally()).add(outcome)
     return [tallies[kind].score(kind) for kind in sorted(tallies)]

@@ -54,6 +54,7 @@ def test_help_is_printed_without_loading_anything_heavy():
         ["cases", "--json", "pump"],
         ["report", "C-000000"],
         ["export"],
+        ["learned"],
         ["check-rules"],
         ["merge", "/nonexistent"],
         ["copy", "/nonexistent/copy.db"],

@@ -14,6 +14,7 @@ import msgspec
 from calc.quantities import ENERGISED_STATES
 from casebook import bodies
 from rules.findings import findings
+from tui.experience import Experience
 from tui.typed import Understood, understand
 from tui.version import VERSION
 from tui.words import number_range, reading_text
@@ -26,10 +27,6 @@ if TYPE_CHECKING:
     from casebook.fold import Case
     from rules.answer import Band, Diagnosis, FaultOdds, Turn
     from rules.knowledge import Knowledge
-
-
-# A case closed with a fault of these parts left no reference of a sound winding.
-_WINDING_PARTS = frozenset({"winding", "connection", "armature", "field"})
 
 
 @dataclass(frozen=True)
@@ -49,8 +46,9 @@ class Visit:
         self.knowledge = knowledge
         self.use_learned = True
         self.case: Case = book.case(case)
+        self.experience = Experience(book, self.case.id, knowledge)
         self._weighed: Weighed | None = None
-        self._weighed_sheet: CaseSheet | None = None
+        self._weighed_from: tuple[CaseSheet, bool] | None = None
 
     @classmethod
     def new(cls, book: Casebook, sheet: CaseSheet, *, person: str, knowledge: Knowledge) -> Visit:
@@ -180,34 +178,24 @@ class Visit:
 
     def weigh(self) -> Weighed:
         """Return the answer to the case as it stands; worked out again only when the sheet has changed."""
-        sheet = self.sheet
-        if self._weighed is None or sheet != self._weighed_sheet:
+        sheet, weighed_from = self.sheet, (self.sheet, self.use_learned)
+        if self._weighed is None or weighed_from != self._weighed_from:
             before = self._weighed.diagnosis if self._weighed else None
             now = weigh(sheet, self.learned_knowledge(), name=self.number, own=self.own_windings())
-            self._weighed, self._weighed_sheet = Weighed(now, moved(before, now)), sheet
+            self._weighed, self._weighed_from = Weighed(now, moved(before, now)), weighed_from
         return self._weighed
 
     def learned_knowledge(self) -> Knowledge:
         """Return the knowledge, shifted by the shop's own confirmed cases where that is switched on."""
-        if not self.use_learned:
-            return self.knowledge
-        from rules.learned import Counts, with_counts
+        return self.experience.knowledge(self.sheet.machine) if self.use_learned else self.knowledge
 
-        plate = self.sheet.machine.nameplate
-        counts = self.book.learned(self.kind, plate.number("power"))
-        plain = Counts(faults=counts.faults, complaints=counts.complaints, observations=counts.observations)
-        return with_counts(self.knowledge, self.kind, plain)
+    def learned_words(self) -> str:
+        """Return the sentence that says by what the odds were shifted; nothing where they were not."""
+        return self.experience.words(self.sheet.machine) if self.use_learned else ""
 
     def own_windings(self) -> dict[str, tuple[float, ...]]:
         """Return what this machine's sound windings read in earlier cases, at 25 degC. [ohm]"""
-        from casebook.history import own_references
-
-        tag = self.sheet.machine.tag
-        if not tag:
-            return {}
-        spoilt = [f.id for f in self.knowledge.faults.values() if f.part in _WINDING_PARTS]
-        found = own_references(self.book.history(tag), leave_out=self.case.id, spoilt_by=spoilt)
-        return {measure: reference.numbers_at_25_c for measure, reference in found.items()}
+        return self.experience.own_windings(self.sheet.machine.tag)
 
     def turns(self) -> tuple[Turn, ...]:
         """Return the readings that would turn the decision; takes some tenths of a second."""

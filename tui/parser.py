@@ -55,6 +55,7 @@ def _report(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--tag", action="store_true", help="only the tag that goes with the motor to the repair shop"
     )
+    _no_learned(parser, default=argparse.SUPPRESS)
 
 
 def _merge(parser: argparse.ArgumentParser) -> None:
@@ -69,6 +70,11 @@ def _export(parser: argparse.ArgumentParser) -> None:
     form.add_argument("--json-lines", action="store_true", help="every entry, one JSON object per line")
     form.add_argument("--csv", action="store_true", help="the readings as a table")
     form.add_argument("--to", metavar="FOLDER", help="one sheet a file in this folder; none is written over")
+
+
+def _learned(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("kind", nargs="?", metavar="KIND", help="one machine kind, such as induction_3ph")
+    parser.add_argument("--json", action="store_true", help="one JSON object per line: groups, then scores")
 
 
 def _copy(parser: argparse.ArgumentParser) -> None:
@@ -91,6 +97,7 @@ def _demo(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--plain", action="store_true", default=argparse.SUPPRESS, help="plain questions and answers"
     )
+    _no_learned(parser, default=argparse.SUPPRESS)
 
 
 COMMANDS = (
@@ -102,6 +109,7 @@ COMMANDS = (
     Command("report", "the printed sheet of one case", "report", _report),
     Command("merge", "take in another casebook, or exported entries", "merge", _merge),
     Command("export", "cases as YAML sheets, JSON lines or CSV", "export", _export),
+    Command("learned", "what confirmed cases do to the odds, and how well the odds did", "learned", _learned),
     Command("copy", "a whole copy of the casebook, taken while others write", "copy", _copy),
     Command("salvage", "save what can be read of a damaged casebook", "salvage", _salvage),
     Command("check-rules", "check the rules, and a shop's own with them", "check_rules", _check_rules),
@@ -129,6 +137,7 @@ def build() -> argparse.ArgumentParser:
     parser.add_argument(
         "--plain", action="store_true", help="the visit as plain questions and answers, no full screen"
     )
+    _no_learned(parser, default=False)
     _shared(parser, default=None)
     words = parser.add_subparsers(dest="command", metavar="COMMAND", parser_class=Parser)
     for command in COMMANDS:
@@ -138,6 +147,15 @@ def build() -> argparse.ArgumentParser:
         command.arguments(child)
         _shared(child, default=argparse.SUPPRESS)
     return parser
+
+
+def _no_learned(parser: argparse.ArgumentParser, *, default: object) -> None:
+    parser.add_argument(
+        "--no-learned",
+        action="store_true",
+        default=default,
+        help="weigh with the shipped odds, not shifted by the shop's confirmed cases",
+    )
 
 
 def _shared(parser: argparse.ArgumentParser, *, default: str | None) -> None:

@@ -43,24 +43,27 @@ HELP = (
 )
 
 
-def converse(path: Path, knowledge: Knowledge) -> int:
+def converse(path: Path, knowledge: Knowledge, *, use_learned: bool = True) -> int:
     """Hold one visit; every answer that is accepted is in the casebook. Returns the exit status."""
     with open_casebook(path) as book:
         for note in book.notes:
             tell(note)
         try:
-            _visit(book, Drafts(path), knowledge)
+            _visit(book, Drafts(path), knowledge, use_learned=use_learned)
         except Left:
             say("Left. What was accepted is in the casebook.")
     return 0
 
 
-def _visit(book: Casebook, drafts: Drafts, knowledge: Knowledge) -> None:
+def _visit(book: Casebook, drafts: Drafts, knowledge: Knowledge, *, use_learned: bool) -> None:
     """Ask who and which case, then go on until the case is closed or left."""
     person = ask("Your name", str(drafts.recall("person") or people.login_name()))
     drafts.remember("person", person)
     visit = ask_case(book, drafts, person, knowledge)
+    visit.use_learned = use_learned
     say(f"Case {visit.number}. Type help for the words that are understood.")
+    if said := visit.learned_words():
+        tell(f"Note: {said}")
     show(visit)
     while visit.case.status == "open":
         try:

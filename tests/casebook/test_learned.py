@@ -1,18 +1,14 @@
-"""Only confirmed faults teach; they shift the starting odds, and the shift can be shown."""
+"""Only confirmed faults teach; they are counted by kind and size, and the odds that were shown are scored."""
 
 import pytest
-from hypothesis import given
-from hypothesis import strategies as st
 
+from calc.sheet import Machine
 from casebook import bodies as b
 from casebook.book import Casebook
-from casebook.learned import scoreboard, shifted_chance, shifted_odds, shifts, size_class
+from casebook.learned import scoreboard, size_class
 
 from . import makers
 from .conftest import a_sheet
-
-odds = st.dictionaries(makers.names, st.floats(1e-4, 1.0), min_size=1, max_size=8)
-counts = st.dictionaries(makers.names, st.floats(0, 50), max_size=5)
 
 
 def closed(
@@ -56,54 +52,24 @@ def test_a_corrected_closing_counts_as_corrected(book: Casebook):
     assert book.learned("induction_3ph").faults == {"bearing_defect": 1.0}
 
 
-def test_shifted_odds_are_the_mean_of_a_dirichlet_distribution():
-    """Prior 5 * (0.5, 0.3, 0.2), three cases of b: (2.5, 4.5, 1.0) / 8."""
-    shifted = shifted_odds({"a": 0.5, "b": 0.3, "other": 0.2}, {"b": 3.0}, weight=5)
-    assert shifted == pytest.approx({"a": 2.5 / 8, "b": 4.5 / 8, "other": 1.0 / 8})
+def test_the_case_at_hand_is_no_evidence_for_itself(book: Casebook):
+    case = closed(book, "overload", "repair")
+    closed(book, "bearing_defect", "repair")
+    assert book.learned("induction_3ph", leave_out=case).faults == {"bearing_defect": 1.0}
 
 
-def test_a_refinement_counts_for_its_parent_and_an_unknown_fault_for_other():
-    shipped = {"open_supply_line": 0.5, "other": 0.5}
-    shifted = shifted_odds(shipped, {"fuse_blown": 5.0}, within={"fuse_blown": "open_supply_line"})
-    assert shifted["open_supply_line"] == pytest.approx(0.75)
-    assert shifted_odds(shipped, {"meteorite": 5.0})["other"] == pytest.approx(0.75)
-
-
-@given(odds, counts)
-def test_shifted_odds_sum_to_one_and_never_leave_a_fault_without_a_chance(shipped, counts):
-    shifted = shifted_odds(shipped, counts)
-    assert sum(shifted.values()) == pytest.approx(1.0)
-    assert all(chance > 0 for chance in shifted.values())
-    assert shifted.keys() == shipped.keys()
-
-
-@given(odds)
-def test_without_cases_the_shipped_odds_come_back(shipped):
-    total = sum(shipped.values())
-    assert shifted_odds(shipped, {}) == pytest.approx(
-        {fault: chance / total for fault, chance in shipped.items()}
-    )
-
-
-@given(odds, st.floats(0.1, 40))
-def test_a_case_of_a_fault_never_lowers_its_chance(shipped, cases):
-    fault = min(shipped)
-    assert shifted_odds(shipped, {fault: cases})[fault] >= shifted_odds(shipped, {})[fault] - 1e-12
-
-
-def test_a_chance_of_an_observation_moves_by_its_counts():
-    assert shifted_chance(0.2, yes=5, no=0, weight=5) == pytest.approx(0.6)
-
-
-def test_the_shift_can_be_shown(book: Casebook):
+def test_counts_by_kind_and_size_add_up_to_those_of_the_kind(book: Casebook):
     closed(book, "overload", "repair")
-    shipped = {"overload": 0.2, "bearing_defect": 0.8}
-    learned = book.learned("induction_3ph")
-    moved = shifts(shipped, shifted_odds(shipped, learned.faults), learned)
-    assert {shift.fault: round(shift.shifted, 4) for shift in moved} == {
-        "overload": 0.3333,
-        "bearing_defect": 0.6667,
-    }
+    closed(book, "overload+turn_short", "teardown")
+    closed(book, "bearing_defect", "believed")
+    unknown = Machine(kind="induction_3ph", tag="M-9")
+    closed(book, "bearing_defect", "repair", machine=unknown)
+    closed(book, "open_field", "repair", machine=Machine(kind="dc_shunt"))
+    groups = {(one.kind, one.size): one for one in book.learned_groups()}
+    assert list(groups) == [("dc_shunt", None), ("induction_3ph", None), ("induction_3ph", 1)]
+    assert groups["induction_3ph", None].faults == {"overload": 1.5, "turn_short": 0.5, "bearing_defect": 1.0}
+    assert groups["induction_3ph", 1] == book.learned("induction_3ph", 7500.0)
+    assert book.learned_groups("dc_shunt") == [book.learned("dc_shunt")]
 
 
 def test_the_scoreboard_says_how_often_the_first_suspect_was_right(book: Casebook):

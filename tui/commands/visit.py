@@ -26,7 +26,7 @@ def start(casebook: Path, arguments: Namespace) -> int:
     if is_plain(arguments):
         from tui.plain import converse
 
-        return converse(casebook, places.knowledge(arguments))
+        return converse(casebook, places.knowledge(arguments), use_learned=not arguments.no_learned)
     from tui.app import run_app
 
     return run_app(casebook, rule_folders=folders)
