@@ -5,7 +5,6 @@ from __future__ import annotations
 import os
 import signal
 import sys
-import time
 from collections.abc import Iterator
 from pathlib import Path
 

@@ -5,8 +5,10 @@ from __future__ import annotations
 from collections.abc import Awaitable, Callable
 from pathlib import Path
 
+import pytest
 from textual.pilot import Pilot
 
+from casebook.errors import DiskFull
 from tests.tui.helpers import SMALL, keys, known_machine, new_app, screen_text, settled, until
 from tui.application import PlatesideApp
 from tui.screens.casebook import CasebookPage
@@ -219,6 +221,46 @@ async def test_the_search_narrows_while_it_is_typed(tmp_path: Path):
         await pilot.pause()
         text = screen_text(app)
         assert "P-104" in text and "FAN-7" not in text
+
+
+async def test_torque_and_current_are_drawn_over_speed(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "ctrl+t")
+        assert "R rated" in await until(pilot, "torque over speed")
+        await keys(pilot, "right")
+        await until(pilot, "line current over speed")
+
+
+async def test_contradictions_of_a_plate_are_said_while_it_is_typed(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await keys(pilot, "n", *"P-9", "enter", *"runs hot", "enter", "enter")
+        await until(pilot, "Nameplate")
+        for line in ("7.5 kW", "400", "149", "50", "1455", ".84", "88.7"):
+            await keys(pilot, *line, "enter")
+        await until(pilot, "14.9 A instead of 149 A")
+
+
+async def test_a_full_disk_is_told_and_what_was_typed_stays(tmp_path: Path, monkeypatch: pytest.MonkeyPatch):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"speed loaded", "enter", *"1450")
+        page = app.screen
+        assert isinstance(page, Worksheet)
+        monkeypatch.setattr(page.visit.book.store, "add", refuse)
+        await keys(pilot, "enter")
+        if "Before readings" in await until(pilot, ("Before readings", "is full")):
+            await keys(pilot, "enter")
+        await until(pilot, "is full")
+        assert "1450" in screen_text(app)
+
+
+def refuse(_entries: object) -> int:
+    """Refuse as a full disk does."""
+    raise DiskFull("the disk that holds casebook.db is full")
 
 
 async def test_a_routine_case_takes_fewer_than_sixty_keystrokes_beyond_the_digits(tmp_path: Path):

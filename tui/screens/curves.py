@@ -18,7 +18,8 @@ from tui.words import measure_name, plain
 if TYPE_CHECKING:
     from textual.content import Content
 
-    from calc.sheet import Reading
+    from calc.induction_3ph.model import InductionTwin
+    from calc.sheet import CaseSheet, Reading
     from casebook.fold import Case
     from tui.compose import Visit
 
@@ -134,5 +135,47 @@ def _over_time(points: list[tuple[float, Reading]]) -> Picture:
 
 
 def machine_pictures(visit: Visit) -> list[Picture]:
-    """Return the curves that the machine's model offers, each with its band; none where there is no model."""
-    return []
+    """Return the curves that the machine's model offers, each with its band; none where it offers none."""
+    from calc.induction_3ph.model import InductionTwin
+    from calc.kinds import twin_of
+
+    twin = twin_of(visit.sheet.machine, visit.sheet.readings)
+    return speed_pictures(twin, visit.sheet) if isinstance(twin, InductionTwin) else []
+
+
+def speed_pictures(twin: InductionTwin, sheet: CaseSheet) -> list[Picture]:
+    """Return torque and current over speed, with the rated point and the currents that were read."""
+    from calc.induction_3ph.curves import speed_curves
+
+    drawn = speed_curves(twin)
+    speed = drawn.speed_rpm.tolist()
+    low, middle, high = ([max(value, 0.0) for value in values] for values in drawn.torque_nm)
+    rated = Curve(x=[drawn.rated_speed_rpm], y=[drawn.rated_torque_nm], mark="R", joined=False, name="rated")
+    torque = Picture(
+        title="torque over speed at rated volts",
+        curves=(Curve(x=speed, y=middle, name="middle"), rated),
+        bands=(Band(x=speed, low=low, high=high, name="nine in ten"),),
+        x_label="rpm",
+        y_label="N m",
+    )
+    low, middle, high = (values.tolist() for values in drawn.current_a)
+    current = Picture(
+        title="line current over speed at rated volts",
+        curves=(Curve(x=speed, y=middle, name="middle"), currents_read(sheet)),
+        bands=(Band(x=speed, low=low, high=high, name="nine in ten"),),
+        x_label="rpm",
+        y_label="A",
+    )
+    return [torque, current]
+
+
+def currents_read(sheet: CaseSheet) -> Curve:
+    """Return the currents that were read where the speed is known: standing, or read in that state."""
+    points = []
+    for reading in sheet.readings:
+        if reading.measure == "line_current":
+            speed = sheet.last_reading("speed", reading.state)
+            standing = reading.state in {"stalled", "starting"}
+            rpm = 0.0 if standing else speed.numbers[0] if speed else math.nan
+            points += [(rpm, number) for number in reading.numbers]
+    return Curve(x=[x for x, _ in points], y=[y for _, y in points], mark="o", joined=False, name="read")

@@ -149,7 +149,9 @@ class FormPage(Page[Answer]):
         self.query_one("#remarks", Ruled).show(self.remark_lines())
 
     def say(self, text: str, *, fine: bool = False) -> None:
-        """Say something below the form."""
+        """Say something below the form; it stays until something else is typed."""
+        if self.resting is not None:
+            self.resting.stop()
         self.said = (text, fine)
         self.show_remarks()
         self.show_lines()
@@ -162,6 +164,10 @@ class FormPage(Page[Answer]):
             return
         self.keep_line()
         self.show_lines()
+        self.rest_soon()
+
+    def rest_soon(self) -> None:
+        """Show the remarks a moment after the last key."""
         if self.resting is not None:
             self.resting.stop()
         self.resting = self.set_timer(REST_S, self.rest)
@@ -175,6 +181,7 @@ class FormPage(Page[Answer]):
     def entered(self, text: str) -> None:
         """Keep the line and go to the next."""
         self.texts[self.line.name] = text
+        self.rest_soon()
         self.action_next_field()
 
     def action_next_field(self) -> None:
