@@ -18,7 +18,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from calc.observe import InstrumentError
-from calc.quantities import MEASURES
+from calc.quantities import MEASURES, RUNNING_STATES
 from calc.sheet import CaseSheet
 from calc.twin import Ask, Floats, attribute_rows
 from rules.answer import NextItem
@@ -202,8 +202,11 @@ def _readings(
     meters = posterior.meters
     taken = {r.key for r in sheet.readings}
     chances: dict[str, float] = {}
+    complaint = knowledge.complaints.get(sheet.complaint)
+    kept_from_running = s.found_standing if complaint is not None and complaint.runs == "no" else 1.0
     for state, flags in lead.possible.items():
-        chances[state] = float(lead.share @ flags)
+        running = kept_from_running if state in RUNNING_STATES else 1.0
+        chances[state] = float(lead.share @ flags) * running
     candidates = []
     for rule in knowledge.readings.values():
         if not _suits(rule, sheet, twin.kind):

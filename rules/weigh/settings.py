@@ -28,6 +28,7 @@ class ProposalSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown
     part_weight: float
     visible_sigmas: float
     access: dict[str, float]
+    found_standing: float
     arrange_minutes: dict[str, float]
 
 
