@@ -173,7 +173,7 @@ async def test_the_nameplate_looks_as_it_did(app: PlatesideApp, size: tuple[int,
         await keys(
             pilot, *"10 hp", "enter", *"230/460", "enter", *"26/13", "enter", *"60", "enter", *"175o", "enter"
         )
-        await pilot.pause(0.5)
+        await until(pilot, "plate the rating in use")
         compare(app, "nameplate")
 
 

@@ -125,6 +125,9 @@ def test_the_history_of_a_machine_stands_on_its_sheet(run, tmp_path):
     run("demo", "--build", plant)
     listed = run("cases", "earth", "fire", "--casebook", plant).out
     case = listed.splitlines()[2].split()[0]
-    assert "History" in run("report", case, "--casebook", plant).out
+    sheet = " ".join(run("report", case, "--casebook", plant).out.split())
+    assert "History" in sheet
+    assert "insulation halves every" in sheet
+    assert "has reached the limit of 5 Mohm" in sheet
     page = run("report", case, "--html", "--casebook", plant).out
     assert 'aria-label="history"' in page

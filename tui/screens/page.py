@@ -113,7 +113,10 @@ def refusal(error: PlatesideError) -> str:
     """Return what is wrong with something typed and what is allowed, without the name of a file."""
     if not isinstance(error, InputError):
         return str(error)
-    said = [f"{problem.given}: {problem.allowed}".removeprefix(": ") for problem in error.problems]
+    said = [
+        f"{problem.given}: {problem.allowed}" if problem.given not in {"", "nothing"} else problem.allowed
+        for problem in error.problems
+    ]
     return "; ".join(dict.fromkeys(said))
 
 

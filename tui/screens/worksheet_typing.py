@@ -27,6 +27,8 @@ class WorksheetTyping(WorksheetKeys):
     """Understands while it is typed; Enter stores, or does what comes first."""
 
     resting: Timer | None = None
+    answered = ""
+    """The text that Enter was pressed on last: what was said of it stays."""
 
     def on_input_changed(self, _event: Input.Changed) -> None:
         """Wait until the typing rests; every key before costs nothing but its own cell."""
@@ -37,7 +39,7 @@ class WorksheetTyping(WorksheetKeys):
     def rest(self) -> None:
         """Say in words what is understood; an empty line leaves what was said."""
         text, item = self.query_one(TypedLine).value.strip(), self.target
-        if not text:
+        if not text or text == self.answered:
             return
         self.sure_of = "" if self.sure_of != text else self.sure_of
         if item is None or item.state is None or text[:1].isalpha():
@@ -58,6 +60,7 @@ class WorksheetTyping(WorksheetKeys):
         if self.is_weighing and self.chosen is None:
             self.say("Weighing what was stored; Enter once more when it says what comes next.", "")
             return
+        self.answered = text
         self.query_one(TypedLine).put("")
         self.enter(text)
 
