@@ -158,7 +158,7 @@ def _sigma(
         gain = (instrument.contrast if instrument.contrast is not None else instrument.share) * size * worth
         contrast_floor = math.sqrt(model.contrast**2 + gain**2 + (between * worth) ** 2)
     else:
-        worth = 1.0 / (min(size, transform.cap) + floor)
+        worth = 1.0 / (size + floor)
         level = math.sqrt(model.level**2 + instrument.share**2 + min(absolute * worth, 3.0) ** 2)
         gain = instrument.contrast if instrument.contrast is not None else instrument.share
         contrast_floor = math.sqrt(model.contrast**2 + gain**2 + min(between * worth, 3.0) ** 2)

@@ -86,16 +86,14 @@ class Measure(msgspec.Struct, frozen=True, kw_only=True):
 
 
 def _m(  # one line per measure below
-    id: str,  # noqa: A002
+    id: str,
     label: str,
     dimension: str,
     usual_unit: str,
     arity: int = 1,
     kinds: frozenset[str] = ALL,
 ) -> Measure:
-    return Measure(
-        id=id, label=label, dimension=dimension, usual_unit=usual_unit, arity=arity, kinds=kinds
-    )
+    return Measure(id=id, label=label, dimension=dimension, usual_unit=usual_unit, arity=arity, kinds=kinds)
 
 
 _TABLE: Final = (

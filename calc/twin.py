@@ -130,7 +130,7 @@ class Twin(Protocol):
         """Plate fields that the latents do not meet by construction, in sigmas: (rows, n)."""
 
     def possible(self, z: Floats, attributes: Mapping[str, Floats]) -> Mapping[str, Floats]:
-        """For each state, 1.0 where such a machine can be in it, else 0.0: shape (rows,)."""
+        """For each state the chance that such a machine can be in it, 0.0 to 1.0: shape (rows,)."""
 
     def transform(self, measure: str) -> Transform:
         """How a measure enters the comparison on this machine."""

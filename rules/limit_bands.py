@@ -5,9 +5,10 @@ from __future__ import annotations
 import math
 from typing import Final
 
+from calc.sheet import CaseSheet
 from rules.amounts import amount
-from rules.facts import Facts, meets
-from rules.knowledge import Limit, LimitBand
+from rules.facts import Facts, facts_of, meets
+from rules.knowledge import Knowledge, Limit, LimitBand
 
 NORMAL: Final = LimitBand(verdict="normal")
 
@@ -41,6 +42,25 @@ def concerns(limit: Limit, facts: Facts) -> bool:
     of_kind = "any" in limit.kinds or kind in limit.kinds
     in_state = "any" in limit.states or state in limit.states
     return of_kind and in_state and meets(limit.where, facts)
+
+
+def floor_of(sheet: CaseSheet, knowledge: Knowledge, measure: str) -> tuple[float, str] | None:
+    """Return the value below which a measure must not fall on this machine, and that value as text.
+
+    Of several limits of verdict stop the highest counts. Insulation to frame is compared at 40 degC.
+    Limits that ask for facts of a single reading are left out.
+    """
+    quantities = {measure, "insulation_at_40c"} if measure == "insulation_resistance" else {measure}
+    facts = facts_of(sheet)
+    ends = [
+        end
+        for limit in knowledge.limits.values()
+        if limit.quantity in quantities and "any" in limit.states and concerns(limit, facts)
+        for band in limit.bands
+        if band.verdict == "stop" and (end := band.below) is not None
+    ]
+    highest = max(ends, key=amount, default=None)
+    return None if highest is None else (amount(highest), highest)
 
 
 def in_unit(limit: Limit, value: float) -> str:

@@ -76,8 +76,18 @@ def _frequency(machine: Machine, readings: Sequence[Reading], volts: float | Non
         mean = _mean(reading) if reading.measure == "supply_frequency" else None
         if mean is not None:
             return 50.0 if abs(mean - 50.0) < abs(mean - 60.0) else 60.0
+    speed = machine.nameplate.number("speed")
+    if speed:
+        return min((50.0, 60.0), key=lambda hertz: _slip_at(speed, hertz))
     near = volts or _voltage(readings)
     return 60.0 if near is not None and round(near) in _SIXTY_HZ_V else 50.0
+
+
+def _slip_at(speed_rpm: float, frequency_hz: float) -> float:
+    """Slip of a speed against the nearest synchronous speed above it."""
+    pairs = max(int(60.0 * frequency_hz / speed_rpm), 1)
+    slip = 1.0 - speed_rpm * pairs / (60.0 * frequency_hz)
+    return slip if slip > 0.0 else 1.0
 
 
 def _voltage(readings: Sequence[Reading]) -> float | None:

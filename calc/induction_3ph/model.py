@@ -10,7 +10,7 @@ import numpy as np
 from calc.induction_3ph import effects, thermal
 from calc.induction_3ph.network import path_resistance, terminal_resistance
 from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, Circuit, circuit, read_base
-from calc.induction_3ph.states import StateResult, Supply, solve, supply
+from calc.induction_3ph.states import StateResult, Supply, rated_torque, solve, supply
 from calc.sheet import Machine, Reading
 from calc.twin import Ask, Floats, Mode, ModelError, Severity, Transform, standard_normal_cdf
 
@@ -170,11 +170,10 @@ class InductionTwin:
         """Solve one state with the torque and the winding temperature that belong to it."""
         if state == "no_load":
             rows = {**rows, "stall": rows["stall"] * (1.0 - rows["load_stalls"])}
-        rated = (machine.p_out + machine.p_friction + machine.p_stray) / (1.0 - machine.slip)
         load = self._load(rows, z, feed)
         share = {"loaded": 1.0, "light_load": 0.4}.get(state, 0.0)
         useful = load * share * machine.p_out + machine.p_friction + share * load**2 * machine.p_stray
-        torque = useful / (1.0 - machine.slip) + rows["friction"] * rated
+        torque = useful / (1.0 - machine.slip) + rows["friction"] * rated_torque(machine)
         ambient = thermal.ambient_c(z)
         warm = ambient + (0.6 * machine.rise_k if share else 0.25 * machine.rise_k)
         r1 = machine.r1 * (COPPER_K + warm) / (COPPER_K + 25.0 + machine.rise_k)

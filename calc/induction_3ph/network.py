@@ -22,7 +22,7 @@ FORTESCUE: Phasors = np.array([[1, 1, 1], [1, ALPHA, ALPHA**2], [1, ALPHA**2, AL
 INVERSE: Phasors = FORTESCUE.conj().T
 _TURN = np.exp(1j * np.pi / 6.0)
 # A delta winding sees the line voltages: positive sequence turned +30 degrees, negative -30.
-_DELTA: Phasors = np.array([_TURN, np.conj(_TURN)])
+DELTA: Phasors = np.array([_TURN, np.conj(_TURN)])
 
 
 @dataclass(frozen=True)
@@ -89,7 +89,7 @@ def _faulted(full: Phasors, fault: WindingFault, delta: Floats) -> Phasors:
         full = flip @ full @ flip
     inner = full[:, 1:, 1:]
     star = inner - full[:, 1:, 0:1] * full[:, 0:1, 1:] / full[:, 0:1, 0:1]
-    turned = _DELTA.conj()[None, :, None] * inner * _DELTA[None, None, :]
+    turned = DELTA.conj()[None, :, None] * inner * DELTA[None, None, :]
     return np.asarray(np.where(delta[:, None, None] > 0.5, turned, star))
 
 
@@ -110,7 +110,7 @@ def line_unit(line: NDArray[np.int64], upstream: Floats | None = None) -> Phasor
     unit = np.asarray(FORTESCUE[1:, line].T)
     if upstream is None:
         return unit
-    turned = np.where(upstream[:, None] > 0.5, _DELTA[None, :], 1.0)
+    turned = np.where(upstream[:, None] > 0.5, DELTA[None, :], 1.0)
     return np.asarray(unit * turned)
 
 

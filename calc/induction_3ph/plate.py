@@ -274,7 +274,7 @@ def circuit(base: Base, z: Floats) -> Circuit:
     p_gap = (p_out + friction + stray) / (1.0 - slip)
     # What is left for stator copper and core; a plate whose slip eats all the losses keeps a tenth of them.
     rest = losses - slip * p_gap - friction - stray
-    rest = 0.5 * (rest + np.sqrt(rest * rest + (0.25 * losses) ** 2))
+    rest = 0.5 * (rest + np.sqrt(rest * rest + (0.14 * losses) ** 2))
     core_share = 1.0 / (1.0 + np.exp(0.35 - 0.42 * column["core_share"]))
     r1 = rest * (1.0 - core_share) / current**2 * np.exp(0.06 * column["resistance"])
     core = rest * core_share

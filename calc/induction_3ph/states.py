@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from calc.induction_3ph.network import (
+    DELTA,
     FORTESCUE,
     Phasors,
     WindingFault,
@@ -18,7 +19,7 @@ from calc.induction_3ph.network import (
     winding_admittance,
     with_line_resistance,
 )
-from calc.induction_3ph.plate import COPPER_K, INDEX, Base, Circuit
+from calc.induction_3ph.plate import INDEX, Base, Circuit
 from calc.twin import Floats
 
 ROOT3 = np.sqrt(3.0)
@@ -66,9 +67,9 @@ def supply(base: Base, z: Floats, rows: Mapping[str, Floats], nominal: float, in
     return Supply(positive=level, negative=negative, frequency=frequency, regulation=regulation)
 
 
-def hot_r1(circuit: Circuit, ambient: Floats, temperature: Floats) -> Floats:
-    """Stator resistance at a winding temperature (IEC 60034-2-1: copper, 235)."""
-    return circuit.r1 * (COPPER_K + temperature) / (COPPER_K + 30.0 + circuit.rise_k) + 0.0 * ambient
+def rated_torque(circuit: Circuit) -> Floats:
+    """Air-gap power at rated load, which stands for rated torque. [pu]"""
+    return np.asarray((circuit.p_out + circuit.p_friction + circuit.p_stray) / (1.0 - circuit.slip))
 
 
 def solve(
@@ -112,7 +113,9 @@ def solve(
     scale = rows["impedance"] * np.where(rows["running_star"] > 0.5, 3.0, 1.0)
     standing_rows = np.maximum(rows["stall"], 1.0 if standing else 0.0)
     f = feed.frequency
-    drop = feed.regulation * np.where(standing_rows > 0.5, 5.5, 0.6)
+    # Share of rated current that the source's impedance drops in phase with the voltage: idle and per torque.
+    pull = 0.28 + 0.6 * np.clip(torque / rated_torque(circuit), 0.0, 2.0)
+    drop = feed.regulation * np.where(standing_rows > 0.5, 5.5, pull)
     live = 1.0 - rows["no_supply"]
     v1 = np.maximum(feed.positive * (1.0 - drop), 0.02) * live + 1e-6
     v2: Phasors = np.asarray(feed.negative * live, dtype=np.complex128)
@@ -186,7 +189,10 @@ def _slip(
     y_zero = np.where(inside & (rows["delta"] > 0.5), y0, 0.0)
     z_series = (series / 3.0) / (1.0 + (series / 3.0) * (y_zero + y2))
     rho = np.abs(z_series * y2) ** 2 * 0.5 * r2_back
-    v_eff = np.abs(v1 - z_series * y2 * v2)
+    unit = line_unit(np.where(inside, rows["phase"], rows["line"]).astype(np.int64), rows["upstream"])
+    unit = np.where((inside & (rows["delta"] > 0.5))[:, None], unit * DELTA.conj(), unit)
+    across = 3.0 * unit[:, 0] * unit[:, 1].conj()
+    v_eff = np.abs(v1 - z_series * y2 * v2 * across)
     z_a = r1 + 1j * x1 + z_series
     v_th = v_eff * xm / np.abs(z_a + 1j * xm)
     z_th = z_a * 1j * xm / (z_a + 1j * xm)

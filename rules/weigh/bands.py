@@ -19,7 +19,7 @@ from calc.twin import Ask, Floats, Twin
 from rules.answer import Band
 from rules.knowledge import Knowledge
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, Fitter, Frame, fit_modes, frame
+from rules.weigh.laplace import Fit, Frame, fit_modes, frame, without
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, in_usual_unit, outlooks, untransform
 from rules.weigh.soft import shape, spread_of
@@ -78,9 +78,7 @@ def bands(
     speed = sheet.machine.nameplate.number("speed")
     asks = asks_of(sheet, twin, speed)
     looks = outlooks(twin, twin.modes("none")[:1], fit.z[:1], asks, meters)
-    fitter = Fitter(twin, data)
-    weights = fitter.weights(fitter.residual(fit.predicted)) if len(data.y) else np.zeros((1, 0))
-    from_model = [_band(look, data, fit, weights, fitter) for look in looks]
+    from_model = [_band(look, data, fit) for look in looks]
     covered = {ask.key for ask in asks}
     return (*from_model, *_spread_bands(twin.kind, knowledge, covered, meters))
 
@@ -110,24 +108,16 @@ def _basis(twin: Twin, posterior: Posterior | None) -> tuple[Frame, Fit]:
     return supply, fit_modes(twin, healthy, supply)
 
 
-def _without(key: str, data: Frame, fit: Fit, weights: Floats, fitter: Fitter) -> tuple[Floats, Floats]:
-    """Latents and covariance with one reading's own information taken out."""
-    z, covariance = fit.z[0], fit.covariance[0]
+def _without(key: str, data: Frame, fit: Fit) -> tuple[Floats, Floats]:
+    """Latents and covariance with one reading's own information taken out, where it is on the sheet."""
     for one, group in zip(data.seen, data.groups, strict=True):
-        if one.ask.key != key:
-            continue
-        j = fit.slope[0, group] / data.sigma[group, None]
-        w = weights[0, group]
-        r = (data.y[group] - fit.predicted[0, group]) / data.sigma[group]
-        # H - J'WJ, inverted by Woodbury; the middle stays positive since the prior alone is the identity.
-        middle = np.diag(1.0 / np.maximum(w, 1e-9)) - j @ covariance @ j.T
-        covariance = covariance + covariance @ j.T @ np.linalg.solve(middle, j @ covariance)
-        z = z - covariance @ (j.T @ (w * r))
-    return z, covariance
+        if one.ask.key == key:
+            return without(fit, data, 0, group)
+    return fit.z[0], fit.covariance[0]
 
 
-def _band(look: Outlook, data: Frame, fit: Fit, weights: Floats, fitter: Fitter) -> Band:
-    z, covariance = _without(look.ask.key, data, fit, weights, fitter)
+def _band(look: Outlook, data: Frame, fit: Fit) -> Band:
+    z, covariance = _without(look.ask.key, data, fit)
     slope = look.slope[0]
     mean = look.mean[0, 0] + float(slope[0] @ (z - fit.z[0]))
     variance = float(slope[0] @ covariance @ slope[0]) + look.error[0] ** 2

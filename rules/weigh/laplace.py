@@ -85,6 +85,16 @@ def t_constant(size: int) -> float:
     return math.lgamma((NU + size) / 2.0) - math.lgamma(NU / 2.0) - 0.5 * size * math.log(NU * math.pi)
 
 
+def plate_cost(misfit: Floats) -> Floats:
+    """Cost of plate fields that contradict each other; tails as of readings, for a plate can be wrong too."""
+    return np.asarray((0.5 * (NU + 1.0) * np.log1p(misfit**2 / NU)).sum(axis=-1))
+
+
+def plate_weight(misfit: Floats) -> Floats:
+    """Weight of each plate residual in the next step."""
+    return np.asarray((NU + 1.0) / (NU + misfit**2))
+
+
 class Fitter:
     """Fits modes of one twin to one frame of readings."""
 
@@ -140,7 +150,7 @@ class Fitter:
 
     def objective(self, z: Floats, y: Floats, plate: Floats) -> Floats:
         """Half the squared latents and plate misfit, and the cost of all readings: (modes, k)."""
-        prior = 0.5 * (z**2).sum(axis=-1) + 0.5 * (plate**2).sum(axis=-1)
+        prior = 0.5 * (z**2).sum(axis=-1) + plate_cost(plate)
         return np.asarray(prior + self.reading_cost(self.residual(y)).sum(axis=-1))
 
     def slopes(
@@ -157,10 +167,10 @@ class Fitter:
         dp = (plate[:, 1:] - plate[:, :1]) / way[:, :, None]
         return y[:, 0], dy.transpose(0, 2, 1), plate[:, 0], dp.transpose(0, 2, 1)
 
-    def normal(self, dy: Floats, dp: Floats, w: Floats) -> tuple[Floats, Floats]:
+    def normal(self, dy: Floats, dp: Floats, w: Floats, plate_weight: Floats) -> tuple[Floats, Floats]:
         """Whitened slopes and the curvature I + J'WJ on the active latents."""
         j = dy / self.data.sigma[None, :, None]
-        curvature = np.einsum("mia,mi,mib->mab", j, w, j) + np.einsum("mia,mib->mab", dp, dp)
+        curvature = np.einsum("mia,mi,mib->mab", j, w, j) + np.einsum("mia,mi,mib->mab", dp, plate_weight, dp)
         return j, curvature + np.eye(dy.shape[2])
 
 
@@ -199,8 +209,9 @@ def _improve(
     y, dy, plate, dp = fitter.slopes(modes, z, active, step)
     r = fitter.residual(y)
     w = fitter.weights(r / math.sqrt(heat)) / heat
-    j, curvature = fitter.normal(dy, dp, w)
-    pull = np.einsum("mia,mi->ma", j, w * r) - np.einsum("mia,mi->ma", dp, plate) - z[:, active]
+    u = plate_weight(plate)
+    j, curvature = fitter.normal(dy, dp, w, u)
+    pull = np.einsum("mia,mi->ma", j, w * r) - np.einsum("mia,mi->ma", dp, u * plate) - z[:, active]
     move = np.linalg.solve(curvature, pull[:, :, None])[:, :, 0]
     length = np.linalg.norm(move, axis=1, keepdims=True)
     move *= np.minimum(1.0, 4.0 / np.maximum(length, 1e-9))
@@ -242,8 +253,8 @@ def _finish(
     """Evidence, covariance and per-reading densities at the fits; given-up modes keep the bound they had."""
     alive = np.isin(best, chosen)
     rows = np.flatnonzero(alive)
-    y, dy, _, dp = fitter.slopes([modes[i] for i in rows], z[rows], active, 0.12)
-    _, curvature = fitter.normal(dy, dp, fitter.weights(fitter.residual(y)))
+    y, dy, plate, dp = fitter.slopes([modes[i] for i in rows], z[rows], active, 0.12)
+    _, curvature = fitter.normal(dy, dp, fitter.weights(fitter.residual(y)), plate_weight(plate))
     predicted, misfit = fitter.predict(modes, z[:, None, :])
     taken = 0.5 * np.linalg.slogdet(curvature)[1]
     freedom = np.full(len(modes), taken.max())
@@ -262,10 +273,25 @@ def _finish(
         slope=slope,
         covariance=covariance,
         log_likelihood=-fitter.reading_cost(fitter.residual(predicted[:, 0])) + constants,
-        stretch=0.5 * (z**2).sum(axis=1) + 0.5 * (misfit[:, 0] ** 2).sum(axis=1),
+        stretch=0.5 * (z**2).sum(axis=1) + plate_cost(misfit[:, 0]),
         freedom=freedom,
         alive=alive,
     )
+
+
+def without(fit: Fit, data: Frame, row: int, group: slice) -> tuple[Floats, Floats]:
+    """Latents and covariance of one mode with one reading's own information taken out again.
+
+    The rank-m downdate of the Gaussian posterior: H - J'WJ, inverted by Woodbury's identity.
+    """
+    z, covariance = fit.z[row], fit.covariance[row]
+    sigma = data.sigma[group]
+    j = fit.slope[row, group] / sigma[:, None]
+    r = (data.y[group] - fit.predicted[row, group]) / sigma
+    w = (NU + len(r)) / (NU + float(r @ r))
+    middle = np.eye(len(r)) / w - j @ covariance @ j.T
+    covariance = covariance + covariance @ j.T @ np.linalg.solve(middle, j @ covariance)
+    return z - covariance @ (j.T @ (w * r)), covariance
 
 
 def join_fits(one: Fit, other: Fit) -> Fit:

@@ -7,7 +7,7 @@ import math
 import numpy as np
 
 from calc.twin import Floats, Twin
-from rules.weigh.laplace import Fitter, Frame
+from rules.weigh.laplace import Fitter, Frame, fit_modes, frame
 
 _NU = 3.0
 # Room beyond the healthy spread, in transformed units: level and contrasts. Judgement.
@@ -42,8 +42,11 @@ def other_evidence(twin: Twin, data: Frame) -> float:
     solved = np.linalg.solve(spread, gap)
     log_det = float(np.linalg.slogdet(spread)[1])
     distance = float(gap @ solved)
+    # A plate that contradicts itself speaks against every machine alike, so against this one too.
+    bare = fit_modes(twin, mode, frame([]))
+    contradiction = float(bare.stretch[0])
     constant = math.lgamma((_NU + size) / 2) - math.lgamma(_NU / 2) - 0.5 * size * math.log(_NU * math.pi)
-    return constant - 0.5 * log_det - 0.5 * (_NU + size) * math.log1p(distance / _NU)
+    return constant - contradiction - 0.5 * log_det - 0.5 * (_NU + size) * math.log1p(distance / _NU)
 
 
 def _broad(data: Frame) -> Floats:

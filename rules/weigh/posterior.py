@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 
@@ -46,6 +46,8 @@ class Posterior:
     """What the usual instrument of each measure may be off by."""
     direct: tuple[Reading, ...] = ()
     """Readings weighed by their spread under each fault."""
+    texts: Mapping[str, str] = field(default_factory=dict)
+    """What was typed for each reading that was weighed, by its key."""
     unweighed: tuple[Reading, ...] = ()
     """Readings that neither the model nor any fault says anything about."""
 
@@ -96,12 +98,12 @@ def split_readings(
 
     Of several readings of one key the last counts.
     """
-    newest = {(r.key, r.at, r.position, r.links): r for r in sheet.readings}
+    newest = _newest(sheet)
     healthy = knowledge.faults.get("healthy")
     seen: list[Seen] = []
     direct: list[Reading] = []
     rest: list[Reading] = []
-    for reading in newest.values():
+    for reading in newest:
         made = None
         if twin.covers(context(reading)):
             made = make_seen(reading, twin, _error(meters, reading))
@@ -112,6 +114,17 @@ def split_readings(
         else:
             rest.append(reading)
     return seen, direct, rest
+
+
+def _newest(sheet: CaseSheet) -> list[Reading]:
+    """The last reading of each key and place; of the two ends of a machine the one that tells more."""
+    last = {(r.key, r.at, r.position, r.links): r for r in sheet.readings}
+    ends: dict[tuple[str, str | None, str | None], Reading] = {}
+    for reading in last.values():
+        place = (reading.key, reading.at, reading.links)
+        if place not in ends or soft.worst(reading) > soft.worst(ends[place]):
+            ends[place] = reading
+    return list(ends.values())
 
 
 def _error(errors: Mapping[str, InstrumentError], reading: Reading) -> InstrumentError:
@@ -158,6 +171,7 @@ def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
         odds=_odds(whole.hypotheses, whole.joint, log_other, whole.faults),
         meters=meters,
         direct=tuple(direct),
+        texts={r.key: soft.reading_text(r) for r in _newest(sheet)},
         unweighed=tuple(rest),
     )
 

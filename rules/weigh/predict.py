@@ -92,7 +92,7 @@ def untransform(level: Floats, transform: Transform) -> Floats:
     """From a transformed level back to the inner unit."""
     if transform.kind == "linear":
         return np.asarray(level * transform.scale)
-    return np.asarray(np.maximum(np.exp(level) - transform.floor, 0.0))
+    return np.asarray(np.maximum(np.exp(np.clip(level, -60.0, 60.0)) - transform.floor, 0.0))
 
 
 def in_usual_unit(measure: str, number: float) -> float:

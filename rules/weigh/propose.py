@@ -22,7 +22,7 @@ from calc.quantities import MEASURES, RUNNING_STATES
 from calc.sheet import CaseSheet
 from calc.twin import Ask, Floats, attribute_rows
 from rules.answer import NextItem
-from rules.gate import GateState
+from rules.gate import GateState, situation_of
 from rules.knowledge import Fault, Knowledge, Observation, ReadingRule
 from rules.weigh import wording
 from rules.weigh.hypothesis import Hypothesis
@@ -202,8 +202,7 @@ def _readings(
     meters = posterior.meters
     taken = {r.key for r in sheet.readings}
     chances: dict[str, float] = {}
-    complaint = knowledge.complaints.get(sheet.complaint)
-    kept_from_running = s.found_standing if complaint is not None and complaint.runs == "no" else 1.0
+    kept_from_running = s.found_standing if found_standing(sheet, knowledge, s) else 1.0
     for state, flags in lead.possible.items():
         running = kept_from_running if state in RUNNING_STATES else 1.0
         chances[state] = float(lead.share @ flags) * running
@@ -237,10 +236,29 @@ def _readings(
                 rule=rule,
                 state=state,
                 look=looks.get(ask.key),
-                behind_gate=gate.forbids(state),
+                behind_gate=shut(state, sheet, knowledge, gate),
             )
         )
     return found
+
+
+def shut(state: str, sheet: CaseSheet, knowledge: Knowledge, gate: GateState) -> bool:
+    """Whether the gate keeps a reading from being proposed: by its state, or by the start that it takes."""
+    if gate.forbids(state):
+        return True
+    if state not in RUNNING_STATES or any(r.state == state for r in sheet.readings):
+        return False
+    runs_now = state == "loaded" and situation_of(sheet, knowledge) == "found_running"
+    return not runs_now and gate.forbids("starting")
+
+
+def found_standing(sheet: CaseSheet, knowledge: Knowledge, s: ProposalSettings) -> bool:
+    """Whether it probably cannot be read running: it is said so, or several readings hold none of it."""
+    complaint = knowledge.complaints.get(sheet.complaint)
+    if complaint is None or complaint.runs == "yes":
+        return False
+    ran = any(r.state in RUNNING_STATES for r in sheet.readings)
+    return not ran and (complaint.runs == "no" or len(sheet.readings) >= s.telling_readings)
 
 
 def state_chance(sheet: CaseSheet, state: str, chances: Mapping[str, float], s: ProposalSettings) -> float:

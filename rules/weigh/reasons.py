@@ -9,7 +9,7 @@ import numpy as np
 from rules.answer import Reason
 from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.posterior import Posterior
-from rules.weigh.wording import amount_text, reading_text, title, values_of
+from rules.weigh.wording import amount_text, title, values_of
 
 LEAST_WEIGHT = 0.1  # nats; smaller pieces are shown as one
 
@@ -52,7 +52,7 @@ def _best(posterior: Posterior, fault: str) -> Hypothesis:
 
 def _circuit(posterior: Posterior, own: Hypothesis, other: Hypothesis) -> list[Reason]:
     fit, data = posterior.fit, posterior.data
-    texts = {r.key: reading_text(r) for r in posterior.sheet.readings}
+    texts = posterior.texts
     found = []
     for k, (seen, group) in enumerate(zip(data.seen, data.groups, strict=True)):
         weight = float(fit.log_likelihood[own.place, k] - fit.log_likelihood[other.place, k])
@@ -78,7 +78,7 @@ def _circuit(posterior: Posterior, own: Hypothesis, other: Hypothesis) -> list[R
 
 
 def _tables(posterior: Posterior, fault: str, against: str) -> list[Reason]:
-    texts = {r.key: reading_text(r) for r in posterior.sheet.readings}
+    texts = posterior.texts
     found = []
     for name, table in posterior.tables.items():
         weight = table[fault] - table[against]

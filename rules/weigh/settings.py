@@ -29,6 +29,7 @@ class ProposalSettings(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown
     visible_sigmas: float
     access: dict[str, float]
     found_standing: float
+    telling_readings: int
     arrange_minutes: dict[str, float]
 
 

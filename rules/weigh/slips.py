@@ -4,12 +4,14 @@ from __future__ import annotations
 
 import itertools
 import math
+from collections.abc import Sequence
 
 import numpy as np
 
 from calc.observe import Seen, project
 from calc.twin import Floats
 from rules.answer import Slip
+from rules.weigh.laplace import without
 from rules.weigh.posterior import Posterior
 from rules.weigh.settings import weighing
 from rules.weigh.wording import title, values_of
@@ -25,6 +27,9 @@ _FACTORS = (
 )
 
 
+_LINE_OR_PHASE = frozenset({"supply_voltage", "line_current"})
+
+
 def slips(posterior: Posterior) -> tuple[Slip, ...]:
     """Name readings that are strange under every hypothesis that matters, and what may have happened."""
     s = weighing().slip
@@ -32,25 +37,38 @@ def slips(posterior: Posterior) -> tuple[Slip, ...]:
     places = sorted({h.place for h, p in zip(posterior.hypotheses, share, strict=True) if p > s.least_share})
     found = []
     for seen, group in zip(posterior.data.seen, posterior.data.groups, strict=True):
-        predicted = posterior.fit.predicted[places][:, group]
-        if not len(predicted) or _distance(seen, seen.y, predicted) < s.strange_sigmas:
+        outlooks = [_elsewhere(posterior, place, group) for place in places]
+        if not outlooks or _distance(seen.y, outlooks) < s.strange_sigmas:
             continue
-        found.append(Slip(about=seen.ask.key, text=_text(seen, predicted, s.mended_sigmas)))
+        found.append(Slip(about=seen.ask.key, text=_text(seen, outlooks, s.mended_sigmas)))
     return tuple(found)
 
 
-def _distance(seen: Seen, y: Floats, predicted: Floats) -> float:
-    """Smallest distance of a reading from what any hypothesis predicts, in sigmas."""
-    r = (y - predicted) / seen.sigma
-    return float(np.sqrt((r**2).sum(axis=1).min() / len(y)))
+def _elsewhere(posterior: Posterior, place: int, group: slice) -> tuple[Floats, Floats]:
+    """What the other readings say of one: its mean and covariance under one mode."""
+    fit, data = posterior.fit, posterior.data
+    z, covariance = without(fit, data, place, group)
+    slope = fit.slope[place, group]
+    mean = fit.predicted[place, group] + slope @ (z - fit.z[place])
+    return mean, slope @ covariance @ slope.T + np.diag(data.sigma[group] ** 2)
 
 
-def _text(seen: Seen, predicted: Floats, mended: float) -> str:
+def _distance(y: Floats, outlooks: Sequence[tuple[Floats, Floats]]) -> float:
+    """Smallest distance of a reading from what any hypothesis makes of the others, in sigmas."""
+    gaps = [float((y - mean) @ np.linalg.solve(spread, y - mean)) / len(y) for mean, spread in outlooks]
+    return math.sqrt(max(float(min(gaps)), 0.0))
+
+
+def _text(seen: Seen, outlooks: Sequence[tuple[Floats, Floats]], mended: float) -> str:
     name = title(seen.ask.key)
     values = values_of(seen.y, seen.transform)
     trials: list[tuple[str, Floats]] = []
     if seen.transform.kind != "linear" or seen.transform.scale != 1.0:
-        trials += [(f"{words} in the number", values * factor) for words, factor in _FACTORS]
+        trials += [
+            (words, values * factor)
+            for words, factor in _FACTORS
+            if factor > 2.0 or factor < 0.5 or seen.ask.measure in _LINE_OR_PHASE
+        ]
     if len(values) == 3:
         trials += [
             ("another order of the three values", values[list(order)])
@@ -60,8 +78,7 @@ def _text(seen: Seen, predicted: Floats, mended: float) -> str:
     if not trials:
         return f"{name} fits no fault and no sound machine. Repeat it"
     scored = [
-        (_distance(seen, project(trial[None, :], seen.transform)[0], predicted), words)
-        for words, trial in trials
+        (_distance(project(trial[None, :], seen.transform)[0], outlooks), words) for words, trial in trials
     ]
     best, words = min(scored)
     hint = f"; with {words} it would fit" if best < mended else ""

@@ -85,7 +85,9 @@ def direct_tables(
     healthy = knowledge.faults.get("healthy")
     tables: dict[str, Table] = {}
     before: dict[str, list[tuple[Reading, float]]] = {}
-    for reading in readings:
+    order = [m for family in w.families.values() for m in family.measures]
+    ranked = sorted(readings, key=lambda r: (order.index(r.measure) if r.measure in order else -1, r.key))
+    for reading in ranked:
         family = next((n for n, f in w.families.items() if reading.measure in f.measures), reading.key)
         rho = w.families[family].correlation if family in w.families else 0.0
         table: Table = {}
@@ -168,6 +170,11 @@ def _conditioned(earlier: Sequence[float], rho: float) -> tuple[float, float]:
 
 def _beyond(u: float) -> float:
     return 0.5 * math.erfc(u / math.sqrt(2.0))
+
+
+def reading_text(reading: Reading) -> str:
+    """A reading as it was typed."""
+    return " / ".join(value.text if value.is_read else "-" for value in reading.values)
 
 
 def mean_table(tables: Sequence[Table], odds: Mapping[str, float]) -> float:

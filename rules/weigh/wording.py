@@ -11,7 +11,6 @@ from numpy.typing import NDArray
 
 from calc.observe import contrasts_matrix
 from calc.quantities import MEASURES
-from calc.sheet import Reading
 from calc.twin import Floats, Transform
 from rules.knowledge import Knowledge
 from rules.weigh.predict import Outlook, in_usual_unit
@@ -56,11 +55,6 @@ def amount_text(measure: str, values: Sequence[float], cap: float = math.inf) ->
         for value in values
     ]  # fmt: skip
     return f"{' '.join(shown)} {entry.usual_unit}".strip()
-
-
-def reading_text(reading: Reading) -> str:
-    """A reading as it was typed."""
-    return " / ".join(value.text if value.is_read else "-" for value in reading.values)
 
 
 def title(key: str) -> str:
