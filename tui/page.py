@@ -95,7 +95,7 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases:
         Block("Why", sentences=tuple(_reasons(diagnosis))),
         Block("To confirm and to do", sentences=tuple(_to_do(diagnosis, knowledge))),
         Block("Found and done", sentences=tuple(_closing(case, knowledge))),
-        history_block(case, cases),
+        history_block(case, cases, knowledge),
         Block("Isolation", sentences=tuple(_isolation(case))),
         Block("Cautions", sentences=diagnosis.cautions),
         Block("Remarks", sentences=tuple(_remarks(case, diagnosis, knowledge))),
@@ -109,12 +109,12 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases:
     )
 
 
-def history_block(case: Case, cases: Sequence[Case]) -> Block:
+def history_block(case: Case, cases: Sequence[Case], knowledge: Knowledge) -> Block:
     """Return how the machine's insulation and windings have read over its cases up to this one."""
     earlier = [one for one in cases if one.opened_utc <= case.opened_utc]
     if not case.tag or not earlier:
         return Block("History")
-    sentences = trend_sentences(earlier, tag=case.tag, now=case.last_utc)
+    sentences = trend_sentences(earlier, tag=case.tag, now=case.last_utc, knowledge=knowledge)
     return Block("History", sentences=tuple(sentences), charts=tuple(charts(earlier, tag=case.tag)))
 
 

@@ -10,16 +10,20 @@ from calc.quantities import MEASURES
 from calc.units import find_unit
 from casebook.history import machine_history
 from casebook.trend import trend_of
-from tui.words import measure_name
+from rules.limit_bands import floor_of
+from tui.words import measure_name, plain
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Iterable, Sequence
     from datetime import datetime
 
     from casebook.fold import Case
     from casebook.history import Series
+    from rules.knowledge import Knowledge
 
 LEAST_POINTS = 3
+# They go where the one-minute value goes, which has the limit.
+FOLLOWERS = frozenset({"insulation_resistance_30s", "insulation_resistance_10min"})
 
 
 @dataclass(frozen=True)
@@ -33,10 +37,28 @@ class Chart:
     last: str
 
 
-def trend_sentences(cases: Iterable[Case], *, tag: str, now: datetime) -> list[str]:
-    """Return the trends of a machine that stand out from their doubt."""
-    trends = [trend_of(series, now=now) for series in machine_history(tag, cases).series]
-    return [trend.words for trend in trends if trend.is_clear]
+def trend_sentences(cases: Sequence[Case], *, tag: str, now: datetime, knowledge: Knowledge) -> list[str]:
+    """Return the trends of a machine that stand out from their doubt, with when they meet a limit."""
+    if not cases:
+        return []
+    sheet = cases[-1].sheet
+    found = []
+    for series in machine_history(tag, cases).series:
+        if series.measure in FOLLOWERS:
+            continue
+        floor = floor_of(sheet, knowledge, series.measure)
+        limit, text = (floor[0], f"the limit of {floor[1]}") if floor else (None, "")
+        trend = trend_of(series, now=now, limit=limit, limit_text=text)
+        found += [f"{trend.words} ({_what(series)})"] if trend.is_clear else []
+    return found
+
+
+def _what(series: Series) -> str:
+    """Return which reading a trend is about: where and in which state, brought to which temperature."""
+    state = "" if series.state == "isolated" else f", {plain(series.state)}"
+    place = f", {plain(series.place)}" if series.place else ""
+    warm = f" at {series.anchor_c:g} degC" if series.anchor_c is not None else ""
+    return f"{measure_name(series.measure)}{warm}{place}{state}"
 
 
 def charts(cases: Iterable[Case], *, tag: str) -> list[Chart]:

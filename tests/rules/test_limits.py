@@ -5,9 +5,10 @@ import pytest
 from calc.sheet import Reading, Value
 from rules.derived import QUANTITIES, derived
 from rules.findings import findings
+from rules.limit_bands import floor_of
 from rules.validators.examples import verdict_of
 
-from .makers import case, insulation, reading, shipped, value, windings
+from .makers import PLATE, case, insulation, reading, shipped, value, windings
 
 EXAMPLES = [
     pytest.param(limit, example, id=f"{limit.id} at {example.value}")
@@ -237,3 +238,18 @@ def test_values_that_were_not_read_cross_nothing(knowledge):
     gone = Value(text="", number=float("nan"), kind="missing")
     volts = Reading(measure="supply_voltage", state="loaded", values=(value("500 V", "voltage"), gone, gone))
     assert findings(case("routine_check", volts), knowledge) == ()
+
+
+def test_the_floor_of_insulation_is_the_highest_limit_that_stops_this_machine(knowledge):
+    """5 Mohm for windings below 1 kV, IEEE 43-2013, from memory; it lies above the older 1 Mohm."""
+    assert floor_of(case("runs_hot"), knowledge, "insulation_resistance") == (5e6, "5 Mohm")
+
+
+def test_the_floor_is_that_of_the_machine_at_hand(knowledge):
+    high = case("runs_hot", nameplate={**PLATE, "voltage": "6 kV"})
+    assert floor_of(high, knowledge, "insulation_resistance") == (1e6, "1 Mohm")
+    assert floor_of(case("runs_hot"), knowledge, "insulation_between_phases") == (1e6, "1 Mohm")
+
+
+def test_a_measure_without_such_a_limit_has_no_floor(knowledge):
+    assert floor_of(case("runs_hot"), knowledge, "speed") is None

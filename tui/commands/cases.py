@@ -6,11 +6,13 @@ from typing import TYPE_CHECKING
 
 import msgspec
 
-from casebook.book import open_casebook
+from casebook.book import Casebook, open_casebook
+from casebook.store import machine_key
 from tui import cli, places
-from tui.columns import columns
+from tui.columns import columns, paragraph
 from tui.harmless import harmless
 from tui.output import say, say_json, warn
+from tui.page_history import LEAST_POINTS, trend_sentences
 from tui.words import plain
 
 if TYPE_CHECKING:
@@ -23,18 +25,32 @@ ROOM = (9, 10, 18, 16, 19)  # eighty columns with the gaps between
 
 
 def run(arguments: Namespace) -> int:
-    """Print the cases that hold every word, newest first."""
+    """Print the cases that hold every word, newest first; below them where one machine's readings lead."""
     with open_casebook(places.existing_casebook(arguments)) as book:
         rows = book.search(" ".join(arguments.words), limit=max(1, arguments.limit))
-        for row in rows if arguments.json else ():
-            say_json(msgspec.to_builtins(row))
+        trends = _trends(book, rows, arguments)
     if arguments.json:
+        more = {"trends": trends} if trends else {}
+        for row in rows:
+            say_json({**msgspec.to_builtins(row), **more})
         return cli.DONE
     if not rows:
         warn("no case holds all of these words" if arguments.words else "the casebook is empty")
         return cli.DONE
     say(columns([_cells(row) for row in rows], head=HEAD))
+    for sentence in trends:
+        say(paragraph(sentence, first="trend: "))
     return cli.DONE
+
+
+def _trends(book: Casebook, rows: list[CaseRow], arguments: Namespace) -> list[str]:
+    """Return the trends in words where all cases that were found are of one machine."""
+    keys = {machine_key(row.tag) for row in rows}
+    if len(rows) < LEAST_POINTS or len(keys) > 1 or keys == {""}:
+        return []
+    tag, now = rows[0].tag, max(row.last_utc for row in rows)
+    knowledge = places.knowledge(arguments)
+    return trend_sentences(book.machine_cases(tag), tag=tag, now=now, knowledge=knowledge)
 
 
 def _cells(row: CaseRow) -> list[str]:
