@@ -18,7 +18,7 @@ if TYPE_CHECKING:
 Raw = dict[str, Any]
 YES_NO: Final = {"yes": "yes", "no": "no"}
 _SIGNS: Final = {
-    "y": "star", "d": "delta", "yy": "double_star", "dd": "double_delta", "wye": "star", "δ": "delta", "△": "delta",
+    "y": "star", "d": "delta", "yy": "double_star", "dd": "double_delta", "wye": "star", "δ": "delta",
 }  # fmt: skip
 """How plates write a connection."""
 
@@ -87,7 +87,7 @@ _STANDS: Final = (
     PlateLine("nominal_frequency", "SITE HZ", "nominal frequency here", "frequency", "Hz", place="supply"),
     PlateLine("source", "FED BY", "mains, inverter, generator ...", choices=words.SOURCES, place="supply"),
     PlateLine("cable_length", "CABLE", "length of the motor cable, m or ft", "cable", "m", place="supply"),
-    PlateLine("starter", "STARTER", "direct, star delta, inverter ...", choices=words.STARTERS, place="machine"),
+    PlateLine("starter", "STARTER", "direct, star delta ...", choices=words.STARTERS, place="machine"),
     PlateLine("type", "LOAD", "pump, fan, conveyor, hoist ...", choices=words.LOADS, place="load"),
     PlateLine("mount", "MOUNT", "rigid or flexible", choices=words.MOUNTS, place="machine"),
     PlateLine("hazardous_area", "EX AREA", "explosive air: yes or no", choices=YES_NO, place="machine"),

@@ -26,7 +26,7 @@ if TYPE_CHECKING:
 
 MOST = 200
 """Cases that a list holds; a search finds the others."""
-TAG_WIDTH, NUMBER_WIDTH = 14, 10
+TAG_WIDTH, NUMBER_WIDTH = 17, 8
 
 
 class CasebookPage(Page[None]):

@@ -12,6 +12,8 @@ from tui.widgets.ruled import blank, row, rows
 from tui.words import fault_name, key_words, percent, plain, question, reading_text
 
 if TYPE_CHECKING:
+    from datetime import datetime
+
     from textual.content import Content
 
     from casebook.bodies import Closed, ShownFinding
@@ -33,6 +35,7 @@ class ClosedCase(TextPage):
         """Return the whole case."""
         case, knowledge, room = self.visit.case, self.visit.knowledge, self.room
         out = machine_lines(self.visit.sheet, case.number, knowledge, room)
+        out += rows("opened", f"{when(case.opened_utc)} by {case.persons[0]}", room)
         if case.closed is not None:
             out += [blank(), *self.closed_lines(case.closed.what)]
         out.append(blank())
@@ -78,6 +81,11 @@ class ClosedCase(TextPage):
         """Go on with the case."""
         self.wants_reopening = True
         self.dismiss(None)
+
+
+def when(moment: datetime) -> str:
+    """Return day and time of a moment."""
+    return moment.astimezone().strftime("%Y-%m-%d %H:%M")
 
 
 def finding_rows(finding: ShownFinding, room: int) -> list[Content]:

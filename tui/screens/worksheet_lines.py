@@ -178,7 +178,7 @@ def _reading_line(read: Read, word: str, room: int) -> Content:
     values = reading_text(read.reading).replace(" / ", " ")
     verdict, style = _verdict(read)
     rest = room - INDENT - name_room - value_room - SCALE_WIDTH - 3
-    names = plain(read.reading.measure)
+    names = plain(read.reading.measure).replace("insulation resistance", "insulation")
     band = ""
     if wide and read.band:
         band = pad(
