@@ -13,7 +13,6 @@ from contextlib import closing
 from pathlib import Path
 from tempfile import TemporaryDirectory
 from typing import Any, Final, NamedTuple
-from urllib.parse import quote
 
 import msgspec
 
@@ -22,6 +21,7 @@ from casebook.check import MAX_BODY, check_entry
 from casebook.entry import Entry, canonical_json
 from casebook.errors import BadEntry, CasebookError, NewerCasebook, NotACasebook
 from casebook.opening import translated
+from casebook.place import uri
 from casebook.rows import entry_of_row, moment_of, stamp
 from casebook.walk import UNREADABLE, Gap, walk
 from casebook.wire import entry_of_line, read_lines
@@ -127,7 +127,7 @@ _KNOWN_TABLES: Final = frozenset(
 def open_foreign(path: Path) -> sqlite3.Connection:
     """Open a foreign casebook; refuse one that is no casebook, newer, or not what it claims to be."""
     options = "mode=ro" if Path(f"{path}-wal").exists() else "immutable=1"
-    connection = sqlite3.connect(f"file:{quote(str(path.resolve()))}?{options}", uri=True)
+    connection = sqlite3.connect(uri(path, options), uri=True)
     try:
         connection.setlimit(sqlite3.SQLITE_LIMIT_LENGTH, _MAX_CELL)
         for pragma in ("trusted_schema = OFF", "cell_size_check = ON", "query_only = ON", "mmap_size = 0"):

@@ -12,7 +12,6 @@ from datetime import UTC, datetime
 from pathlib import Path
 from tempfile import TemporaryDirectory
 from typing import Final, NamedTuple
-from urllib.parse import quote
 
 import msgspec
 
@@ -73,7 +72,7 @@ def _connect(path: Path, *, group: bool, read_only: bool, timeout_s: float) -> O
 
 def _connection(path: Path, options: str, timeout_s: float) -> sqlite3.Connection:
     return sqlite3.connect(
-        f"file:{quote(str(path.resolve()))}?{options}",
+        place.uri(path, options),
         uri=True,
         timeout=timeout_s,
         isolation_level=None,

@@ -6,6 +6,7 @@ import os
 import stat
 from pathlib import Path
 from typing import Final
+from urllib.parse import quote
 
 import platformdirs
 
@@ -66,8 +67,11 @@ def prepare(path: Path, *, group: bool) -> None:
         make_folder(path.parent, group=group)
         with_mode = 0o660 if group else 0o600
         descriptor = os.open(path, os.O_CREAT | os.O_EXCL | os.O_RDWR, with_mode)
-        os.fchmod(descriptor, with_mode)  # whatever the umask says; -wal and -shm take the same
-        os.close(descriptor)
+        try:
+            if hasattr(os, "fchmod"):  # whatever the umask says; -wal and -shm take the same
+                os.fchmod(descriptor, with_mode)
+        finally:
+            os.close(descriptor)
         _sync_folder(path.parent)
     except FileExistsError:
         return  # another process was faster
@@ -122,6 +126,12 @@ def is_writable(path: Path) -> bool:
     return os.access(path, os.W_OK) and os.access(path.parent, os.W_OK)
 
 
+def uri(path: Path, options: str) -> str:
+    """Return the name of a file as SQLite takes it with options, drive letters included."""
+    text = path.resolve().as_posix()
+    return f"file://{'' if text.startswith('/') else '/'}{quote(text, safe='/:')}?{options}"
+
+
 def shared_file_system(path: Path) -> str:
     """Return the kind of a network or shared file system that a path lies on, or nothing."""
     kind = _file_system(path)
@@ -144,7 +154,12 @@ def _file_system(path: Path) -> str:
 
 
 def privacy_note(path: Path) -> str:
-    """Return a sentence if people outside owner and group can read the file, else nothing."""
+    """Return a sentence if people outside owner and group can read the file, else nothing.
+
+    Where files have no such mode the rights of the folder decide, and nothing is said.
+    """
+    if os.name != "posix":
+        return ""
     mode = stat.S_IMODE(path.stat().st_mode)
     if mode & 0o007:
         return f"{path.name} can be read by everybody on this machine (mode {mode:o})"
