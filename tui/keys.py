@@ -128,7 +128,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
             "enter,f8",
             "isolate",
             "isolation record",
-            "Who isolated and locked out, when, and whether it is dead.",
+            "Who isolated and locked out, when, and that it was proved dead.",
         ),
         *_PAGES,
     ),

@@ -93,7 +93,7 @@ class IsolationPage(FormPage[Isolation]):
             Line("person", "by", "who isolated it, with own lock and tag", self.person),
             Line(
                 "proved_dead",
-                "dead",
+                "proved",
                 "y: proved dead where the work is, all lines and earth",
                 hear=yes,
                 width=5,
