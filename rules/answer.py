@@ -99,6 +99,7 @@ class Energise(msgspec.Struct, frozen=True, kw_only=True):
     gate: Literal["shut", "no_finding_forbids"]
     needs: tuple[str, ...] = ()
     because: tuple[str, ...] = ()
+    """What forbids, each entry once, although several lines may rest on it."""
     lines: tuple[GateLine, ...] = ()
     says: str = ""
 

@@ -18,7 +18,7 @@ from rules.answer import Energise, GateLine
 from rules.facts import facts_of, meets
 from rules.findings import crossings
 from rules.gate_checks import CHECKS, Checked, Evidence
-from rules.gate_record import below_floor, has_run, has_tripped, is_overload_trip, label, means_stop, typed
+from rules.gate_record import below_floor, floor_words, has_run, has_tripped, is_overload_trip, means_stop
 from rules.knowledge import GateRule, Knowledge
 
 NOT_ENERGISED: Final = frozenset(STATES) - ENERGISED_STATES
@@ -120,7 +120,7 @@ def _floor_line(sheet: CaseSheet, knowledge: Knowledge) -> ShutLine:
             named = entry.name if entry is not None else sheet.complaint
             checked = Checked("forbids", f"the complaint means stop: {named}")
         elif low is not None:
-            checked = Checked("forbids", f"{label(low)} read {typed(low)}")
+            checked = Checked("forbids", floor_words(low))
     except Exception as error:
         checked = Checked("forbids", f"the sheet could not be judged: {type(error).__name__}")
     return _line("nothing_means_stop", needs, checked, (), ENERGISED_STATES)
@@ -209,10 +209,11 @@ def _state(lines: list[ShutLine]) -> GateState:
     shut = tuple(one for one in lines if one.line.status != "cleared" and one.states)
     deciding = [one for one in shut if one.states & DECISIVE]
     needs = [ask.partition("@")[0] for one in deciding for ask in one.wants]
+    forbids = [one.line.because for one in deciding if one.line.status == "forbids"]
     energise = Energise(
         gate="shut" if deciding else "no_finding_forbids",
         needs=tuple(dict.fromkeys(needs)),
-        because=tuple(one.line.because for one in deciding if one.line.status == "forbids"),
+        because=tuple(dict.fromkeys(forbids)),  # one entry may forbid on several lines
         lines=tuple(one.line for one in lines if one.states - NEVER_ARRANGED),
         says=SAYS_SHUT if deciding else SAYS_NOTHING_FORBIDS,
     )

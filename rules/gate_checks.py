@@ -20,6 +20,7 @@ from rules.gate_record import (
     INSULATION_FLOOR_OHM,
     TRIP_OBSERVATIONS,
     below_floor,
+    floor_words,
     has_tripped,
     label,
     last,
@@ -53,9 +54,12 @@ Check = Callable[[Evidence], Checked]
 
 def insulation_read(seen: Evidence) -> Checked:
     """Ask for insulation to frame that was read, and that crosses no limit of verdict stop."""
-    low = below_floor(seen.sheet) or _stopped(seen, "insulation_at_40c", *INSULATION)
+    low = below_floor(seen.sheet)
     if low is not None:
-        return Checked("forbids", f"{label(low)} read {typed(low)}")
+        return Checked("forbids", floor_words(low))
+    low = _stopped(seen, "insulation_at_40c", *INSULATION)
+    if low is not None:
+        return Checked("forbids", f"{label(low)} read {typed(low)}, beyond its limit")
     return _read(seen, lambda number: number >= INSULATION_FLOOR_OHM)
 
 

@@ -50,6 +50,11 @@ def below_floor(sheet: CaseSheet) -> Reading | None:
     return None
 
 
+def floor_words(low: Reading) -> str:
+    """Return the sentence on an insulation reading below the floor; every line of the gate says it alike."""
+    return f"{label(low)} read {typed(low)}: below 1 Mohm nothing is energised"
+
+
 def _is_below_floor(number: float, kind: str) -> bool:
     if math.isnan(number):
         return False

@@ -157,6 +157,17 @@ def test_the_whole_answer_agrees_with_its_states(sheet):
 
 
 @SETTINGS
+@given(sheets, suspects)
+def test_what_forbids_is_said_once_and_nothing_that_forbids_is_left_out(sheet, odds):
+    energise = gate(sheet, KNOWN, suspects=odds).energise
+    assert len(set(energise.because)) == len(energise.because)
+    said = {line.because for line in energise.lines if line.status == "forbids"}
+    assert all(energise.because) and set(energise.because) <= said
+    standby = [one for one in gate(sheet, KNOWN, suspects=odds).shut if one.states & {"standby", "loaded"}]
+    assert {one.line.because for one in standby if one.line.status == "forbids"} <= set(energise.because)
+
+
+@SETTINGS
 @given(sheets)
 def test_a_stop_or_a_no_is_never_outvoted_by_more_readings(sheet):
     answers = {**sheet.observations, "shaft_turns_freely": False, "turns_freely_uncoupled": False}
