@@ -76,7 +76,8 @@ def _frequency(machine: Machine, readings: Sequence[Reading], volts: float | Non
         mean = _mean(reading) if reading.measure == "supply_frequency" else None
         if mean is not None:
             return 50.0 if abs(mean - 50.0) < abs(mean - 60.0) else 60.0
-    speed = machine.nameplate.number("speed")
+    speeds = [m for r in readings if r.measure == "speed" and (m := _mean(r)) is not None and m > 50.0]
+    speed = machine.nameplate.number("speed") or max(speeds, default=None)
     if speed:
         return min((50.0, 60.0), key=lambda hertz: _slip_at(speed, hertz))
     near = volts or _voltage(readings)

@@ -227,7 +227,7 @@ class InductionTwin:
         index = np.arange(len(z))
         phase = rows["phase"].astype(np.int64)
         phases[index, phase] *= 1.0 - rows["turns"]
-        phases[index, phase] += rows["phase_r"] * np.where(rows["phase_r"] >= effects.OPEN, 1e7, 1.0)
+        phases[index, phase] += rows["phase_r"] * np.where(rows["phase_r"] >= effects.OPEN, 1e4, 1.0)
         if ask.measure == "phase_resistance":
             own = np.where(delta > 0.5, 3.0, 1.0)[:, None] * phases
             return np.minimum(own * self.base.impedance_ohm, OPEN_OHM)

@@ -253,7 +253,7 @@ def _finish(
     """Evidence, covariance and per-reading densities at the fits; given-up modes keep the bound they had."""
     alive = np.isin(best, chosen)
     rows = np.flatnonzero(alive)
-    y, dy, plate, dp = fitter.slopes([modes[i] for i in rows], z[rows], active, 0.12)
+    y, dy, plate, dp = fitter.slopes([modes[int(i)] for i in rows], z[rows], active, 0.12)
     _, curvature = fitter.normal(dy, dp, fitter.weights(fitter.residual(y)), plate_weight(plate))
     predicted, misfit = fitter.predict(modes, z[:, None, :])
     taken = 0.5 * np.linalg.slogdet(curvature)[1]

@@ -30,9 +30,11 @@ _BROAD_DEFAULT = (0.45, 0.25)
 
 def other_evidence(twin: Twin, data: Frame) -> float:
     """Log density of all readings under "other": one multivariate t around the healthy prediction."""
-    if not data.groups:
-        return 0.0
     mode = twin.modes("none")[:1]
+    # A plate that contradicts itself speaks against every machine alike, so against this one too.
+    plate = float(fit_modes(twin, mode, frame([])).evidence[0])
+    if not data.groups:
+        return plate
     fitter = Fitter(twin, data)
     active = np.arange(twin.dim)
     y, dy, _, _ = fitter.slopes(mode, np.zeros((1, twin.dim)), active, 0.5)
@@ -42,11 +44,8 @@ def other_evidence(twin: Twin, data: Frame) -> float:
     solved = np.linalg.solve(spread, gap)
     log_det = float(np.linalg.slogdet(spread)[1])
     distance = float(gap @ solved)
-    # A plate that contradicts itself speaks against every machine alike, so against this one too.
-    bare = fit_modes(twin, mode, frame([]))
-    contradiction = float(bare.stretch[0])
     constant = math.lgamma((_NU + size) / 2) - math.lgamma(_NU / 2) - 0.5 * size * math.log(_NU * math.pi)
-    return constant - contradiction - 0.5 * log_det - 0.5 * (_NU + size) * math.log1p(distance / _NU)
+    return constant + plate - 0.5 * log_det - 0.5 * (_NU + size) * math.log1p(distance / _NU)
 
 
 def _broad(data: Frame) -> Floats:

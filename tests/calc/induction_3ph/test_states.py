@@ -160,9 +160,6 @@ def test_renaming_the_phases_of_a_fault_on_an_uneven_supply_renames_standstill_a
         assert_renamed(twin, mode, z, renamed(mode, 1), turned(z, 1), 1, keys)
 
 
-@pytest.mark.xfail(
-    strict=True, reason="the slip behind a fault in one line takes the supply's unbalance without its phase"
-)
 @pytest.mark.parametrize("effect", ["open_line", "series_resistance", "open_phase"])
 def test_renaming_the_phases_of_a_fault_on_an_uneven_supply_renames_the_loaded_motor(effect):
     twin = fit(machine(**PUMP))
