@@ -1,4 +1,4 @@
-"""Answers graded cases in process: ``--call benchmarks.grading:answer`` of a grader that hands over sheets."""
+"""Answers graded cases in process: ``--call benchmarks.grading:answer`` of a grader with plain sheets."""
 
 from __future__ import annotations
 
