@@ -3,6 +3,7 @@
 import csv
 import io
 import json
+import os
 import re
 import subprocess
 import sys
@@ -152,3 +153,21 @@ def test_salvage_reads_a_sound_casebook_into_a_new_file(run, number, casebook, t
     assert run("salvage", str(casebook), new).status == 0
     assert "WP-104" in run("cases", "--casebook", new).out
     assert run("salvage", str(casebook), new).status == 1
+
+
+@pytest.mark.parametrize("form", [(), ("--csv",)])
+def test_no_letter_is_lost_where_the_terminal_knows_ascii_only(run, casebook, tmp_path, form):
+    path = tmp_path / "odd.yaml"
+    path.write_text(
+        "format: 1\nmachine: {kind: induction_3ph, tag: 'Lüfter Ø3 技'}\ncomplaint: runs_hot\n"
+        "readings: [{measure: speed, state: loaded, value: 1450 rpm}]\n",
+        encoding="utf-8",
+    )
+    run("log", str(path), "--person", "Ines")
+    command = [sys.executable, "-m", "plateside", "export", *form, "--casebook", str(casebook)]
+    environment = {**os.environ, "PYTHONIOENCODING": "ascii", "PYTHONUTF8": "0"}
+    out = subprocess.run(
+        command, capture_output=True, check=True, cwd=ROOT, timeout=60, env=environment
+    ).stdout
+    assert "Lüfter Ø3 技" in out.decode("utf-8")
+    assert (b"\r\r" not in out) and (b"\r\n" in out) is bool(form)

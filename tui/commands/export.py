@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import io
 import sys
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -27,13 +28,20 @@ def run(arguments: Namespace) -> int:
         if arguments.json_lines:
             export_lines(book, sys.stdout.buffer, arguments.cases or None)
         elif arguments.csv:
-            sys.stdout.reconfigure(newline="")  # type: ignore[union-attr]  # the writer ends its own lines
+            _as_utf8()
             export_csv(_cases(book, arguments.cases), sys.stdout)
         elif arguments.to:
             return _files(book, arguments.cases, Path(arguments.to).expanduser())
         else:
+            _as_utf8()
             _sheets(book, arguments.cases)
     return cli.DONE
+
+
+def _as_utf8() -> None:
+    """Write every letter as it was typed and end lines as told here, whatever the terminal does."""
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        sys.stdout.reconfigure(encoding="utf-8", newline="")
 
 
 def _files(book: Casebook, names: list[str], folder: Path) -> int:
