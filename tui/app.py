@@ -28,7 +28,13 @@ def prepare(environ: MutableMapping[str, str] = os.environ) -> None:
     environ.setdefault("TEXTUAL_COLOR_SYSTEM", "standard")
 
 
-def run_app(casebook: Path, *, rule_folders: Sequence[Path] = (), ascii_only: bool = False) -> int:
+def run_app(
+    casebook: Path,
+    *,
+    rule_folders: Sequence[Path] = (),
+    ascii_only: bool = False,
+    use_learned: bool = True,
+) -> int:
     """Run the screens on a casebook until they are left; return the exit status."""
     prepare()
     sys.setswitchinterval(SWITCH_INTERVAL_S)
@@ -37,5 +43,6 @@ def run_app(casebook: Path, *, rule_folders: Sequence[Path] = (), ascii_only: bo
 
     ascii_only = ascii_only or bool(os.environ.get("PLATESIDE_ASCII")) or needs_ascii()
     app = PlatesideApp(casebook, rules=rule_folders, ascii_only=ascii_only)
+    app.desk.use_learned = use_learned
     status = app.run(mouse=False)
     return app.return_code or status or 0

@@ -26,6 +26,8 @@ class Desk:
         self.book = Casebook(SqliteStore(casebook))
         self.drafts = Drafts(casebook)
         self.rules = tuple(rules)
+        self.use_learned = True
+        """Whether the shop's own confirmed cases shift the odds."""
         self.person = person or str(self.drafts.recall("person") or "")
         kit = self.drafts.recall("kit")
         self.kit: tuple[str, ...] | None = tuple(kit) if isinstance(kit, list) else None
@@ -44,7 +46,7 @@ class Desk:
             if self._knowledge is None:
                 from rules.loading import load_knowledge
 
-                self._knowledge = load_knowledge(*self.rules)
+                self._knowledge = load_knowledge(extra_folders=self.rules)
             return self._knowledge
 
     @property
@@ -72,13 +74,18 @@ class Desk:
         """Take up a case."""
         from tui.compose import Visit
 
-        return Visit(self.book, case, person=self.person, knowledge=self.knowledge)
+        return self._set_up(Visit(self.book, case, person=self.person, knowledge=self.knowledge))
 
     def open_case(self, sheet: CaseSheet) -> Visit:
         """Open a new case."""
         from tui.compose import Visit
 
-        return Visit.new(self.book, sheet, person=self.person, knowledge=self.knowledge)
+        return self._set_up(Visit.new(self.book, sheet, person=self.person, knowledge=self.knowledge))
+
+    def _set_up(self, visit: Visit) -> Visit:
+        """Weigh as this desk was told to."""
+        visit.use_learned = self.use_learned
+        return visit
 
     def close(self) -> None:
         """Let the casebook go."""
