@@ -14,6 +14,7 @@ import msgspec
 from calc.quantities import ENERGISED_STATES
 from casebook import bodies
 from rules.findings import findings
+from tui.context import split_context
 from tui.experience import Experience
 from tui.typed import Understood, understand
 from tui.version import VERSION
@@ -109,10 +110,16 @@ class Visit:
     def understand(self, measure: str, state: str, text: str, **context: str) -> Understood:
         """Read typed text for one measure; nothing is stored. The echo says in words what was understood.
 
-        ``context`` holds what goes with it as typed: ``temperature="24"``, ``method="four_wire"``.
-        Raises InputError where the text is no such reading.
+        What goes with it is typed behind the values, ``350 at 24 C 500 V``, or given as ``context``:
+        ``temperature="24"``, ``method="four_wire"``. Raises InputError where the text is no such reading.
         """
-        return understand(self.case.machine, measure, state, text, context)
+        values, beside = split_context(text, self.context_of(measure))
+        return understand(self.case.machine, measure, state, values, {**beside, **context})
+
+    def context_of(self, measure: str) -> tuple[str, ...]:
+        """Return what may be noted with a reading, such as ``temperature``; what decides is first."""
+        rule = self.knowledge.readings.get(measure)
+        return rule.context if rule is not None else ()
 
     def record(self, understood: Understood) -> str:
         """Store a reading that was echoed, with the band and the limit that stood beside it."""

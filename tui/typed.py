@@ -11,7 +11,7 @@ from calc.sheet import CaseSheet
 from calc.sheet_io import sheet_from_plain, sheet_to_plain
 from calc.typed import parse_typed, spell_out
 from calc.values import ValueTextError
-from calc.vocabulary import CHECKED, CONTEXT_DIMENSION
+from calc.vocabulary import CHECKED, CONTEXT_DIMENSION, CONTEXT_WORDS
 from tui.words import measure_name, plain
 
 if TYPE_CHECKING:
@@ -44,9 +44,26 @@ def understand(
     """Read what was typed for one measure. Raises InputError where it is no such reading."""
     plain_reading = _plain_reading(machine, measure, state, text, context)
     reading, asks = _decoded(machine, plain_reading)
-    noted = [f"{plain(name)} {given}" for name, given in context.items() if given]
-    echo = ", ".join([f"{spell_out(measure, reading.values)} ({plain(state)})", *noted])
+    echo = ", ".join([f"{spell_out(measure, reading.values)} ({plain(state)})", *noted(reading)])
     return Understood(reading=reading, echo=echo, asks=asks)
+
+
+def noted(reading: Reading) -> list[str]:
+    """Return in words what goes with a reading."""
+    numbered = {
+        "temperature": "at {}",
+        "test_voltage": "{} test voltage",
+        "speed": "at {}",
+        "after_stop": "{} after the stop",
+    }
+    said = []
+    for name, form in numbered.items():
+        if (value := getattr(reading, name)) is not None:
+            said.append(form.format(value.text.replace("degC", "°C").replace("degF", "°F")))
+    for name, words in CONTEXT_WORDS.items():
+        if (word := getattr(reading, name)) is not None:
+            said.append(words.get(word, word))
+    return [*said, *([reading.direction] if reading.direction else [])]
 
 
 def _plain_reading(

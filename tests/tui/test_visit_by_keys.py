@@ -320,3 +320,21 @@ async def take_what_is_proposed(pilot: Pilot[int], press: Callable[..., Awaitabl
 def newest(app: PlatesideApp):
     """The newest case as the casebook has it on disk."""
     return app.desk.book.case(app.desk.book.cases()[0].id)
+
+
+async def test_temperature_and_test_voltage_are_typed_with_the_insulation_and_stored(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"insulation resistance", "enter")
+        await until(pilot, "add: at 24 C, 500 V")
+        await keys(pilot, *"350 at 24 C 500 V")
+        await until(pilot, "350 megohm (isolated), at 24 °C, 500 V test voltage")
+        await keys(pilot, "enter")
+        await until(pilot, "Isolation of P-104")
+        await keys(pilot, "y", "enter", "y", "enter", "enter")
+        await until(pilot, "stored: insulation")
+        reading = newest(app).readings[0].what.reading
+    assert reading.numbers == (350e6,)
+    assert reading.temperature is not None and reading.temperature.number == 24.0
+    assert reading.test_voltage is not None and reading.test_voltage.number == 500.0

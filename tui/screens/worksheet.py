@@ -265,4 +265,5 @@ class Worksheet(WorksheetTyping):
             return "Enter closes the case; a word finds another reading"
         if item.observation is not None:
             return "y or n"
-        return values_wanted(str(item.measure), self.visit.kind)
+        measure = str(item.measure)
+        return values_wanted(measure, self.visit.kind, self.visit.context_of(measure))

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from calc.quantities import MEASURES, arity
 from casebook.bodies import Closed
 from rules.answer import NextItem
+from tui.context import context_hint
 from tui.screens.ask import Ask
 from tui.screens.closing import CONFIRMED
 from tui.screens.pick import Choice
@@ -97,10 +98,12 @@ def item_of(key: str, proposals: Sequence[NextItem], knowledge: Knowledge) -> Ne
     return NextItem(measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards)
 
 
-def values_wanted(measure: str, kind: str) -> str:
-    """Return what belongs into the line for a measure, in words."""
+def values_wanted(measure: str, kind: str, context: Sequence[str] = ()) -> str:
+    """Return what belongs into the line for a measure, in words, and what may go with it."""
     known = MEASURES.get(measure)
     if known is None:
         return "a value with its unit"
     many = "three values" if arity(measure, kind) == 3 else "one value"
-    return f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"
+    values = f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"
+    hint = context_hint(measure, context)
+    return f"{values}; {hint}" if hint else values
