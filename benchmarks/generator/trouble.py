@@ -80,7 +80,7 @@ def draw_site(random: Random) -> Site:
     law = str(random.choice(["pump", "fan", "constant"], p=[0.42, 0.23, 0.35]))
     return Site(
         law=law,
-        load=float(random.beta(4.5, 1.9)),
+        load=float(0.3 + 0.7 * random.beta(2.2, 1.9)),
         breakaway=float(random.uniform(0.5, 1.0) if law == "constant" else random.uniform(0.08, 0.3)),
         level=float(np.exp(random.normal(0, 0.02))),
         unbalance=abs(random.normal(0, 0.004)) * np.exp(2j * np.pi * random.random()),
