@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 from calc.errors import PlatesideError
@@ -24,6 +25,8 @@ if TYPE_CHECKING:
 
 DRAFT = "new_case"
 NO_TAG = "-"
+PLATE_STEPS = 2
+"""Where the questions begin that a known machine answers by itself."""
 OFFERED_KINDS = tuple(kind for kind in KINDS if kind not in {"dc_generator", "alternator"})
 
 
@@ -55,21 +58,96 @@ async def open_case(app: PlatesideApp, case: str) -> None:
     await app.push_screen_wait(Worksheet(visit))
 
 
+@dataclass
+class Begun:
+    """A new case as far as it is told; going back keeps all of it."""
+
+    tag: str | None = None
+    complaint: str = ""
+    kind: str = ""
+    lines: dict[str, str] = field(default_factory=dict)
+    machine: Raw | None = None
+    """The machine as it goes into the sheet: known, or from its plate."""
+
+    @classmethod
+    def of(cls, draft: dict[str, Any]) -> Begun:
+        """Take up a draft."""
+        return cls(
+            draft.get("tag"),
+            draft.get("complaint") or "",
+            draft.get("kind") or "",
+            dict(draft.get("lines") or {}),
+        )
+
+    @property
+    def step(self) -> int:
+        """The first question that is not answered."""
+        answered = (self.tag is not None, bool(self.complaint), bool(self.kind))
+        return next((place for place, told in enumerate(answered) if not told), len(answered))
+
+    def kept(self) -> dict[str, Any]:
+        """Return what a draft must hold."""
+        return {"tag": self.tag, "complaint": self.complaint, "kind": self.kind, "lines": self.lines}
+
+    def draft(self) -> tuple[str, dict[str, Any]] | None:
+        """Return the draft of what is told, once there is a machine."""
+        return (DRAFT, self.kept()) if self.tag is not None else None
+
+
 async def new_case(app: PlatesideApp, draft: dict[str, Any] | None = None) -> None:
-    """Go from the machine to the worksheet; back goes one step back."""
+    """Go from the machine to the worksheet; back goes one question back and keeps what was told."""
     if not app.desk.knows_person and not await ask_person(app):
         return
-    begun = draft or {}
-    tag = begun.get("tag") if draft is not None else await pick_machine(app)
+    begun = Begun.of(draft or {})
+    steps = (tell_machine, tell_complaint, tell_kind, tell_plate)
+    step = begun.step
+    while 0 <= step < len(steps):
+        step += 1 if await steps[step](app, begun) else -1
+        if step == PLATE_STEPS and begun.machine is not None:
+            break
+    if step >= 0 and begun.machine is not None:
+        await start(app, begun.machine, begun.complaint)
+
+
+async def tell_machine(app: PlatesideApp, begun: Begun) -> bool:
+    """Ask for the machine; return whether it was told."""
+    tag = await pick_machine(app, begun.tag)
     if tag is None:
-        return
-    known = app.desk.machine(tag) if tag and not begun.get("lines") else None
-    complaint = begun.get("complaint") or await pick_complaint(app, tag, known.kind if known else "")
-    if complaint is None:
-        return
-    machine = sheet_of(known) if known else await type_plate(app, tag, complaint, begun)
-    if machine is not None:
-        await start(app, machine, complaint)
+        return False
+    if tag != begun.tag:
+        begun.kind, begun.lines = "", {}
+    begun.tag = tag
+    return True
+
+
+async def tell_complaint(app: PlatesideApp, begun: Begun) -> bool:
+    """Ask what is wrong; return whether it was told."""
+    known = app.desk.machine(begun.tag) if begun.tag and not begun.lines else None
+    begun.machine = sheet_of(known) if known else None
+    complaint = await pick_complaint(app, begun, known.kind if known else "")
+    begun.complaint = complaint or begun.complaint
+    return complaint is not None
+
+
+async def tell_kind(app: PlatesideApp, begun: Begun) -> bool:
+    """Ask for the kind of machine; return whether it was told."""
+    choices = [Choice(kind, KINDS[kind]) for kind in OFFERED_KINDS]
+    page = Pick(*tagged(begun.tag or "", "What kind of machine?"), choices, at=begun.kind, draft=begun.draft)
+    kind = await app.push_screen_wait(page)
+    begun.kind = kind or begun.kind
+    return kind is not None
+
+
+async def tell_plate(app: PlatesideApp, begun: Begun) -> bool:
+    """Ask for the plate; going back, or for another kind, keeps what is typed."""
+    check, extra = check_of(begun.complaint), {"complaint": begun.complaint}
+    page = NameplatePage(begun.kind, begun.tag or "", check, begun.lines, extra)
+    machine = await app.push_screen_wait(page)
+    begun.machine = machine if machine and machine["kind"] else None
+    begun.lines = {name: text for name, text in page.values.items() if text}
+    if begun.machine is None and begun.lines:
+        app.desk.drafts.save(DRAFT, begun.kept())
+    return begun.machine is not None
 
 
 async def start(app: PlatesideApp, machine: Raw, complaint: str) -> None:
@@ -87,7 +165,7 @@ async def start(app: PlatesideApp, machine: Raw, complaint: str) -> None:
     await app.push_screen_wait(Worksheet(visit))
 
 
-async def pick_machine(app: PlatesideApp) -> str | None:
+async def pick_machine(app: PlatesideApp, before: str | None = None) -> str | None:
     """Ask for the tag: a known machine, or a new one as typed. Returns "" for a machine without a tag."""
     known = app.desk.book.machines(limit=500)
     choices = [
@@ -99,11 +177,19 @@ async def pick_machine(app: PlatesideApp) -> str | None:
             return Choice(NO_TAG, "a machine without a tag", word="new")
         return Choice(text, f"{text}: a machine that the casebook does not know", word="new")
 
-    answer = await app.push_screen_wait(Pick("machine", "Which machine? Type its tag.", choices, fresh=fresh))
+    page = Pick(
+        "machine",
+        "Which machine? Type its tag.",
+        choices,
+        typed=before or "",
+        fresh=fresh,
+        asks="Type a tag, or move to a machine.",
+    )
+    answer = await app.push_screen_wait(page)
     return "" if answer == NO_TAG else answer
 
 
-async def pick_complaint(app: PlatesideApp, tag: str, kind: str) -> str | None:
+async def pick_complaint(app: PlatesideApp, begun: Begun, kind: str) -> str | None:
     """Ask what is wrong; what means stop stands first."""
     complaints = app.desk.knowledge.complaints.values()
     fitting = [c for c in complaints if not kind or {"any", kind} & set(c.kinds)]
@@ -111,29 +197,14 @@ async def pick_complaint(app: PlatesideApp, tag: str, kind: str) -> str | None:
     choices = [
         Choice(c.id, c.name, word="STOP" if c.stop else "", style="bold" if c.stop else "") for c in fitting
     ]
-    return await app.push_screen_wait(Pick(*tagged(tag, "What is wrong?"), choices))
-
-
-async def type_plate(app: PlatesideApp, tag: str, complaint: str, begun: dict[str, Any]) -> Raw | None:
-    """Ask for the kind of machine and its plate; another kind keeps what is typed."""
-    kind: str | None = begun.get("kind")
-    lines: dict[str, str] = dict(begun.get("lines") or {})
-    while True:
-        if not kind:
-            choices = [Choice(kind, KINDS[kind]) for kind in OFFERED_KINDS]
-            pick = Pick(*tagged(tag, "What kind of machine?"), choices)
-            kind = await app.push_screen_wait(pick)
-        if kind is None:
-            return None
-        page = NameplatePage(kind, tag, check_of(complaint), lines, {"complaint": complaint})
-        machine = await app.push_screen_wait(page)
-        if machine is None:
-            if any(page.values.values()):
-                app.desk.drafts.save(DRAFT, page.kept())
-            return None
-        if machine["kind"]:
-            return machine
-        kind, lines = None, page.values
+    page = Pick(
+        *tagged(begun.tag or "", "What is wrong?"),
+        choices,
+        at=begun.complaint,
+        asks="Type or move to a complaint.",
+        draft=begun.draft,
+    )
+    return await app.push_screen_wait(page)
 
 
 def check_of(complaint: str) -> Any:  # noqa: ANN401  (a function from a raw machine to remarks)

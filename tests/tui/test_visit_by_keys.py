@@ -338,3 +338,59 @@ async def test_temperature_and_test_voltage_are_typed_with_the_insulation_and_st
     assert reading.numbers == (350e6,)
     assert reading.temperature is not None and reading.temperature.number == 24.0
     assert reading.test_voltage is not None and reading.test_voltage.number == 500.0
+
+
+async def test_back_goes_one_question_back_and_keeps_what_was_told(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await keys(pilot, "n")
+        await until(pilot, "Which machine")
+        await keys(pilot, *"P-104", "enter")
+        await until(pilot, "What is wrong")
+        await keys(pilot, *"runs hot", "enter")
+        await until(pilot, "What kind")
+        await keys(pilot, *"single", "enter")
+        await until(pilot, "Nameplate")
+        await keys(pilot, *"0.75 kW", "f9")
+        await until(pilot, "What kind")
+        await keys(pilot, "f9")
+        await until(pilot, "What is wrong")
+        await keys(pilot, "f9")
+        await until(pilot, "Which machine")
+        await keys(pilot, "enter")
+        await until(pilot, "P-104 What is wrong")
+        await keys(pilot, "enter")
+        await until(pilot, "What kind")
+        await keys(pilot, "enter")
+        screen = await until(pilot, "Nameplate of a")
+    assert "single-phase" in screen
+    assert "0.75 kW" in screen
+
+
+async def test_enter_without_a_choice_takes_no_complaint(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await keys(pilot, "n")
+        await until(pilot, "Which machine")
+        await keys(pilot, *"P-104", "enter")
+        await until(pilot, "What is wrong")
+        await keys(pilot, "enter")
+        await until(pilot, "Type or move to a complaint")
+        assert len(app.desk.book.cases()) == 1
+
+
+async def test_leaving_in_the_middle_of_a_new_case_asks_and_keeps_it_as_a_draft(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await keys(pilot, "n")
+        await until(pilot, "Which machine")
+        await keys(pilot, *"P-104", "enter")
+        await until(pilot, "What is wrong")
+        await keys(pilot, *"runs hot", "enter")
+        await until(pilot, "What kind")
+        await keys(pilot, "ctrl+g")
+        await until(pilot, "Typed and not stored: the new case of P-104")
+        await keys(pilot, "y")
+        await pilot.pause()
+        draft = app.desk.drafts.load("new_case")
+    assert (draft["tag"], draft["complaint"]) == ("P-104", "runs_hot")

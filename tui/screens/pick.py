@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from textual.containers import Horizontal
 from textual.widgets import Input, Static
@@ -21,6 +21,9 @@ if TYPE_CHECKING:
 
     from textual.content import Content
     from textual.widget import Widget
+
+
+Draft = tuple[str, dict[str, Any]]
 
 
 @dataclass(frozen=True)
@@ -48,7 +51,9 @@ class Choice:
 class Pick(Page[str]):
     """Dismisses with the key of the picked line, with None on back.
 
-    ``fresh`` makes a line out of what was typed, such as a machine that is not known yet.
+    ``fresh`` makes a line out of what was typed, such as a machine that is not known yet. ``at`` puts
+    the bar on a line. Where ``asks`` says something, the bar stands nowhere until something is typed
+    or it is moved, and Enter says that. ``draft`` gives what to keep when the line drops here.
     """
 
     KEYS = "pick"
@@ -62,10 +67,14 @@ class Pick(Page[str]):
         *,
         typed: str = "",
         fresh: Callable[[str], Choice | None] = lambda _text: None,
+        at: str = "",
+        asks: str = "",
+        draft: Callable[[], Draft | None] = lambda: None,
     ) -> None:
         super().__init__()
         self.word, self.title_text, self.choices = word, title, list(choices)
         self.typed, self.fresh = typed, fresh
+        self.start_at, self.asks, self.begun = at, asks, draft
         self.shown: list[Choice] = []
         self.narrowed_by = ""
 
@@ -102,9 +111,16 @@ class Pick(Page[str]):
         if made is not None and all(choice.key != made.key for choice in self.shown):
             self.shown.append(made)
         picker = self.query_one(Lines)
-        picker.show([self.line(choice) for choice in self.shown])
+        picker.show([self.line(choice) for choice in self.shown], at=self.bar(text))
         if not self.shown and text:
             picker.add_option(Option(row("", ("nothing matches", FAINT)), disabled=True))
+
+    def bar(self, text: str) -> int | None:
+        """Return where the bar stands first: on the line asked for, on the first, or nowhere."""
+        places = [place for place, choice in enumerate(self.shown) if choice.key == self.start_at]
+        if places and not text:
+            return places[0]
+        return None if self.asks and not text.strip() else 0
 
     def line(self, choice: Choice) -> Content:
         """Return a choice as one ruled line."""
@@ -131,3 +147,14 @@ class Pick(Page[str]):
         at = self.query_one(Lines).highlighted
         if at is not None and at < len(self.shown):
             self.dismiss(self.shown[at].key)
+        elif self.asks:
+            self.say(self.asks)
+
+    def draft(self) -> Draft | None:
+        """Keep what was told before this question."""
+        return self.begun()
+
+    def unsaved(self) -> str:
+        """Say that a case was begun and not stored."""
+        begun = self.begun()
+        return f"the new case of {begun[1].get('tag') or 'a machine without a tag'}" if begun else ""

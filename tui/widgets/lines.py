@@ -26,8 +26,8 @@ class Lines(OptionList):
             return style + Style(reverse=True)
         return style
 
-    def show(self, lines: Iterable[Content], *, at: int = 0) -> None:
-        """Show other lines, the bar on one of them."""
+    def show(self, lines: Iterable[Content], *, at: int | None = 0) -> None:
+        """Show other lines, the bar on one of them, or on none."""
         self.clear_options()
         self.add_options(list(lines))
-        self.highlighted = min(at, self.option_count - 1) if self.option_count else None
+        self.highlighted = min(at, self.option_count - 1) if at is not None and self.option_count else None
