@@ -97,6 +97,7 @@ def _demo(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--plain", action="store_true", default=argparse.SUPPRESS, help="plain questions and answers"
     )
+    _ascii(parser, default=argparse.SUPPRESS)
     _no_learned(parser, default=argparse.SUPPRESS)
 
 
@@ -137,6 +138,7 @@ def build() -> argparse.ArgumentParser:
     parser.add_argument(
         "--plain", action="store_true", help="the visit as plain questions and answers, no full screen"
     )
+    _ascii(parser, default=False)
     _no_learned(parser, default=False)
     _shared(parser, default=None)
     words = parser.add_subparsers(dest="command", metavar="COMMAND", parser_class=Parser)
@@ -147,6 +149,15 @@ def build() -> argparse.ArgumentParser:
         command.arguments(child)
         _shared(child, default=argparse.SUPPRESS)
     return parser
+
+
+def _ascii(parser: argparse.ArgumentParser, *, default: object) -> None:
+    parser.add_argument(
+        "--ascii",
+        action="store_true",
+        default=default,
+        help="draw the screens in ASCII (else only where the terminal shows no UTF-8)",
+    )
 
 
 def _no_learned(parser: argparse.ArgumentParser, *, default: object) -> None:

@@ -9,6 +9,8 @@ from pathlib import Path
 
 import pytest
 
+from tui import parser
+
 ROOT = Path(__file__).resolve().parent.parent.parent
 PLATESIDE = [sys.executable, "-m", "plateside"]
 
@@ -214,3 +216,9 @@ def test_nothing_that_only_posix_has_is_imported_at_start():
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False, cwd=ROOT)
     assert (done.returncode, done.stderr) == (0, "")
+
+
+@pytest.mark.parametrize("line", [["--ascii"], ["demo", "--ascii"], ["--ascii", "demo"]])
+def test_ascii_is_understood_with_and_without_the_demo(line):
+    assert parser.build().parse_args(line).ascii
+    assert not parser.build().parse_args([word for word in line if word != "--ascii"]).ascii

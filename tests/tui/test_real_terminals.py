@@ -82,6 +82,14 @@ def test_where_utf_8_is_not_sure_only_ascii_is_sent(casebook: Path, started: lis
     assert b"\\u" not in terminal.raw
 
 
+def test_ascii_can_be_asked_for_on_any_terminal(casebook: Path, started: list[Terminal]):
+    command = [sys.executable, "-m", "plateside", "--ascii", "--casebook", str(casebook)]
+    terminal = Terminal(casebook, command=command)
+    started.append(terminal)
+    terminal.wait("P-104")
+    assert terminal.raw.isascii()
+
+
 def test_without_colour_no_colour_is_sent(casebook: Path, started: list[Terminal]):
     terminal = Terminal(casebook, env={"NO_COLOR": "1"})
     started.append(terminal)

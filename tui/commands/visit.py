@@ -29,7 +29,12 @@ def start(casebook: Path, arguments: Namespace) -> int:
         return converse(casebook, places.knowledge(arguments), use_learned=not arguments.no_learned)
     from tui.app import run_app
 
-    return run_app(casebook, rule_folders=folders, use_learned=not arguments.no_learned)
+    return run_app(
+        casebook,
+        rule_folders=folders,
+        ascii_only=arguments.ascii,
+        use_learned=not arguments.no_learned,
+    )
 
 
 def is_plain(arguments: Namespace) -> bool:
