@@ -4,7 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Collection
 
+import msgspec
+
 from calc.sheet import CaseSheet
+from rules.answer import NextItem
 from rules.facts import facts_of, meets
 from rules.knowledge import Hazard, Knowledge
 
@@ -41,6 +44,31 @@ def cautions_for(
         if hazard.id in called or _applies(hazard, sheet, states=states, faults=faults, measures=measures)
     ]
     return tuple(dict.fromkeys(found))
+
+
+def with_hazards(item: NextItem, sheet: CaseSheet, knowledge: Knowledge) -> NextItem:
+    """Return an item of what to read next with the hazards that this very machine adds to its own.
+
+    Those of its kind (magnets, capacitors, a field, a series motor) and of how it stands (a hanging
+    load, a brake, an explosive atmosphere). What any machine has in that state is not repeated.
+    """
+    states = states_of(item, knowledge)
+    measures = {item.measure} if item.measure else set()
+    added = (
+        hazard.id
+        for hazard in knowledge.hazards.values()
+        if (hazard.when or "any" not in hazard.kinds)
+        and _applies(hazard, sheet, states=states, faults=(), measures=measures)
+    )
+    return msgspec.structs.replace(item, hazards=tuple(dict.fromkeys((*item.hazards, *added))))
+
+
+def states_of(item: NextItem, knowledge: Knowledge) -> frozenset[str]:
+    """Return the states in which an item of what to read next may be taken."""
+    if item.state is not None:
+        return frozenset({item.state})
+    known = knowledge.observations.get(item.observation or "")
+    return frozenset(known.states if known is not None else ()) - {"any"}
 
 
 def _named_by(

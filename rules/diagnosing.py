@@ -7,11 +7,12 @@ from collections.abc import Mapping, Sequence
 
 import msgspec
 
+from calc.fields import did_you_mean
 from calc.kinds import twin_of
 from calc.quantities import KINDS
 from calc.sheet import CaseSheet
-from rules.answer import Band, Diagnosis, FaultOdds, Turn
-from rules.cautions import cautions_for
+from rules.answer import Diagnosis, FaultOdds, NextItem, Turn
+from rules.cautions import cautions_for, states_of, with_hazards
 from rules.findings import findings
 from rules.gate import gate
 from rules.knowledge import Fault, Knowledge, Refinement
@@ -67,13 +68,18 @@ def diagnose(
             model=NO_MODEL,
             findings=crossed,
             energise=state.energise,
-            cautions=cautions_for(sheet, knowledge, states=(), faults=()),
-            notes=(f"No model yet for a {kind}: limits and cautions only, no odds.",),
+            cautions=cautions_for(
+                sheet, knowledge, states=("isolated",), faults=(), measures=state.energise.needs
+            ),
+            notes=(
+                f"No model yet for a {kind}: limits and cautions only, no odds.",
+                *_unknown(sheet, knowledge),
+            ),
         )
     twin = conditioned(twin, own or {}, knowledge)
     posterior = weigh(sheet, knowledge, twin)
     state = gate(sheet, knowledge, suspects=posterior.odds)
-    items = propose(posterior, knowledge, state)
+    items = tuple(with_hazards(i, sheet, knowledge) for i in propose(posterior, knowledge, state))
     leading = [k for k, p in posterior.odds.items() if p > 0.1 and k not in {OTHER, "healthy"}]
     return Diagnosis(
         sheet=name,
@@ -83,16 +89,25 @@ def diagnose(
         next=items,
         findings=crossed,
         energise=state.energise,
-        cautions=cautions_for(
-            sheet,
-            knowledge,
-            states=tuple(dict.fromkeys(i.state for i in items[:3] if i.state)),
-            faults=tuple(leading),
-            measures=tuple(dict.fromkeys(i.measure for i in items[:3] if i.measure)),
-        ),
+        cautions=_cautions(sheet, knowledge, items, leading),
         slips=slips(posterior),
         decision=decision_of(posterior),
-        notes=_notes(posterior),
+        notes=(*_notes(posterior), *_unknown(sheet, knowledge)),
+    )
+
+
+def _cautions(
+    sheet: CaseSheet, knowledge: Knowledge, items: Sequence[NextItem], leading: Sequence[str]
+) -> tuple[str, ...]:
+    """Every caution that what is proposed and the leading faults call for."""
+    by_hand = any("isolated" in states_of(item, knowledge) for item in items)
+    return cautions_for(
+        sheet,
+        knowledge,
+        states={i.state for i in items if i.state} | ({"isolated"} if by_hand else set()),
+        faults=leading,
+        measures={i.measure for i in items if i.measure},
+        hazards={hazard for i in items for hazard in i.hazards},
     )
 
 
@@ -214,6 +229,12 @@ def _notes(posterior: Posterior) -> tuple[str, ...]:
     return (f"Not weighed, kept in the log: {names}.",)
 
 
-def bands_only(sheet: CaseSheet, knowledge: Knowledge) -> tuple[Band, ...]:
-    """Bands of a healthy machine of this plate; empty where its kind has no model."""
-    return expect(sheet, knowledge=knowledge).expected
+def _unknown(sheet: CaseSheet, knowledge: Knowledge) -> tuple[str, ...]:
+    """Say which words of a sheet the rules do not know, so that a slip of the pen is seen."""
+    words = [("Complaint", sheet.complaint, frozenset(knowledge.complaints))]
+    words += [("Observation", name, frozenset(knowledge.observations)) for name in sheet.observations]
+    return tuple(
+        f"{what} {word} is not among the rules and was not weighed; {did_you_mean(word, known)}"
+        for what, word, known in words
+        if word not in known
+    )

@@ -33,6 +33,9 @@ SAYS_NOTHING_FORBIDS: Final = (
     "No recorded finding forbids energising; site rules and licensed practice decide."
 )
 
+DRIVEN: Final = frozenset({"spun"})
+"""A machine that is driven from outside makes its own voltage: shut while the supply itself stays shut."""
+
 Situation = Literal["found_running", "ran_until_overload_trip", "overload_trip", "stands"]
 
 
@@ -55,13 +58,16 @@ class GateState(msgspec.Struct, frozen=True):
 
     def forbids(self, state: str) -> bool:
         """Whether a state stays shut. A state that is not known to be without power stays shut too."""
-        if state in NOT_ENERGISED:
+        if state in NOT_ENERGISED - DRIVEN:
             return False
+        if state in DRIVEN:
+            return self.every_state or bool(self.lines_for(state))
         return self.every_state or state not in ENERGISED_STATES or any(state in s.states for s in self.shut)
 
     def lines_for(self, state: str) -> tuple[GateLine, ...]:
         """Return the lines that keep a state shut."""
-        return tuple(shut.line for shut in self.shut if state in shut.states)
+        guarded = "standby" if state in DRIVEN else state
+        return tuple(shut.line for shut in self.shut if guarded in shut.states)
 
 
 def gate(sheet: CaseSheet, knowledge: Knowledge, *, suspects: Mapping[str, float] | None = None) -> GateState:
@@ -74,7 +80,7 @@ def gate(sheet: CaseSheet, knowledge: Knowledge, *, suspects: Mapping[str, float
     knowledge : Knowledge
         Its ``gates`` hold the lines. Without any the gate stays shut.
     suspects : mapping of str to float, optional
-        Odds of faults. They may shut a line, they never clear one.
+        Odds of faults, of two at once as ``"one+other"``. They may shut a line, they never clear one.
 
     Returns
     -------
@@ -157,7 +163,7 @@ def _through_the_start(lines: Iterator[ShutLine], situation: Situation) -> Itera
 def _check(rule: GateRule, seen: Evidence, suspects: Mapping[str, float]) -> Checked:
     """Return the gravest answer of a rule's checks; a check that nobody knows clears nothing."""
     for fault, odds in rule.suspects.items():
-        stands_at = suspects.get(fault, 0.0)
+        stands_at = sum(p for name, p in suspects.items() if fault in name.split("+"))
         if not stands_at < odds:
             return Checked("forbids", f"{_name(seen, fault)} stands at {stands_at:.0%}")
     answers = [CHECKS[name](seen) if name in CHECKS else Checked("needed") for name in rule.clears]

@@ -9,6 +9,8 @@ from typing import Literal
 
 import msgspec
 
+from calc.quantities import MEASURES
+
 
 class Entry(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Head of every entry: an id, a plain sentence or name, and where it comes from."""
@@ -105,7 +107,7 @@ class Fault(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     examples: tuple[Example, ...] = ()
 
     def for_kind(self, kind: str) -> Fault:
-        """Return the fault as it shows on a machine kind: chances and shares of that kind in place."""
+        """Return the fault as it shows on a machine kind: its own chances, shares and readings in place."""
         shares = {part.id: part.shares.get(kind, part.share) for part in self.within}
         total = sum(shares.values()) or 1.0
         within = (
@@ -120,6 +122,7 @@ class Fault(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
             observations={**self.observations, **self.observations_by_kind.get(kind, {})},
             observations_by_kind={},
             within=tuple(within),
+            retest=tuple(key for key in self.retest if _suits(key, kind)),
         )
 
 
@@ -263,3 +266,9 @@ class Knowledge(msgspec.Struct, frozen=True, kw_only=True):
     loosened: tuple[str, ...] = ()
     """Sentences on what a shop's own rules have loosened; shown on every screen and sheet."""
     folders: tuple[str, ...] = ()
+
+
+def _suits(key: str, kind: str) -> bool:
+    """Whether ``measure@state`` can be read on a machine kind; a measure of the shop's own suits any."""
+    measure = MEASURES.get(key.partition("@")[0])
+    return measure is None or measure.suits(kind)

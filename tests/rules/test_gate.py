@@ -3,7 +3,7 @@
 import msgspec
 import pytest
 
-from calc.quantities import ENERGISED_STATES, STATES
+from calc.quantities import ENERGISED_STATES
 from calc.sheet import CaseSheet, Machine, Reading, Value
 from rules.gate import SAYS_NOTHING_FORBIDS, gate, situation_of
 from rules.wording import texts_in, unwanted
@@ -16,9 +16,9 @@ CLEARED = {"shaft_turns_freely": True, "guards_fitted": True}
 
 
 def shut(sheet, knowledge, **suspects) -> set[str]:
-    """States that stay shut, but the stall, which always does."""
+    """Energised states that stay shut, but the stall, which always does."""
     state = gate(sheet, knowledge, suspects=suspects)
-    return {name for name in STATES if state.forbids(name)} - {"stalled"}
+    return {name for name in ENERGISED_STATES if state.forbids(name)} - {"stalled"}
 
 
 def lines(sheet, knowledge) -> dict[str, str]:
@@ -40,7 +40,25 @@ def test_a_machine_that_stands_still_may_have_its_live_supply_read(knowledge):
 
 def test_states_without_power_are_never_shut(knowledge):
     state = gate(case("smoke_or_burning"), knowledge)
-    assert not any(state.forbids(name) for name in ("isolated", "coasting", "spun"))
+    assert not any(state.forbids(name) for name in ("isolated", "coasting"))
+
+
+def test_a_driven_machine_makes_its_own_voltage_and_stays_shut_with_the_supply(knowledge):
+    assert gate(case("shock_from_frame"), knowledge).forbids("spun")
+    assert gate(case("routine_check", insulation("0.4 Mohm")), knowledge).lines_for("spun")
+    assert gate(case("routine_check"), knowledge, suspects={"ground_fault": 0.4}).forbids("spun")
+    assert not gate(case("will_not_start"), knowledge).forbids("spun")
+
+
+def test_two_faults_at_once_are_suspected_like_each_of_them(knowledge):
+    odds = {"damp_insulation+ground_fault": 0.2, "ground_fault": 0.15}
+    assert gate(case("routine_check"), knowledge, suspects=odds).forbids("standby")
+
+
+def test_a_field_that_may_be_lost_shuts_a_machine_that_was_found_running(knowledge):
+    sheet = case("runs_fast", kind="dc_shunt")
+    assert not gate(sheet, knowledge, suspects={"open_field": 0.2}).forbids("loaded")
+    assert gate(sheet, knowledge, suspects={"open_field": 0.4}).forbids("loaded")
 
 
 def test_a_state_that_nobody_knows_stays_shut(knowledge):
@@ -283,7 +301,8 @@ def test_a_lost_field_shuts_a_running_machine(knowledge):
 
 def test_a_hoist_waits_until_its_load_is_held(knowledge):
     readings = (insulation(), windings())
-    assert shut(case("will_not_start", *readings, load_type="hoist", seen=CLEARED), knowledge) == STARTED
+    hanging = case("will_not_start", *readings, load_type="hoist", seen=CLEARED)
+    assert shut(hanging, knowledge) == STARTED | {"standby"}
     held = CLEARED | {"load_held": True}
     assert shut(case("will_not_start", *readings, load_type="hoist", seen=held), knowledge) == set()
     assert "loaded" in shut(case("runs_hot", load_type="hoist"), knowledge)
