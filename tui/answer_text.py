@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from rules.knowledge import Knowledge
 
 FAULTS_SHOWN, REASONS_SHOWN, FINDINGS_SHOWN, CAUTIONS_SHOWN = 4, 3, 3, 2
+NEXT_SHOWN = 3  # what to read next: the first in full, the others by name
 FORBIDS_SHOWN, GATE_SHOWN = 3, 4  # lines of the gate: what forbids, and with what is needed
 LEAST_SHOWN = 0.01  # odds of a fault that is still listed
 LEAST_WITHIN = 0.05  # odds of a cause inside it
@@ -45,9 +46,11 @@ def answer_lines(diagnosis: Diagnosis, sheet: CaseSheet, knowledge: Knowledge) -
 
 
 def other_cautions(diagnosis: Diagnosis, knowledge: Knowledge) -> list[str]:
-    """Return the cautions that do not stand with the next reading already."""
-    told = set(hazard_texts(diagnosis.next[0].hazards, knowledge)) if diagnosis.next else set()
-    return [caution for caution in diagnosis.cautions if caution not in told][:CAUTIONS_SHOWN]
+    """Return cautions that do not stand with the next reading already; those of the ones after it first."""
+    told = hazard_texts(diagnosis.next[0].hazards, knowledge) if diagnosis.next else []
+    after = [hazard for item in diagnosis.next[1:NEXT_SHOWN] for hazard in item.hazards]
+    texts = [*hazard_texts(after, knowledge), *diagnosis.cautions]
+    return _unique(text for text in texts if text not in told)[:CAUTIONS_SHOWN]
 
 
 def hazard_texts(hazards: Iterable[str], knowledge: Knowledge) -> list[str]:
@@ -133,7 +136,7 @@ def next_lines(items: Sequence[NextItem], knowledge: Knowledge) -> list[str]:
         shown += paragraph(text, first=f"    {mark}") if text else []
     for text in hazard_texts(first.hazards, knowledge):
         shown += paragraph(text, first="    hazard  ")
-    then = "; ".join(item_name(item, knowledge) for item in others[:2])
+    then = "; ".join(item_name(item, knowledge) for item in others[: NEXT_SHOWN - 1])
     return shown + (paragraph(then, first="  then: ") if then else [])
 
 

@@ -93,7 +93,7 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases:
         Block("Seen", sentences=tuple(_seen(case, knowledge))),
         Block("Likely faults", ("odds", "fault", "part"), tuple(_faults(diagnosis, knowledge))),
         Block("Why", sentences=tuple(_reasons(diagnosis))),
-        Block("To confirm and to do", sentences=tuple(_to_do(diagnosis, knowledge))),
+        Block("To confirm and to do", sentences=tuple(_to_do(diagnosis, case.machine.kind, knowledge))),
         Block("Found and done", sentences=tuple(_closing(case, knowledge))),
         history_block(case, cases, knowledge),
         Block("Isolation", sentences=tuple(_isolation(case))),
@@ -129,7 +129,9 @@ def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
         Block("Fault", sentences=(found + how,) if found else ()),
         Block("Readings", ("reading", "read", "noted"), tuple(_tag_rows(case))),
         Block("Seen", sentences=tuple(_seen(case, knowledge))),
-        Block("Please return with", sentences=tuple(_retest(diagnosis, retest, knowledge))),
+        Block(
+            "Please return with", sentences=tuple(_retest(diagnosis, retest, case.machine.kind, knowledge))
+        ),
     ]
     return Page(
         title=f"REPAIR TAG  {case.tag or '(no tag)'}  {case.number}",
@@ -213,7 +215,7 @@ def _reasons(diagnosis: Diagnosis) -> Iterable[str]:
         yield f"{'for' if reason.weight >= 0 else 'against'}: {reason.text}"
 
 
-def _to_do(diagnosis: Diagnosis, knowledge: Knowledge) -> Iterable[str]:
+def _to_do(diagnosis: Diagnosis, kind: str, knowledge: Knowledge) -> Iterable[str]:
     """Yield how the first suspect is confirmed and mended, and what to read again after."""
     first = diagnosis.faults[0].id.split("+") if diagnosis.faults else []
     for fault in first:
@@ -221,14 +223,17 @@ def _to_do(diagnosis: Diagnosis, knowledge: Knowledge) -> Iterable[str]:
         if known is None or fault == "healthy":
             continue
         yield from (text for text in (known.confirm, known.remedy) if text)
-    yield from (f"read again after repair: {text}" for text in _retest(diagnosis, (), knowledge))
+    yield from (f"read again after repair: {text}" for text in _retest(diagnosis, (), kind, knowledge))
 
 
-def _retest(diagnosis: Diagnosis, named: Sequence[str], knowledge: Knowledge) -> list[str]:
+def _retest(diagnosis: Diagnosis, named: Sequence[str], kind: str, knowledge: Knowledge) -> list[str]:
     """Return the readings to repeat after repair, in words."""
     first = diagnosis.faults[0].id.split("+") if diagnosis.faults else []
     keys = named or [
-        key for fault in first if fault in knowledge.faults for key in knowledge.faults[fault].retest
+        key
+        for fault in first
+        if fault in knowledge.faults
+        for key in knowledge.faults[fault].for_kind(kind).retest
     ]
     words = []
     for key in dict.fromkeys(keys):
