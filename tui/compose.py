@@ -28,6 +28,7 @@ if TYPE_CHECKING:
     from casebook.fold import Case
     from rules.answer import Band, Diagnosis, FaultOdds, Turn
     from rules.knowledge import Knowledge
+    from rules.learned import Shift
 
 
 @dataclass(frozen=True)
@@ -50,6 +51,8 @@ class Visit:
         self.experience = Experience(book, self.case.id, knowledge)
         self._weighed: Weighed | None = None
         self._weighed_from: tuple[CaseSheet, bool] | None = None
+        self._turns: tuple[Turn, ...] | None = None
+        self._turns_from: tuple[CaseSheet, bool] | None = None
 
     @classmethod
     def new(cls, book: Casebook, sheet: CaseSheet, *, person: str, knowledge: Knowledge) -> Visit:
@@ -204,11 +207,19 @@ class Visit:
         """Return what this machine's sound windings read in earlier cases, at 25 degC. [ohm]"""
         return self.experience.own_windings(self.sheet.machine.tag)
 
+    def learned_shifts(self) -> tuple[Shift, ...]:
+        """Return what the shop's own confirmed cases move, whether that is switched on or not."""
+        return self.experience.shifts(self.sheet.machine)
+
     def turns(self) -> tuple[Turn, ...]:
-        """Return the readings that would turn the decision; takes some tenths of a second."""
+        """Return the readings that would turn the decision; takes some tenths of a second, once a sheet."""
         from rules.diagnosing import what_would_turn
 
-        return what_would_turn(self.sheet, knowledge=self.learned_knowledge(), own=self.own_windings())
+        sheet, turns_from = self.sheet, (self.sheet, self.use_learned)
+        if self._turns is None or turns_from != self._turns_from:
+            now = what_would_turn(sheet, knowledge=self.learned_knowledge(), own=self.own_windings())
+            self._turns, self._turns_from = now, turns_from
+        return self._turns
 
     def conclude(self, fault: FaultOdds, *, decision: str = "", note: str = "") -> str:
         """Store what the technician concludes before it is confirmed."""

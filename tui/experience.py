@@ -9,7 +9,7 @@ if TYPE_CHECKING:
     from casebook.book import Casebook
     from casebook.learned import LearnedCounts
     from rules.knowledge import Knowledge
-    from rules.learned import Counts
+    from rules.learned import Counts, Shift
 
 # A case closed with a fault of these parts left no reference of a sound winding.
 WINDING_PARTS: Final = frozenset({"winding", "connection", "armature", "field"})
@@ -49,6 +49,12 @@ class Experience:
             f"starting odds shifted by {cases} confirmed case{'' if cases == 1 else 's'} of this casebook on"
             " machines of this kind and size; `plateside learned` shows them, --no-learned leaves them out"
         )
+
+    def shifts(self, machine: Machine) -> tuple[Shift, ...]:
+        """Return what those cases move, the largest change first; nothing without any."""
+        from rules.learned import shifts
+
+        return shifts(self._knowledge, machine.kind, as_counts(self.counts(machine)))
 
     def own_windings(self, tag: str | None) -> dict[str, tuple[float, ...]]:
         """Return what a machine's sound windings read in earlier cases, at 25 degC. [ohm]"""

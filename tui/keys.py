@@ -117,6 +117,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
     "reasons": (
         Key("right,down", "next_fault", "next fault", "The next fault on the list."),
         Key("left,up", "last_fault", "fault before", "The fault before."),
+        Key("f4,o", "own_cases", "own cases", "Weigh with the shop's own confirmed cases, or without them."),
         *_PAGES,
     ),
     "curves": (

@@ -85,6 +85,7 @@ ANSWER = Diagnosis(
             GateLine(id="b", needs="shaft free", status="needed", asks=("shaft_turns_freely",)),
         ),
     ),
+    decision="dry and clean the winding",
     turns=(
         Turn(
             measure="insulation_resistance",
@@ -102,6 +103,7 @@ ANSWER = Diagnosis(
 def app(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> PlatesideApp:
     """An app with one open case, its answer fixed."""
     monkeypatch.setattr(compose, "weigh", lambda *_args, **_kwargs: ANSWER)
+    monkeypatch.setattr(compose.Visit, "turns", lambda _visit: ANSWER.turns)
     made = new_app(tmp_path)
     sheet = {
         "format": 1,
@@ -138,7 +140,7 @@ async def test_the_casebook_looks_as_it_did(app: PlatesideApp, size: tuple[int, 
     ("name", "pressed", "words"),
     [
         ("worksheet", [], "faults"),
-        ("reasons", ["f5"], "against"),
+        ("reasons", ["f5"], "20 Mohm"),
         ("gate", ["f6"], "FORBIDS"),
         ("isolation", ["enter"], "Isolation of"),
         ("pick", ["f3", *"line"], "line current, loaded"),

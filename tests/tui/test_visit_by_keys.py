@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+import time
 from collections.abc import Awaitable, Callable
 from pathlib import Path
 
 import pytest
 from textual.pilot import Pilot
 
+from casebook.bodies import Closed
 from casebook.errors import DiskFull
-from tests.tui.helpers import SMALL, keys, known_machine, new_app, screen_text, settled, until
+from tests.tui.helpers import PATIENCE_S, SMALL, keys, known_machine, new_app, screen_text, settled, until
 from tui.application import PlatesideApp
 from tui.screens.casebook import CasebookPage
 from tui.screens.worksheet import Worksheet
@@ -394,3 +396,50 @@ async def test_leaving_in_the_middle_of_a_new_case_asks_and_keeps_it_as_a_draft(
         await pilot.pause()
         draft = app.desk.drafts.load("new_case")
     assert (draft["tag"], draft["complaint"]) == ("P-104", "runs_hot")
+
+
+async def test_the_reasons_page_says_which_reading_would_turn_the_decision(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f5")
+        await until(pilot, "turns if")
+        await absent(pilot, "looking for the reading")
+        visit = app.desk.visit(app.desk.book.cases()[0].id)
+        turns, screen, decision = visit.turns(), flat(app), visit.weigh().diagnosis.decision
+    assert turns
+    assert all(turn.to_decision in screen for turn in turns[:1])
+    assert decision and decision in screen
+
+
+async def test_the_shop_s_own_cases_are_left_out_and_taken_in_by_one_key(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    done = known_machine(app).desk.book.cases()[0].id
+    app.desk.book.record(done, Closed(found="bearing_defect", confirmed="teardown"), person="R. Varga")
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        page = app.screen
+        assert isinstance(page, Worksheet) and page.weighed is not None
+        with_them = page.weighed.diagnosis.faults
+        await keys(pilot, "f5")
+        await until(pilot, "1 confirmed, in the odds")
+        await keys(pilot, "f4")
+        await until(pilot, "1 confirmed, LEFT OUT")
+        await keys(pilot, "f9")
+        await settled(pilot)
+        without = page.weighed.diagnosis.faults
+    odds = [{f.id: f.probability for f in faults}["bearing_defect"] for faults in (with_them, without)]
+    assert odds[0] > odds[1]
+
+
+def flat(app: PlatesideApp) -> str:
+    """The screen as one line of words."""
+    return " ".join(screen_text(app).replace("│", " ").split())
+
+
+async def absent(pilot: Pilot[int], words: str) -> None:
+    """Wait until words no longer stand on the screen."""
+    end = time.monotonic() + PATIENCE_S
+    while words in flat(pilot.app) and time.monotonic() < end:  # type: ignore[arg-type]
+        await pilot.pause(0.02)
+    assert words not in flat(pilot.app)  # type: ignore[arg-type]

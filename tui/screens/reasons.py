@@ -3,7 +3,10 @@
 from __future__ import annotations
 
 import math
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Any, Final
+
+from textual import work
+from textual.worker import get_current_worker
 
 from tui.keys import bindings
 from tui.look import FAINT, STRONG
@@ -13,13 +16,17 @@ from tui.words import fault_name, key_words, percent
 
 if TYPE_CHECKING:
     from textual.content import Content
+    from textual.worker import Worker
 
-    from rules.answer import Diagnosis, FaultOdds, Reason
+    from rules.answer import Diagnosis, FaultOdds, Reason, Turn
     from rules.knowledge import Fault, Knowledge
+    from tui.compose import Visit
 
 FACTOR_WIDTH: Final = 8
 SMALL: Final = 0.15
 """Weights below this, in nats, say next to nothing."""
+TURNS: Final = 3
+SHIFTS: Final = 3
 
 
 class Reasons(TextPage):
@@ -28,11 +35,49 @@ class Reasons(TextPage):
     KEYS = "reasons"
     BINDINGS = bindings("reasons")
 
-    def __init__(self, diagnosis: Diagnosis, knowledge: Knowledge, at: int = 0) -> None:
+    def __init__(self, visit: Visit, diagnosis: Diagnosis) -> None:
         super().__init__()
+        self.visit = visit
         self.diagnosis = diagnosis
-        self.knowledge = knowledge
-        self.at = at
+        self.knowledge = visit.knowledge
+        self.at = 0
+        self.turns: tuple[Turn, ...] | None = None
+        """What would turn the decision; None while it is worked out."""
+
+    def on_mount(self) -> None:
+        """Find what would turn the decision, after the page is shown."""
+        self.call_after_refresh(self.find_turns)
+
+    @work(thread=True, exclusive=True, group="reasons", exit_on_error=False)
+    def find_turns(self) -> None:
+        """Weigh anew where that is due, then find what would turn the decision."""
+        worker = get_current_worker()
+        try:
+            now = self.visit.weigh().diagnosis
+            self.show_from(worker, now, None)
+            self.show_from(worker, now, self.visit.turns())
+        except Exception as error:
+            if not worker.is_cancelled:
+                self.app.call_from_thread(self.say, self.plateside.trouble(error))
+
+    def show_from(self, worker: Worker[Any], now: Diagnosis, turns: tuple[Turn, ...] | None) -> None:
+        """Show an answer that a thread has found, unless the page is gone or asks anew."""
+        if not worker.is_cancelled:
+            self.app.call_from_thread(self.found, now, turns)
+
+    def found(self, now: Diagnosis, turns: tuple[Turn, ...] | None) -> None:
+        """Show an answer, and what would turn it."""
+        if self.is_attached and (now, turns) != (self.diagnosis, self.turns):
+            self.diagnosis, self.turns = now, turns
+            self.at = min(self.at, max(len(now.faults) - 1, 0))
+            self.show()
+
+    def action_own_cases(self) -> None:
+        """Leave the shop's own confirmed cases out, or take them in."""
+        self.visit.use_learned = not self.visit.use_learned
+        self.at, self.turns = 0, None
+        self.show()
+        self.find_turns()
 
     def lines(self) -> list[Content]:
         """Return everything about the chosen fault."""
@@ -43,6 +88,7 @@ class Reasons(TextPage):
             *self.fault_lines(fault),
             *reason_lines(fault, self.room),
             *self.turn_lines(),
+            *self.own_lines(),
             *deed_lines(fault, self.knowledge, self.room),
         ]
 
@@ -61,11 +107,33 @@ class Reasons(TextPage):
         return lines
 
     def turn_lines(self) -> list[Content]:
-        """Return the readings that would turn the decision."""
+        """Return what the odds ask for, and the readings that would turn it."""
         lines: list[Content] = []
-        for turn in self.diagnosis.turns[:2]:
-            lines += rows("" if lines else "turns if", turn.text, self.room, most=3)
+        if self.diagnosis.decision:
+            lines += rows("odds ask", self.diagnosis.decision, self.room, style=STRONG)
+        if self.turns is None:
+            return [*lines, row("turns if", ("looking for the reading that would turn it ...", FAINT))]
+        for turn in self.turns[:TURNS]:
+            key = f"{turn.measure}@{turn.state}" if turn.state else turn.measure
+            said = f"{key_words(key, self.knowledge)} {turn.value}: {turn.to_decision}"
+            lines += rows("" if turn is not self.turns[0] else "turns if", said, self.room, most=2)
+        if not self.turns:
+            lines += rows("turns if", "no single proposed reading would turn it", self.room)
         return lines
+
+    def own_lines(self) -> list[Content]:
+        """Return whether the shop's own confirmed cases are in the odds, and what they shift most."""
+        shares = [shift for shift in self.visit.learned_shifts() if not shift.about]
+        if not shares:
+            return rows("shop", "none confirmed on machines of this kind and size", self.room, style=FAINT)
+        moved = "; ".join(
+            f"{fault_name(shift.fault, self.knowledge)} {percent(shift.before).strip()}"
+            f" to {percent(shift.after).strip()}"
+            for shift in shares[:SHIFTS]
+        )
+        used = "in the odds, F4 leaves them out" if self.visit.use_learned else "LEFT OUT, F4 takes them in"
+        cases = f"{sum(shift.cases for shift in shares):g} confirmed, {used}"
+        return rows("shop", f"{cases}. They shift starting odds: {moved}", self.room, most=4)
 
     def action_next_fault(self) -> None:
         """Show the next fault."""

@@ -179,8 +179,15 @@ class WorksheetKeys(Page[None]):
 
     def action_reasons(self) -> None:
         """Show for and against."""
-        if self.diagnosis is not None:
-            self.app.push_screen(Reasons(self.diagnosis, self.visit.knowledge))
+        if self.diagnosis is None:
+            return
+        used = self.visit.use_learned
+
+        def back(_: None) -> None:
+            if self.visit.use_learned != used:
+                self.weigh()
+
+        self.app.push_screen(Reasons(self.visit, self.diagnosis), back)
 
     def action_curves(self) -> None:
         """Show the curves of this machine and its history."""
