@@ -20,9 +20,10 @@ from calc.observe import Seen
 from calc.twin import Ask, Floats, Mode, Twin, attribute_rows
 
 NU = 5.0
-STARTS = (0.2,)  # severity latents where a fit begins; more starts changed nothing on graded cases
-ROUNDS = 4
-PRUNE_NATS = (60.0, 18.0)  # modes further behind than this after the first and second round are given up
+START = 0.2  # severity latents where a fit begins
+ROUNDS = 3
+# Modes further behind the best than this are given up: at the start, after the first, after the second round.
+PRUNE_NATS = (300.0, 60.0, 24.0)
 REACH = 4.5  # no latent goes further out than this
 _STEPS = (1.0, 0.4, 0.12)
 
@@ -185,21 +186,35 @@ def fit_modes(twin: Twin, modes: Sequence[Mode], data: Frame, keep: int = 0) -> 
     """
     fitter = Fitter(twin, data)
     active = fitter.active(modes)
-    owner = [i for i, mode in enumerate(modes) for _ in (STARTS if mode.severity else (0.0,))]
-    starts = [s for mode in modes for s in (STARTS if mode.severity else (0.0,))]
-    every = [modes[i] for i in owner]
-    z = np.zeros((len(every), twin.dim))
-    z[:, twin.dim - 2 :] = np.array(starts)[:, None]
-    value = np.full(len(every), np.inf)
-    chosen = np.arange(len(every))
+    z, value = _starts(fitter, modes, active, keep)
+    chosen = _within_reach(value, np.arange(len(modes)), keep, PRUNE_NATS[0])
     for turn in range(ROUNDS):
         step, heat = (0.5, 9.0) if turn == 0 else (0.12, 1.0)
-        value_now, z_now = _improve(fitter, [every[i] for i in chosen], z[chosen], active, step, heat)
-        z[chosen], value[chosen] = z_now, value_now
-        if turn < len(PRUNE_NATS):
-            chosen = _prune(value, owner, keep, PRUNE_NATS[turn])
-    best = _best_start(value, owner, len(modes))
-    return _finish(fitter, modes, z[best], value[best], active, chosen, best)
+        picked = [modes[int(i)] for i in chosen]
+        value[chosen], z[chosen] = _improve(fitter, picked, z[chosen], active, step, heat)
+        if turn + 1 < len(PRUNE_NATS):
+            chosen = _within_reach(value, chosen, keep, PRUNE_NATS[turn + 1])
+    return _finish(fitter, modes, z, value, active, chosen)
+
+
+def _starts(
+    fitter: Fitter, modes: Sequence[Mode], active: NDArray[np.int64], keep: int
+) -> tuple[Floats, Floats]:
+    """Where each mode's fit begins: at the typical machine, or at the fit of the mode kept (the healthy one).
+
+    Load, supply and plate are much the same under every fault, so the healthy fit is often the better start.
+    """
+    z = np.zeros((len(modes), 2, fitter.dim))
+    common = np.zeros((1, fitter.dim))
+    for step, heat in ((0.5, 9.0), (0.12, 1.0)):
+        _, common = _improve(fitter, modes[keep : keep + 1], common, active, step, heat)
+    z[:, 1] = common
+    z[:, :, fitter.dim - 2 :] = START
+    y, plate = fitter.predict(modes, z)
+    value = fitter.objective(z, y, plate)
+    pick = np.argmin(value, axis=1)
+    row = np.arange(len(modes))
+    return z[row, pick], value[row, pick]
 
 
 def _improve(
@@ -225,20 +240,11 @@ def _improve(
     return value[row, pick], tries[row, pick]
 
 
-def _prune(value: Floats, owner: Sequence[int], keep: int, margin: float) -> NDArray[np.int64]:
-    """Keep the better start of each mode, and of those the ones within reach of the best."""
-    best = _best_start(value, owner, max(owner) + 1)
-    near = value[best] < value[best].min() + margin
-    near[keep] = True
-    return np.asarray(best[near])
-
-
-def _best_start(value: Floats, owner: Sequence[int], count: int) -> NDArray[np.int64]:
-    best = np.full(count, -1)
-    for place, mode in enumerate(owner):
-        if best[mode] < 0 or value[place] < value[best[mode]]:
-            best[mode] = place
-    return best
+def _within_reach(value: Floats, chosen: NDArray[np.int64], keep: int, margin: float) -> NDArray[np.int64]:
+    """Keep the modes that the best one is not too far ahead of."""
+    near = value[chosen] < value[chosen].min() + margin
+    near |= chosen == keep
+    return np.asarray(chosen[near])
 
 
 def _finish(
@@ -248,10 +254,9 @@ def _finish(
     value: Floats,
     active: NDArray[np.int64],
     chosen: NDArray[np.int64],
-    best: NDArray[np.int64],
 ) -> Fit:
     """Evidence, covariance and per-reading densities at the fits; given-up modes keep the bound they had."""
-    alive = np.isin(best, chosen)
+    alive = np.isin(np.arange(len(modes)), chosen)
     rows = np.flatnonzero(alive)
     y, dy, plate, dp = fitter.slopes([modes[int(i)] for i in rows], z[rows], active, 0.12)
     _, curvature = fitter.normal(dy, dp, fitter.weights(fitter.residual(y)), plate_weight(plate))
