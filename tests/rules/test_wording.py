@@ -22,6 +22,15 @@ NEVER = [
     "spin it by hand", "spin the shaft by hand", "open the field", "open the shunt field",
     "raise the relay", "raise the overload setting", "turn up the setting", "arc-flash category 2",
     "PPE category 2", "open the explosion-proof motor", "open an explosion-protected enclosure",
+    "You can start it.", "you may now reset the relay", "The motor is fine.", "all-clear", "ok to run",
+    "healthy motor, run it", "leave in service", "leave it in service", "return to service", "go ahead",
+    "It can be restarted.", "may be switched back on", "could be re-closed", "can be left running",
+    "cleared to start", "ready to be energised", "fit for service", "is permitted to run", "run it again",
+    "bridge the contact", "bridging out the switch", "short the interlock", "defeat the guard",
+    "skip the list", "ignore the caution", "press the contactor", "dial up the relay", "larger fuses",
+    "no need to discharge", "renew the fuse and try", "re-close it to see", "reset it and watch",
+    "help the shaft", "give it a spin", "lift the field lead while it runs", "open the Ex motor",
+    "no danger", "harmless", "arc flash level 2", "8 cal/cm2",
 ]  # fmt: skip
 FINE = [
     SAYS_NOTHING_FORBIDS, "Isolated, locked out and proved dead.", "prove dead on a proved tester",
@@ -29,7 +38,9 @@ FINE = [
     "starts by hand in either direction",
     "set it to the plate current",
     "the contactor holds in", "explosion-protected motors are for approved shops",
-    "arc flash", "the relay did its job",
+    "arc flash", "the relay did its job", "Nothing is re-closed to see whether it holds",
+    "the shaft turns freely", "opens the field switch",
+    "short the current transformer before it is opened", "keep it shorted while its wires are off",
 ]  # fmt: skip
 
 
