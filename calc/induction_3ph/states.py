@@ -225,9 +225,10 @@ def _network(
     ends = np.stack(
         [np.where(path > 0.0, rows["path_a"], 1.0), np.where(path > 0.0, rows["path_b"], 0.0)], axis=1
     )
-    # Shorted turns are an ideal transformer's secondary behind their own resistance and leakage;
+    # Shorted turns are an ideal transformer's secondary behind their own resistance and leakage, both in
+    # proportion to their number: coils in slots of their own share no leakage flux with the rest;
     # a path between phases lies behind the resistance and leakage of the turns that it spans.
-    loop = r1 * rows["loop"] + 1j * turns * x1
+    loop = r1 * rows["loop"] + 1j * x1
     span = path + 0.5 * (rows["path_a"] ** 2 + rows["path_b"] ** 2) * (r1 + 1j * x1)
     shunt = np.where(turns > 0.0, turns / loop, np.where(path > 0.0, 1.0 / span, 0.0))
     fault = WindingFault(
