@@ -7,6 +7,7 @@ that is on disk. The screens and the plain dialogue both stand on this.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from datetime import UTC, datetime
 from typing import TYPE_CHECKING
 
 import msgspec
@@ -16,9 +17,10 @@ from casebook import bodies
 from rules.findings import findings
 from tui.context import split_context
 from tui.experience import Experience
+from tui.shift import for_this_shift, isolation_lapse, recent_sheet
 from tui.typed import Understood, understand
 from tui.version import VERSION
-from tui.words import number_range, reading_text
+from tui.words import band_text, reading_text
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -26,7 +28,7 @@ if TYPE_CHECKING:
     from calc.sheet import CaseSheet, Machine
     from casebook.book import Casebook
     from casebook.fold import Case
-    from rules.answer import Band, Diagnosis, FaultOdds, Turn
+    from rules.answer import Diagnosis, FaultOdds, Turn
     from rules.knowledge import Knowledge
     from rules.learned import Shift
 
@@ -50,9 +52,8 @@ class Visit:
         self.case: Case = book.case(case)
         self.experience = Experience(book, self.case.id, knowledge)
         self._weighed: Weighed | None = None
-        self._weighed_from: tuple[CaseSheet, bool] | None = None
-        self._turns: tuple[Turn, ...] | None = None
-        self._turns_from: tuple[CaseSheet, bool] | None = None
+        self._weighed_from: tuple[CaseSheet, CaseSheet, bool] | None = None
+        self._turns: tuple[CaseSheet, bool, tuple[Turn, ...]] | None = None
 
     @classmethod
     def new(cls, book: Casebook, sheet: CaseSheet, *, person: str, knowledge: Knowledge) -> Visit:
@@ -68,9 +69,14 @@ class Visit:
 
     @property
     def isolation(self) -> bodies.Isolation | None:
-        """The isolation record that holds now, or None."""
+        """The isolation record that holds now, or None: none, lifted, or lapsed."""
         last = self.case.isolation[-1].what if self.case.isolation else None
-        return last if last is not None and last.isolated else None
+        return last if last is not None and last.isolated and not self.isolation_lapse else None
+
+    @property
+    def isolation_lapse(self) -> str:
+        """Why the last isolation record no longer holds; nothing where it does."""
+        return isolation_lapse(self.case, datetime.now(UTC))
 
     @property
     def kind(self) -> str:
@@ -171,6 +177,10 @@ class Visit:
         """Store who isolated and locked out what and how it was proved dead; or that this was lifted."""
         return self._put(record)
 
+    def lift(self) -> str:
+        """Store that the isolation was lifted."""
+        return self._put(bodies.Isolation(by=self.person, isolated=False))
+
     def acknowledge(self, state: str, hazards: Sequence[str], shown: str) -> str:
         """Store that the hazards of a state were read, in the words that were shown."""
         return self._put(bodies.HazardAcknowledged(hazards=tuple(hazards), about=state, shown=shown))
@@ -188,10 +198,12 @@ class Visit:
 
     def weigh(self) -> Weighed:
         """Return the answer to the case as it stands; worked out again only when the sheet has changed."""
-        sheet, weighed_from = self.sheet, (self.sheet, self.use_learned)
+        sheet = self.sheet
+        weighed_from = (sheet, recent_sheet(self.case, datetime.now(UTC)), self.use_learned)
         if self._weighed is None or weighed_from != self._weighed_from:
             before = self._weighed.diagnosis if self._weighed else None
             now = weigh(sheet, self.learned_knowledge(), name=self.number, own=self.own_windings())
+            now = for_this_shift(now, self.case, self.knowledge)
             self._weighed, self._weighed_from = Weighed(now, moved(before, now)), weighed_from
         return self._weighed
 
@@ -200,7 +212,7 @@ class Visit:
         return self.experience.knowledge(self.sheet.machine) if self.use_learned else self.knowledge
 
     def learned_words(self) -> str:
-        """Return the sentence that says by what the odds were shifted; nothing where they were not."""
+        """Return the sentence that says by what the odds were shifted, if they were."""
         return self.experience.words(self.sheet.machine) if self.use_learned else ""
 
     def own_windings(self) -> dict[str, tuple[float, ...]]:
@@ -215,11 +227,11 @@ class Visit:
         """Return the readings that would turn the decision; takes some tenths of a second, once a sheet."""
         from rules.diagnosing import what_would_turn
 
-        sheet, turns_from = self.sheet, (self.sheet, self.use_learned)
-        if self._turns is None or turns_from != self._turns_from:
+        sheet = self.sheet
+        if self._turns is None or self._turns[:2] != (sheet, self.use_learned):
             now = what_would_turn(sheet, knowledge=self.learned_knowledge(), own=self.own_windings())
-            self._turns, self._turns_from = now, turns_from
-        return self._turns
+            self._turns = (sheet, self.use_learned, now)
+        return self._turns[2]
 
     def conclude(self, fault: FaultOdds, *, decision: str = "", note: str = "") -> str:
         """Store what the technician concludes before it is confirmed."""
@@ -286,8 +298,3 @@ def moved(before: Diagnosis | None, now: Diagnosis) -> dict[str, float]:
         return dict.fromkeys(later, 0.0)
     earlier = {fault.id: fault.probability for fault in before.faults}
     return {fault: later.get(fault, 0.0) - earlier.get(fault, 0.0) for fault in earlier | later}
-
-
-def band_text(band: Band) -> str:
-    """Return a band as text, such as ``13.1 to 15.0 A (90 %)``."""
-    return f"{number_range(band.low, band.high)} {band.unit}".rstrip() + f" ({100 * band.coverage:.0f} %)"

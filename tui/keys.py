@@ -131,6 +131,12 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
             "isolation record",
             "Who isolated and locked out, when, and that it was proved dead.",
         ),
+        Key(
+            "f4,l",
+            "lift",
+            "lift isolation",
+            "Record that the isolation was lifted; the next one is asked for.",
+        ),
         *_PAGES,
     ),
     "isolation": (

@@ -8,9 +8,9 @@ from typing import TYPE_CHECKING
 from calc.quantities import MEASURES
 from calc.units import find_unit
 from tui.answer_text import LEAST_SHOWN, NO_MODEL, NOTHING_FORBIDS, condition
-from tui.compose import band_text
 from tui.page_history import Chart, charts, trend_sentences
 from tui.words import (
+    band_text,
     complaint_name,
     context_text,
     fault_name,

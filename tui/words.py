@@ -8,6 +8,7 @@ from calc.quantities import KINDS, MEASURES
 
 if TYPE_CHECKING:
     from calc.sheet import CaseSheet, Machine, Reading, Value
+    from rules.answer import Band
     from rules.knowledge import Knowledge
 
 _CONTEXT = (
@@ -104,6 +105,11 @@ def number(value: float) -> str:
 def number_range(low: float, high: float) -> str:
     """Return two numbers as a range."""
     return f"{number(low)} to {number(high)}"
+
+
+def band_text(band: Band) -> str:
+    """Return a band as text, such as ``13.1 to 15.0 A (90 %)``."""
+    return f"{number_range(band.low, band.high)} {band.unit}".rstrip() + f" ({100 * band.coverage:.0f} %)"
 
 
 def plate_text(machine: Machine) -> str:

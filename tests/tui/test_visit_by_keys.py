@@ -432,6 +432,26 @@ async def test_the_shop_s_own_cases_are_left_out_and_taken_in_by_one_key(tmp_pat
     assert odds[0] > odds[1]
 
 
+async def test_an_isolation_that_is_lifted_on_the_gate_page_is_asked_for_again(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f6")
+        await until(pilot, "No isolation is recorded")
+        await keys(pilot, "f8")
+        await until(pilot, "Isolation of P-104")
+        await keys(pilot, "y", "enter", "y", "f8")
+        await until(pilot, "stored: isolation record")
+        await settled(pilot)
+        await keys(pilot, "f6")
+        await until(pilot, "R. Varga: isolated, locked out, proved dead")
+        await keys(pilot, "f4")
+        await until(pilot, "stored: isolation lifted")
+        await keys(pilot, "f3", *"winding resistance", "enter", *"1.91 1.92 1.90", "enter")
+        await until(pilot, "Isolation of P-104")
+        assert not newest(app).readings
+
+
 def flat(app: PlatesideApp) -> str:
     """The screen as one line of words."""
     return " ".join(screen_text(app).replace("│", " ").split())

@@ -39,9 +39,10 @@ class Gate(TextPage):
         self.knowledge = knowledge
         self.records = records
         self.wants_isolation = False
+        self.wants_lifting = False
 
     def lines(self) -> list[Content]:
-        """Return the gate's state, its lines, and the isolation records."""
+        """Return the gate's state, the isolation records, and the lines."""
         shut = self.energise.gate == "shut"
         head = (
             "SHUT: nothing energised is proposed until the lines below are cleared."
@@ -51,11 +52,10 @@ class Gate(TextPage):
         out = rows("gate", head, self.room, style=STRONG)
         for text in self.energise.because:
             out += rows("", text, self.room)
-        for line in self.energise.lines:
-            out += [blank(), *self.gate_line(line)]
-        out.append(blank())
         for text in self.records or ("No isolation is recorded in this case.",):
             out += rows("isolated" if text == (self.records or (text,))[0] else "", text, self.room)
+        for line in self.energise.lines:
+            out += [blank(), *self.gate_line(line)]
         return out
 
     def gate_line(self, line: GateLine) -> list[Content]:
@@ -68,6 +68,11 @@ class Gate(TextPage):
             asked = "; ".join(key_words(key, self.knowledge) for key in line.asks)
             out += rows("", f"shown by: {asked}", self.room)
         return out
+
+    def action_lift(self) -> None:
+        """Go on to record that the isolation was lifted."""
+        self.wants_lifting = True
+        self.dismiss(None)
 
     def action_isolate(self) -> None:
         """Go on to the isolation record."""
@@ -171,8 +176,8 @@ def hazards_text(hazards: Sequence[str], knowledge: Knowledge) -> str:
     return "\n".join(f"{hazard.name}: {hazard.precaution}" for hazard in known)
 
 
-def isolation_text(case: Case) -> list[str]:
-    """Return the isolation records of a case in words, the newest first."""
+def isolation_text(case: Case, lapse: str = "") -> list[str]:
+    """Return the isolation records of a case in words, the newest first, with why that no longer holds."""
     out = []
     for logged in reversed(case.isolation):
         record, moment = logged.what, logged.time_utc.astimezone().strftime("%Y-%m-%d %H:%M")
@@ -185,5 +190,6 @@ def isolation_text(case: Case) -> list[str]:
             if so
         ]
         points = f"; {record.points}" if record.points else ""
-        out.append(f"{moment} {record.by}: isolated, {', '.join(said)}{points}")
+        void = f" {lapse}" if lapse and not out else ""
+        out.append(f"{moment} {record.by}: isolated, {', '.join(said)}{points}{void}")
     return out

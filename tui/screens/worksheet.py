@@ -10,13 +10,13 @@ from textual.widgets import Static
 from textual.worker import get_current_worker
 
 from rules.answer import NextItem
-from rules.gate import gate
 from tui.keys import bindings
 from tui.look import FAINT, STOP, STRONG, WATCH
 from tui.screens import worksheet_lines as blocks
 from tui.screens.reasons import reason_lines
 from tui.screens.worksheet_choices import values_wanted
 from tui.screens.worksheet_typing import WorksheetTyping
+from tui.shift import gate_now
 from tui.widgets.ruled import Ruled, fill, row, rows
 from tui.widgets.typed import TypedLine
 
@@ -165,8 +165,10 @@ class Worksheet(WorksheetTyping):
         first = self.wanted_first()
         if first == "shut":
             return "GATE SHUT for this state. Enter only what was read before; energise nothing for it.", STOP
+        lapse = self.visit.isolation_lapse
         words = {
-            "isolation": "Enter: the isolation record comes first",
+            "isolation": "Enter: the isolation record comes first"
+            + (f"; the last is {lapse}" if lapse else ""),
             "acknowledge": "Enter: hazards of this state to read and accept first",
         }
         return words.get(first, ""), WATCH
@@ -241,7 +243,7 @@ class Worksheet(WorksheetTyping):
         self.weighed = weighed or self.weighed
         if self.weighed is not None:
             odds = {fault.id: fault.probability for fault in self.weighed.diagnosis.faults}
-            self.gate_now = gate(self.visit.sheet, self.visit.knowledge, suspects=odds)
+            self.gate_now = gate_now(self.visit.case, self.visit.knowledge, suspects=odds)
         self.show_blocks()
 
     # drafts

@@ -170,10 +170,20 @@ class WorksheetKeys(Page[None]):
         """Show the list before energising, and take the isolation record from there."""
         if self.diagnosis is None:
             return
-        page = Gate(self.diagnosis.energise, self.visit.knowledge, isolation_text(self.visit.case))
+        page = Gate(self.diagnosis.energise, self.visit.knowledge, self.isolation_words())
         await self.app.push_screen_wait(page)
         if page.wants_isolation:
             await self.isolate()
+        elif page.wants_lifting and self.visit.isolation is None:
+            self.say("No isolation is recorded that holds now.", "")
+        elif page.wants_lifting:
+            self.visit.lift()
+            self.say("stored: isolation lifted", FAINT)
+            self.show_blocks()
+
+    def isolation_words(self) -> list[str]:
+        """Return the isolation records in words."""
+        return isolation_text(self.visit.case, self.visit.isolation_lapse)
 
     # looking
 

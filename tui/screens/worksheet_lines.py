@@ -79,7 +79,7 @@ def gate_lines(diagnosis: Diagnosis, room: int) -> list[Content]:
     forbids = [line.because or line.needs for line in energise.lines if line.status == "forbids"]
     needs = [line.needs for line in energise.lines if line.status == "needed"] or list(energise.needs)
     if forbids:
-        return rows("gate", f"SHUT by: {'; '.join(forbids)}", room, style=STOP, most=4)
+        return rows("gate", f"SHUT by: {'; '.join(dict.fromkeys(forbids))}", room, style=STOP, most=4)
     return rows("gate", f"SHUT. Needed: {'; '.join(needs)}", room, style=STRONG, most=4)
 
 
@@ -260,7 +260,7 @@ def next_lines(
         names = [knowledge.hazards[h].name if h in knowledge.hazards else plain(h) for h in item.hazards]
         lines += rows("hazards", "; ".join(names), room, most=1)
     if item.sees:
-        lines += rows("meter", item.sees, room, most=1)
+        lines += rows("meter", item.sees, room, most=2)
     if item.why:
         lines += rows("because", item.why, room, most=2)
     return lines

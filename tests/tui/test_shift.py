@@ -1,0 +1,120 @@
+"""What a new shift may not stand on: an isolation that lapsed, entries that cleared the gate long ago."""
+
+from __future__ import annotations
+
+from datetime import UTC, datetime, timedelta
+
+import msgspec
+import pytest
+
+from calc.sheet_io import read_sheet
+from casebook import bodies
+from casebook.book import open_casebook
+from rules.loading import load_knowledge
+from tui.compose import Visit
+from tui.shift import gate_now
+
+NOW = datetime.now(UTC)
+PROVED = bodies.Isolation(by="Ines", locked_out=True, proved_dead=True)
+
+
+@pytest.fixture(scope="module")
+def knowledge():
+    return load_knowledge()
+
+
+@pytest.fixture
+def book(casebook):
+    with open_casebook(casebook) as opened:
+        yield opened
+
+
+def visit_of(book, knowledge, sheet, *, hours_ago=0.0):
+    at = NOW - timedelta(hours=hours_ago)
+    case = book.log_sheet(read_sheet(sheet("pump_overload")), "Ines", at=at)
+    return Visit(book, case, person="Ines", knowledge=knowledge)
+
+
+def test_an_isolation_record_holds_within_the_shift(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet)
+    visit.isolate(PROVED)
+    assert (visit.wants_first("isolated", ()), visit.isolation_lapse) == ("", "")
+
+
+def test_a_reading_with_power_on_makes_the_isolation_void(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet)
+    visit.isolate(PROVED)
+    visit.record(visit.understand("insulation_resistance", "isolated", "350 at 24"))
+    assert visit.wants_first("isolated", ()) == ""
+    visit.record(visit.understand("line_current", "loaded", "15 15 15"))
+    assert visit.wants_first("isolated", ()) == "isolation"
+    assert "loaded" in visit.isolation_lapse
+
+
+def test_a_repair_makes_the_isolation_void(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet)
+    visit.isolate(PROVED)
+    book.record(visit.case.id, bodies.Repaired(done="new bearings"), person="Ines")
+    visit.refresh()
+    assert visit.wants_first("isolated", ()) == "isolation"
+
+
+def test_an_isolation_record_of_the_shift_before_is_void(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet, hours_ago=14)
+    book.record(visit.case.id, PROVED, person="Ines", at=NOW - timedelta(hours=13))
+    visit.refresh()
+    assert visit.wants_first("isolated", ()) == "isolation"
+    assert "13 h old" in visit.isolation_lapse
+
+
+def test_a_lifted_isolation_is_asked_for_again(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet)
+    visit.isolate(PROVED)
+    visit.lift()
+    assert visit.wants_first("isolated", ()) == "isolation"
+
+
+def cleared(book, knowledge, sheet, *, hours_ago):
+    """A case after a repair, everything that its gate asks for read and answered some hours ago."""
+    one = msgspec.structs.replace(read_sheet(sheet("pump_overload")), complaint="after_repair", readings=())
+    at = NOW - timedelta(hours=hours_ago)
+    case = book.log_sheet(one, "Ines", at=at)
+    visit = Visit(book, case, person="Ines", knowledge=knowledge)
+    for key, text in READ.items():
+        reading = visit.understand(*key.split("@"), text).reading
+        book.record(case, bodies.ReadingTaken(reading=reading), person="Ines", at=at)
+    asks = [ask for gate in knowledge.gates.values() for ask in gate.asks if ask in knowledge.observations]
+    for ask in dict.fromkeys(asks):
+        book.record(case, bodies.Observed(observation=ask, answer=True), person="Ines", at=at)
+    visit.refresh()
+    return visit
+
+
+READ = {"insulation_resistance@isolated": "900", "winding_resistance@isolated": "3.11 3.12 3.11"}
+
+
+def lines_of(state, status):
+    return {line.id for line in state.energise.lines if line.status == status}
+
+
+def test_what_cleared_the_gate_in_an_earlier_shift_is_asked_for_again(book, knowledge, sheet):
+    fresh = cleared(book, knowledge, sheet, hours_ago=1)
+    stale = cleared(book, knowledge, sheet, hours_ago=20)
+    now = gate_now(fresh.case, knowledge, suspects={})
+    later = gate_now(stale.case, knowledge, suspects={})
+    reopened = lines_of(now, "cleared") & lines_of(later, "needed")
+    assert reopened
+    assert later.energise.gate == "shut"
+    said = [line.because for line in later.energise.lines if line.id in reopened]
+    assert any("20 h ago" in text for text in said)
+    assert stale.weigh().diagnosis.energise.gate == "shut"
+    asked = {ask for one in later.shut for ask in one.wants}
+    assert stale.weigh().diagnosis.next[0].key in asked
+
+
+def test_what_forbids_never_grows_old(book, knowledge, sheet):
+    visit = cleared(book, knowledge, sheet, hours_ago=40)
+    low = visit.understand("insulation_resistance", "isolated", "0.4").reading
+    book.record(visit.case.id, bodies.ReadingTaken(reading=low), person="Ines", at=NOW - timedelta(hours=39))
+    visit.refresh()
+    assert lines_of(gate_now(visit.case, knowledge, suspects={}), "forbids")

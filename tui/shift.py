@@ -1,0 +1,143 @@
+"""What a new shift may no longer stand on: an old isolation record, and old entries that cleared the gate.
+
+Entries that forbid never grow old. What cleared a line of the gate does: after a shift, or
+before a repair, it is asked for again.
+"""
+
+from __future__ import annotations
+
+from datetime import UTC, datetime, timedelta
+from typing import TYPE_CHECKING, Final
+
+import msgspec
+
+from calc.quantities import ENERGISED_STATES
+from casebook import bodies
+from rules.answer import NextItem
+from rules.gate import DECISIVE, SAYS_SHUT, GateState, gate
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Mapping
+
+    from calc.sheet import CaseSheet
+    from casebook.fold import Case
+    from rules.answer import Diagnosis
+    from rules.gate import ShutLine
+    from rules.knowledge import Knowledge
+
+SHIFT: Final = timedelta(hours=12)
+"""How long an isolation record and what cleared the gate hold: a long shift; common practice."""
+
+
+def age_words(age: timedelta) -> str:
+    """Return an age in words."""
+    hours = age.total_seconds() / 3600
+    return f"{hours:.0f} h" if hours < 48 else f"{hours / 24:.0f} days"
+
+
+def isolation_lapse(case: Case, now: datetime) -> str:
+    """Return why the last isolation record no longer holds; nothing where it holds, or there is none."""
+    if not case.isolation or not case.isolation[-1].what.isolated:
+        return ""
+    record = case.isolation[-1]
+    after = False
+    for line in case.lines:
+        if after and not line.struck:
+            match line.body:
+                case bodies.ReadingTaken(reading=reading) if reading.state in ENERGISED_STATES:
+                    return f"void: a reading '{reading.state.replace('_', ' ')}' was recorded after it"
+                case bodies.Repaired():
+                    return "void: a repair was recorded after it"
+        after = after or line.entry.id == record.entry.id
+    age = now - record.time_utc
+    return f"void: it is {age_words(age)} old, isolate and prove it anew" if age > SHIFT else ""
+
+
+def recent_sheet(case: Case, now: datetime) -> CaseSheet:
+    """Return the sheet of a case without the readings and answers of an earlier shift, or before a repair."""
+    since = max([now - SHIFT, *(repair.time_utc for repair in case.repairs)])
+    readings = tuple(one.what.reading for one in case.readings if one.time_utc >= since)
+    if len(readings) == len(case.readings) and all(one.time_utc >= since for one in case.observed.values()):
+        return case.sheet
+    seen = {name: yes for name, yes in case.observations.items() if case.observed[name].time_utc >= since}
+    return msgspec.structs.replace(case.sheet, readings=readings, observations=seen)
+
+
+def gate_now(
+    case: Case, knowledge: Knowledge, *, suspects: Mapping[str, float], now: datetime | None = None
+) -> GateState:
+    """Return the gate of a case, shut again where only old entries cleared a line."""
+    now = now or datetime.now(UTC)
+    recent = recent_sheet(case, now)
+    whole = gate(case.sheet, knowledge, suspects=suspects)
+    if recent == case.sheet or case.status == "closed":
+        return whole
+    cleared = {line.id: line.because for line in whole.energise.lines if line.status == "cleared"}
+    again = tuple(
+        msgspec.structs.replace(
+            one, line=msgspec.structs.replace(one.line, because=_was(case, one, cleared[one.line.id], now))
+        )
+        for one in gate(recent, knowledge, suspects=suspects).shut
+        if one.line.id in cleared and one.line.status == "needed"
+    )
+    return _shut_by(whole, again) if again else whole
+
+
+def _was(case: Case, shut: ShutLine, because: str, now: datetime) -> str:
+    """Return what cleared a line, and how old that is."""
+    moments = [one.time_utc for one in case.readings if one.what.reading.key in shut.line.asks]
+    moments += [one.time_utc for name, one in case.observed.items() if name in shut.line.asks]
+    age = f"; {age_words(now - max(moments))} ago" if moments else ""
+    return f"was cleared: {because or 'on record'}{age}. A new shift looks again."
+
+
+def _shut_by(whole: GateState, again: tuple[ShutLine, ...]) -> GateState:
+    """Return a gate with some more lines shut."""
+    lines = {one.line.id: one.line for one in again}
+    deciding = [one for one in again if one.states & DECISIVE]
+    energise = msgspec.structs.replace(
+        whole.energise,
+        lines=tuple(lines.get(line.id, line) for line in whole.energise.lines),
+    )
+    if deciding:
+        wants = [ask.partition("@")[0] for one in deciding for ask in one.wants]
+        energise = msgspec.structs.replace(
+            energise,
+            gate="shut",
+            needs=tuple(dict.fromkeys([*energise.needs, *wants])),
+            says=SAYS_SHUT,
+        )
+    return msgspec.structs.replace(whole, energise=energise, shut=(*whole.shut, *again))
+
+
+def for_this_shift(now: Diagnosis, case: Case, knowledge: Knowledge) -> Diagnosis:
+    """Return an answer with the gate as it stands in this shift; what reopens it is proposed first."""
+    if recent_sheet(case, datetime.now(UTC)) == case.sheet:
+        return now
+    odds = {fault.id: fault.probability for fault in now.faults}
+    state = gate_now(case, knowledge, suspects=odds)
+    wants = [ask for one in state.shut if one.line.because.startswith("was cleared") for ask in one.wants]
+    first = tuple(_item(ask, knowledge, now.next) for ask in dict.fromkeys(wants))
+    asked = {item.key for item in first}
+    left = (
+        item for item in now.next if item.key not in asked and not state.forbids(item.state or "isolated")
+    )
+    return msgspec.structs.replace(now, energise=state.energise, next=(*first, *left))
+
+
+def _item(key: str, knowledge: Knowledge, proposed: Iterable[NextItem]) -> NextItem:
+    """Return what a line of the gate asks for as a proposal."""
+    for item in proposed:
+        if item.key == key:
+            return item
+    measure, at, state = key.partition("@")
+    why = "what cleared this line of the gate is from an earlier shift, or from before a repair"
+    rule = knowledge.readings.get(measure)
+    how = rule.states.get(state) if rule is not None else None
+    if not at:
+        return NextItem(observation=key, why=why)
+    if how is None:
+        return NextItem(measure=measure, state=state, why=why)
+    return NextItem(
+        measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards, why=why
+    )
