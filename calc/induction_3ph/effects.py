@@ -15,7 +15,7 @@ OPEN = 200.0  # a series resistance of 200 pu carries half a percent of rated cu
 
 DEFAULTS: dict[str, float] = {
     "level": 0.0,  # relative change of the supply voltage
-    "level_sd": 0.026,
+    "level_sd": 0.029,
     "unbalance_sd": 0.0042,
     "no_supply": 0.0,
     "frequency_change": 0.0,
