@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import difflib
 import re
+import unicodedata
 from collections.abc import Collection, Iterable
 from typing import Final
 
@@ -106,7 +107,7 @@ class Fields:
         if len(found) > longest:
             self.wrong(field, f"{len(found)} characters", f"at most {longest} characters")
             return None
-        if longest < 200 and not all(c.isprintable() for c in found):
+        if longest < 200 and not all(c.isprintable() or unicodedata.category(c) == "Zs" for c in found):
             self.wrong(field, clip(found), "text on one line")
             return None
         return found

@@ -223,6 +223,12 @@ def sheets(draw):
     }
 
 
+@pytest.mark.parametrize("space", ["\u00a0", "\u202f", "\u2009", "\u3000"])
+def test_a_tag_that_was_pasted_with_another_kind_of_space_is_a_tag(space):
+    text = f"format: 1\nmachine: {{kind: induction_3ph, tag: 'P{space}104'}}\ncomplaint: runs_hot\n"
+    assert sheet_from_text(text, file="pasted").machine.tag == f"P{space}104"
+
+
 @settings(max_examples=60, deadline=None)
 @given(sheets())
 def test_any_sheet_that_is_written_is_read_as_the_same(data):
