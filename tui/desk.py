@@ -23,6 +23,7 @@ class Desk:
     """Opened with the first screen; the rules come later, from a thread."""
 
     def __init__(self, casebook: Path, *, rules: Sequence[Path] = (), person: str = "") -> None:
+        self.casebook = casebook
         self.book = Casebook(SqliteStore(casebook))
         self.drafts = Drafts(casebook)
         self.rules = tuple(rules)

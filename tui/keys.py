@@ -164,13 +164,26 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         *_UP_DOWN,
         Key("space", "toggle", "", "Tick or untick in the list of faults."),
         Key(_DONE, "done", "close the case", "Close the case with what stands here."),
+        Key("f4", "sheet", "sheet", "The printed sheet of the case as it is stored now."),
+        Key("f5", "shop_tag", "shop tag", "The tag that goes with the motor to the repair shop."),
     ),
     "machine": (
         Key("f3", "edit", "correct the plate", "Correct the plate; the log keeps both."),
         Key("f4,ctrl+t", "curves", "curves", "Curves and history."),
         *_PAGES,
     ),
-    "closed": (Key(_DONE, "reopen", "go on with it", "Open the case again."), *_PAGES),
+    "closed": (
+        Key(_DONE, "reopen", "go on with it", "Open the case again."),
+        Key("f4,s", "sheet", "sheet", "The printed sheet of the case."),
+        Key("f5,t", "shop_tag", "shop tag", "The tag that goes with the motor to the repair shop."),
+        *_PAGES,
+    ),
+    "sheet": (
+        Key(
+            "f8,w", "write", "write to a file", "Write it to a file beside the casebook; .html makes a page."
+        ),
+        *_PAGES,
+    ),
     "person": (
         Key("enter", "next_field", "next", "The next line."),
         *_UP_DOWN,

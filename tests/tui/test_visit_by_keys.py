@@ -9,6 +9,7 @@ from pathlib import Path
 import pytest
 from textual.pilot import Pilot
 
+from calc.sheet_io import sheet_from_plain
 from casebook.bodies import Closed
 from casebook.errors import DiskFull
 from tests.tui.helpers import PATIENCE_S, SMALL, keys, known_machine, new_app, screen_text, settled, until
@@ -463,3 +464,63 @@ async def absent(pilot: Pilot[int], words: str) -> None:
     while words in flat(pilot.app) and time.monotonic() < end:  # type: ignore[arg-type]
         await pilot.pause(0.02)
     assert words not in flat(pilot.app)  # type: ignore[arg-type]
+
+
+async def test_the_sheet_of_a_case_is_shown_and_written_to_a_file_beside_the_casebook(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f8")
+        await until(pilot, "What was it really")
+        await keys(pilot, "enter")
+        await until(pilot, "known by")
+        await keys(pilot, "f4")
+        await until(pilot, "Energising")
+        await keys(pilot, "f8")
+        await until(pilot, "beside the casebook")
+        await keys(pilot, *"pump.html", "enter")
+        await until(pilot, "written:")
+        await keys(pilot, "f8")
+        await until(pilot, "beside the casebook")
+        await keys(pilot, *"../pump", "enter")
+        await until(pilot, "without a folder")
+        await keys(pilot, "f9")
+        await until(pilot, "known by")
+        await keys(pilot, "f5")
+        await until(pilot, "Please return with")
+    assert (tmp_path / "sheets" / "pump.html").read_text(encoding="utf-8").startswith("<!DOCTYPE html>")
+    assert [file.name for file in (tmp_path / "sheets").iterdir()] == ["pump.html"]
+
+
+async def test_insulation_over_the_years_is_drawn_with_its_limit(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    case = app.desk.book.cases()[0].id
+    visit = app.desk.visit(case)
+    for text in ("900 at 20 C", "400 at 22 C", "150 at 21 C"):
+        visit.record(visit.understand("insulation_resistance", "isolated", text))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "P-104")
+        await keys(pilot, "enter")
+        await settled(pilot)
+        await keys(pilot, "ctrl+t")
+        await until(pilot, "torque over speed")
+        await keys(pilot, "left")
+        screen = await until(pilot, "insulation to frame")
+    assert "at 40 degC" in screen
+    assert "= limit 5 Mohm" in screen
+
+
+async def test_back_emf_of_a_dc_machine_is_drawn_over_speed(tmp_path: Path):
+    app = new_app(tmp_path)
+    plate = {"power": "10 hp", "voltage": "240 V", "current": "38 A", "speed": "1750 rpm"}
+    machine = {"tag": "BH-1", "kind": "dc_shunt", "nameplate": plate}
+    app.desk.book.log_sheet(
+        sheet_from_plain({"format": 1, "machine": machine, "complaint": "runs_fast"}), "R. Varga"
+    )
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "BH-1")
+        await keys(pilot, "enter")
+        await settled(pilot)
+        await keys(pilot, "ctrl+t")
+        screen = await until(pilot, "back-EMF over speed")
+    assert "nine in ten" in screen

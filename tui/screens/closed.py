@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from tui.keys import bindings
 from tui.look import FAINT, STRONG, VERDICT_STYLE, VERDICT_WORD
 from tui.screens.page import TextPage
+from tui.screens.sheet import SheetPage
 from tui.screens.worksheet_lines import machine_lines
 from tui.widgets.ruled import blank, row, rows
 from tui.words import fault_name, key_words, percent, plain, question, reading_text
@@ -76,6 +77,14 @@ class ClosedCase(TextPage):
             names = "; ".join(key_words(key, self.visit.knowledge) for key in closed.retest)
             out += rows("re-test", names, room)
         return out
+
+    def action_sheet(self) -> None:
+        """Show the printed sheet."""
+        self.app.push_screen(SheetPage(self.visit))
+
+    def action_shop_tag(self) -> None:
+        """Show the tag for the repair shop."""
+        self.app.push_screen(SheetPage(self.visit, shop_tag=True))
 
     def action_reopen(self) -> None:
         """Go on with the case."""

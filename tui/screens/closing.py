@@ -7,12 +7,15 @@ from typing import TYPE_CHECKING, Final
 from tui.keys import bindings
 from tui.look import STRONG
 from tui.screens.form import FormPage, Heard, Line, hear_choice, one_of
+from tui.screens.sheet import SheetPage
 from tui.widgets.ruled import rows
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
     from textual.content import Content
+
+    from tui.compose import Visit
 
 CONFIRMED: Final = {
     "believed": "believed only; it teaches the odds nothing",
@@ -28,10 +31,9 @@ class ClosingPage(FormPage[dict[str, str]]):
     KEYS = "closing"
     BINDINGS = bindings("closing")
 
-    def __init__(
-        self, found: str, names: Mapping[str, str], retest: Sequence[str], typed: dict[str, str] | None = None
-    ) -> None:
-        super().__init__(typed)
+    def __init__(self, visit: Visit, found: str, names: Mapping[str, str], retest: Sequence[str]) -> None:
+        super().__init__()
+        self.visit = visit
         self.found = found
         self.names = names
         self.retest = retest
@@ -71,6 +73,14 @@ class ClosingPage(FormPage[dict[str, str]]):
                 return f"which fault is '{part.strip()}'? F9, then F8 picks from the list", False
             names.append(self.names[fault])
         return " and ".join(names), True
+
+    def action_sheet(self) -> None:
+        """Show the printed sheet as the case is stored now."""
+        self.app.push_screen(SheetPage(self.visit))
+
+    def action_shop_tag(self) -> None:
+        """Show the tag for the repair shop."""
+        self.app.push_screen(SheetPage(self.visit, shop_tag=True))
 
     def done(self) -> None:
         """Close where fault, how it is known and minutes are understood."""

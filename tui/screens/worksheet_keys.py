@@ -281,7 +281,7 @@ class WorksheetKeys(Page[None]):
             return
         known = knowledge.faults.get(found)
         retest = [key_words(key, knowledge) for key in known.retest] if known else []
-        answer = await self.app.push_screen_wait(ClosingPage(found, names, retest))
+        answer = await self.app.push_screen_wait(ClosingPage(self.visit, found, names, retest))
         if answer is None:
             return
         self.visit.close(closing_of(answer, known.retest if known else ()))
