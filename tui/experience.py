@@ -18,7 +18,7 @@ WINDING_PARTS: Final = frozenset({"winding", "connection", "armature", "field"})
 class Experience:
     """The experience of a shop with machines like that of one case, the case itself left out.
 
-    Confirmed cases are counted once, so that the odds of a visit move by what is read alone.
+    It is looked up once, so that the odds of a visit move by what is read alone.
     """
 
     def __init__(self, book: Casebook, case: str, knowledge: Knowledge) -> None:
@@ -26,6 +26,7 @@ class Experience:
         self._case = case
         self._knowledge = knowledge
         self._counts: dict[tuple[str, float | None], LearnedCounts] = {}
+        self._own: dict[str, dict[str, tuple[float, ...]]] = {}
 
     def counts(self, machine: Machine) -> LearnedCounts:
         """Return the confirmed cases on machines of this kind and size."""
@@ -58,10 +59,16 @@ class Experience:
 
     def own_windings(self, tag: str | None) -> dict[str, tuple[float, ...]]:
         """Return what a machine's sound windings read in earlier cases, at 25 degC. [ohm]"""
-        from casebook.history import own_references
-
         if not tag:
             return {}
+        if tag not in self._own:
+            self._own[tag] = self._read_before(tag)
+        return self._own[tag]
+
+    def _read_before(self, tag: str) -> dict[str, tuple[float, ...]]:
+        """Return the newest sound values of each winding from the machine's history."""
+        from casebook.history import own_references
+
         spoilt = [fault.id for fault in self._knowledge.faults.values() if fault.part in WINDING_PARTS]
         found = own_references(self._book.history(tag), leave_out=self._case, spoilt_by=spoilt)
         return {measure: reference.numbers_at_25_c for measure, reference in found.items()}

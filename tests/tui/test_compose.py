@@ -182,3 +182,29 @@ def test_a_sheet_with_contradictions_opens_no_case(book):
     with pytest.raises(InputError):
         sheet_from_plain(plain)
     assert book.cases() == []
+
+
+def test_a_machines_own_windings_are_its_reference_and_a_spoilt_one_is_none(book, knowledge, sheet):
+    """Brought to 25 degC with the law for copper, (235 + 25) / (235 + 24): IEC 60034-1."""
+    pump = read_sheet(sheet("pump_overload"))
+    sound = Visit.new(book, pump, person="Ines", knowledge=knowledge)
+    assert sound.own_windings() == {}
+    sound.close(bodies.Closed(found="overload", confirmed="repair"))
+    again = Visit.new(book, pump, person="Ines", knowledge=knowledge)
+    factor = (235.0 + 25.0) / (235.0 + 24.0)
+    assert again.own_windings() == {
+        "winding_resistance": pytest.approx((1.91 * factor, 1.92 * factor, 1.90 * factor))
+    }
+    again.close(bodies.Closed(found="turn_short", confirmed="teardown"))
+    with_history = Visit.new(book, pump, person="Ines", knowledge=knowledge)
+    assert set(with_history.own_windings()) == {"winding_resistance"}
+    other = msgspec.structs.replace(pump.machine, tag="P-9")
+    alone = Visit.new(book, msgspec.structs.replace(pump, machine=other), person="I", knowledge=knowledge)
+    assert alone.own_windings() == {}
+
+
+def test_a_winding_known_only_from_a_spoilt_case_is_no_reference(book, knowledge, sheet):
+    pump = read_sheet(sheet("pump_overload"))
+    spoilt = Visit.new(book, pump, person="Ines", knowledge=knowledge)
+    spoilt.close(bodies.Closed(found="turn_short", confirmed="teardown"))
+    assert Visit.new(book, pump, person="Ines", knowledge=knowledge).own_windings() == {}
