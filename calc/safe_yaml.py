@@ -146,11 +146,6 @@ def load_document(text: str, *, file: str, limits: Limits = SHEET_LIMITS) -> Doc
     return Document(file, build.data, build.lines)
 
 
-def locate(text: str, path: tuple[Step, ...], *, file: str = "") -> int | None:
-    """Return the line on which a part of a document begins."""
-    return load_document(text, file=file).line(path)
-
-
 def _wrong(file: str, given: str, allowed: str, line: int | None = None, where: str = "") -> InputError:
     return InputError([Problem(file=file, where=where, given=given, allowed=allowed, line=line)])
 

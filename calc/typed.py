@@ -27,7 +27,6 @@ _MULTIPLIERS: Final = {
     "speed": "k",
 }
 _NUMBER: Final = r"[+-]?[0-9.,]*[0-9][0-9.,]*(?:[eE][+-]?[0-9]+)?"
-_COMMAS_BETWEEN: Final = (r"[^,]+(?:,\s+[^,]+){2}", r"[0-9]*\.[0-9.]*(?:,[0-9.]+){2}\D*")
 _LIMIT_SIGN: Final = re.compile(r">=?|<=?|≥|≤")
 _LINES: Final = ("L1", "L2", "L3")
 _BETWEEN_LINES: Final = ("L1-L2", "L2-L3", "L3-L1")

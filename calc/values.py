@@ -121,27 +121,6 @@ def parse_value(text: str, *, dimension: str) -> Value:
     return _number(clean, text, dimension)
 
 
-def parse_triple(texts: list[str | None], *, dimension: str) -> tuple[Value, ...]:
-    """Read the three values of a three-phase reading; None is a value that was not read.
-
-    Raises
-    ------
-    ValueTextError
-        If there are not three, none was read, or one of them is no value.
-
-    """
-    if len(texts) != 3:
-        raise ValueTextError(
-            ", ".join(str(t) for t in texts),
-            f"three values, one a phase (null for one not read); {len(texts)} given",
-        )
-    if all(text is None for text in texts):
-        raise ValueTextError(
-            "null, null, null", "at least one value; leave the reading out where nothing was read"
-        )
-    return tuple(MISSING if text is None else parse_value(text, dimension=dimension) for text in texts)
-
-
 MISSING: Final = Value(text="", number=math.nan, kind="missing")
 
 

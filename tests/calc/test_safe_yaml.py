@@ -6,7 +6,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from calc.errors import InputError
-from calc.safe_yaml import Limits, load_document, locate, read_document, where
+from calc.safe_yaml import Limits, load_document, read_document, where
 
 
 def refusal(text, **limits):
@@ -48,7 +48,7 @@ def test_every_part_knows_its_line():
         2,
         1,
     ]
-    assert locate(text, ("b", 1, "c")) == 4
+    assert document.line(("b", 1, "c")) == 4
 
 
 def test_a_path_is_written_as_people_read_it():

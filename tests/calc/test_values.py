@@ -8,7 +8,7 @@ from hypothesis import strategies as st
 
 from calc.errors import clip
 from calc.quantities import INNER_UNIT
-from calc.values import ValueTextError, dimension_facts, parse_triple, parse_value
+from calc.values import ValueTextError, dimension_facts, parse_value
 
 DIMENSIONS = st.sampled_from(sorted(INNER_UNIT))
 
@@ -172,18 +172,6 @@ def test_what_is_no_value_is_refused_with_what_to_write(text, dimension, says):
         parse_value(text, dimension=dimension)
     assert says in refused.value.allowed
     assert refused.value.given == clip(text)
-
-
-def test_a_triple_keeps_its_gaps():
-    values = parse_triple(["1.9 A", None, "1.8 A"], dimension="current")
-    assert [value.is_read for value in values] == [True, False, True]
-    assert math.isnan(values[1].number)
-
-
-@pytest.mark.parametrize("texts", [["1 A", "2 A"], [None, None, None], []])
-def test_a_triple_needs_three_places_and_one_value(texts):
-    with pytest.raises(ValueTextError):
-        parse_triple(texts, dimension="current")
 
 
 @given(st.text(max_size=70), DIMENSIONS)
