@@ -1,4 +1,6 @@
-"""Print the whole table of measurements: ``python -m benchmarks [FOLDER...] [--quick] [--entries N]``.
+"""Print the whole table of measurements.
+
+``python -m benchmarks [FOLDER...] [--quick] [--cases N] [--entries N]``
 
 Accuracy on invented cases of the plant in ``benchmarks/generator`` and on any folders given, what is
 lost under other meters and odds, times and memory, key latency and bytes of the terminal, and the
@@ -31,9 +33,10 @@ def main() -> int:
     parser = argparse.ArgumentParser(prog="python -m benchmarks", description=__doc__)
     parser.add_argument("folders", nargs="*", type=Path, metavar="FOLDER", help="folders of graded cases")
     parser.add_argument("--quick", action="store_true")
+    parser.add_argument("--cases", type=int, help="of each folder")
     parser.add_argument("--entries", type=int, help="of the casebook")
     chosen = parser.parse_args()
-    count = str(QUICK_CASES if chosen.quick else CASES)
+    count = str(chosen.cases or (QUICK_CASES if chosen.quick else CASES))
     entries = str(chosen.entries or (QUICK_ENTRIES if chosen.quick else ENTRIES))
     with tempfile.TemporaryDirectory() as made:
         parts = [("making cases", ["benchmarks.cases", made, "--n", count, "--seed", str(SEED)])]
