@@ -42,6 +42,8 @@ QUANTITIES: Final[dict[str, Quantity]] = {
     "run_capacitance_over_marked": machine.run_capacitance_over_marked,
     "start_capacitance_over_lowest": machine.start_capacitance_over_lowest,
     "start_capacitance_over_highest": machine.start_capacitance_over_highest,
+    "field_voltage_over_plate": electric.field_voltage_over_plate,
+    "speed_over_highest": machine.speed_over_highest,
     "speed_over_maximum": lambda sheet: over_plate(sheet, "speed", "max_speed"),
     "field_current_over_plate": lambda sheet: over_plate(sheet, "field_current", "field_current"),
     "overload_setting_over_plate": lambda sheet: over_plate(sheet, "overload_setting", "current"),

@@ -122,6 +122,12 @@ def field_resistance_over_plate(sheet: CaseSheet) -> Iterator[Derived]:
             yield from (Derived(100.0 * n * ampere / volt, reading) for n in numbers_of(reading))
 
 
+def field_voltage_over_plate(sheet: CaseSheet) -> Iterator[Derived]:
+    """Voltage at the field terminals over the plate's, or over the armature's of a shunt field, in %."""
+    own = sheet.machine.kind == "dc_separately_excited" or plate(sheet, "field_voltage") is not None
+    yield from over_plate(sheet, "field_voltage", "field_voltage" if own else "voltage")
+
+
 def ripple_share(sheet: CaseSheet) -> Iterator[Derived]:
     """AC component over armature voltage, in one state, in %."""
     for state in ("no_load", "light_load", "loaded"):

@@ -43,6 +43,13 @@ def slip_over_plate(sheet: CaseSheet) -> Iterator[Derived]:
             yield Derived(100.0 * slip_rpm / rated, reading)
 
 
+def speed_over_highest(sheet: CaseSheet) -> Iterator[Derived]:
+    """Speed over the highest that the plate names, its rated or its maximum speed, in %."""
+    highest_rpm = max(plate(sheet, "speed") or 0.0, plate(sheet, "max_speed") or 0.0)
+    for reading in readings_of(sheet, "speed") if highest_rpm > 0.0 else ():
+        yield from (Derived(100.0 * number / highest_rpm, reading) for number in numbers_of(reading))
+
+
 def sideband_below_line(sheet: CaseSheet) -> Iterator[Derived]:
     """How far the side band lies below the line, whichever sign was typed, in dB."""
     for reading in readings_of(sheet, "sideband_level"):

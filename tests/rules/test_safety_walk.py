@@ -113,6 +113,8 @@ def test_a_lost_field_on_record_or_suspected_leaves_the_armature_off(kind):
     lost = [
         reading("field_resistance", "isolated", "open"),
         reading("field_current", "loaded", "0.01 A"),
+        reading("field_voltage", "loaded", "0 V"),
+        reading("speed", "loaded", "2700 rpm"),
     ]
     for complaint in complaints_of(kind):
         for found in lost:
@@ -140,6 +142,12 @@ def test_a_series_motor_is_never_run_uncoupled(kind):
         assert "no_load" not in open_states(
             cleared(kind, complaint, reading("speed", "no_load", "3000 rpm"))
         ), complaint
+
+
+def test_a_series_motor_that_runs_away_is_not_read_running():
+    for complaint in complaints_of("dc_series"):
+        found = cleared("dc_series", complaint, reading("speed", "loaded", "2700 rpm"))
+        assert open_states(found) <= {"standby", "spun"}, complaint
 
 
 @pytest.mark.parametrize(("kind", "complaint"), EVERY)
