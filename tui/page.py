@@ -216,13 +216,15 @@ def _reasons(diagnosis: Diagnosis) -> Iterable[str]:
 
 
 def _to_do(diagnosis: Diagnosis, kind: str, knowledge: Knowledge) -> Iterable[str]:
-    """Yield how the first suspect is confirmed and mended, and what to read again after."""
+    """Yield how the first suspect is confirmed and mended, and what must be shown and read again after."""
     first = diagnosis.faults[0].id.split("+") if diagnosis.faults else []
     for fault in first:
         known = knowledge.faults.get(fault)
         if known is None or fault == "healthy":
             continue
         yield from (text for text in (known.confirm, known.remedy) if text)
+        lines = (knowledge.gates[name] for name in known.before_energising if name in knowledge.gates)
+        yield from (f"before it is energised: {one.name}" for one in lines if {kind, "any"} & set(one.kinds))
     yield from (f"read again after repair: {text}" for text in _retest(diagnosis, (), kind, knowledge))
 
 
