@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import os
 import sys
 from typing import TYPE_CHECKING
@@ -37,6 +38,7 @@ def run_app(
 ) -> int:
     """Run the screens on a casebook until they are left; return the exit status."""
     prepare()
+    gc.disable()  # until the first page stands: what is imported stays, looking for garbage in it is vain
     sys.setswitchinterval(SWITCH_INTERVAL_S)
     from tui.application import PlatesideApp  # Textual reads the environment when it is imported
     from tui.look import needs_ascii

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import asyncio
 import contextlib
+import gc
 import os
 import signal
 from typing import TYPE_CHECKING, Any, Final
@@ -76,7 +77,10 @@ class PlatesideApp(App[int]):
         await super().on_event(event)
 
     def load(self) -> None:
-        """Load rules and engine off the event loop."""
+        """Load rules and engine off the event loop; from now on garbage is collected."""
+        if not gc.isenabled():
+            gc.freeze()
+            gc.enable()
         self.run_worker(self.desk.load, thread=True, exit_on_error=False, group="load")
 
     def on_unmount(self) -> None:

@@ -22,7 +22,8 @@ def main(argv: Sequence[str] | None = None) -> int:
     """Run one command; return 0 done, 1 could not be done, 2 the input is wrong."""
     _open_closed_streams()
     try:
-        status = run(parser.build().parse_args(argv))
+        words = sys.argv[1:] if argv is None else list(argv)
+        status = run(parser.build(words).parse_args(words))
         sys.stdout.flush()
     except BrokenPipeError:
         status = _finish(DONE)  # whoever reads the results has seen enough

@@ -169,7 +169,13 @@ async def pick_machine(app: PlatesideApp, before: str | None = None) -> str | No
     """Ask for the tag: a known machine, or a new one as typed. Returns "" for a machine without a tag."""
     known = app.desk.book.machines(limit=500)
     choices = [
-        Choice(m.tag, m.tag, word="known", more=f"{kind_name(m.kind)}, {m.cases} cases") for m in known
+        Choice(
+            m.tag,
+            m.tag,
+            word="known",
+            more=f"{kind_name(m.kind)}, {m.cases} case{'' if m.cases == 1 else 's'}",
+        )
+        for m in known
     ]
 
     def fresh(text: str) -> Choice:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, NoReturn
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Sequence
 
 
 @dataclass(frozen=True)
@@ -125,8 +125,11 @@ class Parser(argparse.ArgumentParser):
         self.exit(2, f"plateside: {message}; `{self.prog} --help` shows what is understood\n")
 
 
-def build() -> argparse.ArgumentParser:
-    """Return the parser of the whole command line."""
+def build(argv: Sequence[str] | None = None) -> argparse.ArgumentParser:
+    """Return the parser of the whole command line.
+
+    With ``argv`` only the commands that it names get their arguments: the screens start sooner.
+    """
     parser = Parser(
         prog="plateside",
         description="Troubleshoot electric motors from the nameplate and a handful of field readings. "
@@ -146,8 +149,9 @@ def build() -> argparse.ArgumentParser:
         child = words.add_parser(
             command.word, help=command.does, description=command.does, allow_abbrev=False
         )
-        command.arguments(child)
-        _shared(child, default=argparse.SUPPRESS)
+        if argv is None or command.word in argv:
+            command.arguments(child)
+            _shared(child, default=argparse.SUPPRESS)
     return parser
 
 

@@ -38,14 +38,12 @@ class Choice:
 
     def matches(self, words: Sequence[str]) -> bool:
         """Whether every typed word begins a word of the line."""
-        parts = (
-            f"{self.word} {self.text} {self.more} {self.key}".lower()
-            .replace("_", " ")
-            .replace("-", " ")
-            .split()
+        parts = f"{self.text} {self.more} {self.key}".lower().replace("_", " ").replace("-", " ").split()
+        whole = f"{self.text} {self.key}".lower()
+        return all(
+            word in whole or word == self.word.lower() or any(part.startswith(word) for part in parts)
+            for word in words
         )
-        whole = f"{self.word} {self.text} {self.key}".lower()
-        return all(word in whole or any(part.startswith(word) for part in parts) for word in words)
 
 
 class Pick(Page[str]):
