@@ -51,4 +51,10 @@ def say_severity(attribute: str, amount: float) -> str:
     """
     size = abs(amount)
     words = _WORDS.get(attribute, attribute.replace("_", " ") + " of {number}")
-    return words.format(percent=f"{100.0 * size:.2g} %", number=f"{size:.2g}")
+    return words.format(percent=f"{_two_digits(100.0 * size)} %", number=_two_digits(size))
+
+
+def _two_digits(value: float) -> str:
+    """Write a number with two digits that count, never with an exponent where it is 10 or more."""
+    text = f"{value:.2g}"
+    return f"{float(text):.0f}" if value >= 10.0 else text

@@ -87,8 +87,10 @@ def _behind(text: str, allowed: Sequence[str]) -> dict[str, str]:
         due = [name for name in allowed if name not in found]
         name, given, length = _first(rest, due)
         if not name:
-            hint = context_hint("", allowed).removeprefix("add: ") or "nothing goes with this reading"
-            raise InputError([Problem("", "with the reading", rest, hint)])
+            said = context_hint("", allowed).removeprefix("add: ")
+            raise InputError(
+                [Problem("", "with the reading", rest, f"behind the value: {said or 'nothing'}")]
+            )
         found[name] = given
         rest = rest[length:].strip(" ,;")
     return found

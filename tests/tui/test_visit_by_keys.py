@@ -453,6 +453,28 @@ async def test_an_isolation_that_is_lifted_on_the_gate_page_is_asked_for_again(t
         assert not newest(app).readings
 
 
+async def test_a_word_that_can_mean_only_one_proposed_reading_picks_it_at_once(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, *"line current", "enter")
+        await until(pilot, "picked: line current")
+        assert "three values in A" in screen_text(app)
+
+
+async def test_what_is_tried_by_hand_on_the_isolated_machine_waits_for_the_isolation_record(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await to_worksheet(pilot)
+        await keys(pilot, "f3", *"turn freely by hand", "enter")
+        await until(pilot, "the isolation record comes first")
+        await keys(pilot, "y", "enter")
+        await until(pilot, "Isolation of P-104")
+        await keys(pilot, "f9")
+        await pilot.pause()
+        assert not newest(app).observed
+
+
 def flat(app: PlatesideApp) -> str:
     """The screen as one line of words."""
     return " ".join(screen_text(app).replace("│", " ").split())

@@ -10,6 +10,7 @@ from textual.widgets import Static
 from textual.worker import get_current_worker
 
 from rules.answer import NextItem
+from rules.cautions import states_of
 from tui.keys import bindings
 from tui.look import FAINT, STOP, STRONG, WATCH
 from tui.screens import worksheet_lines as blocks
@@ -176,8 +177,11 @@ class Worksheet(WorksheetTyping):
     def wanted_first(self) -> str:
         """Return what must come before the reading: shut, isolation, acknowledge, or nothing."""
         item = self.target
-        if item is None or item.state is None:
+        if item is None:
             return ""
+        if item.state is None:
+            by_hand = states_of(item, self.visit.knowledge) == {"isolated"}
+            return self.visit.wants_first("isolated", ()) if by_hand else ""
         if (
             self.gate_now is not None
             and self.gate_now.forbids(item.state)

@@ -83,6 +83,15 @@ def other_choices(visit: Visit, proposed: Sequence[str]) -> list[Choice]:
     return sorted(choices.values(), key=lambda choice: order.get(choice.key, len(order)))
 
 
+def only_one_meant(choices: Sequence[Choice], typed: str) -> str | None:
+    """Return the one choice that typed words can mean: the only one, or the only proposed one."""
+    words = typed.lower().replace("-", " ").split()
+    fitting = [choice for choice in choices if words and choice.matches(words)]
+    proposed = [choice for choice in fitting if choice.word]
+    named = [choice for choice in proposed if choice.text.lower().startswith(typed.lower().strip())]
+    return next((found[0].key for found in (fitting, named, proposed) if len(found) == 1), None)
+
+
 def item_of(key: str, proposals: Sequence[NextItem], knowledge: Knowledge) -> NextItem:
     """Return what was picked by hand: the proposal where there is one, else what the rules say of it."""
     for item in proposals:

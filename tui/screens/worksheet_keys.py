@@ -19,6 +19,7 @@ from tui.screens.worksheet_choices import (
     closing_of,
     found_choices,
     item_of,
+    only_one_meant,
     other_choices,
     shut_question,
     stored_choices,
@@ -96,11 +97,14 @@ class WorksheetKeys(Page[None]):
     async def pick_other(self, typed: str) -> bool:
         """Pick a reading from all that suit the machine; return whether one was picked."""
         choices = other_choices(self.visit, [item.key for item in self.proposals])
-        key = await self.app.push_screen_wait(Pick("reading", "Which reading?", choices, typed=typed))
+        key: str | None
+        key = meant = only_one_meant(choices, typed)
+        if meant is None:
+            key = await self.app.push_screen_wait(Pick("reading", "Which reading?", choices, typed=typed))
         if key is None:
             return False
         self.chosen = item_of(key, self.proposals, self.visit.knowledge)
-        self.say("")
+        self.say(f"picked: {key_words(key, self.visit.knowledge)}; F3 shows the others" if meant else "", "")
         self.show_blocks()
         return True
 

@@ -119,7 +119,11 @@ class WorksheetTyping(WorksheetKeys):
         if answer is None:
             if text and self.is_a_word(text):
                 return await self.pick_other(text)
+            if not text and not await self.come_first(item):
+                return False
             self.say("y or n; F4 where it cannot be told.", "")
+            return False
+        if not await self.come_first(item):
             return False
         self.visit.observe(str(item.observation), answer)
         self.stored(f"{question(str(item.observation), self.visit.knowledge)} {'yes' if answer else 'no'}")
