@@ -3,6 +3,10 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Final
+
+SAID: Final = 20
+"""Problems of one input that are said; the others are counted."""
 
 
 @dataclass(frozen=True)
@@ -30,11 +34,17 @@ class PlatesideError(Exception):
 
 
 class InputError(PlatesideError):
-    """The input is wrong; ``problems`` says where, what was given and what is allowed."""
+    """The input is wrong; ``problems`` says where, what was given and what is allowed.
+
+    The text says the first of them, and how many more there are.
+    """
 
     def __init__(self, problems: list[Problem]) -> None:
         self.problems = problems
-        super().__init__("\n".join(str(problem) for problem in problems))
+        said = [str(problem) for problem in problems[:SAID]]
+        if len(problems) > SAID:
+            said.append(f"{problems[0].file}: and {len(problems) - SAID} more".lstrip(": "))
+        super().__init__("\n".join(said))
 
 
 class RangeError(PlatesideError, ValueError):

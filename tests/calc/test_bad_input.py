@@ -271,3 +271,13 @@ def test_a_comma_in_a_quoted_value_is_understood_or_asked_about():
 def test_a_problem_without_file_or_line_begins_with_its_field():
     assert str(Problem("", "machine.kind", "pump", "a kind")) == "machine.kind: pump; a kind"
     assert str(Problem("p.yaml", "", "", "a sheet", 3)) == "p.yaml, line 3; a sheet"
+
+
+def test_a_sheet_with_thousands_of_slips_says_the_first_and_counts_the_others():
+    readings = "".join(f"  - {{measure: speed, state: loaded, value: {n} V}}\n" for n in range(1, 101))
+    text = f"format: 1\nmachine: {{kind: induction_3ph}}\ncomplaint: runs_hot\nreadings:\n{readings}"
+    with pytest.raises(InputError) as refused:
+        sheet_from_text(text, file="many.yaml")
+    assert len(refused.value.problems) == 100
+    assert str(refused.value).splitlines()[-1] == "many.yaml: and 80 more"
+    assert len(str(refused.value).splitlines()) == 21
