@@ -275,7 +275,9 @@ def circuit(base: Base, z: Floats) -> Circuit:
     # What is left for stator copper and core; a plate whose slip eats all the losses keeps a tenth of them.
     rest = losses - slip * p_gap - friction - stray
     rest = 0.5 * (rest + np.sqrt(rest * rest + (0.14 * losses) ** 2))
-    core_share = 1.0 / (1.0 + np.exp(0.35 - 0.42 * column["core_share"]))
+    # Small machines have the larger share in copper, large ones in the core (judgement).
+    lean = 0.18 - 0.16 * np.log(base.power_w / 6000.0)
+    core_share = 1.0 / (1.0 + np.exp(lean - 0.42 * column["core_share"]))
     r1 = rest * (1.0 - core_share) / current**2 * np.exp(0.06 * column["resistance"])
     core = rest * core_share
     x_locked, r2_locked, x_run = _leakage(base, column, slip, p_gap, current, r1, size)

@@ -140,7 +140,8 @@ def solve(
     y1 = _admittance(r1, x1_used, r2_used / slip, x2_used, xm, gc)
     y2 = np.asarray(np.where(stalled > 0.5, y1, y2), dtype=np.complex128)
     open_v1 = np.maximum(feed.positive, 0.02) * live + 1e-6
-    current, voltage = _network(rows, y0, y1, y2, open_v1, v2, r1, x1_used, feed.regulation)
+    fault = _inside(rows, r1, x1_used)
+    current, voltage = _network(rows, y0, y1, y2, open_v1, v2, fault, feed.regulation)
     power = np.real((voltage * current.conj()).sum(axis=1)) / 3.0
     apparent = np.abs(voltage * current).sum(axis=1) / 3.0
     amps = _earth(rows, current, voltage)
@@ -151,7 +152,7 @@ def solve(
         apparent=apparent,
         slip=slip,
         stalled=np.maximum(stalled, 1.0 - pulls),
-        copper=(np.abs(current) ** 2).sum(axis=1) / 3.0 * r1,
+        copper=(np.abs(current) ** 2).sum(axis=1) / 3.0 * r1 + _heat(fault, v1),
     )
 
 
@@ -209,18 +210,8 @@ def _slip(
     return np.minimum(r2 / root, 1.0), pulls
 
 
-def _network(
-    rows: Mapping[str, Floats],
-    y0: Phasors,
-    y1: Phasors,
-    y2: Phasors,
-    v1: Floats,
-    v2: Phasors,
-    r1: Floats,
-    x1: Floats,
-    regulation: Floats,
-) -> tuple[Phasors, Phasors]:
-    """Line currents and phase voltages behind the source's impedance, before any resistance in a line."""
+def _inside(rows: Mapping[str, Floats], r1: Floats, x1: Floats) -> WindingFault:
+    """What is wrong inside the winding, as the network takes it."""
     turns, path = rows["turns"], rows["path_r"]
     ends = np.stack(
         [np.where(path > 0.0, rows["path_a"], 1.0), np.where(path > 0.0, rows["path_b"], 0.0)], axis=1
@@ -228,16 +219,36 @@ def _network(
     # Shorted turns are an ideal transformer's secondary behind their own resistance and leakage, both in
     # proportion to their number: coils in slots of their own share no leakage flux with the rest;
     # a path between phases lies behind the resistance and leakage of the turns that it spans.
-    loop = r1 * rows["loop"] + 1j * x1
+    loop = (1.0 - turns) * (r1 + 0.7j * x1) + r1 * (rows["loop"] - 1.0)
     span = path + 0.5 * (rows["path_a"] ** 2 + rows["path_b"] ** 2) * (r1 + 1j * x1)
     shunt = np.where(turns > 0.0, turns / loop, np.where(path > 0.0, 1.0 / span, 0.0))
-    fault = WindingFault(
+    return WindingFault(
         phase=rows["phase"].astype(np.int64),
         series=rows["phase_r"],
         shunt=np.asarray(shunt, dtype=np.complex128),
         reversed_=rows["reversed"],
         ends=ends,
     )
+
+
+def _heat(fault: WindingFault, v1: Floats) -> Floats:
+    """Loss in shorted turns or in a path between phases. [pu]"""
+    a, b = fault.ends[:, 0], fault.ends[:, 1]
+    span = a**2 + b**2 + a * b  # square of the voltage between two phases 120 degrees apart
+    return np.asarray(np.real(fault.shunt) * span * v1**2 / 3.0)
+
+
+def _network(
+    rows: Mapping[str, Floats],
+    y0: Phasors,
+    y1: Phasors,
+    y2: Phasors,
+    v1: Floats,
+    v2: Phasors,
+    fault: WindingFault,
+    regulation: Floats,
+) -> tuple[Phasors, Phasors]:
+    """Line currents and phase voltages behind the source's impedance, before any resistance in a line."""
     admittance = winding_admittance(y0, y1, y2, fault, rows["delta"])
     line = rows["line"].astype(np.int64)
     if np.any(rows["line_r"] > 0.0):
