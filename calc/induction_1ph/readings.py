@@ -46,7 +46,7 @@ _MODEL_ERROR: dict[str, tuple[float, float, float]] = {
     "main_current": (0.04, 0.04, 0.03),
     "auxiliary_current": (0.035, 0.035, 0.05),
     "capacitor_voltage": (0.03, 0.03, 0.04),
-    "speed": (0.0008, 0.002, 0.002),
+    "speed": (0.0018, 0.002, 0.002),
     "input_power": (0.06, 0.025, 0.03),
     "power_factor": (0.03, 0.015, 0.03),
     "main_resistance": (0.012, 0.012, 0.012),
