@@ -116,11 +116,22 @@ def read(visit: Visit, rest: str) -> bool:
     allowed = {one: f"{plain(one)}: {STATES[one]}" for one in STATES if rule is None or one in rule.states}
     known = [state for state in states if state in allowed]
     state = known[0] if known else ask_choice("In which state", allowed)
-    hazards = rule.states[state].hazards if rule is not None else ()
+    hazards = _hazards(visit, measure, state)
     if rule is not None:
         tell(rule.states[state].leads)
     values = " ".join(words[2:]) or ask(f"{measure_name(measure)}, {plain(state)}")
     return bool(values) and take(visit, measure, state, values, hazards)
+
+
+def _hazards(visit: Visit, measure: str, state: str) -> tuple[str, ...]:
+    """Return the hazards of a reading that was picked by hand, with those of this very machine."""
+    from rules.answer import NextItem
+    from rules.cautions import with_hazards
+
+    rule = visit.knowledge.readings.get(measure)
+    own = rule.states[state].hazards if rule is not None else ()
+    item = NextItem(measure=measure, state=state, hazards=own)
+    return with_hazards(item, visit.sheet, visit.knowledge).hazards
 
 
 def seen(visit: Visit, rest: str) -> bool:
