@@ -78,7 +78,7 @@ def test_the_scan_finds_what_is_wrapped_over_two_lines_and_what_stands_in_html()
 def test_answers_as_text_and_as_json_never_say_it(run, generated):
     paths = [str(path) for path in (*SHEETS, *generated)]
     assert len(paths) > 50
-    text = run("diagnose", *paths[::2])
+    text = run("diagnose", *map(str, (*SHEETS, *generated[::3])))
     assert text.status == 0
     assert said(text.out) == []
     lines = [json.loads(line) for line in run("diagnose", "--json", *paths).out.splitlines()]
