@@ -23,7 +23,7 @@ NU = 5.0
 START = 0.2  # severity latents where a fit begins
 ROUNDS = 3
 # Modes further behind the best than this are given up: at the start, after the first, after the second round.
-PRUNE_NATS = (300.0, 60.0, 24.0)
+PRUNE_NATS = (100.0, 40.0, 24.0)
 REACH = 4.5  # no latent goes further out than this
 _STEPS = (1.0, 0.4, 0.12)
 
