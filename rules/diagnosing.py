@@ -169,7 +169,9 @@ def _within(
         return ()
     ways = _ways(fault.id, posterior)
     left = max(1.0 - sum(r.share for r in fault.within), 0.0)
-    weights = [_way(r, ways) * math.exp(_fits(r, fault, posterior, knowledge)) for r in fault.within]
+    weights = [
+        _way(r, ways, posterior) * math.exp(_fits(r, fault, posterior, knowledge)) for r in fault.within
+    ]
     total = sum(weights) + left
     if not total > 0.0:
         return ()
@@ -193,11 +195,13 @@ def _ways(fault: str, posterior: Posterior) -> dict[str, float]:
     return {cause: p / total for cause, p in ways.items()} if total > 0.0 else {}
 
 
-def _way(refinement: Refinement, ways: dict[str, float]) -> float:
+def _way(refinement: Refinement, ways: dict[str, float], posterior: Posterior) -> float:
     """Weight of a cause: by the circuit where it tells, else its usual share."""
     if refinement.effect is None:
         return refinement.share
-    return ways.get(refinement.effect, 1e-6 if len(ways) > 1 else refinement.share)
+    # An effect that the model knows and this machine cannot show (no star-delta starter) is no cause here.
+    told = len(ways) > 1 or refinement.effect in posterior.twin.effects
+    return ways.get(refinement.effect, 1e-6 if told else refinement.share)
 
 
 def _fits(refinement: Refinement, fault: Fault, posterior: Posterior, knowledge: Knowledge) -> float:
