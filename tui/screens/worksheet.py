@@ -125,12 +125,13 @@ class Worksheet(WorksheetTyping):
         answer = self.weighed.diagnosis
         findings = blocks.finding_lines(answer, visit.knowledge, room)
         reads = blocks.reading_lines(blocks.readings_of(sheet, answer)[self.older :], room)
+        proposed = blocks.next_lines(self.target, self.first_words(), visit.knowledge, room)
         shared = blocks.share_out(
             [
                 (head, 2),
                 (stop, 2),
                 (blocks.gate_lines(answer, room), 2),
-                (blocks.next_lines(self.target, self.first_words(), visit.knowledge, room), 4),
+                (proposed, 4),
                 (blocks.fault_lines(answer, self.weighed.moved, visit.knowledge, room), 3),
                 (reads, 3),
                 (findings, 2),
@@ -138,6 +139,7 @@ class Worksheet(WorksheetTyping):
             ],
             height,
         )
+        shared[3] = blocks.whole_rows(proposed, shared[3])
         order = (0, 1, 2, 6, 4, 7, 5, 3)
         lines = [shared[index] for index in order]
         spare = height - sum(map(len, lines))

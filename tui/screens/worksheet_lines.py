@@ -38,6 +38,8 @@ FAULTS: Final = 6
 WIDE_FAULTS: Final = 10
 LEAST: Final = 0.015
 """Odds below this are not worth a line."""
+KEPT: Final = ("next", "first", "leads")
+"""Rows of the next reading that are rather shown in part than not at all."""
 MARGIN_STATE: Final = {"light_load": "light ld", "no_load": "no load"}
 
 
@@ -276,3 +278,11 @@ def share_out(blocks: Sequence[tuple[Sequence[Content], int]], height: int) -> l
                 given[index] += 1
                 left -= 1
     return [list(lines[:had]) for had, (lines, _) in zip(given, blocks, strict=True)]
+
+
+def whole_rows(lines: Sequence[Content], shown: Sequence[Content]) -> list[Content]:
+    """Return what is shown of a block without a sentence that is cut off at its end; never without leads."""
+    out = list(shown)
+    while len(out) < len(lines) and lines[len(out)].plain.startswith(" ") and len(out) > 1:
+        out.pop()
+    return list(shown) if len(out) < len(lines) and lines[len(out)].plain.startswith(KEPT) else out

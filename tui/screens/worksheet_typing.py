@@ -18,6 +18,8 @@ from tui.words import question
 if TYPE_CHECKING:
     from textual.timer import Timer
 
+    from tui.typed import Understood
+
 REST_S: Final = 0.12
 """How long the typing must rest before it is said in words what is understood."""
 YES_WORDS: Final = {"y": True, "yes": True, "n": False, "no": False}
@@ -93,7 +95,7 @@ class WorksheetTyping(WorksheetKeys):
             return await self.enter_answer(item, text)
         if text and self.is_a_word(text):
             return await self.pick_other(text)
-        if not await self.come_first(item):
+        if (text and self.understood(item, text) is None) or not await self.come_first(item):
             return False
         if text:
             return self.enter_reading(item, text)
@@ -129,12 +131,18 @@ class WorksheetTyping(WorksheetKeys):
         self.stored(f"{question(str(item.observation), self.visit.knowledge)} {'yes' if answer else 'no'}")
         return True
 
-    def enter_reading(self, item: NextItem, text: str) -> bool:
-        """Understand a reading, ask once about what is hardly possible, and store it."""
+    def understood(self, item: NextItem, text: str) -> Understood | None:
+        """Understand a reading; say what is wrong with it where it is none."""
         try:
-            understood = self.visit.understand(str(item.measure), str(item.state), text)
+            return self.visit.understand(str(item.measure), str(item.state), text)
         except PlatesideError as error:
             self.say(refusal(error))
+            return None
+
+    def enter_reading(self, item: NextItem, text: str) -> bool:
+        """Understand a reading, ask once about what is hardly possible, and store it."""
+        understood = self.understood(item, text)
+        if understood is None:
             return False
         if understood.asks and self.sure_of != text:
             self.sure_of = text
