@@ -28,6 +28,8 @@ if TYPE_CHECKING:
 SHIFT: Final = timedelta(hours=12)
 """How long an isolation record and what cleared the gate hold: a long shift; common practice."""
 
+WAS_CLEARED: Final = "was cleared"
+
 
 def age_words(age: timedelta) -> str:
     """Return an age in words."""
@@ -88,7 +90,7 @@ def _was(case: Case, shut: ShutLine, because: str, now: datetime) -> str:
     moments = [one.time_utc for one in case.readings if one.what.reading.key in shut.line.asks]
     moments += [one.time_utc for name, one in case.observed.items() if name in shut.line.asks]
     age = f"; {age_words(now - max(moments))} ago" if moments else ""
-    return f"was cleared: {because or 'on record'}{age}. A new shift looks again."
+    return f"{WAS_CLEARED}: {because or 'on record'}{age}. A new shift looks again."
 
 
 def _shut_by(whole: GateState, again: tuple[ShutLine, ...]) -> GateState:
@@ -111,12 +113,16 @@ def _shut_by(whole: GateState, again: tuple[ShutLine, ...]) -> GateState:
 
 
 def for_this_shift(now: Diagnosis, case: Case, knowledge: Knowledge) -> Diagnosis:
-    """Return an answer with the gate as it stands in this shift; what reopens it is proposed first."""
+    """Return an answer with the gate as it stands in this shift; what clears it is proposed first.
+
+    Where an entry forbids energising, clearing the other lines is not proposed: it would lead nowhere.
+    """
     if recent_sheet(case, datetime.now(UTC)) == case.sheet:
         return now
     odds = {fault.id: fault.probability for fault in now.faults}
     state = gate_now(case, knowledge, suspects=odds)
-    wants = [ask for one in state.shut if one.line.because.startswith("was cleared") for ask in one.wants]
+    lapsed = [one for one in state.shut if one.line.because.startswith(WAS_CLEARED)]
+    wants = [] if state.energise.because else [ask for one in lapsed for ask in one.wants]
     first = tuple(_item(ask, knowledge, now.next) for ask in dict.fromkeys(wants))
     asked = {item.key for item in first}
     left = (

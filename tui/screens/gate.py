@@ -24,6 +24,7 @@ if TYPE_CHECKING:
     from rules.answer import Energise, GateLine
     from rules.knowledge import Knowledge
 
+ORDER = ("forbids", "needed", "cleared")
 STATUS = {"needed": "needed", "cleared": "cleared", "forbids": "FORBIDS"}
 
 
@@ -42,7 +43,7 @@ class Gate(TextPage):
         self.wants_lifting = False
 
     def lines(self) -> list[Content]:
-        """Return the gate's state, the isolation records, and the lines."""
+        """Return the gate's state, the isolation records, and the lines, what shuts it first."""
         shut = self.energise.gate == "shut"
         head = (
             "SHUT: nothing energised is proposed until the lines below are cleared."
@@ -54,7 +55,7 @@ class Gate(TextPage):
             out += rows("", text, self.room)
         for text in self.records or ("No isolation is recorded in this case.",):
             out += rows("isolated" if text == (self.records or (text,))[0] else "", text, self.room)
-        for line in self.energise.lines:
+        for line in sorted(self.energise.lines, key=lambda line: ORDER.index(line.status)):
             out += [blank(), *self.gate_line(line)]
         return out
 
@@ -190,6 +191,6 @@ def isolation_text(case: Case, lapse: str = "") -> list[str]:
             if so
         ]
         points = f"; {record.points}" if record.points else ""
-        void = f" {lapse}" if lapse and not out else ""
+        void = f"; {lapse}" if lapse and not out else ""
         out.append(f"{moment} {record.by}: isolated, {', '.join(said)}{points}{void}")
     return out
