@@ -91,7 +91,7 @@ def diagnose(
         energise=state.energise,
         cautions=_cautions(sheet, knowledge, items, leading),
         slips=slips(posterior),
-        decision=decision_of(posterior),
+        decision=_decision(sheet, knowledge, posterior),
         notes=(*_notes(posterior), *_unknown(sheet, knowledge)),
     )
 
@@ -224,6 +224,14 @@ def _soft(fault: Fault, posterior: Posterior, knowledge: Knowledge) -> float:
         total += soft.observation_table(name, answer, [fault], knowledge, w)[fault.id]
     tables = soft.direct_tables(posterior.direct, [fault], knowledge, posterior.meters, w)
     return total + sum(table[fault.id] for table in tables.values())
+
+
+def _decision(sheet: CaseSheet, knowledge: Knowledge, posterior: Posterior) -> str:
+    """What the odds ask for; a complaint that means stop comes before them."""
+    complaint = knowledge.complaints.get(sheet.complaint)
+    if complaint is not None and complaint.stop and complaint.first:
+        return complaint.first
+    return decision_of(posterior)
 
 
 def _notes(posterior: Posterior) -> tuple[str, ...]:

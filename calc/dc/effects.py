@@ -22,6 +22,7 @@ HEALTHY: Final[Mapping[str, float]] = {
     "interpole_open": 0.0,
     "series_open": 0.0,
     "field_open": 0.0,
+    "field_unfed": 0.0,  # 1: no volts come to the field terminals
     "field_shorted": 0.0,  # fraction of the field's turns
     "short_poles": 0.25,  # share of the poles on which they are
     "magnets_lost": 0.0,  # fraction of the flux
@@ -79,7 +80,12 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
     ),
     "high_voltage": Effect("volts_above", 0.08, 0.25, _one()),
     "open_armature": Effect(None, 0.0, 0.0, _open_armature),
-    "open_field": Effect(None, 0.0, 0.0, _one(field_open=1.0)),
+    "open_field": Effect(
+        None,
+        0.0,
+        0.0,
+        _ways(("circuit", 0.8, {"field_open": 1.0}), ("no_supply", 0.2, {"field_unfed": 1.0})),
+    ),
     "weak_field": Effect(
         "field_shorted", 0.05, 0.5, _ways(("one_pole", 0.5, {}), ("two_poles", 0.5, {"short_poles": 0.5}))
     ),

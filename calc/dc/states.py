@@ -142,11 +142,12 @@ class Bench:
         else:
             rise = m.rise * a["heat"] * _FIELD_HEAT[state] * m.field_heat
         own = self.plate.kind == "dc_separately_excited" or state == "spun"
-        supply = m.field_volt if own else m.field_volt * self.supply
+        fed = 1.0 - a["field_unfed"]
+        supply = (m.field_volt if own else m.field_volt * self.supply) * fed
         return field_circuit(
             supply_v=supply,
             held_a=m.field_ampere,
-            held=m.field_held,
+            held=m.field_held * fed,
             series_ohm=m.field_series,
             winding_ohm=self.field_cold * at_temperature(m.ambient + rise),
         )
