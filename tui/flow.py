@@ -81,9 +81,10 @@ class Begun:
 
     @property
     def step(self) -> int:
-        """The first question that is not answered."""
-        answered = (self.tag is not None, bool(self.complaint), bool(self.kind))
-        return next((place for place, told in enumerate(answered) if not told), len(answered))
+        """The question to go on with: the plate once its kind is told, else complaint or machine."""
+        if self.tag is None:
+            return 0
+        return 3 if self.complaint and self.kind else 1
 
     def kept(self) -> dict[str, Any]:
         """Return what a draft must hold."""

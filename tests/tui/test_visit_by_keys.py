@@ -473,6 +473,18 @@ async def test_what_is_tried_by_hand_on_the_isolated_machine_waits_for_the_isola
         assert not newest(app).observed
 
 
+async def test_a_draft_of_a_known_machine_is_not_asked_for_its_kind(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    app.desk.drafts.save("new_case", {"tag": "P-104", "complaint": "runs_hot", "kind": "", "lines": {}})
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "a new case was begun")
+        await keys(pilot, "up", "up", "enter")
+        await until(pilot, "What is wrong")
+        await keys(pilot, "enter")
+        await until(pilot, "faults")
+        assert newest(app).complaint == "runs_hot"
+
+
 def flat(app: PlatesideApp) -> str:
     """The screen as one line of words."""
     return " ".join(screen_text(app).replace("│", " ").split())
