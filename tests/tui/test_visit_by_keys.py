@@ -485,6 +485,18 @@ async def test_a_draft_of_a_known_machine_is_not_asked_for_its_kind(tmp_path: Pa
         assert newest(app).complaint == "runs_hot"
 
 
+async def test_what_begins_as_it_is_typed_stands_first_in_a_list(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await keys(pilot, "n")
+        await until(pilot, "Which machine")
+        await keys(pilot, *"P-104", "enter")
+        await until(pilot, "What is wrong")
+        await keys(pilot, *"no", "enter")
+        await until(pilot, "faults")
+        assert newest(app).complaint == "noisy_or_vibrating"
+
+
 def flat(app: PlatesideApp) -> str:
     """The screen as one line of words."""
     return " ".join(screen_text(app).replace("│", " ").split())

@@ -45,6 +45,13 @@ class Choice:
             for word in words
         )
 
+    def rank(self, words: Sequence[str]) -> int:
+        """Return how well typed words fit: 0 the line begins so, 1 its words begin so, 2 they stand in it."""
+        parts = f"{self.text} {self.key}".lower().replace("_", " ").replace("-", " ").split()
+        if " ".join(parts).startswith(" ".join(words)):
+            return 0
+        return 1 if all(any(part.startswith(word) for part in parts) for word in words) else 2
+
 
 class Pick(Page[str]):
     """Dismisses with the key of the picked line, with None on back.
@@ -105,6 +112,7 @@ class Pick(Page[str]):
         self.narrowed_by = text
         words = text.lower().replace("-", " ").split()
         self.shown = [choice for choice in self.choices if choice.matches(words)]
+        self.shown.sort(key=lambda choice: choice.rank(words))
         made = self.fresh(text.strip())
         if made is not None and all(choice.key != made.key for choice in self.shown):
             self.shown.append(made)
