@@ -84,7 +84,7 @@ def diagnose(
     return Diagnosis(
         sheet=name,
         model=twin.kind,
-        expected=bands(sheet, twin, knowledge, posterior),
+        expected=bands(sheet, posterior.twin, knowledge, posterior),
         faults=fault_odds(posterior, knowledge),
         next=items,
         findings=crossed,

@@ -47,6 +47,10 @@ _ERROR: dict[str, ModelError] = {
     "ambient_temperature": ModelError(2.0),
 }
 
+# What these starters let through in the first seconds is set on them, not on the motor's plate.
+_LIMITS_START = frozenset({"autotransformer", "soft_starter", "inverter", "rotor_resistance"})
+_LIMITED_START = frozenset({"line_current@starting", "input_power@starting"})
+
 
 @dataclass
 class InductionTwin:
@@ -56,7 +60,7 @@ class InductionTwin:
     load_exponent: float
     nominal: float
     inverter: bool
-    star_delta: bool = False
+    starter: str = ""
     kind: str = "induction_3ph"
     defaults: Mapping[str, float] = field(default_factory=lambda: dict(effects.DEFAULTS))
     effects: tuple[str, ...] = effects.EFFECTS
@@ -68,7 +72,7 @@ class InductionTwin:
 
     def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
         """Enumerate the discrete ways of an effect on this machine."""
-        if effect == "stuck_in_star" and not self.star_delta:
+        if effect == "stuck_in_star" and self.starter != "star_delta":
             return ()
         found = effects.modes(effect, severity, self.base.connection)
         if effect == "excess_load" and self.base.service_factor > 1.0:
@@ -109,6 +113,8 @@ class InductionTwin:
 
     def model_error(self, ask: Ask) -> ModelError:
         """How far the model may be off for this reading."""
+        if ask.key in _LIMITED_START and self.starter in _LIMITS_START:
+            return ModelError(0.6, 0.03, 0.1)
         error = _ERROR.get(ask.key) or _ERROR.get(ask.measure) or ModelError(0.1)
         if ask.measure == "speed" and ask.state in _TURNING:
             share = 0.05 if ask.state == "loaded" else 0.02
@@ -170,6 +176,9 @@ class InductionTwin:
         """Solve one state with the torque and the winding temperature that belong to it."""
         if state == "no_load":
             rows = {**rows, "stall": rows["stall"] * (1.0 - rows["load_stalls"])}
+        if state == "starting" and self.starter == "star_delta":
+            # The first seconds are in star: a third of line current and torque.
+            rows = {**rows, "running_star": np.ones(len(z))}
         load = self._load(rows, z, feed)
         share = {"loaded": 1.0, "light_load": 0.4}.get(state, 0.0)
         useful = load * share * machine.p_out + machine.p_friction + share * load**2 * machine.p_stray
@@ -283,5 +292,5 @@ def fit(machine: Machine, *, readings: Sequence[Reading] = ()) -> InductionTwin:
         load_exponent=exponent if machine.load_type else 1.0,
         nominal=volts / base.voltage_v,
         inverter=machine.supply.source == "inverter",
-        star_delta=machine.starter == "star_delta",
+        starter=machine.starter or "",
     )

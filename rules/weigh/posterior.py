@@ -16,6 +16,7 @@ from rules.weigh import soft
 from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.instruments import instrument_errors
 from rules.weigh.laplace import Fit, Frame, fit_modes, frame, join_fits
+from rules.weigh.metered import MeteredTwin, repeatability
 from rules.weigh.other import other_evidence
 from rules.weigh.pairs import make_pairs
 from rules.weigh.settings import PairSettings, Weighing, weighing
@@ -148,7 +149,9 @@ def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
     faults = faults_of(knowledge, twin.kind)
     start = {f.id: f.odds[twin.kind] for f in faults}
     hypotheses, modes = hypotheses_of(faults, twin, start)
-    meters = instrument_errors(knowledge)
+    errors = instrument_errors(knowledge)
+    twin = twin if isinstance(twin, MeteredTwin) else MeteredTwin(twin, errors)
+    meters = repeatability(errors)
     seen, direct, rest = split_readings(sheet, twin, knowledge, meters)
     data = frame(seen)
     case = Case(sheet, knowledge, twin, data, tuple(direct), meters)

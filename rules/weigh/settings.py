@@ -67,6 +67,7 @@ class Weighing(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=
     pairs: PairSettings
     decisions: dict[str, str]
     learned_weight: float
+    shared_gain: float
 
 
 @cache
