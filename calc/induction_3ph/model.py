@@ -64,6 +64,7 @@ class InductionTwin:
     kind: str = "induction_3ph"
     defaults: Mapping[str, float] = field(default_factory=lambda: dict(effects.DEFAULTS))
     effects: tuple[str, ...] = effects.EFFECTS
+    _last: tuple[Floats, Circuit] | None = field(default=None, repr=False, compare=False)
 
     @property
     def dim(self) -> int:
@@ -126,7 +127,7 @@ class InductionTwin:
         if self.base.power_factor is None:
             return np.zeros((len(z), 0))
         base = self.base
-        machine = circuit(base, z)
+        machine = self._circuit(z)
         current = np.exp(base.current_spread * z[:, INDEX["current"]])
         pf = (machine.p_out + machine.losses) / current
         misfit = (pf - float(base.power_factor or 0.0)) / base.power_factor_spread
@@ -161,13 +162,20 @@ class InductionTwin:
                 solved[ask.state] = self._solve(machine, rows, feed, z, ask.state)
         return [self._answer(ask, z, rows, machine, feed, solved.get(ask.state)) for ask in asks]
 
+    def _circuit(self, z: Floats) -> Circuit:
+        """The circuits of these rows; asked for twice running, they are worked out once."""
+        last = self._last
+        if last is None or last[0] is not z:
+            last = self._last = (z, circuit(self.base, z))
+        return last[1]
+
     def _prepare(
         self, z: Floats, attributes: Mapping[str, Floats]
     ) -> tuple[dict[str, Floats], Circuit, Supply]:
         rows = dict(attributes)
         ohm = rows["earth_ohm"]
         rows["earth_pu"] = np.where(ohm > 0.0, ohm / self.base.impedance_ohm, 0.0)
-        machine = circuit(self.base, z)
+        machine = self._circuit(z)
         return rows, machine, supply(self.base, z, rows, self.nominal, self.inverter)
 
     def _solve(

@@ -26,6 +26,7 @@ class MeteredTwin:
 
     def __init__(self, twin: Twin, meters: Mapping[str, InstrumentError]) -> None:
         self._twin = twin
+        self._last: tuple[Floats, Floats] | None = None
         share = math.sqrt(weighing().shared_gain)
         self._gain = {
             name: share * meter.share
@@ -61,9 +62,16 @@ class MeteredTwin:
         """Whether the model predicts this reading."""
         return self._twin.covers(ask)
 
+    def _machine(self, z: Floats) -> Floats:
+        """Latents of the machine alone: one array for the same rows, so that the twin knows them again."""
+        last = self._last
+        if last is None or last[0] is not z:
+            last = self._last = (z, z[:, len(_METERS) :])
+        return last[1]
+
     def predict(self, z: Floats, attributes: Mapping[str, Floats], asks: Sequence[Ask]) -> list[Floats]:
         """Predict what the meters show: one array of shape (rows, arity) per ask."""
-        answers = self._twin.predict(z[:, len(_METERS) :], attributes, asks)
+        answers = self._twin.predict(self._machine(z), attributes, asks)
         return [self._shown(ask, answer, z) for ask, answer in zip(asks, answers, strict=True)]
 
     def _shown(self, ask: Ask, answer: Floats, z: Floats) -> Floats:
@@ -75,11 +83,11 @@ class MeteredTwin:
 
     def plate_misfit(self, z: Floats) -> Floats:
         """Plate fields that the latents do not meet by construction, in sigmas: (rows, n)."""
-        return self._twin.plate_misfit(z[:, len(_METERS) :])
+        return self._twin.plate_misfit(self._machine(z))
 
     def possible(self, z: Floats, attributes: Mapping[str, Floats]) -> Mapping[str, Floats]:
         """For each state the chance that such a machine can be in it."""
-        return self._twin.possible(z[:, len(_METERS) :], attributes)
+        return self._twin.possible(self._machine(z), attributes)
 
     def transform(self, measure: str) -> Transform:
         """How a measure enters the comparison on this machine."""

@@ -32,7 +32,8 @@ def other_evidence(twin: Twin, data: Frame) -> float:
     """Log density of all readings under "other": one multivariate t around the healthy prediction."""
     mode = twin.modes("none")[:1]
     # A plate that contradicts itself speaks against every machine alike, so against this one too.
-    plate = float(fit_modes(twin, mode, frame([])).evidence[0])
+    silent = twin.plate_misfit(np.zeros((1, twin.dim))).shape[1] == 0
+    plate = 0.0 if silent else float(fit_modes(twin, mode, frame([])).evidence[0])
     if not data.groups:
         return plate
     fitter = Fitter(twin, data)
