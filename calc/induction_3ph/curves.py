@@ -7,8 +7,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from calc.induction_3ph.equivalent import Circuit, circuit
 from calc.induction_3ph.model import InductionTwin
-from calc.induction_3ph.plate import LATENTS, Circuit, circuit
+from calc.induction_3ph.plate import LATENTS
 from calc.twin import Floats
 
 ROWS = 200

@@ -8,9 +8,11 @@ from dataclasses import dataclass, field, replace
 import numpy as np
 
 from calc.induction_3ph import effects, thermal
-from calc.induction_3ph.network import path_resistance, terminal_resistance
-from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, Circuit, circuit, read_base
+from calc.induction_3ph.equivalent import Circuit, circuit
+from calc.induction_3ph.network import terminal_resistance
+from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, read_base
 from calc.induction_3ph.states import StateResult, Supply, rated_torque, solve, supply
+from calc.induction_3ph.windings import line_extra, with_path
 from calc.sheet import Machine, Reading
 from calc.twin import Ask, Floats, Mode, ModelError, Severity, Transform, standard_normal_cdf
 
@@ -249,32 +251,8 @@ class InductionTwin:
             own = np.where(delta > 0.5, 3.0, 1.0)[:, None] * phases
             return np.minimum(own * self.base.impedance_ohm, OPEN_OHM)
         between = terminal_resistance(phases, delta)
-        between = _with_path(rows, phases, between) + _line_extra(rows)
+        between = with_path(rows, phases, between) + line_extra(rows)
         return np.minimum(between * self.base.impedance_ohm, OPEN_OHM)
-
-
-def _line_extra(rows: Mapping[str, Floats]) -> Floats:
-    """Resistance of a joint at the motor, seen in the two readings that share its line."""
-    seen = np.where(rows["line_place"] > 1.5, rows["line_r"], 0.0)
-    line = rows["line"].astype(np.int64)
-    extra = np.zeros((len(line), 3))
-    index = np.arange(len(line))
-    extra[index, line] += seen
-    extra[index, (line + 2) % 3] += seen
-    return extra
-
-
-def _with_path(rows: Mapping[str, Floats], phases: Floats, between: Floats) -> Floats:
-    """Terminal resistances where a path between two phases is in parallel with parts of them."""
-    where = np.flatnonzero(rows["path_r"] > 0.0)
-    if not len(where):
-        return between
-    ends = np.stack([rows["path_a"][where], rows["path_b"][where]], axis=1)
-    out = between.copy()
-    out[where] = path_resistance(
-        phases[where], rows["phase"][where].astype(np.int64), ends, rows["path_r"][where]
-    )
-    return out
 
 
 def _scaled(mode: Mode, attribute: str, factor: float) -> Mode:

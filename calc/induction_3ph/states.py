@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from calc.induction_3ph.equivalent import Circuit
 from calc.induction_3ph.network import (
     DELTA,
     FORTESCUE,
@@ -19,7 +20,7 @@ from calc.induction_3ph.network import (
     winding_admittance,
     with_line_resistance,
 )
-from calc.induction_3ph.plate import INDEX, Base, Circuit
+from calc.induction_3ph.plate import INDEX, Base
 from calc.twin import Floats
 
 ROOT3 = np.sqrt(3.0)

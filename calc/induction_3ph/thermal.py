@@ -7,7 +7,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from calc.induction_3ph.plate import INDEX, Base, Circuit
+from calc.induction_3ph.equivalent import Circuit
+from calc.induction_3ph.plate import INDEX, Base
 from calc.twin import Floats
 
 if TYPE_CHECKING:

@@ -18,8 +18,9 @@ from calc.sheet import CaseSheet
 from calc.twin import Ask, Floats, Twin
 from rules.answer import Band
 from rules.knowledge import Knowledge
+from rules.weigh.frame import Frame, frame
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, Frame, fit_modes, frame, without
+from rules.weigh.laplace import Fit, fit_modes, without
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, in_usual_unit, outlooks, untransform
 from rules.weigh.soft import shape, spread_of

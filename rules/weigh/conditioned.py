@@ -14,8 +14,9 @@ from calc.observe import make_seen
 from calc.sheet import Reading, Value
 from calc.twin import Ask, Floats, Mode, ModelError, Transform, Twin
 from rules.knowledge import Knowledge
+from rules.weigh.frame import frame
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import fit_modes, frame
+from rules.weigh.laplace import fit_modes
 
 OWN_C = 25.0  # earlier windings are given at this temperature
 _DRIFT = 0.02  # what a sound winding and two meters may differ between two visits, one sigma (judgement)

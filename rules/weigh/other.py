@@ -7,7 +7,8 @@ import math
 import numpy as np
 
 from calc.twin import Floats, Twin
-from rules.weigh.laplace import Fitter, Frame, fit_modes, frame
+from rules.weigh.frame import Frame, frame
+from rules.weigh.laplace import Fitter, fit_modes
 
 _NU = 3.0
 # Room beyond the healthy spread, in transformed units: level and contrasts. Judgement.

@@ -8,18 +8,20 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from calc.observe import InstrumentError, Seen, context, make_seen
+from calc.observe import InstrumentError
 from calc.sheet import CaseSheet, Reading
 from calc.twin import Floats, Mode, Twin, attribute_rows
 from rules.knowledge import Fault, Knowledge
 from rules.weigh import soft
+from rules.weigh.frame import Frame, frame
 from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, Frame, fit_modes, frame, join_fits
+from rules.weigh.laplace import Fit, fit_modes, join_fits
 from rules.weigh.metered import MeteredTwin, repeatability
 from rules.weigh.other import other_evidence
 from rules.weigh.pairs import make_pairs
 from rules.weigh.settings import PairSettings, Weighing, weighing
+from rules.weigh.sorting import newest, split_readings
 
 OTHER = "other"
 
@@ -92,46 +94,6 @@ def hypotheses_of(
     return tuple(found), tuple(modes)
 
 
-def split_readings(
-    sheet: CaseSheet, twin: Twin, knowledge: Knowledge, meters: Mapping[str, InstrumentError]
-) -> tuple[list[Seen], list[Reading], list[Reading]]:
-    """Sort readings into those the model predicts, those with a spread per fault, and the rest.
-
-    Of several readings of one key the last counts.
-    """
-    newest = _newest(sheet)
-    healthy = knowledge.faults.get("healthy")
-    seen: list[Seen] = []
-    direct: list[Reading] = []
-    rest: list[Reading] = []
-    for reading in newest:
-        made = None
-        if twin.covers(context(reading)):
-            made = make_seen(reading, twin, _error(meters, reading))
-        if made is not None:
-            seen.append(made)
-        elif healthy is not None and soft.spread_of(healthy, None, reading.measure, reading.state):
-            direct.append(reading)
-        else:
-            rest.append(reading)
-    return seen, direct, rest
-
-
-def _newest(sheet: CaseSheet) -> list[Reading]:
-    """The last reading of each key and place; of the two ends of a machine the one that tells more."""
-    last = {(r.key, r.at, r.position, r.links): r for r in sheet.readings}
-    ends: dict[tuple[str, str | None, str | None], Reading] = {}
-    for reading in last.values():
-        place = (reading.key, reading.at, reading.links)
-        if place not in ends or soft.worst(reading) > soft.worst(ends[place]):
-            ends[place] = reading
-    return list(ends.values())
-
-
-def _error(errors: Mapping[str, InstrumentError], reading: Reading) -> InstrumentError:
-    return errors.get(reading.measure, InstrumentError(share=0.03))
-
-
 def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
     """Weigh one sheet.
 
@@ -174,7 +136,7 @@ def weigh(sheet: CaseSheet, knowledge: Knowledge, twin: Twin) -> Posterior:
         odds=_odds(whole.hypotheses, whole.joint, log_other, whole.faults),
         meters=meters,
         direct=tuple(direct),
-        texts={r.key: soft.reading_text(r) for r in _newest(sheet)},
+        texts={r.key: soft.reading_text(r) for r in newest(sheet)},
         unweighed=tuple(rest),
     )
 

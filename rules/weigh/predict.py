@@ -12,7 +12,8 @@ from calc.observe import InstrumentError, Seen
 from calc.quantities import MEASURES, arity
 from calc.twin import Ask, Floats, Mode, ModelError, Transform, Twin
 from calc.units import find_unit
-from rules.weigh.laplace import Fitter, frame
+from rules.weigh.frame import frame
+from rules.weigh.laplace import Fitter
 
 
 @dataclass(frozen=True)

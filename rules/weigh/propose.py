@@ -11,41 +11,26 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
-from functools import cache
-from statistics import NormalDist
 
 import numpy as np
-from numpy.typing import NDArray
 
 from calc.observe import InstrumentError
-from calc.quantities import MEASURES, RUNNING_STATES
+from calc.quantities import RUNNING_STATES
 from calc.sheet import CaseSheet
-from calc.twin import Ask, Floats, attribute_rows
+from calc.twin import Ask
 from rules.answer import NextItem
 from rules.gate import GateState, situation_of
-from rules.knowledge import Fault, Knowledge, Observation, ReadingRule
+from rules.knowledge import Knowledge, Observation, ReadingRule
 from rules.weigh import wording
-from rules.weigh.hypothesis import Hypothesis
+from rules.weigh.gate_asks import gate_items, within_kit
+from rules.weigh.information import Leading, binary_information, information, leading
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
 from rules.weigh.sight import smallest_seen
-from rules.weigh.soft import answer_chance, shape, spread_of
+from rules.weigh.soft import shape, spread_of
 
-_KIT_ALWAYS = frozenset({"eyes"})
 SEEN_FOR = 3  # proposals that say what the meter can show
-
-
-@dataclass(frozen=True)
-class Leading:
-    """The hypotheses that carry nearly all of the probability, as a mixture."""
-
-    hypotheses: tuple[Hypothesis, ...]
-    share: Floats
-    faults: tuple[str, ...]
-    label: NDArray[np.int64]
-    part: NDArray[np.int64]
-    possible: Mapping[str, Floats]
 
 
 @dataclass(frozen=True)
@@ -103,40 +88,6 @@ def _with_gate(
     return needed + items if behind.score > 2.0 * best else items + needed
 
 
-def gate_items(sheet: CaseSheet, knowledge: Knowledge, gate: GateState, state: str) -> list[NextItem]:
-    """What would clear the lines that keep a state shut: for each line the first that can be had."""
-    taken = {r.key for r in sheet.readings} | set(sheet.observations)
-    found: dict[str, NextItem] = {}
-    for line in gate.lines_for(state):
-        for ask in line.asks:
-            item = _gate_item(ask, line.needs, sheet, knowledge)
-            if ask not in taken and item is not None and not gate.forbids(item.state or "isolated"):
-                found.setdefault(ask, item)
-                break
-    return list(found.values())
-
-
-def _gate_item(ask: str, needs: str, sheet: CaseSheet, knowledge: Knowledge) -> NextItem | None:
-    why = f"needed before energising: {needs}"
-    known = knowledge.observations.get(ask)
-    if known is not None:
-        return NextItem(
-            observation=ask,
-            minutes=known.minutes,
-            leads=known.how or known.name,
-            hazards=known.hazards,
-            why=why,
-        )
-    measure, _, state = ask.partition("@")
-    rule = knowledge.readings.get(measure)
-    if rule is None or state not in rule.states or not _suits(rule, sheet, sheet.machine.kind):
-        return None
-    how = rule.states[state]
-    return NextItem(
-        measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards, why=why
-    )
-
-
 def _item(
     candidate: Candidate, posterior: Posterior, knowledge: Knowledge, lead: Leading, why: str, *, sees: bool
 ) -> NextItem:
@@ -168,29 +119,6 @@ def _item(
     )
 
 
-def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
-    """Pick the hypotheses that matter and what states they allow."""
-    share = posterior.share()
-    order = np.argsort(-share, kind="stable")[: s.hypotheses]
-    chosen = tuple(posterior.hypotheses[i] for i in order)
-    weights = share[order]
-    faults = tuple(dict.fromkeys(h.fault for h in chosen))
-    parts = {f.id: f.part for f in posterior.faults}
-    names = tuple(dict.fromkeys(parts[h.fault] for h in chosen))
-    places = [h.place for h in chosen]
-    modes = [posterior.modes[p] for p in places]
-    z = posterior.fit.z[places]
-    rows = attribute_rows(modes, z[:, None, :], posterior.twin.defaults)
-    return Leading(
-        hypotheses=chosen,
-        share=weights / weights.sum(),
-        faults=faults,
-        label=np.array([faults.index(h.fault) for h in chosen]),
-        part=np.array([names.index(parts[h.fault]) for h in chosen]),
-        possible=posterior.twin.possible(z, rows),
-    )
-
-
 def _readings(
     posterior: Posterior,
     knowledge: Knowledge,
@@ -208,7 +136,7 @@ def _readings(
         chances[state] = float(lead.share @ flags) * running
     candidates = []
     for rule in knowledge.readings.values():
-        if not _suits(rule, sheet, twin.kind):
+        if not within_kit(rule, sheet, twin.kind):
             continue
         for state, how in rule.states.items():
             key = f"{rule.id}@{state}"
@@ -275,13 +203,6 @@ def arranging(sheet: CaseSheet, state: str, s: ProposalSettings) -> float:
     return s.arrange_minutes.get(state, 0.0)
 
 
-def _suits(rule: ReadingRule, sheet: CaseSheet, kind: str) -> bool:
-    measure = MEASURES.get(rule.id)
-    if measure is None or not measure.suits(kind) or not ("any" in rule.kinds or kind in rule.kinds):
-        return False
-    return sheet.kit is None or bool((set(sheet.kit) | _KIT_ALWAYS) & set(rule.instruments))
-
-
 def _context(sheet: CaseSheet, ask: Ask) -> Ask:
     """Put to a reading the condition in which it would be taken now."""
     if ask.state == "isolated" and ask.measure.endswith("resistance"):
@@ -334,50 +255,6 @@ def _family_factor(posterior: Posterior, measure: str) -> float:
     return 1.0
 
 
-@cache
-def _draws(count: int, dims: int) -> Floats:
-    """Fixed quasi-random normal draws: a Kronecker sequence of square roots of primes."""
-    primes = (2, 3, 5, 7, 11, 13)[:dims]
-    n = np.arange(1, count + 1)[:, None]
-    uniform = (0.5 + n * np.sqrt(np.array(primes))) % 1.0
-    inverse = np.vectorize(NormalDist().inv_cdf)
-    return np.asarray(inverse(np.clip(uniform, 1e-4, 1.0 - 1e-4)))
-
-
-def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings) -> float:
-    """Mutual information of a reading with the fault, and with half the weight with the part. [nats]
-
-    Parameters
-    ----------
-    mean : ndarray
-        Predicted reading per hypothesis, (h, m).
-    spread : ndarray
-        Its covariance per hypothesis, (h, m, m).
-
-    """
-    dims = mean.shape[1]
-    root = np.linalg.cholesky(spread + 1e-12 * np.eye(dims))
-    draws = _draws(s.draws, dims)
-    samples = mean[:, None, :] + np.einsum("hij,dj->hdi", root, draws)
-    gap = samples[:, :, None, :] - mean[None, None, :, :]
-    inverse = np.linalg.inv(root)
-    white = np.einsum("kij,hdkj->hdki", inverse, gap)
-    log_det = np.log(np.diagonal(root, axis1=1, axis2=2)).sum(axis=1)
-    # Student-like tails keep far hypotheses from looking infinitely telling.
-    log_density = -0.5 * (4.0 + dims) * np.log1p((white**2).sum(axis=-1) / 4.0) - log_det
-    top = log_density.max(axis=2, keepdims=True)
-    weighted = lead.share * np.exp(log_density - top)
-    total = weighted.sum(axis=2)
-    gain = 0.0
-    for labels, factor in ((lead.label, 1.0), (lead.part, s.part_weight)):
-        indicator = (labels[:, None] == labels[None, :]).astype(float)
-        same = np.einsum("hdk,hk->hd", weighted, indicator)
-        prior = indicator @ lead.share
-        per_hypothesis = np.log(np.maximum(same, 1e-300) / total / prior[:, None]).mean(axis=1)
-        gain += factor * float(lead.share @ per_hypothesis)
-    return max(gain, 0.0)
-
-
 def _observations(
     posterior: Posterior, knowledge: Knowledge, gate: GateState, lead: Leading, s: ProposalSettings
 ) -> list[Candidate]:
@@ -392,7 +269,7 @@ def _observations(
         chance = _can_see(known, sheet, gate, lead, s)
         if chance < s.least_chance:
             continue
-        gain = _binary_gain(known, [by_id[h.fault] for h in lead.hypotheses], lead, s)
+        gain = binary_information(known, [by_id[h.fault] for h in lead.hypotheses], lead, s)
         score = chance * gain / ((known.minutes + s.overhead_minutes) * _hazard(known.hazards, s))
         found.append(Candidate(score=score, gain=gain, minutes=known.minutes, key=known.id, known=known))
     return found
@@ -408,17 +285,3 @@ def _can_see(
     odds = {state: float(lead.share @ lead.possible.get(state, none)) for state in known.states}
     chances = [state_chance(sheet, state, odds, s) for state in known.states if not gate.forbids(state)]
     return max(chances, default=0.0)
-
-
-def _binary_gain(known: Observation, faults: Sequence[Fault], lead: Leading, s: ProposalSettings) -> float:
-    power = weighing().soft_power
-    yes = np.array([answer_chance(known, fault, True) for fault in faults])
-    gain = 0.0
-    for chance in (yes, 1.0 - yes):
-        total = float(lead.share @ chance)
-        for labels, factor in ((lead.label, 1.0), (lead.part, s.part_weight)):
-            indicator = (labels[:, None] == labels[None, :]).astype(float)
-            prior = indicator @ lead.share
-            same = indicator @ (lead.share * chance)
-            gain += factor * float(lead.share @ (chance * np.log(np.maximum(same / prior, 1e-12) / total)))
-    return power * max(gain, 0.0)

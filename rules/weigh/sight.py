@@ -8,8 +8,9 @@ import numpy as np
 
 from calc.severities import say_severity
 from calc.twin import Mode
+from rules.weigh.frame import frame
 from rules.weigh.hypothesis import Hypothesis
-from rules.weigh.laplace import Fitter, frame
+from rules.weigh.laplace import Fitter
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook
 from rules.weigh.settings import weighing

@@ -17,8 +17,8 @@ from rules.weigh.predict import Outlook, in_usual_unit
 from rules.weigh.soft import shape, spread_of
 
 if TYPE_CHECKING:
+    from rules.weigh.information import Leading
     from rules.weigh.posterior import Posterior
-    from rules.weigh.propose import Leading
 
 _OPEN_OHM = 1e6
 

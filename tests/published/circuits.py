@@ -12,7 +12,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from calc.induction_3ph.effects import DEFAULTS
-from calc.induction_3ph.plate import Circuit
+from calc.induction_3ph.equivalent import Circuit
 from calc.induction_3ph.states import StateResult, Supply, solve
 
 HP_W = 745.69987

@@ -14,8 +14,9 @@ import numpy as np
 import pytest
 
 from calc.induction_3ph import fit
+from calc.induction_3ph.equivalent import circuit
 from calc.induction_3ph.network import terminal_resistance
-from calc.induction_3ph.plate import circuit, read_base
+from calc.induction_3ph.plate import read_base
 from tests.calc.induction_3ph.plates import machine, predict
 from tests.published.circuits import CHAPMAN_25, FITZGERALD_7, Published, run
 

@@ -6,7 +6,8 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from calc.induction_3ph import fit
-from calc.induction_3ph.plate import HORSEPOWER_W, INDEX, circuit, read_base
+from calc.induction_3ph.equivalent import circuit
+from calc.induction_3ph.plate import HORSEPOWER_W, INDEX, read_base
 from calc.sheet import Machine, Nameplate, Supply, Value
 from tests.calc.induction_3ph.plates import ALL, FAN, LIFT, MILL, PUMP, machine
 

@@ -8,7 +8,8 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from calc.induction_3ph import fit
-from calc.induction_3ph.plate import INDEX, circuit
+from calc.induction_3ph.equivalent import circuit
+from calc.induction_3ph.plate import INDEX
 from calc.induction_3ph.states import Supply, solve
 from tests.calc.induction_3ph.plates import ALL, PUMP, machine, predict
 from tests.published.circuits import MACHINES, run
