@@ -89,7 +89,7 @@ class Reasons(TextPage):
             *reason_lines(fault, self.room),
             *self.turn_lines(),
             *self.own_lines(),
-            *deed_lines(fault, self.knowledge, self.room),
+            *deed_lines(fault, self.knowledge, self.visit.kind, self.room),
         ]
 
     def fault_lines(self, fault: FaultOdds) -> list[Content]:
@@ -186,13 +186,13 @@ def factor(weight: float) -> str:
     return f"{'x' if weight > 0 else '/'} {shown}"
 
 
-def deed_lines(fault: FaultOdds, knowledge: Knowledge, room: int) -> list[Content]:
+def deed_lines(fault: FaultOdds, knowledge: Knowledge, kind: str, room: int) -> list[Content]:
     """Return how to confirm each part of a fault, what to do, what to re-test, and the sources."""
     lines: list[Content] = []
     for part in fault.id.split("+"):
         known = knowledge.faults.get(part)
         if known is not None:
-            lines += [blank(), *_deeds(known, knowledge, room)]
+            lines += [blank(), *_deeds(known.for_kind(kind), knowledge, room)]
     return lines
 
 

@@ -283,7 +283,8 @@ class WorksheetKeys(Page[None]):
         found = await self.app.push_screen_wait(Pick("found", "What was it really?", choices))
         if found is None:
             return
-        known = knowledge.faults.get(found)
+        whole = knowledge.faults.get(found)
+        known = whole.for_kind(self.visit.kind) if whole else None
         retest = [key_words(key, knowledge) for key in known.retest] if known else []
         answer = await self.app.push_screen_wait(ClosingPage(self.visit, found, names, retest))
         if answer is None:
