@@ -79,7 +79,7 @@ async def test_a_value_that_can_hardly_be_is_asked_about_once(tmp_path: Path):
     app = known_machine(new_app(tmp_path))
     async with app.run_test(size=SMALL) as pilot:
         await to_worksheet(pilot)
-        await keys(pilot, "f3", *"voltage load", "enter")
+        await keys(pilot, "f3", *"age loaded", "enter")
         await keys(pilot, *"4010 398 402", "enter")
         await until(pilot, "Before readings")
         await keys(pilot, "enter")
@@ -299,7 +299,7 @@ async def take_what_is_proposed(pilot: Pilot[int], press: Callable[..., Awaitabl
     assert isinstance(page, Worksheet) and page.diagnosis is not None, screen_text(pilot.app)
     item = page.target
     if item is None:  # nothing more is worth its minutes: the technician picks one all the same
-        await press("f3", *"voltage load", "enter", *"400 400 400", "enter")
+        await press("f3", *"age loaded", "enter", *"400 400 400", "enter")
         return
     if item.observation:
         await press("f4")
