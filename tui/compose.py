@@ -28,7 +28,7 @@ if TYPE_CHECKING:
     from calc.sheet import CaseSheet, Machine
     from casebook.book import Casebook
     from casebook.fold import Case
-    from rules.answer import Diagnosis, FaultOdds, Turn
+    from rules.answer import Diagnosis, Turn
     from rules.knowledge import Knowledge
     from rules.learned import Shift
 
@@ -143,16 +143,6 @@ class Visit:
         facts = msgspec.structs.replace(bodies.facts_of_machine(machine), kind=machine.kind, tag=machine.tag)
         self._put(bodies.NameplateRead(nameplate=machine.nameplate), facts)
 
-    def set_complaint(self, complaint: str) -> str:
-        """Store another complaint, as a correction of the first line."""
-        first = self.case.lines[0]
-        opened = bodies.Opened(kind=self.case.machine.kind, complaint=complaint, tag=self.case.machine.tag)
-        return self.correct(first.entry.id, opened)
-
-    def set_kit(self, kit: Sequence[str]) -> str:
-        """Store what this technician carries."""
-        return self._put(bodies.KitCarried(kit=tuple(kit)))
-
     def skip(self, key: str, why: str = "") -> str:
         """Remember that ``measure@state``, or an observation, cannot be taken here."""
         measure, at, state = key.partition("@")
@@ -232,16 +222,6 @@ class Visit:
             now = what_would_turn(sheet, knowledge=self.learned_knowledge(), own=self.own_windings())
             self._turns = (sheet, self.use_learned, now)
         return self._turns[2]
-
-    def conclude(self, fault: FaultOdds, *, decision: str = "", note: str = "") -> str:
-        """Store what the technician concludes before it is confirmed."""
-        return self._put(
-            bodies.Concluded(fault=fault.id, probability=fault.probability, decision=decision, note=note)
-        )
-
-    def keep_shown(self) -> str:
-        """Store what the screen says now, as evidence for a time when rules and limits have changed."""
-        return self._put(bodies.Shown.of(self.weigh().diagnosis, program=VERSION))
 
     def close(self, closing: bodies.Closed) -> str:
         """Close the case with what was found; what the screen said at that moment is kept with it."""

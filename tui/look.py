@@ -30,7 +30,6 @@ WATCH: Final = "bold ansi_magenta"
 PLAIN: Final = ""
 FAINT: Final = "dim"
 STRONG: Final = "bold"
-CHOSEN: Final = "reverse"
 
 VERDICT_STYLE: Final = {"stop": STOP, "watch": WATCH, "remark": STRONG}
 VERDICT_WORD: Final = {"stop": "STOP", "watch": "WATCH", "remark": "REMARK"}

@@ -7,7 +7,7 @@ healthy, only what the supply says is used: a faulty machine's readings say noth
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import replace
 
 import numpy as np
@@ -167,8 +167,3 @@ def _spread_bands(
                 Band(measure=rule.id, state=state, low=low, mid=mid, high=high, unit=measure.usual_unit)
             )
     return found
-
-
-def bands_by_key(found: Sequence[Band]) -> dict[str, Band]:
-    """Bands by ``measure@state``."""
-    return {f"{band.measure}@{band.state}": band for band in found}

@@ -12,74 +12,36 @@ import numpy as np
 
 from calc.observe import make_seen
 from calc.sheet import Reading, Value
-from calc.twin import Ask, Floats, Mode, ModelError, Transform, Twin
+from calc.twin import Ask, Floats, ModelError, Twin
 from rules.knowledge import Knowledge
 from rules.weigh.frame import frame
 from rules.weigh.instruments import instrument_errors
 from rules.weigh.laplace import fit_modes
+from rules.weigh.view import TwinView
 
 OWN_C = 25.0  # earlier windings are given at this temperature
 _DRIFT = 0.02  # what a sound winding and two meters may differ between two visits, one sigma (judgement)
 
 
-class ConditionedTwin:
+class ConditionedTwin(TwinView):
     """A twin whose latents are narrowed by what this machine read before."""
 
     def __init__(self, twin: Twin, mean: Floats, root: Floats) -> None:
-        self._twin = twin
+        super().__init__(twin)
         self._mean = mean
         self._root = root
 
-    @property
-    def kind(self) -> str:
-        """Machine kind."""
-        return self._twin.kind
-
-    @property
-    def dim(self) -> int:
-        """Number of latents."""
-        return self._twin.dim
-
-    @property
-    def defaults(self) -> Mapping[str, float]:
-        """Attributes of a healthy machine."""
-        return self._twin.defaults
-
-    @property
-    def effects(self) -> tuple[str, ...]:
-        """Effects that :meth:`modes` knows."""
-        return self._twin.effects
-
-    def _inner(self, z: Floats) -> Floats:
+    def inner(self, z: Floats) -> Floats:
+        """Latents of the plate's twin, from the narrowed ones."""
         return np.asarray(np.clip(self._mean + z @ self._root.T, -5.0, 5.0))
-
-    def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
-        """Enumerate the discrete ways of an effect on this machine."""
-        return self._twin.modes(effect, severity)
-
-    def covers(self, ask: Ask) -> bool:
-        """Whether the model predicts this reading."""
-        return self._twin.covers(ask)
-
-    def predict(self, z: Floats, attributes: Mapping[str, Floats], asks: Sequence[Ask]) -> list[Floats]:
-        """Predict readings: one array of shape (rows, arity) per ask."""
-        return self._twin.predict(self._inner(z), attributes, asks)
 
     def plate_misfit(self, z: Floats) -> Floats:
         """Return none: the plate's misfit went into the narrowing."""
         return np.zeros((len(z), 0))
 
-    def possible(self, z: Floats, attributes: Mapping[str, Floats]) -> Mapping[str, Floats]:
-        """For each state, 1.0 where such a machine can be in it."""
-        return self._twin.possible(self._inner(z), attributes)
-
-    def transform(self, measure: str) -> Transform:
-        """How a measure enters the comparison on this machine."""
-        return self._twin.transform(measure)
-
     def model_error(self, ask: Ask) -> ModelError:
         """How far the model may be off; a winding only differs from its own past by drift."""
-        error = self._twin.model_error(ask)
+        error = super().model_error(ask)
         if ask.state == "isolated" and ask.measure.endswith("resistance"):
             return ModelError(min(error.level, _DRIFT), error.contrast, error.contrast_share)
         return error

@@ -14,18 +14,19 @@ import numpy as np
 
 from calc.observe import InstrumentError
 from calc.quantities import MEASURES
-from calc.twin import Ask, Floats, Mode, ModelError, Transform, Twin
+from calc.twin import Ask, Floats, Twin
 from rules.weigh.settings import weighing
+from rules.weigh.view import TwinView
 
 # One meter reads all of a dimension: the clamp, the voltmeter, the ohmmeter.
 _METERS = ("current", "voltage", "resistance")
 
 
-class MeteredTwin:
+class MeteredTwin(TwinView):
     """A twin whose first latents are the gain errors of the meters."""
 
     def __init__(self, twin: Twin, meters: Mapping[str, InstrumentError]) -> None:
-        self._twin = twin
+        super().__init__(twin)
         self._last: tuple[Floats, Floats] | None = None
         share = math.sqrt(weighing().shared_gain)
         self._gain = {
@@ -35,34 +36,11 @@ class MeteredTwin:
         }
 
     @property
-    def kind(self) -> str:
-        """Machine kind."""
-        return self._twin.kind
-
-    @property
     def dim(self) -> int:
         """Number of latents: the meters', then the machine's."""
-        return self._twin.dim + len(_METERS)
+        return super().dim + len(_METERS)
 
-    @property
-    def defaults(self) -> Mapping[str, float]:
-        """Attributes of a healthy machine."""
-        return self._twin.defaults
-
-    @property
-    def effects(self) -> tuple[str, ...]:
-        """Effects that :meth:`modes` knows."""
-        return self._twin.effects
-
-    def modes(self, effect: str, severity: tuple[float, float] | None = None) -> tuple[Mode, ...]:
-        """Enumerate the discrete ways of an effect on this machine."""
-        return self._twin.modes(effect, severity)
-
-    def covers(self, ask: Ask) -> bool:
-        """Whether the model predicts this reading."""
-        return self._twin.covers(ask)
-
-    def _machine(self, z: Floats) -> Floats:
+    def inner(self, z: Floats) -> Floats:
         """Latents of the machine alone: one array for the same rows, so that the twin knows them again."""
         last = self._last
         if last is None or last[0] is not z:
@@ -71,7 +49,7 @@ class MeteredTwin:
 
     def predict(self, z: Floats, attributes: Mapping[str, Floats], asks: Sequence[Ask]) -> list[Floats]:
         """Predict what the meters show: one array of shape (rows, arity) per ask."""
-        answers = self._twin.predict(self._machine(z), attributes, asks)
+        answers = super().predict(z, attributes, asks)
         return [self._shown(ask, answer, z) for ask, answer in zip(asks, answers, strict=True)]
 
     def _shown(self, ask: Ask, answer: Floats, z: Floats) -> Floats:
@@ -80,22 +58,6 @@ class MeteredTwin:
             return answer
         place = _METERS.index(MEASURES[ask.measure].dimension)
         return np.asarray(answer * np.exp(gain * z[:, place])[:, None])
-
-    def plate_misfit(self, z: Floats) -> Floats:
-        """Plate fields that the latents do not meet by construction, in sigmas: (rows, n)."""
-        return self._twin.plate_misfit(self._machine(z))
-
-    def possible(self, z: Floats, attributes: Mapping[str, Floats]) -> Mapping[str, Floats]:
-        """For each state the chance that such a machine can be in it."""
-        return self._twin.possible(self._machine(z), attributes)
-
-    def transform(self, measure: str) -> Transform:
-        """How a measure enters the comparison on this machine."""
-        return self._twin.transform(measure)
-
-    def model_error(self, ask: Ask) -> ModelError:
-        """How far the model may be off for this reading."""
-        return self._twin.model_error(ask)
 
 
 def repeatability(meters: Mapping[str, InstrumentError]) -> dict[str, InstrumentError]:

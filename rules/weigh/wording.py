@@ -66,15 +66,6 @@ def title(key: str) -> str:
     return f"{entry.label}, {state.replace('_', ' ')}"
 
 
-def range_text(look: Outlook, row: int, sigma: float) -> str:
-    """Where nine in ten such readings would lie under one hypothesis (level only)."""
-    from rules.weigh.predict import untransform  # noqa: PLC0415
-
-    edges = untransform(look.mean[row, 0] + np.array([-1.645, 1.645]) * sigma, look.transform)
-    low, high = (figure(in_usual_unit(look.ask.measure, float(x))) for x in edges)
-    return f"{low} to {high} {MEASURES[look.ask.measure].usual_unit}".strip()
-
-
 def expect(
     look: Outlook | None,
     lead: Leading,
