@@ -3,6 +3,7 @@
 The process under test cannot import them, and its ``os`` and ``signal`` lack what Windows lacks.
 """
 
+import io
 import json
 import os
 import subprocess
@@ -11,7 +12,10 @@ from pathlib import Path, PureWindowsPath
 
 import pytest
 
+from calc.errors import PlatesideError
 from casebook import place
+from tui import driver, look, printing
+from tui.page import Page
 
 ROOT = Path(__file__).resolve().parent.parent
 SHEET = ROOT / "tests" / "sheets" / "pump_overload.yaml"
@@ -51,6 +55,7 @@ def without_posix(code: str, folder: Path) -> str:
         command, capture_output=True, text=True, env=environment, cwd=folder, check=False, timeout=120
     )
     assert done.returncode == 0, done.stderr
+    assert "a mistake of the program" not in done.stderr
     return done.stdout
 
 
@@ -124,6 +129,156 @@ print("imported")
 def test_the_screens_are_imported_without_posix(tmp_path):
     code = "from tui.app import prepare\nprepare()\nimport tui.application\nprint('imported')"
     assert without_posix(code, tmp_path).strip() == "imported"
+
+
+SCREENS = """
+import asyncio
+from pathlib import Path
+from tui.app import prepare
+prepare()
+from textual.drivers.headless_driver import HeadlessDriver
+from tui import application
+
+class Console(HeadlessDriver):
+    is_headless = property(lambda self: False)  # the program takes it for a person's terminal
+
+def no_signals(loop, number, act):
+    raise NotImplementedError  # as the loops of Windows do
+
+asyncio.SelectorEventLoop.add_signal_handler = no_signals
+application.cell_driver = lambda: Console
+
+async def walk(pilot):
+    await pilot.press("n")
+    await pilot.press(*"P-9")
+    pilot.app.exit(0)
+
+app = application.PlatesideApp(Path("casebook.db"), person="Ines")
+status = app.run(auto_pilot=walk, size=(80, 24), mouse=False)
+print("ended with", status, app.return_code, app.is_headless)
+"""
+
+
+def test_the_screens_run_where_no_signal_can_be_heard(tmp_path):
+    """Documentation of Python: ``loop.add_signal_handler`` and ``signal.SIGHUP`` are there on Unix only."""
+    assert without_posix(SCREENS, tmp_path).strip() == "ended with 0 0 False"
+
+
+def test_where_textual_has_a_driver_of_its_own_for_the_system_that_one_is_taken(monkeypatch):
+    assert driver.cell_driver() is not None
+    monkeypatch.setattr(sys, "platform", "win32")
+    assert driver.cell_driver() is None
+
+
+@pytest.mark.parametrize(
+    ("encoding", "is_ascii"), [("utf-8", False), ("cp437", True), ("cp1252", True), ("", True)]
+)
+def test_on_windows_the_encoding_of_the_console_alone_decides_what_can_be_shown(
+    monkeypatch, encoding, is_ascii
+):
+    console = io.TextIOWrapper(io.BytesIO(), encoding=encoding) if encoding else None
+    monkeypatch.setattr(sys, "platform", "win32")
+    monkeypatch.setattr(sys, "__stdout__", console)
+    assert look.needs_ascii({}) is is_ascii
+
+
+# Kept for devices, with any ending: "Naming Files, Paths, and Namespaces", learn.microsoft.com (from memory).
+DEVICES = ("CON", "PRN", "AUX", "NUL", *(f"COM{n}" for n in range(10)), *(f"LPT{n}" for n in range(10)))
+EMPTY = Page(title="x", facts=(), blocks=())
+
+
+@pytest.mark.parametrize("name", [*DEVICES, "nul.txt", "Aux.tar.html", "com1 .txt"])
+def test_a_sheet_never_gets_the_name_of_a_device_of_windows(name, tmp_path):
+    with pytest.raises(PlatesideError, match="Windows keeps that name for a device"):
+        printing.write(EMPTY, tmp_path / "casebook.db", name)
+    assert not (tmp_path / "sheets").exists()
+
+
+@pytest.mark.parametrize("name", ["a:b", "a.", "a ", "a*", "a?", "a\\b", 'a"', "a|b", "<a>", "..", "a\n"])
+def test_a_sheet_never_gets_a_name_that_windows_cannot_write(name, tmp_path):
+    with pytest.raises(PlatesideError, match="a name without a folder"):
+        printing.write(EMPTY, tmp_path / "casebook.db", name)
+
+
+def shipped_files():
+    """Yield the files of the project as a checkout has them."""
+    for folder in ("plateside", "calc", "rules", "casebook", "tui", "tests", "benchmarks", "tools", "docs"):
+        for path in (ROOT / folder).rglob("*"):
+            if path.is_file() and "__pycache__" not in path.parts:
+                yield path.relative_to(ROOT).as_posix()
+
+
+def test_every_file_of_the_project_can_be_unpacked_on_windows():
+    names = list(shipped_files())
+    assert len(names) == len({name.lower() for name in names})
+    for name in names:
+        assert not set(name) & set('<>:"|?*\\'), name
+        for part in name.split("/"):
+            assert part.partition(".")[0].upper() not in DEVICES, name
+            assert not part.endswith((".", " ")), name
+
+
+def program(words, folder, *options, typed=b"", **environment):
+    """Run the program with options of Python and an environment of its own."""
+    return subprocess.run(
+        [sys.executable, *options, "-m", "plateside", *words],
+        input=typed,
+        capture_output=True,
+        env={"PATH": "", "PYTHONPATH": str(ROOT), "HOME": str(folder), **environment},
+        cwd=folder,
+        check=False,
+        timeout=120,
+    )
+
+
+def test_no_file_is_opened_in_the_encoding_of_the_day(tmp_path):
+    """PEP 597: Python itself says where text is read or written without a named encoding."""
+    (tmp_path / "shop").mkdir()
+    for words in (
+        ["log", str(SHEET), "--person", "Ines"],
+        ["diagnose", str(SHEET)],
+        ["cases"],
+        ["export", "--to", "sheets"],
+        ["export", "--csv"],
+        ["copy", "copy.db"],
+        ["merge", "copy.db"],
+        ["salvage", "copy.db", "saved.db"],
+        ["demo", "--build", "plant.db"],
+        ["check-rules", "shop"],
+    ):
+        done = program(words, tmp_path, "-X", "warn_default_encoding", "-W", "error::EncodingWarning")
+        assert done.returncode == 0, (words, done.stderr)
+
+
+@pytest.mark.parametrize("encoding", ["cp437", "cp1252", "ascii"])
+def test_on_a_console_without_utf_8_every_command_says_what_it_has_to_say(encoding, tmp_path):
+    sheet = tmp_path / "ö.yaml"
+    text = SHEET.read_text(encoding="utf-8")
+    sheet.write_text(text.replace("WP-104 wash water", "WP-104 Köhler Ω 水"), encoding="utf-8")
+    for words in (
+        ["--help"],
+        ["diagnose", "--help"],
+        ["log", str(sheet), "--person", "Žofie"],
+        ["diagnose", str(sheet)],
+        ["cases"],
+        ["export"],
+        ["learned"],
+        ["check-rules"],
+    ):
+        done = program(words, tmp_path, PYTHONIOENCODING=encoding, PYTHONUTF8="0")
+        assert (done.returncode, done.stderr) == (0, b""), words
+        done.stdout.decode("utf-8" if words[0] == "export" else encoding)
+
+
+@pytest.mark.parametrize("encoding", ["cp437", "utf-8", "ascii"])
+def test_a_typed_line_that_is_not_of_the_consoles_encoding_is_asked_for_again(encoding, tmp_path):
+    typed = b"J\xf6rg\xff\nJoerg\n\n"
+    done = program(["--plain"], tmp_path, typed=typed, PYTHONIOENCODING=encoding, PYTHONUTF8="0")
+    assert (done.returncode, done.stderr) == (0, b"")
+    out = done.stdout.decode(encoding)
+    asked = 1 if encoding == "cp437" else 2  # cp437 has a letter for every byte
+    assert out.count("Your name") == asked
+    assert out.count(f"That line is no {encoding}: type it again, or without accents.") == asked - 1
 
 
 def test_where_files_have_no_mode_no_sentence_on_it_is_shown(tmp_path, monkeypatch):

@@ -65,10 +65,16 @@ class PlatesideApp(App[int]):
     def on_mount(self) -> None:
         """Watch for a dropped line, and load what is heavy after the first page stands."""
         if not self.is_headless:
-            loop = asyncio.get_running_loop()
-            loop.add_signal_handler(signal.SIGTERM, self.on_terminate)
-            loop.add_signal_handler(signal.SIGHUP, self.on_hang_up)
+            self.watch_signals()
         self.call_after_refresh(self.load)
+
+    def watch_signals(self) -> None:
+        """Hear what ends the program from outside, as far as this system can tell it."""
+        loop = asyncio.get_running_loop()
+        for name, act in (("SIGTERM", self.on_terminate), ("SIGHUP", self.on_hang_up)):
+            if hasattr(signal, name):  # Windows has no SIGHUP, and its loops hear no signal
+                with contextlib.suppress(NotImplementedError):
+                    loop.add_signal_handler(getattr(signal, name), act)
 
     async def on_event(self, event: Event) -> None:
         """Hand events on; a key waits while the page that it is meant for opens."""

@@ -85,9 +85,11 @@ def _os_words(error: OSError) -> str:
 
 
 def _open_closed_streams() -> None:
-    """Let a command run whose standard output or error was closed by its caller."""
+    """Let a command run whose standard streams were closed by its caller."""
+    if sys.stdin is None:
+        sys.stdin = Path(os.devnull).open(encoding="utf-8")  # noqa: SIM115  (lives on)
     if sys.stdout is None:
-        sys.stdout = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115  (lives on)
+        sys.stdout = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115
     if sys.stderr is None:
         sys.stderr = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115
 

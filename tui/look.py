@@ -15,6 +15,8 @@ from rich.segment import Segment
 from textual.filter import LineFilter
 from textual.theme import Theme
 
+from tui.output import screen_stream
+
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
@@ -127,7 +129,9 @@ _OLD_TERMINALS: Final = {"dumb", "vt52", "vt100", "vt102", "vt220", "ansi"}
 
 def needs_ascii(environ: Mapping[str, str] = os.environ) -> bool:
     """Whether the terminal must be taken to show ASCII only: its stream, or a locale that says so."""
-    encoding = (getattr(sys.__stderr__, "encoding", "") or "").lower().replace("-", "")
+    encoding = (getattr(screen_stream(), "encoding", "") or "").lower().replace("-", "")
+    if sys.platform == "win32":  # neither TERM nor a locale says anything of a console there
+        return encoding != "utf8"
     if encoding != "utf8" or environ.get("TERM", "dumb") in _OLD_TERMINALS:
         return True
     chosen = environ.get("LC_ALL") or environ.get("LC_CTYPE") or ""

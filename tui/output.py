@@ -12,9 +12,9 @@ if TYPE_CHECKING:
     from collections.abc import Iterable
 
 
-def say(lines: str | Iterable[str] = "") -> None:
+def say(lines: str | Iterable[str] = "", *, end: str = "\n") -> None:
     """Write lines of a result."""
-    _write(sys.stdout, [lines] if isinstance(lines, str) else lines)
+    _write(sys.stdout, [lines] if isinstance(lines, str) else lines, end)
 
 
 def warn(text: str) -> None:
@@ -27,9 +27,14 @@ def say_json(answer: dict[str, Any]) -> None:
     print(json.dumps(answer, ensure_ascii=True, allow_nan=False), flush=True)
 
 
-def _write(stream: TextIO, lines: Iterable[str]) -> None:
+def screen_stream() -> TextIO | None:
+    """Return the stream that screens are drawn on; None where its owner has closed it."""
+    return sys.__stdout__ if sys.platform == "win32" else sys.__stderr__
+
+
+def _write(stream: TextIO, lines: Iterable[str], end: str = "\n") -> None:
     """Write lines in what the stream can show."""
     encoding = (getattr(stream, "encoding", None) or "ascii").lower().replace("-", "")
     for line in lines:
         shown = line if encoding.startswith("utf") else ascii_only(line)
-        print(shown.encode("utf-8", "replace").decode("utf-8"), file=stream)
+        print(shown.encode("utf-8", "replace").decode("utf-8"), file=stream, end=end)

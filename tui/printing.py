@@ -22,7 +22,9 @@ if TYPE_CHECKING:
     from tui.page import Page
 
 FOLDER: Final = "sheets"
-_NAME: Final = re.compile(r"[A-Za-z0-9][A-Za-z0-9 ._-]{0,79}")
+_NAME: Final = re.compile(r"[A-Za-z0-9](?:[A-Za-z0-9 ._-]{0,78}[A-Za-z0-9_-])?")
+_DEVICE: Final = re.compile(r"(?:con|prn|aux|nul|com[0-9]|lpt[0-9]) *(?:\..*)?", re.IGNORECASE | re.ASCII)
+LONGEST_TAG: Final = 48
 ALLOWED: Final = "a name without a folder: letters, digits, . _ -"
 
 
@@ -40,7 +42,7 @@ def printed(visit: Visit, *, shop_tag: bool = False) -> Page:
 
 def usual_name(visit: Visit, *, shop_tag: bool = False) -> str:
     """Return how the file is called where nobody says otherwise."""
-    tag = re.sub(r"[^A-Za-z0-9]+", "-", visit.case.tag).strip("-")
+    tag = re.sub(r"[^A-Za-z0-9]+", "-", visit.case.tag)[:LONGEST_TAG].strip("-")
     parts = [tag, visit.number, "shop-tag" if shop_tag else ""]
     return "-".join(part for part in parts if part) + ".txt"
 
@@ -48,10 +50,12 @@ def usual_name(visit: Visit, *, shop_tag: bool = False) -> str:
 def write(made: Page, casebook: Path, name: str) -> Path:
     """Write a page to a new file in the folder beside the casebook; ``.html`` makes an HTML page of it.
 
-    Raises PlatesideError where the name is none, the file is there already, or the disk refuses.
+    Raises PlatesideError where not every system takes the name, the file is there, or the disk refuses.
     """
     if not _NAME.fullmatch(name):
         raise PlatesideError(f"'{name}': {ALLOWED}")
+    if _DEVICE.fullmatch(name):  # the folder may lie on, or be carried to, a laptop with Windows
+        raise PlatesideError(f"'{name}': Windows keeps that name for a device; another name")
     target = casebook.parent / FOLDER / (name if "." in name else f"{name}.txt")
     text = report.as_html(made) if target.suffix == ".html" else "\n".join(report.as_text(made)) + "\n"
     try:

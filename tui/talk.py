@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import io
 import sys
 from typing import TYPE_CHECKING
 
@@ -21,13 +22,23 @@ class Left(Exception):  # noqa: N818 - nothing is wrong when a person leaves
 def ask(prompt: str, default: str = "") -> str:
     """Ask for one line; Enter alone gives the default. Raises Left at the end of input."""
     shown = f"{prompt} [{default}]: " if default else f"{prompt}: "
-    sys.stdout.write(shown)
-    sys.stdout.flush()
-    line = sys.stdin.readline()
-    if not line:
-        say()
-        raise Left
-    return line.strip() or default
+    while True:
+        say(shown, end="")
+        sys.stdout.flush()
+        line = _line()
+        if not line:
+            say()
+            raise Left
+        if not any("\ud800" <= sign <= "\udfff" for sign in line):
+            return line.strip() or default
+        say(f"That line is no {sys.stdin.encoding}: type it again, or without accents.")
+
+
+def _line() -> str:
+    """Read one line, "" at the end; bytes that are not of the stream's encoding come as lone surrogates."""
+    if isinstance(sys.stdin, io.TextIOWrapper) and sys.stdin.errors != "surrogateescape":
+        sys.stdin.reconfigure(errors="surrogateescape")
+    return sys.stdin.readline()
 
 
 def ask_yes(prompt: str) -> bool:

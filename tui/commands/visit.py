@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 
 from calc.errors import PlatesideError
 from tui import places
+from tui.output import screen_stream
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -46,9 +47,5 @@ def need_terminal(*, plain: bool) -> None:
     """Refuse where there is no terminal to draw on; plain lines can be piped."""
     if plain or os.environ.get("TERM") == "dumb":
         return
-    if (
-        sys.__stdin__ is None
-        or sys.__stderr__ is None
-        or not (sys.__stdin__.isatty() and sys.__stderr__.isatty())
-    ):
+    if not all(stream is not None and stream.isatty() for stream in (sys.__stdin__, screen_stream())):
         raise PlatesideError("the screens need a terminal; `plateside --plain` and the commands do not")
