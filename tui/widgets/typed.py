@@ -2,13 +2,19 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Protocol, cast
+import re
+from typing import TYPE_CHECKING, Final, Protocol, cast
 
 from textual.widgets import Input
 from textual.widgets.input import Selection
 
+from tui.harmless import UNSEEN
+
 if TYPE_CHECKING:
-    from textual.events import Key
+    from textual.events import Key, Paste
+
+LONGEST: Final = 4000
+"""Characters that one line takes: a long remark. A longer paste is cut there."""
 
 
 class TakesLines(Protocol):
@@ -28,7 +34,9 @@ class TypedLine(Input):
     """An input of one line without blinking; tells its page synchronously of Enter."""
 
     def __init__(self, value: str = "", *, placeholder: str = "", id: str = "typed") -> None:
-        super().__init__(value, placeholder=placeholder, compact=True, id=id, select_on_focus=False)
+        super().__init__(
+            value, placeholder=placeholder, compact=True, id=id, select_on_focus=False, max_length=LONGEST
+        )
         self.cursor_blink = False
 
     def on_key(self, event: Key) -> None:
@@ -43,6 +51,15 @@ class TypedLine(Input):
             event.stop()
             event.prevent_default()
             deed()
+
+    def on_paste(self, event: Paste) -> None:
+        """Take a paste as one line without what could steer the terminal, cut to what a line takes."""
+        event.stop()
+        event.prevent_default()
+        start, end = sorted(self.selection)
+        room = max(LONGEST - len(self.value) + end - start, 0)
+        pasted = UNSEEN.sub(" ", event.text[: 2 * LONGEST].strip("\r\n"))
+        self.replace(re.sub(r"\s+", " ", pasted)[:room], start, end)
 
     def put(self, text: str, *, chosen: bool = False) -> None:
         """Put another text in the line without telling; ``chosen`` text goes with the next letter."""
