@@ -114,7 +114,7 @@ def test_a_motor_between_two_sizes_of_the_table_takes_the_number_of_the_larger(r
 
 RULES = published(
     "this folder", "the rules' own sources", known="computed", checks="rules/limits",
-    says="every limit and each of its numbers has a check; what the limit says of its source is what is known",
+    says="every limit and each of its numbers has a check; its source says what is known",
 )  # fmt: skip
 
 
