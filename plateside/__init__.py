@@ -5,8 +5,13 @@ In a checkout they are the folders beside this one. In a wheel they lie in
 overwrite them or be overwritten.
 """
 
-import os
 import sys
+
+# Before anything that an older Python does not know; Python 2 can read this far.
+if sys.version_info < (3, 11):
+    sys.exit("plateside: needs Python 3.11 or newer; this is %d.%d" % sys.version_info[:2])
+
+import os
 from pathlib import Path
 
 # One diagnosis works on small matrices: BLAS threads only cost start-up time and key latency.

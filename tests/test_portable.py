@@ -281,6 +281,15 @@ def test_a_typed_line_that_is_not_of_the_consoles_encoding_is_asked_for_again(en
     assert out.count(f"That line is no {encoding}: type it again, or without accents.") == asked - 1
 
 
+def test_a_python_that_is_too_old_is_told_so_in_one_line(tmp_path):
+    code = "import sys\nsys.version_info = (3, 10, 13)\nimport plateside"
+    done = subprocess.run(
+        [sys.executable, "-c", code], capture_output=True, text=True, cwd=ROOT, check=False, timeout=60
+    )
+    assert done.returncode == 1
+    assert done.stderr == "plateside: needs Python 3.11 or newer; this is 3.10\n"
+
+
 def test_where_files_have_no_mode_no_sentence_on_it_is_shown(tmp_path, monkeypatch):
     path = tmp_path / "casebook.db"
     path.touch()

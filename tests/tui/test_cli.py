@@ -206,6 +206,19 @@ def test_a_closed_or_full_output_ends_without_a_traceback(sheet, redirection, st
     assert done.stderr.count("\n") <= 1
 
 
+@pytest.mark.skipif(sys.platform == "win32", reason="redirections of POSIX shells")
+@pytest.mark.parametrize(("words", "status", "said"), [("diagnose -", 2, "an empty file"), ("--plain", 0, "")])
+def test_a_closed_input_is_an_empty_one(tmp_path, words, status, said):
+    command = f"{' '.join(PLATESIDE)} {words} <&-"
+    done = subprocess.run(
+        ["/bin/sh", "-c", command], capture_output=True, text=True, check=False, timeout=60, cwd=tmp_path,
+        env={**os.environ, "PYTHONPATH": str(ROOT), "PLATESIDE_CASEBOOK": str(tmp_path / "b.db")},
+    )  # fmt: skip
+    assert done.returncode == status
+    assert said in done.stderr
+    assert "mistake of the program" not in done.stderr
+
+
 def test_nothing_that_only_posix_has_is_imported_at_start():
     code = (
         "import sys\n"
