@@ -33,6 +33,9 @@ SAYS_NOTHING_FORBIDS: Final = (
     "No recorded finding forbids energising; site rules and licensed practice decide."
 )
 
+MOST_SAID: Final = 0.99
+"""Odds above this are never written out: nobody knows them."""
+
 DRIVEN: Final = frozenset({"spun"})
 """A machine that is driven from outside makes its own voltage: shut while the supply itself stays shut."""
 
@@ -165,7 +168,10 @@ def _check(rule: GateRule, seen: Evidence, suspects: Mapping[str, float]) -> Che
     for fault, odds in rule.suspects.items():
         stands_at = sum(p for name, p in suspects.items() if fault in name.split("+"))
         if not stands_at < odds:
-            return Checked("forbids", f"{_name(seen, fault)} stands at {stands_at:.0%}")
+            stands = (
+                f"{100 * stands_at:.0f} %" if stands_at <= MOST_SAID else f"above {100 * MOST_SAID:.0f} %"
+            )
+            return Checked("forbids", f"{_name(seen, fault)} stands at {stands}")
     answers = [CHECKS[name](seen) if name in CHECKS else Checked("needed") for name in rule.clears]
     for status in ("forbids", "needed"):
         for answer in answers:

@@ -165,7 +165,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         Key("space", "toggle", "", "Tick or untick in the list of faults."),
         Key(_DONE, "done", "close the case", "Close the case with what stands here."),
         Key("f4", "sheet", "sheet", "The printed sheet of the case as it is stored now."),
-        Key("f5", "shop_tag", "shop tag", "The tag that goes with the motor to the repair shop."),
+        Key("f5", "shop_tag", "repair tag", "The tag that goes with the motor to the repair shop."),
     ),
     "machine": (
         Key("f3", "edit", "correct the plate", "Correct the plate; the log keeps both."),
@@ -175,7 +175,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
     "closed": (
         Key(_DONE, "reopen", "go on with it", "Open the case again."),
         Key("f4,s", "sheet", "sheet", "The printed sheet of the case."),
-        Key("f5,t", "shop_tag", "shop tag", "The tag that goes with the motor to the repair shop."),
+        Key("f5,t", "shop_tag", "repair tag", "The tag that goes with the motor to the repair shop."),
         *_PAGES,
     ),
     "sheet": (

@@ -121,7 +121,11 @@ def history_block(case: Case, cases: Sequence[Case], knowledge: Knowledge) -> Bl
 def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
     """Return the tag that goes with the motor to the repair shop."""
     closed = case.closed.what if case.closed else None
-    suspects = [fault_name(fault.id, knowledge) for fault in diagnosis.faults[:2] if fault.id != "healthy"]
+    suspects = [
+        fault.name or fault_name(fault.id, knowledge)
+        for fault in diagnosis.faults[:2]
+        if fault.id != "healthy" and fault.probability >= LEAST_SHOWN
+    ]
     found = fault_name(closed.found, knowledge) if closed else ", ".join(suspects)
     how = f" ({CONFIRMED[closed.confirmed]})" if closed else " (suspected)"
     retest = closed.retest if closed else ()
@@ -159,7 +163,7 @@ def _gate(diagnosis: Diagnosis) -> Iterable[str]:
         return
     yield energise.says or "The gate is shut."
     marks = {"forbids": "forbids: ", "needed": "still needed: ", "cleared": "cleared: "}
-    for line in energise.lines:
+    for line in sorted(energise.lines, key=lambda line: list(marks).index(line.status)):
         yield marks[line.status] + line.needs + (f" ({line.because})" if line.because else "")
 
 

@@ -55,7 +55,7 @@ _DUTY: Final = _p("duty", "DUTY", "S1, S3 ...")
 _CONNECTION: Final = PlateLine(
     "connection", "CONN", "star or delta; two as delta/star", choices=words.CONNECTIONS
 )
-_IN_USE: Final = _p("in_use", "IN USE", "which of two ratings is in use: 400 V", "voltage", "V")
+_IN_USE: Final = _p("in_use", "IN USE", "rating in use, where the plate has two: 400 V", "voltage", "V")
 
 _THREE: Final = (
     _POWER, _VOLTS, _AMPS, _HZ, _RPM, _PF, _EFF, _CONNECTION, _IN_USE, _SF, _CODE,

@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from tui.compose import Visit
 
 CONFIRMED: Final = {
-    "believed": "believed only; it teaches the odds nothing",
+    "believed": "believed only; r repair cured it, t seen in teardown",
     "repair": "confirmed: the repair cured it",
     "teardown": "confirmed: seen when taken apart",
 }
@@ -43,12 +43,17 @@ class ClosingPage(FormPage[dict[str, str]]):
         return [
             Line("found", "found", "what it really was; two faults joined by +", self.found, self.hear_found),
             Line(
-                "confirmed", "known by", "believed, repair, teardown", "believed", hear_choice(CONFIRMED), 12
+                "confirmed",
+                "known by",
+                "t teardown, r repair, b believed",
+                "believed",
+                hear_choice(CONFIRMED),
+                12,
             ),
             Line("done", "done", "what was done", width=50),
             Line("parts", "parts", "parts that were fitted", width=40),
             Line("minutes", "minutes", "time spent", hear=hear_minutes),
-            Line("note", "remark", "for the next shift and the shop", width=40),
+            Line("note", "remark", "for next shift and shop", width=40),
         ]
 
     def head(self) -> list[Content]:

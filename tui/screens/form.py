@@ -52,6 +52,8 @@ class FormPage(Page[Answer]):
         self.at = 0
         self.top = 0
         self.said: Heard = ("", True)
+        self.below: list[Content] = []
+        """What was said last and the remarks, as they were when the typing rested."""
         self.resting: Timer | None = None
 
     def form_lines(self) -> list[Line]:
@@ -109,7 +111,11 @@ class FormPage(Page[Answer]):
         """Show head, rows and remarks."""
         super().show()
         self.query_one("#head", Ruled).show(self.head())
-        self.show_remarks()
+        self.show_all()
+
+    def show_all(self) -> None:
+        """Work the remarks out anew, then draw rows and remarks."""
+        self.below = self.remark_lines()
         self.show_lines()
 
     def show_lines(self) -> None:
@@ -118,14 +124,14 @@ class FormPage(Page[Answer]):
         self.top = max(min(self.top, self.at), self.at - height + 1, 0)
         shown = self.table[self.top : self.top + height]
         self.query_one("#lines", Ruled).show([self.drawn(line) for line in shown])
+        self.show_remarks()
         typed = self.query_one(TypedLine)
         typed.styles.offset = (INDENT, self.at - self.top)
         typed.styles.width = self.line.width
 
     def height_of_form(self) -> int:
-        """Return how many rows fit between head and remarks."""
-        said = len(self.remark_lines())
-        return max(int(self.app.size.height) - len(self.head()) - said - 1, 1)
+        """Return how many rows fit between head and remarks; the remarks have at least one."""
+        return max(int(self.app.size.height) - len(self.head()) - max(len(self.below), 1) - 1, 1)
 
     def drawn(self, line: Line) -> Content:
         """Return one row: word, what stands there, and what was understood of it or belongs there."""
@@ -145,16 +151,17 @@ class FormPage(Page[Answer]):
         return [*said, *self.remarks()]
 
     def show_remarks(self) -> None:
-        """Show the remarks."""
-        self.query_one("#remarks", Ruled).show(self.remark_lines())
+        """Show the remarks; where there are none, how many lines stand below."""
+        left = len(self.table) - self.top - self.height_of_form()
+        more = [row("", (f"{left} more lines: Down", FAINT))] if left > 0 else []
+        self.query_one("#remarks", Ruled).show(self.below or more)
 
     def say(self, text: str, *, fine: bool = False) -> None:
         """Say something below the form; it stays until something else is typed."""
         if self.resting is not None:
             self.resting.stop()
         self.said = (text, fine)
-        self.show_remarks()
-        self.show_lines()
+        self.show_all()
 
     # typing
 
@@ -175,14 +182,17 @@ class FormPage(Page[Answer]):
     def rest(self) -> None:
         """Show the remarks on what is typed."""
         self.said = ("", True)
-        self.show_remarks()
-        self.show_lines()
+        self.show_all()
 
     def entered(self, text: str) -> None:
-        """Keep the line and go to the next."""
+        """Keep the line and go to the next; stay where it is not understood, and say why."""
         self.texts[self.line.name] = text
-        self.rest_soon()
-        self.action_next_field()
+        heard, fine = self.line.hear(text.strip()) if text.strip() else ("", True)
+        if fine:
+            self.rest_soon()
+            self.action_next_field()
+        else:
+            self.say(f"{text.strip()}: {heard}. Down leaves it so.")
 
     def action_next_field(self) -> None:
         """Go to the next line; on the last one, be done."""

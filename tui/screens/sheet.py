@@ -12,6 +12,7 @@ from tui.harmless import harmless
 from tui.keys import bindings
 from tui.screens.note import Note
 from tui.screens.page import TextPage
+from tui.widgets.ruled import INDENT
 
 if TYPE_CHECKING:
     from tui.compose import Visit
@@ -73,4 +74,6 @@ class SheetPage(TextPage):
         except PlatesideError as error:
             self.say(str(error))
         else:
-            self.say(f"written: {printing.FOLDER}/{path.name} in {path.parent.parent}")
+            whole = f"written: {path}"
+            near = f"written: {printing.FOLDER}/{path.name} beside the casebook"
+            self.say(whole if len(whole) <= self.room - INDENT else near)

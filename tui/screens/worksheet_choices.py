@@ -11,7 +11,7 @@ from tui.context import context_hint
 from tui.screens.ask import Ask
 from tui.screens.closing import CONFIRMED
 from tui.screens.pick import Choice
-from tui.words import key_words, plain
+from tui.words import key_words, percent, plain
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -49,9 +49,7 @@ def found_choices(names: dict[str, str], odds: dict[str, float]) -> list[Choice]
     pairs = {fault: " and ".join(names.get(part, plain(part)) for part in fault.split("+")) for fault in odds}
     every = {**pairs, **{fault: name for fault, name in names.items() if fault not in pairs}}
     ordered = sorted(every, key=lambda fault: -odds.get(fault, 0.0))
-    return [
-        Choice(f, every[f], word=f"{100 * odds[f]:.0f} %" if odds.get(f, 0) >= 0.01 else "") for f in ordered
-    ]
+    return [Choice(f, every[f], word=percent(odds[f]) if odds.get(f, 0) >= 0.01 else "") for f in ordered]
 
 
 def stored_choices(visit: Visit) -> dict[str, Choice]:

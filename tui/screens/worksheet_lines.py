@@ -29,9 +29,9 @@ if TYPE_CHECKING:
     from rules.knowledge import Knowledge
 
 WIDE: Final = 110
-BAR: Final = 10
+BAR: Final = 8
 WIDE_BAR: Final = 24
-MOVE_ROOM: Final = 14
+MOVE_ROOM, WIDE_MOVE_ROOM = 10, 14
 MOVED: Final = 0.015
 """A move of the odds that is worth a word."""
 FAULTS: Final = 6
@@ -117,13 +117,14 @@ def fault_lines(
 
 def _fault_line(fault: FaultOdds, moved: float, knowledge: Knowledge, room: int, word: str) -> Content:
     """Return one fault in one line."""
-    bar_room = WIDE_BAR if room >= WIDE else BAR
+    wide = room >= WIDE
+    bar_room, move_room = (WIDE_BAR, WIDE_MOVE_ROOM) if wide else (BAR, MOVE_ROOM)
     bar = round(fault.probability * bar_room)
-    before = fault.probability - moved
     move = ""
     if abs(moved) >= MOVED:
-        move = f"{'up' if moved > 0 else 'down'} from {percent(before).strip()}"
-    name_room = room - INDENT - bar_room - MOVE_ROOM - 8
+        way = ("up " if moved > 0 else "down ") if wide else ""
+        move = f"{way}from {percent(fault.probability - moved).strip()}"
+    name_room = room - INDENT - bar_room - move_room - 8
     name = fault.name or fault_name(fault.id, knowledge)
     return row(
         word,
@@ -132,7 +133,7 @@ def _fault_line(fault: FaultOdds, moved: float, knowledge: Knowledge, room: int,
         "=" * bar,
         ("." * (bar_room - bar), FAINT),
         f" {percent(fault.probability)} ",
-        (pad(move, MOVE_ROOM), FAINT),
+        (pad(move, move_room), FAINT),
     )
 
 

@@ -104,6 +104,9 @@ class WorksheetTyping(WorksheetKeys):
 
     async def enter_without_target(self, text: str) -> bool:
         """Nothing is proposed: pick another reading, or go on to closing."""
+        if text and not text[0].isalpha():
+            self.say("No reading is asked for: F3 or a word picks one, then its values; Ctrl+R corrects.")
+            return False
         if text:
             return await self.pick_other(text)
         await self.close_case()
