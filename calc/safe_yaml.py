@@ -97,16 +97,20 @@ def read_document(path: str | os.PathLike[str], *, limits: Limits = SHEET_LIMITS
 
 def document_from_bytes(raw: bytes, *, file: str, limits: Limits = SHEET_LIMITS) -> Document:
     """Turn the bytes of one document into plain data; raises ``InputError`` as ``read_document``."""
+    return load_document(text_from_bytes(raw, file=file, limits=limits), file=file, limits=limits)
+
+
+def text_from_bytes(raw: bytes, *, file: str, limits: Limits = SHEET_LIMITS) -> str:
+    """Return the text of one document; raises ``InputError`` where it is too long or no UTF-8."""
     if len(raw) > limits.bytes:
         raise _wrong(file, f"longer than {limits.bytes} bytes", f"at most {limits.bytes} bytes")
     if raw[:2] in {b"\xff\xfe", b"\xfe\xff"}:
         raise _wrong(file, "UTF-16 text", "text saved as UTF-8")
     try:
-        text = raw.decode("utf-8-sig")
+        return raw.decode("utf-8-sig")
     except UnicodeDecodeError as error:
         line = raw.count(b"\n", 0, error.start) + 1
         raise _wrong(file, f"byte {raw[error.start]:#04x}", "text saved as UTF-8", line) from None
-    return load_document(text, file=file, limits=limits)
 
 
 def load_document(text: str, *, file: str, limits: Limits = SHEET_LIMITS) -> Document:

@@ -9,13 +9,14 @@ from __future__ import annotations
 
 import dataclasses
 from collections.abc import Iterator, Sequence
+from itertools import chain, islice
 from pathlib import Path
 from typing import Final
 
 import msgspec
 
 from calc.errors import InputError, Problem
-from calc.safe_yaml import Document, Limits, load_document
+from calc.safe_yaml import Document, Limits, load_document, text_from_bytes
 from calc.safe_yaml import where as spell
 from rules import cache
 from rules.decoding import Steps, decode, did_you_mean
@@ -45,6 +46,8 @@ SECTIONS: Final[dict[str, type[Entry]]] = {
     "gates": GateRule,
 }
 RULE_LIMITS: Final = Limits(bytes=2_000_000, depth=20, nodes=100_000)
+MOST_FILES: Final = 500
+"""Rule files that a shop's folder may hold."""
 _ALSO_CALLED: Final = {"cautions": "hazards"}
 
 Entries = dict[str, dict[str, Entry]]
@@ -101,23 +104,36 @@ def read_texts(extra_folders: Sequence[Path]) -> tuple[Texts, list[Problem]]:
         if not folder.is_dir():
             problems.append(Problem(str(folder), "", "no such folder", "a folder of rule files"))
             continue
-        for file in _rule_files(folder, shipped=number == 0):
+        files = _rule_files(folder, shipped=number == 0)
+        if len(files) > MOST_FILES:
+            given = f"more than {MOST_FILES} rule files"
+            problems.append(Problem(str(folder), "", given, f"at most {MOST_FILES} in a folder"))
+            continue
+        for file in files:
             try:
-                texts.append((number, file, file.read_text(encoding="utf-8")))
+                texts.append((number, file, _read(file)))
             except OSError as error:
                 problems.append(Problem(str(file), "", error.strerror or "unreadable", "a readable file"))
-            except UnicodeDecodeError:
-                problems.append(Problem(str(file), "", "not UTF-8", "text in UTF-8"))
+            except InputError as error:
+                problems += error.problems
     return texts, problems
 
 
-def _rule_files(folder: Path, *, shipped: bool) -> Iterator[Path]:
+def _read(file: Path) -> str:
+    """Return the text of a rule file, never more of it than is allowed."""
+    if not file.is_file():  # a pipe or a device would be read for ever
+        raise InputError([Problem(str(file), "", "no ordinary file", "a file of rules")])
+    with file.open("rb") as stream:
+        return text_from_bytes(stream.read(RULE_LIMITS.bytes + 1), file=str(file), limits=RULE_LIMITS)
+
+
+def _rule_files(folder: Path, *, shipped: bool) -> list[Path]:
+    """Return the rule files of a folder in their order; of a shop's folder one more than is allowed."""
     if not shipped:
-        yield from sorted({*folder.rglob("*.yaml"), *folder.rglob("*.yml")})
-        return
-    yield from sorted(folder.glob("*.yaml"))
-    for section in sorted(SECTIONS):
-        yield from sorted((folder / section).rglob("*.yaml"))
+        found = (path for pattern in ("*.yaml", "*.yml") for path in folder.rglob(pattern))
+        return sorted(islice(found, MOST_FILES + 1))
+    sections = (sorted((folder / section).rglob("*.yaml")) for section in sorted(SECTIONS))
+    return [*sorted(folder.glob("*.yaml")), *chain.from_iterable(sections)]
 
 
 def build(

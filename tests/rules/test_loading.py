@@ -140,7 +140,7 @@ def test_a_folder_that_is_not_there_is_named(tmp_path):
 
 def test_a_file_that_is_no_text_is_named(tmp_path):
     (tmp_path / "own.yaml").write_bytes(b"\xff\xfe\x00")
-    with pytest.raises(InputError, match=r"own\.yaml: not UTF-8"):
+    with pytest.raises(InputError, match=r"own\.yaml: UTF-16 text; text saved as UTF-8"):
         load_knowledge(extra_folders=[tmp_path])
 
 
