@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 
 from calc.dc.circuit import Armature, Magnet, operate
+from tests.published.sources import published
 
 integrate = pytest.importorskip("scipy.integrate")
 
@@ -26,6 +27,13 @@ def magnet(kind: str, bend: float) -> Magnet:
     return Magnet(**{k: one(v) for k, v in (MACHINES[kind] | rest).items()})
 
 
+@published(
+    "own differential equations",
+    "L di/dt and J dw/dt, integrated with scipy",
+    known="another road",
+    checks="calc.dc.circuit.operate",
+    says="shunt, compound and series with saturation settle at the operating point",
+)
 @pytest.mark.parametrize("kind", MACHINES)
 @pytest.mark.parametrize("torque", [0.3, 0.9])
 def test_the_operating_point_is_where_the_motion_settles(kind: str, torque: float) -> None:
@@ -48,6 +56,13 @@ def test_the_operating_point_is_where_the_motion_settles(kind: str, torque: floa
     assert point.speed[0] == pytest.approx(end[1], rel=2e-3)
 
 
+@published(
+    "gym-electric-motor",
+    "electrical equations at a held speed",
+    known="another road",
+    checks="calc.dc.circuit.operate",
+    says="shunt, series, magnet and separately excited: current and torque",
+)
 @pytest.mark.parametrize("kind", ["shunt", "series", "permanent", "separate"])
 def test_the_operating_point_agrees_with_an_independent_motor_library(kind: str) -> None:
     """Electrical equations of gym-electric-motor (no saturation there), run to standstill at our speed."""

@@ -12,6 +12,16 @@ import pytest
 
 from calc.dc.circuit import Armature, Magnet, operate, power_balance, saturation
 from calc.dc.converter import bridge_ripple, six_pulse_ripple
+from tests.published.sources import published
+
+OPERATE = ["calc.dc.circuit.operate", "calc.dc.circuit.Magnet", "calc.dc.circuit.Armature"]
+FITZGERALD, CHAPMAN = "Fitzgerald, Electric Machinery", "Chapman, Electric Machinery Fundamentals"
+SEN, HUBERT = "Sen, Principles of Electric Machines", "Hubert, Electric Machines"
+
+
+def example(book, number, says, *, known="looked up", checks=OPERATE):
+    return published(book, number, says=says, known=known, checks=checks)
+
 
 RAD = math.pi / 30.0
 
@@ -36,6 +46,12 @@ def settle(armature: Armature, magnet: Magnet, torque: float, rotating: float = 
     return operate(armature, magnet, one(torque), one(rotating), one(0.0))
 
 
+@example(
+    CHAPMAN,
+    "example 9-1",
+    "250 V, 0.06 ohm: 1173, 1144, 1115 r/min and 190, 388, 587 N·m at 100, 200, 300 A",
+    known="from memory",
+)
 @pytest.mark.parametrize(
     ("line_a", "rpm", "newton_metre"), [(100, 1172.6, 189.0), (200, 1143.8, 387.9), (300, 1115.0, 586.9)]
 )
@@ -53,6 +69,7 @@ def test_chapman_9_1_shunt_motor_slows_as_printed(line_a: float, rpm: float, new
     assert constant * point.current[0] * ampere == pytest.approx(newton_metre, abs=0.1)
 
 
+@example(CHAPMAN, "example 9-2", "840 A-turns of armature reaction at 200 A: 1227 r/min", known="from memory")
 def test_chapman_9_2_armature_reaction_raises_the_speed() -> None:
     """Same machine, 840 A-turns of reaction at 200 A leave 233 V at 1200 r/min: 1227 r/min (from memory)."""
     volts, ampere = 250.0, 195.0
@@ -61,6 +78,7 @@ def test_chapman_9_2_armature_reaction_raises_the_speed() -> None:
     assert point.speed[0] * 1200 == pytest.approx(1227.3, abs=0.3)
 
 
+@example(CHAPMAN, "example 9-5", "series motor at 50 A: 3690 r/min, 31.8 N·m", known="from memory")
 def test_chapman_9_5_series_motor_runs_fast_at_light_current() -> None:
     """250 V, 0.08 ohm, 50 A, 80 V induced at 1200 r/min: 3690 r/min and 31.8 N m (from memory)."""
     volts, ampere, base_rpm = 250.0, 50.0, 2400.0
@@ -73,6 +91,13 @@ def test_chapman_9_5_series_motor_runs_fast_at_light_current() -> None:
     assert (volts - 4.0) * ampere / (speed * RAD) == pytest.approx(31.83, abs=0.02)
 
 
+@example(
+    CHAPMAN,
+    "example 9-6",
+    "cumulative 1108, differential 1230 r/min",
+    known="from memory",
+    checks=[*OPERATE, "calc.dc.circuit.saturation"],
+)
 def test_chapman_9_6_one_bend_serves_cumulative_and_differential_compounding() -> None:
     """262 V with and 236 V against 3 turns at 200 A on 1000 turns at 5 A: 1108 and 1230 r/min (from memory).
 
@@ -91,6 +116,7 @@ def test_chapman_9_6_one_bend_serves_cumulative_and_differential_compounding() -
         assert point.speed[0] * 1200 == pytest.approx(rpm, rel=0.004)
 
 
+@example(FITZGERALD, "example 7.1", "128 V on 125 V induced at 3000 r/min: 150 A, 59.7 N·m")
 def test_fitzgerald_7_1_terminal_volts_above_induced_volts_motor_the_machine() -> None:
     """125 V at 3000 r/min, 0.02 ohm: 128 V gives 150 A and 59.7 N m."""
     ampere = 150.0
@@ -100,6 +126,11 @@ def test_fitzgerald_7_1_terminal_volts_above_induced_volts_motor_the_machine() -
     assert 125 * ampere / (3000 * RAD) == pytest.approx(59.68, abs=0.01)
 
 
+@example(
+    FITZGERALD,
+    "example 7.9",
+    "magnet motor: K 0.2215 V·s, 61 W lost, 267 W at 48 V and 1700 r/min (275 printed with K rounded)",
+)
 def test_fitzgerald_7_9_magnet_motor_gives_267_watts() -> None:
     """50 V, 1.25 A, 2100 r/min uncoupled, 1.03 ohm; at 48 V and 1700 r/min 267.1 W.
 
@@ -116,6 +147,12 @@ def test_fitzgerald_7_9_magnet_motor_gives_267_watts() -> None:
     assert constant * 1700 * RAD * ampere - lost == pytest.approx(267.1, abs=0.1)
 
 
+@example(
+    SEN,
+    "example 4.6",
+    "12 kW, 100 V: 885 r/min, 113.9 N·m, 82.35 %",
+    checks=[*OPERATE, "calc.dc.circuit.power_balance"],
+)
 def test_sen_4_6_full_load_speed_torque_and_efficiency() -> None:
     """12 kW, 100 V, 0.1 ohm, 1000 r/min at 6 A uncoupled; at 120 A 885 r/min, 113.9 N m, 82.35 %."""
     point = settle(circuit(resistance=0.1 * 120 / 100, emf=0.994), poles(), 1.0)
@@ -128,6 +165,7 @@ def test_sen_4_6_full_load_speed_torque_and_efficiency() -> None:
     assert (88.0 * 120 - 99.4 * 6) / (12000 + field_w) == pytest.approx(0.8235, abs=0.001)
 
 
+@example(HUBERT, "example 10.9", "flux to 75 %, torque to 50 %: 24 A, 3399 r/min")
 def test_hubert_10_9_weaker_flux_and_half_torque() -> None:
     """240 V, 36 A, 0.37 ohm, 2500 r/min; flux to 75 %, torque to 50 %: 24 A, 3398.6 r/min."""
     emf = (240 - 36 * 0.37) / 240
@@ -136,6 +174,9 @@ def test_hubert_10_9_weaker_flux_and_half_torque() -> None:
     assert point.speed[0] * 2500 == pytest.approx(3398.6, abs=0.5)
 
 
+@example(
+    "open modelling library", "DC magnet machine with losses", "E 94.5 V, 61.30 N·m at 100 A, 1417.5 r/min"
+)
 def test_library_magnet_machine_at_rated_point() -> None:
     """Open modelling library: 100 V, 100 A, 1417.5 r/min, 0.05 ohm, 0.5 V, 350 W lost: 61.30 N m."""
     emf = 0.945
@@ -145,6 +186,13 @@ def test_library_magnet_machine_at_rated_point() -> None:
     assert (emf * 100 * 100 - 350) / (1417.5 * RAD) == pytest.approx(61.30, abs=0.01)
 
 
+@example(
+    "closed form",
+    "six pulses, continuous conduction",
+    "4.2, 18, 53 % at 0, 30, 60°, and the waveform sampled",
+    known="computed",
+    checks=["calc.dc.converter.six_pulse_ripple"],
+)
 @pytest.mark.parametrize(("angle", "share"), [(0.0, 0.042), (30.0, 0.18), (60.0, 0.53)])
 def test_six_pulse_ripple_grows_with_the_firing_angle(angle: float, share: float) -> None:
     """Closed forms against 4.2, 18 and 53 %, and against the waveform itself."""
@@ -156,6 +204,13 @@ def test_six_pulse_ripple_grows_with_the_firing_angle(angle: float, share: float
     assert sampled == pytest.approx(share, abs=0.006)
 
 
+@example(
+    "closed form",
+    "single-phase bridge, continuous conduction",
+    "48.3 % at 0°, and the waveform sampled",
+    known="computed",
+    checks=["calc.dc.converter.bridge_ripple"],
+)
 @pytest.mark.parametrize("angle", [0.0, 20.0, 45.0])
 def test_bridge_ripple_is_that_of_the_waveform(angle: float) -> None:
     """48.3 % at full opening, continuous conduction."""

@@ -15,6 +15,18 @@ from calc.induction_3ph import fit
 from tests.calc.induction_3ph.plates import ALL, predict
 from tests.calc.induction_3ph.plates import machine as plate
 from tests.published.circuits import CHAPMAN_25, KRAUSE_3, KRAUSE_500, MACHINES, run
+from tests.published.sources import published
+
+SOLVER = "calc.induction_3ph.states.solve"
+pytestmark = published(
+    "nine published circuits", "T circuit, linear", known="computed", checks=SOLVER,
+    says="range of the linear circuits, or an identity of the connection",
+)  # fmt: skip
+voltage_table = published(
+    "table of ±10 % voltage", "NEMA and DOE handbooks", known="looked up", checks=SOLVER,
+    says="torque -19 / +21 %, starting current ∓10 to 12 %, full-load current +11 / -7 %, slip +23 / -17 %",
+)  # fmt: skip
+
 
 OPEN = 200.0  # per unit of the machine's base: half a percent of rated current
 each_machine = pytest.mark.parametrize("machine", MACHINES, ids=lambda m: m.name)
@@ -59,6 +71,7 @@ def test_ten_percent_too_much_voltage_lowers_current_and_slip(machine):
     assert -0.06 <= change(machine, "power_factor", share=1.1) <= 0.0
 
 
+@voltage_table
 @each_machine
 def test_starting_torque_and_current_follow_the_published_voltage_table(machine):
     full = run(machine, standing=True)
@@ -68,6 +81,7 @@ def test_starting_torque_and_current_follow_the_published_voltage_table(machine)
         assert other.current_a[0] / full.current_a[0] - 1.0 == pytest.approx(amps, abs=0.002)
 
 
+@voltage_table
 @each_machine
 def test_greatest_torque_follows_the_published_voltage_table(machine):
     full = greatest_torque(machine)
@@ -75,6 +89,7 @@ def test_greatest_torque_follows_the_published_voltage_table(machine):
     assert greatest_torque(machine, share=1.1) / full - 1.0 == pytest.approx(0.21, abs=0.002)
 
 
+@voltage_table
 def test_the_six_machines_lie_around_the_published_full_load_figures():
     # Table: current +11 % and -7 %, slip +23 % and -17 % (looked up); its motors give constant power.
     low = np.array([amps_changed(m, share=0.9) for m in MACHINES])
@@ -225,6 +240,13 @@ def test_twice_the_rotor_resistance_lowers_the_starting_current_and_raises_the_s
 # The same signs on motors that are known by their plates only.
 
 
+@published(
+    "identity",
+    "two lines, and star for delta, at standstill",
+    known="computed",
+    says="√3/2 and 1/3 of the locked-rotor current",
+    checks=["calc.induction_3ph.model.fit", "calc.induction_3ph.effects.modes"],
+)
 @pytest.mark.parametrize("fields", ALL.values(), ids=ALL)
 def test_a_plate_alone_gives_root_three_over_two_on_two_lines_and_a_third_in_star(fields):
     twin = fit(plate(**fields))

@@ -19,6 +19,15 @@ from calc.induction_3ph.network import terminal_resistance
 from calc.induction_3ph.plate import read_base
 from tests.calc.induction_3ph.plates import machine, predict
 from tests.published.circuits import CHAPMAN_25, FITZGERALD_7, Published, run
+from tests.published.sources import published
+
+SOLVER, PLATE = "calc.induction_3ph.states.solve", "calc.induction_3ph.plate.read_base"
+CHAPMAN, FITZGERALD = "Chapman, Electric Machinery Fundamentals", "Fitzgerald, Electric Machinery"
+
+
+def example(book, number, says, *, known="looked up", checks=SOLVER):
+    return published(book, number, says=says, known=known, checks=checks)
+
 
 CHAPMAN_7_3 = replace(CHAPMAN_25, slip=0.022)
 RAD_S = math.pi / 30.0
@@ -41,6 +50,7 @@ def greatest_torque(motor, **fault):
 # Chapman 7-3 (from memory; recomputed exactly): the 25 hp motor at a slip of 2.2 %.
 
 
+@example(CHAPMAN, "example 7-3", "1760 r/min, 18.88 A at -33.6°, power factor 0.833", known="from memory")
 def test_slip_current_and_power_factor_of_chapman_7_3_from_its_air_gap_power():
     found = run(CHAPMAN_7_3, gap_w=11838.8)
     assert found.slip == pytest.approx(0.022, rel=1e-4)
@@ -50,6 +60,7 @@ def test_slip_current_and_power_factor_of_chapman_7_3_from_its_air_gap_power():
     assert found.power_factor == pytest.approx(0.8321, abs=1e-4)
 
 
+@example(CHAPMAN, "example 7-3", "input 12 530 W, copper 685 W, shaft 10 485 W, 83.7 %", known="from memory")
 def test_input_and_stator_copper_loss_of_chapman_7_3():
     found = run(CHAPMAN_7_3, gap_w=11838.8)
     assert found.input_w == pytest.approx(12525.0, abs=1.0)
@@ -60,6 +71,9 @@ def test_input_and_stator_copper_loss_of_chapman_7_3():
     assert output_w / found.input_w == pytest.approx(0.8366, abs=1e-4)
 
 
+@example(
+    CHAPMAN, "example 7-5", "229 N·m at slip 0.198; the exact circuit 230.8 at 0.2014", known="from memory"
+)
 def test_pull_out_of_chapman_7_5_with_the_exact_thevenin_circuit():
     # The book's approximations give 229 N·m at 0.198; the exact circuit 230.8 N·m at 0.2014.
     torque_nm, slip = greatest_torque(CHAPMAN_7_3)
@@ -68,12 +82,14 @@ def test_pull_out_of_chapman_7_5_with_the_exact_thevenin_circuit():
     assert torque_nm == pytest.approx(229.0, rel=0.03)
 
 
+@example(CHAPMAN, "example 7-5", "twice the rotor resistance: slip 0.396, 229 N·m", known="from memory")
 def test_twice_the_rotor_resistance_moves_the_pull_out_of_chapman_7_5_and_not_its_height():
     torque_nm, slip = greatest_torque(CHAPMAN_7_3, bars=1 / 3)  # (1 + b) / (1 - b) = 2
     assert torque_nm == pytest.approx(230.8, abs=0.1)
     assert slip == pytest.approx(0.4028, abs=4e-4)
 
 
+@example(CHAPMAN, "example 7-5", "104 and 170 N·m; the exact circuit 106.6 and 174.1", known="from memory")
 def test_starting_torques_of_chapman_7_5():
     # The model splits the leakage evenly at standstill, the book 1.106 to 0.464: hence one percent.
     assert starting_torque_nm(CHAPMAN_7_3) == pytest.approx(106.6, rel=0.01)
@@ -85,11 +101,19 @@ def test_starting_torques_of_chapman_7_5():
 CHAPMAN_7_8 = Published("Chapman 7-8", 208.0, 60.0, 4, 0.04, 0.2429, 0.6706, 0.1511, 0.6706, 14.034)
 
 
+@example(
+    CHAPMAN,
+    "example 7-8",
+    "13.6 V at 28 A: 0.243 ohm a phase",
+    known="from memory",
+    checks="calc.induction_3ph.network.terminal_resistance",
+)
 def test_the_dc_test_of_chapman_7_8_reads_two_phases_of_a_star():
     between = terminal_resistance(np.full((1, 3), 0.2429), np.array([0.0]))
     assert between[0] == pytest.approx([13.6 / 28.0] * 3, rel=1e-3)
 
 
+@example(CHAPMAN, "example 7-8", "no load 8.17 A, 420 W", known="from memory")
 def test_the_circuit_of_chapman_7_8_reads_what_the_no_load_test_read():
     found = run(CHAPMAN_7_8, gap_w=371.4)  # the rotational losses
     assert found.current_a == pytest.approx([np.mean([8.12, 8.20, 8.18])] * 3, rel=0.01)
@@ -98,6 +122,7 @@ def test_the_circuit_of_chapman_7_8_reads_what_the_no_load_test_read():
     assert found.copper_w == pytest.approx(420.0 - 371.3, rel=0.02)
 
 
+@example(CHAPMAN, "example 7-8", "25 V, 15 Hz: 27.9 A, 920 W, 40.4°", known="from memory")
 def test_the_circuit_of_chapman_7_8_reads_what_the_locked_rotor_test_read():
     # 25 V at 15 Hz: 27.9 A, 920 W, 40.4 degrees. The book leaves out the magnetising branch, which takes 2 %.
     found = run(CHAPMAN_7_8, standing=True, share=25.0 / 208.0, frequency=0.25)
@@ -109,6 +134,7 @@ def test_the_circuit_of_chapman_7_8_reads_what_the_locked_rotor_test_read():
 # Fitzgerald 6.2 and 6.3 (looked up): 7.5 hp, six poles.
 
 
+@example(FITZGERALD, "example 6.2", "18.8 A, 0.846, 42.4 N·m, 86 %")
 def test_current_power_factor_and_input_of_fitzgerald_6_2():
     shaft_w = 42.40 * 1176.0 * RAD_S
     found = run(FITZGERALD_7, gap_w=(shaft_w + 403.0) / 0.98)
@@ -119,17 +145,20 @@ def test_current_power_factor_and_input_of_fitzgerald_6_2():
     assert shaft_w / found.input_w == pytest.approx(0.8630, abs=1e-4)
 
 
+@example(FITZGERALD, "example 6.3", "65.4 N·m at slip 0.03")
 def test_load_torque_of_fitzgerald_6_3_gives_its_slip():
     found = run(FITZGERALD_7, gap_w=65.41 * FITZGERALD_7.synchronous_rad_s)
     assert found.slip == pytest.approx(0.03, rel=1e-3)
 
 
+@example(FITZGERALD, "example 6.3", "175 N·m at 970 r/min")
 def test_greatest_torque_and_its_speed_of_fitzgerald_6_3():
     torque_nm, slip = greatest_torque(FITZGERALD_7)
     assert torque_nm == pytest.approx(174.6, abs=0.1)
     assert (1.0 - slip) * 1200.0 == pytest.approx(969.8, abs=0.5)
 
 
+@example(FITZGERALD, "example 6.3", "77.6 N·m")
 def test_starting_torque_of_fitzgerald_6_3():
     assert starting_torque_nm(FITZGERALD_7) == pytest.approx(77.62, rel=0.01)
 
@@ -139,6 +168,7 @@ def test_starting_torque_of_fitzgerald_6_3():
 FITZGERALD_6_5 = Published("Fitzgerald 6.5", 220.0, 60.0, 4, 0.03, 0.262, 0.6329, 0.4467, 1.475, 21.20)
 
 
+@example(FITZGERALD, "example 6.5", "219 V: 5.70 A, 380 W")
 def test_the_circuit_of_fitzgerald_6_5_reads_what_the_no_load_test_read():
     # The book takes the no-load reactance for X1 + XM and neglects the rotor: three percent in the current.
     found = run(FITZGERALD_6_5, gap_w=354.5, share=219.0 / 220.0)
@@ -151,6 +181,9 @@ def test_the_circuit_of_fitzgerald_6_5_reads_what_the_no_load_test_read():
 SEN_5_3 = Published("Sen 5.3", 2200.0, 60.0, 6, 0.03, 2.8, 7.96, 2.12, 7.96, 273.07)
 
 
+@example(
+    "Sen, Principles of Electric Machines", "example 5.3", "2200 V: 4.5 A, 1600 W; 270 V, 15 Hz: 25 A, 9 kW"
+)
 def test_the_circuit_of_sen_5_3_reads_what_both_tests_read():
     free = run(SEN_5_3, gap_w=1429.9)
     assert free.current_a == pytest.approx([4.5] * 3, rel=0.01)
@@ -163,6 +196,7 @@ def test_the_circuit_of_sen_5_3_reads_what_both_tests_read():
 # Hubert 5.7 (looked up): locked-rotor current of a reactive motor at another voltage and frequency.
 
 
+@example("Hubert, Electric Machines", "example 5.7", "151 A at 230 V, 60 Hz is 173.3 A at 220 V, 50 Hz")
 def test_locked_rotor_current_of_hubert_5_7_on_220_v_50_hz():
     reactive = Published("Hubert 5.7", 230.0, 60.0, 4, 0.03, 1e-4, 0.44, 1e-4, 0.44, 20.0)
     at_60 = run(reactive, standing=True).current_a[0]
@@ -173,6 +207,12 @@ def test_locked_rotor_current_of_hubert_5_7_on_220_v_50_hz():
 # What Plateside reads off a plate.
 
 
+@example(
+    "Fitzgerald 6.1 and 6.2, DOE-HDBK-1011/4, Chapman 7-1",
+    "",
+    "slips of 2.7, 2.0, 1.3 and 5 % (Chapman from memory)",
+    checks=PLATE,
+)
 @pytest.mark.parametrize(
     ("speed_rpm", "poles", "slip"),
     [
@@ -188,11 +228,18 @@ def test_poles_and_slip_of_the_books_are_read_off_the_speed(speed_rpm, poles, sl
     assert base.slip == pytest.approx(slip, abs=6e-6)
 
 
+@example(FITZGERALD, "example 6.1", "419 W at 3502 r/min", checks=PLATE)
 def test_the_rotor_loss_of_fitzgerald_6_1_follows_from_its_slip():
     base = read_base(machine(power=14000.0, voltage=440.0, current=22.6, frequency=60.0, speed=3502.0))
     assert base.slip * (15700.0 - 3.0 * 22.6**2 * 0.2) == pytest.approx(419.0, abs=0.5)
 
 
+@example(
+    "Fitzgerald 6.2, Chapman 7-2 and 7-3",
+    "",
+    "input 6050, 42 400, 12 530 W (Chapman from memory)",
+    checks=["calc.induction_3ph.equivalent.circuit", "calc.induction_3ph.model.fit"],
+)
 @pytest.mark.parametrize(
     ("plate", "input_w"),
     [

@@ -17,6 +17,19 @@ from motulator.drive.utils import InductionMachinePars
 from scipy.integrate import solve_ivp
 
 from tests.published.circuits import KRAUSE_3, run
+from tests.published.sources import published
+
+pytestmark = published(
+    "motulator", "differential equations of the machine", known="another road",
+    checks="calc.induction_3ph.states.solve",
+    says="3 hp motor settled in time: line currents within 0.1 to 1 %, mean torque within 0.1 to 3 %",
+)  # fmt: skip
+power_flow = published(
+    "OpenDSS", "IndMach012, symmetrical components in a network", known="another road",
+    checks="calc.induction_3ph.states.solve",
+    says="3 hp motor: line currents and input within 0.001 to 1 %",
+)  # fmt: skip
+
 
 MACHINE = KRAUSE_3
 OPEN = 200.0  # per unit: the resistance that stands for an open line
@@ -141,6 +154,7 @@ def test_a_single_phased_motor_draws_what_the_differential_equations_give(load):
     assert load * RATED_W / MACHINE.synchronous_rad_s == pytest.approx(torque, rel=0.03)
 
 
+@power_flow
 def test_a_healthy_motor_draws_what_the_power_flow_gives():
     ours = run(MACHINE, gap_w=RATED_W)
     amps, watts = opendss_flow(ours.slip, phases(1.0, 1.0, 1.0))
@@ -148,6 +162,7 @@ def test_a_healthy_motor_draws_what_the_power_flow_gives():
     assert ours.input_w == pytest.approx(watts, rel=1e-5)
 
 
+@power_flow
 @pytest.mark.parametrize("shares", [(0.95, 1.0, 1.0), (1.0, 0.95, 1.0), (1.0, 1.0, 0.9), (1.03, 1.0, 0.96)])
 def test_an_unbalanced_motor_draws_what_the_power_flow_gives(shares):
     fed = phases(*shares)
@@ -160,6 +175,7 @@ def test_an_unbalanced_motor_draws_what_the_power_flow_gives(shares):
     assert ours.input_w == pytest.approx(watts, rel=0.005)
 
 
+@power_flow
 def test_five_percent_less_in_one_phase_gives_the_published_currents():
     # 7.598, 9.744, 8.881 A at slip 0.05: two other engines agreed on them (computed).
     ours = run(MACHINE, gap_w=0.967 * RATED_W, share=2.95 / 3.0, negative=-0.05 / 3.0)
@@ -167,12 +183,14 @@ def test_five_percent_less_in_one_phase_gives_the_published_currents():
     assert ours.current_a == pytest.approx([7.598, 9.744, 8.881], rel=0.004)
 
 
+@power_flow
 def test_a_bad_joint_in_one_line_draws_what_the_power_flow_gives():
     ours = run(MACHINE, gap_w=RATED_W, line_r=0.3)
     amps, _ = opendss_flow(ours.slip, phases(1.0, 1.0, 1.0), line_ohm=0.3 * MACHINE.base_ohm)
     assert ours.current_a == pytest.approx(amps, rel=0.003)
 
 
+@power_flow
 @pytest.mark.parametrize("load", [0.4, 0.7, 1.0])
 def test_on_the_terminal_voltages_of_a_single_phased_motor_the_power_flow_has_one_line_idle(
     load,

@@ -15,6 +15,14 @@ import pytest
 from calc.induction_1ph.circuit import Rotor, Windings, half_field_ohm, solve_currents
 from calc.induction_1ph.machine import capacitor_ohm
 from calc.induction_1ph.plate import VOLT_AMPERES_PER_WATT
+from tests.published.sources import published
+
+SOLVER = ["calc.induction_1ph.circuit.solve_currents", "calc.induction_1ph.circuit.half_field_ohm"]
+FITZGERALD, HUBERT = "Fitzgerald, Electric Machinery", "Hubert, Electric Machines"
+
+
+def example(book, number, says, *, known="looked up", checks=SOLVER):
+    return published(book, number, says=says, known=known, checks=checks)
 
 
 def real(x):
@@ -59,6 +67,13 @@ def degrees(x):
 FITZGERALD_9_2 = rotor(magnetising=66.8, resistance=4.12, reactance=2.12)
 
 
+@example(
+    FITZGERALD,
+    "example 9.2",
+    "15.9 + j20.1 and 0.99 + j1.06 ohm",
+    known="from memory",
+    checks="calc.induction_1ph.circuit.half_field_ohm",
+)
 def test_the_two_field_impedances_of_fitzgerald_9_2():
     forward, _ = half_field_ohm(FITZGERALD_9_2, real(0.05), backward=False)
     backward, _ = half_field_ohm(FITZGERALD_9_2, real(0.05), backward=True)
@@ -66,6 +81,7 @@ def test_the_two_field_impedances_of_fitzgerald_9_2():
     assert backward[0] == pytest.approx(0.99 + 1.06j, abs=0.006)
 
 
+@example(FITZGERALD, "example 9.2", "3.6 A, 0.62, 147 W, 0.823 N·m, 60 %")
 def test_current_power_and_efficiency_of_fitzgerald_9_2():
     fed = windings(main=2.02 + 2.79j, auxiliary=1e12, main_volt=110.0, auxiliary_volt=0.0)
     found = solve_currents(fed, FITZGERALD_9_2, real(0.05))
@@ -78,6 +94,7 @@ def test_current_power_and_efficiency_of_fitzgerald_9_2():
     assert shaft_w / (110.0 * found.main[0].real) == pytest.approx(0.599, abs=6e-4)
 
 
+@example(FITZGERALD, "example 9.3", "forward 9.3 - j6.3 A, backward 3.7 - j1.5 A; 4149, 15, 3928 W")
 def test_two_phase_motor_on_unbalanced_voltages_of_fitzgerald_9_3():
     fed = windings(
         main=0.534 + 2.45j,
@@ -121,6 +138,7 @@ def capacitor_run_motor_of_fitzgerald_9_5():
     return solve_currents(fed, machine, real(1.0 - 3500.0 / 3600.0)), abs(in_series)
 
 
+@example(FITZGERALD, "example 9.5", "15.9, 5.2, 18.5 A, 394 V on the capacitor (inductances from memory)")
 def test_winding_currents_of_the_capacitor_run_motor_of_fitzgerald_9_5():
     found, in_series = capacitor_run_motor_of_fitzgerald_9_5()
     assert abs(found.main[0]) == pytest.approx(15.88, abs=6e-3)
@@ -133,6 +151,7 @@ def test_winding_currents_of_the_capacitor_run_motor_of_fitzgerald_9_5():
     assert abs(found.auxiliary[0]) * in_series == pytest.approx(393.8, abs=0.06)
 
 
+@example(FITZGERALD, "example 9.5", "9.75 N·m, 3532 of 4041 W, 87.4 % (inductances from memory)")
 def test_torque_power_and_efficiency_of_fitzgerald_9_5():
     found, _ = capacitor_run_motor_of_fitzgerald_9_5()
     shaft_w = found.torque_w[0] * 3500.0 / 3600.0 - 40.0
@@ -149,6 +168,7 @@ def at_standstill(*, main, auxiliary):
     return solve_currents(fed, rotor(magnetising=1e6, resistance=1e-6, reactance=0.0), real(1.0))
 
 
+@example(HUBERT, "example 6.1", "29.8 and 9.66 A, 17.7° apart")
 def test_split_phase_currents_of_hubert_6_1():
     found = at_standstill(main=2.0 + 3.5j, auxiliary=9.15 + 8.40j)
     assert abs(found.main[0]) == pytest.approx(29.77, abs=6e-3)
@@ -156,6 +176,7 @@ def test_split_phase_currents_of_hubert_6_1():
     assert degrees(found.auxiliary) - degrees(found.main) == pytest.approx(17.70, abs=0.01)
 
 
+@example(HUBERT, "example 6.2", "194.6 µF: 90°, 11.39 A, torque 339 over 87.4")
 def test_a_start_capacitor_for_ninety_degrees_raises_torque_as_in_hubert_6_2():
     in_series = capacitor(microfarad=194.6, frequency_hz=60.0)
     assert abs(in_series) == pytest.approx(13.63, abs=6e-3)
@@ -168,6 +189,11 @@ def test_a_start_capacitor_for_ninety_degrees_raises_torque_as_in_hubert_6_2():
     assert after.torque_w[0] / before.torque_w[0] == pytest.approx(338.98 / 87.45, rel=1e-3)
 
 
+@example(
+    "Guru, Electric Machinery and Transformers",
+    "example 10.3",
+    "4 µF: 1.207 A, 0.917, 444.7 V; 3, 2, 1 µF computed (reactances from memory)",
+)
 @pytest.mark.parametrize(
     ("microfarad", "line", "factor", "main", "auxiliary", "volt"),
     [
@@ -195,6 +221,13 @@ def test_a_weakening_run_capacitor_on_the_motor_of_guru_10_3(microfarad, line, f
     assert abs(found.auxiliary[0]) * abs(in_series) == pytest.approx(volt, abs=0.6)
 
 
+@example(
+    "C = I/(2πfV)",
+    "trade tables",
+    "2652.6 I/V at 60 Hz, 3183.1 I/V at 50 Hz",
+    known="computed",
+    checks="calc.induction_1ph.machine.capacitor_ohm",
+)
 @pytest.mark.parametrize(("frequency_hz", "factor"), [(60.0, 2652.6), (50.0, 3183.1)])
 def test_capacitance_from_volts_and_amps_by_the_usual_factor(frequency_hz, factor):
     """C in µF is 2652.6 I/V at 60 Hz and 3183.1 I/V at 50 Hz (trade tables)."""
@@ -202,6 +235,12 @@ def test_capacitance_from_volts_and_amps_by_the_usual_factor(frequency_hz, facto
     assert 230.0 / reactance == pytest.approx(5.0, rel=1e-4)
 
 
+@example(
+    "NEC",
+    "Table 430.248 at 230 V",
+    "a ceiling for sizing: 10 % below to 50 % above",
+    checks="calc.induction_1ph.plate.VOLT_AMPERES_PER_WATT",
+)
 @pytest.mark.parametrize(("hp", "amps"), [(1 / 4, 2.9), (1 / 2, 4.9), (1.0, 8.0), (2.0, 12.0), (3.0, 17.0)])
 def test_usual_volt_amperes_lie_around_the_code_table(hp, amps):
     """NEC Table 430.248 at 230 V, looked up: a ceiling for sizing, so only plausibility."""
