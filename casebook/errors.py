@@ -52,6 +52,12 @@ class NoPermission(CasebookError):  # noqa: N818
     advice = "Nothing was written. Ask its owner for write permission to the file and its folder"
 
 
+class CasebookGone(CasebookError):  # noqa: N818
+    """The file was removed or replaced while it was open."""
+
+    advice = "Nothing was written; what was typed stays as a draft. Leave and start again"
+
+
 class UnknownCase(CasebookError):  # noqa: N818
     """No case has this number."""
 

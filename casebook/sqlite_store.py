@@ -11,12 +11,15 @@ import sqlite3
 import threading
 from collections.abc import Callable, Iterable, Iterator
 from contextlib import contextmanager
+from functools import partial
 from pathlib import Path
 from typing import Final
 
-from casebook import heads
+from casebook import heads, schema
+from casebook.anchor import Anchor, put_back, set_aside
 from casebook.check import check_entry
 from casebook.entry import Entry
+from casebook.errors import CasebookGone, NewerCasebook
 from casebook.opening import connect, copy_whole, translated
 from casebook.rows import INSERT, row_of_entry, stamp
 from casebook.sqlite_reads import SqliteReads
@@ -33,7 +36,8 @@ class SqliteStore(SqliteReads):
     ) -> None:
         """Open a casebook, or start one. Raises ``CasebookError`` with what to do."""
         self.path = path
-        opened = connect(path, group=group, read_only=read_only, timeout_s=timeout_s)
+        self._reconnect = partial(connect, path, group=group, read_only=read_only, timeout_s=timeout_s)
+        opened = self._reconnect()
         self._connection = opened.connection
         self.notes = opened.notes
         self.read_only = opened.read_only
@@ -42,6 +46,8 @@ class SqliteStore(SqliteReads):
         self._touched: dict[str, None] = {}  # cases to fold before the transaction ends
         self._later: dict[str, None] = {}  # cases to fold some time later
         self._private = opened.private
+        self._anchor = None if self.read_only else Anchor(path)
+        self._gone: CasebookGone | None = None
         if not self.read_only:
             self.catch_up()
 
@@ -66,8 +72,31 @@ class SqliteStore(SqliteReads):
         self._connection.executemany("INSERT OR IGNORE INTO stale VALUES (?)", later)
 
     def _begin(self) -> None:
-        self._connection.execute("BEGIN IMMEDIATE" if self._depth == 0 else f"SAVEPOINT level{self._depth}")
+        if self._depth:
+            self._connection.execute(f"SAVEPOINT level{self._depth}")
+        else:
+            self._look()
+            self._connection.execute("BEGIN IMMEDIATE")
+            if self._connection.execute("PRAGMA user_version").fetchone()[0] > schema.VERSION:
+                self._connection.execute("ROLLBACK")
+                raise NewerCasebook(f"a newer Plateside has changed the tables of {self.path.name} meanwhile")
         self._depth += 1
+
+    def _look(self) -> None:
+        """See that the file still is the one that was opened; put it back where it was removed."""
+        state = self._anchor.look() if self._anchor is not None else "here"
+        if self._anchor is None or state == "here":
+            return
+        if state == "replaced":
+            self._gone = self._gone or set_aside(self._connection, self.path)
+            self._anchor.clear_away(self._connection)
+            raise self._gone
+        put_back(self._connection, self.path, self._anchor.mode)
+        opened = self._reconnect()
+        self._connection.close()
+        self._connection, self._anchor = opened.connection, Anchor(self.path)
+        said = f"{self.path.name} was removed while it was open; it was put back from what was held of it"
+        self.notes = (said, *opened.notes)
 
     def _end(self) -> None:
         self._connection.execute("COMMIT" if self._depth == 1 else f"RELEASE level{self._depth - 1}")
@@ -133,6 +162,8 @@ class SqliteStore(SqliteReads):
     def close(self) -> None:
         """Let the file go."""
         with self._lock:
+            if self._anchor is not None:
+                self._anchor.clear_away(self._connection)
             self._connection.close()
             if self._private is not None:
                 self._private.cleanup()
