@@ -65,6 +65,11 @@ class Published:
     def output_w(self, slip: float) -> float:
         return (1.0 - slip) * self.gap_w(slip) - self.rotational_w
 
+    def induced_v(self, slip: float) -> float:
+        """Voltage behind the stator's resistance and leakage, per star phase."""
+        amps = self.phase_v / self.phase_ohm(slip)
+        return abs(self.phase_v - amps * (self.r1 + 1j * self.x1))
+
     def slip_at(self, output_w: float) -> float:
         """Slip on the stable side at which the shaft gives this power, by bisection."""
         low, high = 1e-7, 0.08
@@ -100,14 +105,18 @@ def one(number: complex) -> np.ndarray:
     return np.array([number], dtype=np.complex128 if isinstance(number, complex) else np.float64)
 
 
-def product_circuit(machine: Published) -> Circuit:
-    """The same linear circuit as Plateside's model holds it, per unit of rated voltage and current."""
+def product_circuit(machine: Published, saturation: float = 0.0) -> Circuit:
+    """The same circuit as Plateside's model holds it, per unit of rated voltage and current.
+
+    ``saturation`` is the share of the magnetising current that grows with the sixth power of the
+    flux; the published reactance is then that at the flux of rated load.
+    """
     base = machine.base_ohm
     nothing = one(0.0)
     return Circuit(
         **{name: one(getattr(machine, name) / base) for name in ("r1", "x1", "r2", "x2", "xm")},
         gc=nothing,
-        saturation=nothing,
+        saturation=one(saturation),
         r2_locked=one(machine.r2 / base),
         x_locked=one((machine.x1 + machine.x2) / base),
         p_out=one(1.0),
@@ -115,7 +124,7 @@ def product_circuit(machine: Published) -> Circuit:
         p_stray=nothing,
         losses=one(1.0),
         slip=one(machine.slip),
-        flux=one(1.0),
+        flux=one(machine.induced_v(machine.slip) / machine.phase_v if saturation else 1.0),
         rise_k=one(60.0),
     )
 
@@ -145,6 +154,7 @@ def run(
     share: float = 1.0,
     negative: complex = 0j,
     frequency: float = 1.0,
+    saturation: float = 0.0,
     **attributes: float,
 ) -> Solved:
     """Solve a published machine with ``calc.induction_3ph.states.solve`` on a stiff supply.
@@ -157,7 +167,7 @@ def run(
     unknown = set(attributes) - set(DEFAULTS)
     assert not unknown, unknown
     rows["earth_pu"] = rows["earth_ohm"]
-    circuit = product_circuit(machine)
+    circuit = product_circuit(machine, saturation)
     power_base = 3.0 * machine.phase_v**2 / machine.base_ohm
     feed = Supply(
         positive=one(share), negative=one(complex(negative)), frequency=one(frequency), regulation=one(0.0)
