@@ -91,7 +91,8 @@ class Terminal:
         self.process.expect(pexpect.EOF, timeout=PATIENCE_S)
         self.raw += self.process.before or b""
         self.process.close()
-        return self.process.exitstatus
+        status: int | None = self.process.exitstatus
+        return status
 
     def kill(self) -> None:
         """End it in any case."""
