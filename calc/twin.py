@@ -12,6 +12,7 @@ A twin knows no odds, no limits and no advice.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Protocol
@@ -158,17 +159,22 @@ def attribute_rows(modes: Sequence[Mode], z: Floats, defaults: Mapping[str, floa
 
     """
     count, per_mode, dim = z.shape
-    rows: dict[str, Floats] = {}
-    for name, default in defaults.items():
-        rows[name] = np.full((count, per_mode), default)
-    share = standard_normal_cdf(z[:, :, dim - 2 :])
+    columns = {name: place for place, name in enumerate(defaults)}
+    plain = np.tile(np.array(list(defaults.values())), (count, 1))
+    low, log_ratio = np.ones((count, 1, 2)), np.zeros((count, 1, 2))
     for index, mode in enumerate(modes):
         for name, number in mode.fixed.items():
-            rows[name][index] = number
+            plain[index, columns[name]] = number
         for place, severity in enumerate(mode.severity):
-            ratio = severity.high / severity.low
-            rows[severity.attribute][index] = severity.low * ratio ** share[index, :, place]
-    return {name: grid.reshape(count * per_mode) for name, grid in rows.items()}
+            low[index, 0, place] = severity.low
+            log_ratio[index, 0, place] = math.log(severity.high / severity.low)
+    grid = np.repeat(plain.T, per_mode, axis=1)
+    severe = low * np.exp(log_ratio * standard_normal_cdf(z[:, :, dim - 2 :]))
+    for index, mode in enumerate(modes):
+        rows = slice(index * per_mode, (index + 1) * per_mode)
+        for place, severity in enumerate(mode.severity):
+            grid[columns[severity.attribute], rows] = severe[index, :, place]
+    return dict(zip(columns, grid, strict=True))
 
 
 def standard_normal_cdf(x: Floats) -> Floats:

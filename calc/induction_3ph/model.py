@@ -11,6 +11,7 @@ from calc.induction_3ph import effects, thermal
 from calc.induction_3ph.equivalent import Circuit, circuit
 from calc.induction_3ph.network import terminal_resistance
 from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, read_base
+from calc.induction_3ph.stacking import joined, part, repeated
 from calc.induction_3ph.states import StateResult, Supply, rated_torque, solve, supply
 from calc.induction_3ph.windings import line_extra, with_path
 from calc.sheet import Machine, Reading
@@ -138,7 +139,7 @@ class InductionTwin:
     def possible(self, z: Floats, attributes: Mapping[str, Floats]) -> Mapping[str, Floats]:
         """For each state, 1.0 where such a machine can be in it."""
         rows, machine, feed = self._prepare(z, attributes)
-        loaded = self._solve(machine, rows, feed, z, "loaded")
+        loaded = self._solve(machine, rows, feed, z, ["loaded"])["loaded"]
         turns = 1.0 - np.maximum(rows["stall"], loaded.stalled)
         one = np.ones(len(z))
         free = 1.0 - np.maximum(rows["stall"] * (1.0 - rows["load_stalls"]), rows["no_supply"])
@@ -157,11 +158,9 @@ class InductionTwin:
     def predict(self, z: Floats, attributes: Mapping[str, Floats], asks: Sequence[Ask]) -> list[Floats]:
         """Predict readings: one array of shape (rows, arity) per ask."""
         rows, machine, feed = self._prepare(z, attributes)
-        solved: dict[str, StateResult] = {}
-        for ask in asks:
-            electrical = ask.measure not in {"winding_resistance", "phase_resistance", "ambient_temperature"}
-            if electrical and ask.state not in solved:
-                solved[ask.state] = self._solve(machine, rows, feed, z, ask.state)
+        circuitless = {"winding_resistance", "phase_resistance", "ambient_temperature"}
+        states = dict.fromkeys(ask.state for ask in asks if ask.measure not in circuitless)
+        solved = self._solve(machine, rows, feed, z, list(states)) if states else {}
         return [self._answer(ask, z, rows, machine, feed, solved.get(ask.state)) for ask in asks]
 
     def _circuit(self, z: Floats) -> Circuit:
@@ -181,22 +180,38 @@ class InductionTwin:
         return rows, machine, supply(self.base, z, rows, self.nominal, self.inverter)
 
     def _solve(
-        self, machine: Circuit, rows: Mapping[str, Floats], feed: Supply, z: Floats, state: str
-    ) -> StateResult:
-        """Solve one state with the torque and the winding temperature that belong to it."""
+        self, machine: Circuit, rows: Mapping[str, Floats], feed: Supply, z: Floats, states: Sequence[str]
+    ) -> dict[str, StateResult]:
+        """Solve all states at once, each with the torque and the winding temperature that belong to it."""
+        load = self._load(rows, z, feed)
+        parts = [self._in_state(state, machine, rows, load, thermal.ambient_c(z)) for state in states]
+        stacked, torque, r1 = zip(*parts, strict=True)
+        count, size = len(states), len(z)
+        standing = np.repeat([1.0 if state in _STANDING else 0.0 for state in states], size)
+        found = solve(
+            repeated(machine, count),
+            joined(stacked),
+            repeated(feed, count),
+            np.concatenate(torque),
+            standing=standing,
+            r1=np.concatenate(r1),
+        )
+        return {state: part(found, slice(k * size, (k + 1) * size)) for k, state in enumerate(states)}
+
+    def _in_state(
+        self, state: str, machine: Circuit, rows: Mapping[str, Floats], load: Floats, ambient: Floats
+    ) -> tuple[Mapping[str, Floats], Floats, Floats]:
+        """Attributes, torque demanded and stator resistance in one state."""
         if state == "no_load":
             rows = {**rows, "stall": rows["stall"] * (1.0 - rows["load_stalls"])}
         if state == "starting" and self.starter == "star_delta":
             # The first seconds are in star: a third of line current and torque.
-            rows = {**rows, "running_star": np.ones(len(z))}
-        load = self._load(rows, z, feed)
+            rows = {**rows, "running_star": np.ones(len(load))}
         share = {"loaded": 1.0, "light_load": 0.4}.get(state, 0.0)
         useful = load * share * machine.p_out + machine.p_friction + share * load**2 * machine.p_stray
         torque = useful / (1.0 - machine.slip) + rows["friction"] * rated_torque(machine)
-        ambient = thermal.ambient_c(z)
         warm = ambient + (0.6 * machine.rise_k if share else 0.25 * machine.rise_k)
-        r1 = machine.r1 * (COPPER_K + warm) / (COPPER_K + 25.0 + machine.rise_k)
-        return solve(machine, rows, feed, torque, standing=state in _STANDING, r1=r1)
+        return rows, torque, machine.r1 * (COPPER_K + warm) / (COPPER_K + 25.0 + machine.rise_k)
 
     def _load(self, rows: Mapping[str, Floats], z: Floats, feed: Supply) -> Floats:
         """Load torque over rated; pumps and fans ask for torque as the square of speed."""

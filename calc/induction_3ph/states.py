@@ -79,7 +79,7 @@ def solve(
     feed: Supply,
     torque: Floats,
     *,
-    standing: bool,
+    standing: Floats,
     r1: Floats,
 ) -> StateResult:
     """Solve one state.
@@ -94,8 +94,8 @@ def solve(
         Voltages and frequency.
     torque : ndarray
         Total torque demanded, over the rated air-gap torque. [pu of p_gap rated]
-    standing : bool
-        Whether the shaft stands in this state whatever the mode (start, stall).
+    standing : ndarray
+        1.0 where the shaft stands in this state whatever the mode (start, stall).
     r1 : ndarray
         Stator resistance at the temperature of the state. [pu]
 
@@ -112,7 +112,7 @@ def solve(
 
     """
     scale = rows["impedance"] * np.where(rows["running_star"] > 0.5, 3.0, 1.0)
-    standing_rows = np.maximum(rows["stall"], 1.0 if standing else 0.0)
+    standing_rows = np.maximum(rows["stall"], standing)
     f = feed.frequency
     # Share of rated current that the source's impedance drops in phase with the voltage: idle and per torque.
     pull = 0.28 + 0.6 * np.clip(torque / rated_torque(circuit), 0.0, 2.0)

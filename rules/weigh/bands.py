@@ -20,7 +20,7 @@ from rules.answer import Band
 from rules.knowledge import Knowledge
 from rules.weigh.frame import Frame, frame
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, fit_modes, without
+from rules.weigh.laplace import QUICK, Fit, fit_modes, without
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, in_usual_unit, outlooks, untransform
 from rules.weigh.soft import shape, spread_of
@@ -89,7 +89,7 @@ def _basis(twin: Twin, posterior: Posterior | None) -> tuple[Frame, Fit]:
     healthy = twin.modes("none")[:1]
     if posterior is None:
         empty = frame([])
-        return empty, fit_modes(twin, healthy, empty)
+        return empty, fit_modes(twin, healthy, empty, heat=QUICK)
     place = next(h.place for h in posterior.hypotheses if h.fault == "healthy")
     sound = sum(p for h, p in zip(posterior.hypotheses, posterior.share(), strict=True) if h.place == place)
     if sound >= _TRUST_BELOW:
@@ -106,7 +106,7 @@ def _basis(twin: Twin, posterior: Posterior | None) -> tuple[Frame, Fit]:
             alive=fit.alive[one],
         )
     supply = frame([s for s in posterior.data.seen if s.ask.measure in _SUPPLY])
-    return supply, fit_modes(twin, healthy, supply)
+    return supply, fit_modes(twin, healthy, supply, heat=QUICK)
 
 
 def _without(key: str, data: Frame, fit: Fit) -> tuple[Floats, Floats]:

@@ -26,7 +26,10 @@ class Leading:
     share: Floats
     faults: tuple[str, ...]
     label: NDArray[np.int64]
-    part: NDArray[np.int64]
+    same_fault: Floats
+    """1.0 where two hypotheses are of one fault, (h, h)."""
+    same_part: Floats
+    """1.0 where two hypotheses are of one part of the machine, (h, h)."""
     possible: Mapping[str, Floats]
 
 
@@ -38,7 +41,6 @@ def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
     weights = share[order]
     faults = tuple(dict.fromkeys(h.fault for h in chosen))
     parts = {f.id: f.part for f in posterior.faults}
-    names = tuple(dict.fromkeys(parts[h.fault] for h in chosen))
     places = [h.place for h in chosen]
     modes = [posterior.modes[p] for p in places]
     z = posterior.fit.z[places]
@@ -48,9 +50,15 @@ def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
         share=weights / weights.sum(),
         faults=faults,
         label=np.array([faults.index(h.fault) for h in chosen]),
-        part=np.array([names.index(parts[h.fault]) for h in chosen]),
+        same_fault=_same([h.fault for h in chosen]),
+        same_part=_same([parts[h.fault] for h in chosen]),
         possible=posterior.twin.possible(z, rows),
     )
+
+
+def _same(names: Sequence[str]) -> Floats:
+    """1.0 where two names are the same, (names, names)."""
+    return np.array([[float(one == other) for other in names] for one in names])
 
 
 @cache
@@ -63,38 +71,38 @@ def _draws(count: int, dims: int) -> Floats:
     return np.asarray(inverse(np.clip(uniform, 1e-4, 1.0 - 1e-4)))
 
 
-def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings) -> float:
-    """Mutual information of a reading with the fault, and with half the weight with the part. [nats]
+def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings) -> Floats:
+    """Mutual information of readings with the fault, and with half the weight with the part: (readings,). [nats]
 
     Parameters
     ----------
     mean : ndarray
-        Predicted reading per hypothesis, (h, m).
+        Predicted readings per hypothesis, (readings, h, m).
     spread : ndarray
-        Its covariance per hypothesis, (h, m, m).
+        Their covariance per hypothesis, (readings, h, m, m).
 
     """
-    dims = mean.shape[1]
+    dims = mean.shape[2]
     root = np.linalg.cholesky(spread + 1e-12 * np.eye(dims))
-    draws = _draws(s.draws, dims)
-    samples = mean[:, None, :] + np.einsum("hij,dj->hdi", root, draws)
-    gap = samples[:, :, None, :] - mean[None, None, :, :]
-    inverse = np.linalg.inv(root)
-    white = np.einsum("kij,hdkj->hdki", inverse, gap)
-    log_det = np.log(np.diagonal(root, axis1=1, axis2=2)).sum(axis=1)
+    samples = mean[:, :, None, :] + _draws(s.draws, dims) @ root.transpose(0, 1, 3, 2)
+    # Rows: readings, then the hypothesis that is asked (k); below it all draws of all hypotheses.
+    gap = samples.reshape(len(mean), 1, -1, dims) - mean[:, :, None, :]
+    white = gap @ np.linalg.inv(root).transpose(0, 1, 3, 2)
+    log_det = np.log(np.diagonal(root, axis1=2, axis2=3)).sum(axis=2)
     # Student-like tails keep far hypotheses from looking infinitely telling.
-    log_density = -0.5 * (4.0 + dims) * np.log1p((white**2).sum(axis=-1) / 4.0) - log_det
-    top = log_density.max(axis=2, keepdims=True)
-    weighted = lead.share * np.exp(log_density - top)
-    total = weighted.sum(axis=2)
-    gain = 0.0
-    for labels, factor in ((lead.label, 1.0), (lead.part, s.part_weight)):
-        indicator = (labels[:, None] == labels[None, :]).astype(float)
-        same = np.einsum("hdk,hk->hd", weighted, indicator)
-        prior = indicator @ lead.share
-        per_hypothesis = np.log(np.maximum(same, 1e-300) / total / prior[:, None]).mean(axis=1)
-        gain += factor * float(lead.share @ per_hypothesis)
-    return max(gain, 0.0)
+    log_density = -0.5 * (4.0 + dims) * np.log1p((white**2).sum(axis=-1) / 4.0) - log_det[:, :, None]
+    top = log_density.max(axis=1, keepdims=True)
+    weighted = lead.share[:, None] * np.exp(log_density - top)
+    total = weighted.sum(axis=1)
+    gain = np.zeros(len(mean))
+    for same_group, factor in ((lead.same_fault, 1.0), (lead.same_part, s.part_weight)):
+        # What each draw says of the group that its own hypothesis belongs to.
+        same = (same_group @ weighted).reshape(*mean.shape[:2], *mean.shape[1:2], -1)
+        own = np.diagonal(same, axis1=1, axis2=2).transpose(0, 2, 1)
+        prior = same_group @ lead.share
+        ratio = np.maximum(own, 1e-300) / total.reshape(own.shape) / prior[:, None]
+        gain += factor * (np.log(ratio).mean(axis=2) @ lead.share)
+    return np.maximum(gain, 0.0)
 
 
 def binary_information(
@@ -106,9 +114,8 @@ def binary_information(
     gain = 0.0
     for chance in (yes, 1.0 - yes):
         total = float(lead.share @ chance)
-        for labels, factor in ((lead.label, 1.0), (lead.part, s.part_weight)):
-            indicator = (labels[:, None] == labels[None, :]).astype(float)
-            prior = indicator @ lead.share
-            same = indicator @ (lead.share * chance)
+        for same_group, factor in ((lead.same_fault, 1.0), (lead.same_part, s.part_weight)):
+            prior = same_group @ lead.share
+            same = same_group @ (lead.share * chance)
             gain += factor * float(lead.share @ (chance * np.log(np.maximum(same / prior, 1e-12) / total)))
     return power * max(gain, 0.0)

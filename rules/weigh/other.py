@@ -8,7 +8,7 @@ import numpy as np
 
 from calc.twin import Floats, Twin
 from rules.weigh.frame import Frame, frame
-from rules.weigh.laplace import Fitter, fit_modes
+from rules.weigh.laplace import QUICK, Fitter, fit_modes
 
 _NU = 3.0
 # Room beyond the healthy spread, in transformed units: level and contrasts. Judgement.
@@ -34,7 +34,7 @@ def other_evidence(twin: Twin, data: Frame) -> float:
     mode = twin.modes("none")[:1]
     # A plate that contradicts itself speaks against every machine alike, so against this one too.
     silent = twin.plate_misfit(np.zeros((1, twin.dim))).shape[1] == 0
-    plate = 0.0 if silent else float(fit_modes(twin, mode, frame([])).evidence[0])
+    plate = 0.0 if silent else float(fit_modes(twin, mode, frame([]), heat=QUICK).evidence[0])
     if not data.groups:
         return plate
     fitter = Fitter(twin, data)

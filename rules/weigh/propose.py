@@ -14,10 +14,9 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from calc.observe import InstrumentError
 from calc.quantities import RUNNING_STATES
 from calc.sheet import CaseSheet
-from calc.twin import Ask
+from calc.twin import Ask, Floats
 from rules.answer import NextItem
 from rules.gate import GateState, situation_of
 from rules.knowledge import Knowledge, Observation, ReadingRule
@@ -127,7 +126,6 @@ def _readings(
     s: ProposalSettings,
 ) -> list[Candidate]:
     sheet, twin = posterior.sheet, posterior.twin
-    meters = posterior.meters
     taken = {r.key for r in sheet.readings}
     chances: dict[str, float] = {}
     kept_from_running = s.found_standing if found_standing(sheet, knowledge, s) else 1.0
@@ -148,10 +146,13 @@ def _readings(
     covered = [ask for ask in asks if twin.covers(ask)]
     modes = [posterior.modes[h.place] for h in lead.hypotheses]
     z = posterior.fit.z[[h.place for h in lead.hypotheses]]
-    looks = {look.ask.key: look for look in outlooks(twin, modes, z, covered, dict(meters))}
+    looks = {look.ask.key: look for look in outlooks(twin, modes, z, covered, dict(posterior.meters))}
+    views = [
+        _view(posterior, knowledge, lead, looks.get(ask.key), rule, state)
+        for (rule, state, _), ask in zip(candidates, asks, strict=True)
+    ]
     found = []
-    for (rule, state, chance), ask in zip(candidates, asks, strict=True):
-        gain = _gain(posterior, knowledge, lead, looks.get(ask.key), rule, state, meters, s)
+    for (rule, state, chance), ask, gain in zip(candidates, asks, _gains(views, lead, s), strict=True):
         how = rule.states[state]
         minutes = how.minutes + arranging(sheet, state, s)
         score = chance * gain / ((minutes + s.overhead_minutes) * _hazard(how.hazards, s))
@@ -217,34 +218,56 @@ def _hazard(hazards: Sequence[str], s: ProposalSettings) -> float:
     return 1.0 + s.hazard_cost * len(hazards)
 
 
-def _gain(
+@dataclass(frozen=True)
+class View:
+    """What the leading hypotheses say about one reading: means (h, m), covariances (h, m, m)."""
+
+    mean: Floats
+    spread: Floats
+    share: float = 1.0
+    """How much of the information is new, after what was read of the same family."""
+
+
+def _view(
     posterior: Posterior,
     knowledge: Knowledge,
     lead: Leading,
     look: Outlook | None,
     rule: ReadingRule,
     state: str,
-    meters: Mapping[str, InstrumentError],
-    s: ProposalSettings,
-) -> float:
-    """Information of one reading about fault and part. [nats]"""
+) -> View | None:
+    """What is expected of one reading; None where some hypothesis says nothing of it."""
     if look is not None:
         covariance = posterior.fit.covariance[[h.place for h in lead.hypotheses]]
         spread = look.slope @ covariance @ look.slope.transpose(0, 2, 1) + np.diag(look.error**2)
-        return information(look.mean, spread, lead, s)
+        return View(look.mean, spread)
     by_id = {f.id: f for f in posterior.faults}
     healthy = knowledge.faults.get("healthy")
     shapes = []
     for h in lead.hypotheses:
         found = spread_of(by_id[h.fault], healthy, rule.id, state)
         if found is None:
-            return 0.0
+            return None
         shapes.append(shape(found))
-    error = meters[rule.id].share if shapes[0][0] else meters[rule.id].floor
+    meter = posterior.meters[rule.id]
+    error = meter.share if shapes[0][0] else meter.floor
     mean = np.array([[centre] for _, centre, _ in shapes])
     variance = np.array([[[sigma**2 + error**2]] for _, _, sigma in shapes])
-    family = _family_factor(posterior, rule.id)
-    return family * information(mean, variance, lead, s)
+    return View(mean, variance, _family_factor(posterior, rule.id))
+
+
+def _gains(views: Sequence[View | None], lead: Leading, s: ProposalSettings) -> list[float]:
+    """Information of each reading about fault and part, all readings of one size at once. [nats]"""
+    gains = [0.0] * len(views)
+    sizes = {view.mean.shape[1] for view in views if view is not None}
+    for size in sorted(sizes):
+        places = [i for i, view in enumerate(views) if view is not None and view.mean.shape[1] == size]
+        picked = [view for view in views if view is not None and view.mean.shape[1] == size]
+        mean, spread = np.stack([v.mean for v in picked]), np.stack([v.spread for v in picked])
+        found = information(mean, spread, lead, s)
+        for place, view, gain in zip(places, picked, found, strict=True):
+            gains[place] = view.share * float(gain)
+    return gains
 
 
 def _family_factor(posterior: Posterior, measure: str) -> float:

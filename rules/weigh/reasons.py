@@ -51,30 +51,31 @@ def _best(posterior: Posterior, fault: str) -> Hypothesis:
 
 
 def _circuit(posterior: Posterior, own: Hypothesis, other: Hypothesis) -> list[Reason]:
-    fit, data = posterior.fit, posterior.data
-    texts = posterior.texts
+    gains = posterior.fit.log_likelihood[own.place] - posterior.fit.log_likelihood[other.place]
     found = []
-    for k, (seen, group) in enumerate(zip(data.seen, data.groups, strict=True)):
-        weight = float(fit.log_likelihood[own.place, k] - fit.log_likelihood[other.place, k])
-        with_fault, without = (
-            amount_text(
-                seen.ask.measure,
-                [float(v) for v in values_of(fit.predicted[h.place, group], seen.transform)],
-                seen.transform.cap,
-            )
-            for h in (own, other)
-        )
-        read = texts.get(seen.ask.key, "")
+    for place, (seen, gain) in enumerate(zip(posterior.data.seen, gains, strict=True)):
+        weight = float(gain)
+        if abs(weight) < LEAST_WEIGHT:  # is not shown by itself
+            found.append(Reason(about=seen.ask.key, text="", weight=weight))
+            continue
+        with_fault, without = _expected(posterior, own, place), _expected(posterior, other, place)
         found.append(
             Reason(
                 about=seen.ask.key,
                 text=f"{title(seen.ask.key)}: this fault gives {with_fault}, {_name(other.fault)} {without}",
                 weight=weight,
-                read=read,
+                read=posterior.texts.get(seen.ask.key, ""),
                 expected=with_fault,
             )
         )
     return found
+
+
+def _expected(posterior: Posterior, hypothesis: Hypothesis, place: int) -> str:
+    """What a hypothesis gives for the reading at a place of the frame, in words."""
+    seen, group = posterior.data.seen[place], posterior.data.groups[place]
+    values = values_of(posterior.fit.predicted[hypothesis.place, group], seen.transform)
+    return amount_text(seen.ask.measure, [float(v) for v in values], seen.transform.cap)
 
 
 def _tables(posterior: Posterior, fault: str, against: str) -> list[Reason]:
