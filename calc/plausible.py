@@ -48,6 +48,11 @@ def _reading_limit(name: str) -> float:
     return float(str(table("reading_limits")[name]))
 
 
+def far_off_times() -> float:
+    """Return how many times its band a reading may be before a slip of the unit is likelier."""
+    return _reading_limit("times_expected")
+
+
 @cache
 def _highest(section: str, measure: str) -> Value | None:
     listed = table("reading_limits")[section]

@@ -25,6 +25,9 @@ NOT_ENERGISED: Final = frozenset(STATES) - ENERGISED_STATES
 DECISIVE: Final = frozenset({"standby", "starting", "loaded"})
 """States that a machine passes through when it is put back to work: while one is shut, the gate is."""
 
+GUARDED: Final = ENERGISED_STATES | {"isolated"}
+"""What a line may guard. Nothing is shut on the isolated machine; a reading may need a line there."""
+
 NEVER_ARRANGED: Final = frozenset({"stalled"})
 """Lines that guard nothing else are no part of the list that a person works through."""
 
@@ -144,7 +147,7 @@ def _judged(
     if not of_kind or not meets(rule.where, facts):
         return
     checked = _check(rule, seen, suspects)
-    states = frozenset(rule.guards) & ENERGISED_STATES
+    states = frozenset(rule.guards) & GUARDED
     if checked.only:
         states &= frozenset(checked.only)
     excepted = _excepted(rule, situation) & states if checked.status == "needed" else frozenset()

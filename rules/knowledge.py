@@ -192,7 +192,7 @@ class ReadingRule(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     plausible: tuple[str, str] | None = None
     """Outside this range the value is asked about once."""
     needs: tuple[str, ...] = ()
-    """Conditions: ``coupled``, ``can_turn``, ``capacitor_discharged``, ``load_held``, ``links_off`` …"""
+    """Lines of the gate that stand before the reading even on the isolated machine."""
     context: tuple[str, ...] = ()
     """What to note with it: ``temperature``, ``test_voltage``, ``speed``."""
     kinds: tuple[str, ...] = ("any",)
@@ -240,7 +240,7 @@ class GateRule(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     kinds: tuple[str, ...] = ("any",)
     where: dict[str, str] = {}
     guards: tuple[str, ...]
-    """States that stay shut until it is cleared."""
+    """States that stay shut until it is cleared; ``isolated``: before readings whose ``needs`` name it."""
     asks: tuple[str, ...]
     """Readings (``measure@state``) and observations that clear it."""
     clears: tuple[str, ...] = ()

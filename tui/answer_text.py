@@ -69,10 +69,12 @@ def stop_lines(sheet: CaseSheet, knowledge: Knowledge) -> list[str]:
 
 def gate_lines(energise: Energise) -> list[str]:
     """Return the gate: shut and what it still needs, or that nothing recorded forbids."""
-    if energise.gate != "shut":
-        return paragraph(energise.says or NOTHING_FORBIDS, first="Energising: ")
-    shown = paragraph(energise.says or "The gate is shut.", first="Energising: ")
-    forbids = _unique(line.because or line.needs for line in energise.lines if line.status == "forbids")
+    is_shut = energise.gate == "shut"
+    says = energise.says or ("The gate is shut." if is_shut else NOTHING_FORBIDS)
+    shown = paragraph(says, first="Energising: ")
+    forbids = _unique(
+        line.because or line.needs for line in energise.lines if is_shut and line.status == "forbids"
+    )
     needs = _unique(line.needs for line in energise.lines if line.status == "needed")
     for text in forbids[:FORBIDS_SHOWN]:
         shown += paragraph(text, first="  forbids  ")

@@ -17,8 +17,8 @@ from casebook import bodies
 from rules.findings import findings
 from tui.context import split_context
 from tui.experience import Experience
-from tui.shift import for_this_shift, isolation_lapse, recent_sheet
-from tui.typed import Understood, understand
+from tui.shift import before_isolated, for_this_shift, isolation_lapse, standing_sheet
+from tui.typed import Understood, doubted, understand
 from tui.version import VERSION
 from tui.words import band_text, reading_text
 
@@ -28,7 +28,7 @@ if TYPE_CHECKING:
     from calc.sheet import CaseSheet, Machine
     from casebook.book import Casebook
     from casebook.fold import Case
-    from rules.answer import Diagnosis, Turn
+    from rules.answer import Band, Diagnosis, Turn
     from rules.knowledge import Knowledge
     from rules.learned import Shift
 
@@ -123,7 +123,8 @@ class Visit:
         ``temperature="24"``, ``method="four_wire"``. Raises InputError where the text is no such reading.
         """
         values, beside = split_context(text, self.context_of(measure))
-        return understand(self.case.machine, measure, state, values, {**beside, **context})
+        understood = understand(self.case.machine, measure, state, values, {**beside, **context})
+        return doubted(understood, self.knowledge.readings.get(measure), self._band(understood.key))
 
     def context_of(self, measure: str) -> tuple[str, ...]:
         """Return what may be noted with a reading, such as ``temperature``; what decides is first."""
@@ -137,6 +138,11 @@ class Visit:
     def observe(self, observation: str, answer: bool | None) -> str:
         """Store one answer to an observation; None takes an earlier one back."""
         return self._put(bodies.Observed(observation=observation, answer=answer))
+
+    def observe_all(self, answers: Mapping[str, bool]) -> None:
+        """Store several answers, all or none."""
+        if answers:
+            self._put(*(bodies.Observed(observation=name, answer=seen) for name, seen in answers.items()))
 
     def set_machine(self, machine: Machine) -> None:
         """Store what is now known of the machine; blanks outside the plate change nothing."""
@@ -163,9 +169,9 @@ class Visit:
 
     # what protects
 
-    def isolate(self, record: bodies.Isolation) -> str:
-        """Store who isolated and locked out what and how it was proved dead; or that this was lifted."""
-        return self._put(record)
+    def isolate(self, record: bodies.Isolation, *, shown: Sequence[str] = ()) -> str:
+        """Store who isolated what and how it was proved dead; ``shown`` are observations answered yes."""
+        return self._put(*(bodies.Observed(observation=name, answer=True) for name in shown), record)
 
     def lift(self) -> str:
         """Store that the isolation was lifted."""
@@ -175,21 +181,30 @@ class Visit:
         """Store that the hazards of a state were read, in the words that were shown."""
         return self._put(bodies.HazardAcknowledged(hazards=tuple(hazards), about=state, shown=shown))
 
-    def wants_first(self, state: str, hazards: Sequence[str]) -> str:
+    def wants_first(self, state: str, hazards: Sequence[str], measure: str | None = None) -> str:
         """Return what must come before a reading in a state: ``isolation``, ``acknowledge``, or nothing."""
         if state == "isolated":
             record = self.isolation
-            return "" if record is not None and record.proved_dead else "isolation"
+            proved = record is not None and record.proved_dead and not self._unshown(measure)
+            return "" if proved else "isolation"
         if state not in ENERGISED_STATES:
             return ""
         return "acknowledge" if set(hazards) - self.acknowledged(state) else ""
+
+    def _unshown(self, measure: str | None) -> bool:
+        """Whether a line of the gate that a reading needs on the isolated machine is not cleared."""
+        rule = self.knowledge.readings.get(measure or "")
+        lines = before_isolated(self.case, self.knowledge) if rule is not None else ()
+        asked = [name for line in lines if rule is not None and line.id in rule.needs for name in line.asks]
+        return any(self.sheet.observations.get(name) is not True for name in asked)
 
     # what it means
 
     def weigh(self) -> Weighed:
         """Return the answer to the case as it stands; worked out again only when the sheet has changed."""
         sheet = self.sheet
-        weighed_from = (sheet, recent_sheet(self.case, datetime.now(UTC)), self.use_learned)
+        standing = standing_sheet(self.case, self.knowledge, datetime.now(UTC))
+        weighed_from = (sheet, standing, self.use_learned)
         if self._weighed is None or weighed_from != self._weighed_from:
             before = self._weighed.diagnosis if self._weighed else None
             now = weigh(sheet, self.learned_knowledge(), name=self.number, own=self.own_windings())
@@ -237,11 +252,15 @@ class Visit:
         self.refresh()
         return made[-1].id
 
+    def _band(self, key: str) -> Band | None:
+        """Return the band that was last worked out for ``measure@state``."""
+        bands = self._weighed.diagnosis.expected if self._weighed else ()
+        return next((band for band in bands if f"{band.measure}@{band.state}" == key), None)
+
     def _taken(self, understood: Understood) -> bodies.ReadingTaken:
         """Return a reading as it is logged: with the band that was shown and the limit that it crosses."""
         reading = understood.reading
-        bands = self._weighed.diagnosis.expected if self._weighed else ()
-        band = next((band for band in bands if f"{band.measure}@{band.state}" == reading.key), None)
+        band = self._band(reading.key)
         alone = msgspec.structs.replace(self.sheet, readings=(reading,))
         crossed = next(iter(findings(alone, self.knowledge)), None)
         return bodies.ReadingTaken(

@@ -9,6 +9,7 @@ import re
 from typing import TYPE_CHECKING, Final
 
 from calc.errors import InputError, Problem
+from calc.quantities import MEASURES, arity
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -68,6 +69,17 @@ def split_context(text: str, allowed: Sequence[str]) -> tuple[str, dict[str, str
         if not name or not rest:
             return before, found
         found[name], before = given, rest
+
+
+def values_wanted(measure: str, kind: str, context: Sequence[str] = ()) -> str:
+    """Return what belongs into the line for a measure, in words, and what may go with it."""
+    known = MEASURES.get(measure)
+    if known is None:
+        return "a value with its unit"
+    many = "three values" if arity(measure, kind) == 3 else "one value"
+    values = f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"
+    hint = context_hint(measure, context)
+    return f"{values}; {hint}" if hint else values
 
 
 def context_hint(measure: str, allowed: Sequence[str]) -> str:

@@ -158,12 +158,11 @@ def _facts(case: Case, knowledge: Knowledge) -> Iterable[tuple[str, str]]:
 def _gate(diagnosis: Diagnosis) -> Iterable[str]:
     """Yield the gate: what it needs, what forbids."""
     energise = diagnosis.energise
-    if energise.gate != "shut":
-        yield energise.says or NOTHING_FORBIDS
-        return
-    yield energise.says or "The gate is shut."
+    is_shut = energise.gate == "shut"
+    yield energise.says or ("The gate is shut." if is_shut else NOTHING_FORBIDS)
     marks = {"forbids": "forbids: ", "needed": "still needed: ", "cleared": "cleared: "}
-    for line in sorted(energise.lines, key=lambda line: list(marks).index(line.status)):
+    listed = [line for line in energise.lines if is_shut or line.status == "needed"]
+    for line in sorted(listed, key=lambda line: list(marks).index(line.status)):
         yield marks[line.status] + line.needs + (f" ({line.because})" if line.because else "")
 
 

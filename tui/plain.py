@@ -18,6 +18,7 @@ from tui.answer_text import (
     titled,
 )
 from tui.compose import Visit
+from tui.context import values_wanted
 from tui.drafts import Drafts
 from tui.output import say
 from tui.plain_intake import ask_case
@@ -32,6 +33,7 @@ if TYPE_CHECKING:
 HELP = (
     "Type the values that are asked for, as the meter shows them:",
     "  15.2 15.9 14.8, 0.42, 1.2k, >5G, open; - is a value that was not read.",
+    "  What was noted with it goes behind: 350 at 24 C 500 V; 1.91 1.92 1.90 at 24 4-wire.",
     "Or one of these words:",
     "  skip [WHY]               put the proposed item aside",
     "  read MEASURE STATE       take another reading",
@@ -93,7 +95,12 @@ def show(visit: Visit) -> None:
 def _asked(visit: Visit) -> str:
     """Return the prompt: the item that a bare answer answers."""
     items = proposals(visit)
-    return item_name(items[0], visit.knowledge) if items else "Nothing is proposed; help lists the words"
+    if not items:
+        return "Nothing is proposed; help lists the words"
+    first = items[0]
+    measure = first.measure or ""
+    wanted = values_wanted(measure, visit.kind, visit.context_of(measure)) if measure else "yes or no"
+    return f"{item_name(first, visit.knowledge)} ({wanted})"
 
 
 def _one(visit: Visit, line: str) -> bool:

@@ -7,7 +7,9 @@ from typing import TYPE_CHECKING
 from calc.quantities import MEASURES, STATES
 from casebook import bodies
 from tui.answer_text import gate_lines, hazard_texts, reason_lines
+from tui.context import values_wanted
 from tui.output import say
+from tui.shift import before_isolated
 from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell
 from tui.words import fault_name, measure_name, plain
 
@@ -16,6 +18,7 @@ if TYPE_CHECKING:
 
     from rules.answer import NextItem
     from tui.compose import Visit
+    from tui.typed import Understood
 
 
 CONFIRMED = {
@@ -45,21 +48,26 @@ def answer_proposal(visit: Visit, line: str) -> bool:
 def take(visit: Visit, measure: str, state: str, text: str, hazards: tuple[str, ...]) -> bool:
     """Take one reading: what must come first, what was understood, then into the casebook."""
     understood = visit.understand(measure, state, text)
-    if not _first(visit, state, hazards):
+    if not _first(visit, measure, state, hazards):
         return False
-    tell(understood.echo)
-    if understood.asks and not ask_yes(f"{understood.asks}. Is it so?"):
+    if not _sure(understood):
         return False
     visit.record(understood)
     return True
 
 
-def _first(visit: Visit, state: str, hazards: tuple[str, ...]) -> bool:
+def _sure(understood: Understood) -> bool:
+    """Say what was understood; ask where it is doubted."""
+    tell(understood.echo)
+    return not understood.asks or ask_yes(f"{understood.asks}. Is it so?")
+
+
+def _first(visit: Visit, measure: str, state: str, hazards: tuple[str, ...]) -> bool:
     """Ask for the isolation record or the acknowledgement that a state needs; return whether it is there."""
-    wanted = visit.wants_first(state, hazards)
+    wanted = visit.wants_first(state, hazards, measure)
     if wanted == "isolation":
         isolate(visit, "")
-        return visit.wants_first(state, hazards) == ""
+        return visit.wants_first(state, hazards, measure) == ""
     if wanted == "acknowledge":
         texts = hazard_texts(hazards, visit.knowledge)
         for text in texts:
@@ -78,6 +86,11 @@ def isolate(visit: Visit, _: str) -> bool:
     before = ask_yes("Tester proved before?")
     dead = ask_yes("Every line to every other and to earth proved dead?")
     after = ask_yes("Tester proved after?")
+    also = {
+        name: ask_yes(f"{line.name[:1].upper()}{line.name[1:]}?")
+        for line in before_isolated(visit.case, visit.knowledge)
+        for name in line.asks
+    }
     visit.isolate(
         bodies.Isolation(
             by=by,
@@ -86,9 +99,10 @@ def isolate(visit: Visit, _: str) -> bool:
             proved_dead=dead and before and after,
             tester_proved_before=before,
             tester_proved_after=after,
-        )
+        ),
+        shown=[name for name, yes in also.items() if yes],
     )
-    if not (locked and before and dead and after):
+    if not (locked and before and dead and after and all(also.values())):
         tell("This is no complete isolation record; no isolated reading is taken on it.")
     return True
 
@@ -119,7 +133,8 @@ def read(visit: Visit, rest: str) -> bool:
     hazards = _hazards(visit, measure, state)
     if rule is not None:
         tell(rule.states[state].leads)
-    values = " ".join(words[2:]) or ask(f"{measure_name(measure)}, {plain(state)}")
+    wanted = values_wanted(measure, visit.kind, visit.context_of(measure))
+    values = " ".join(words[2:]) or ask(f"{measure_name(measure)}, {plain(state)} ({wanted})")
     return bool(values) and take(visit, measure, state, values, hazards)
 
 
@@ -198,7 +213,10 @@ def correct(visit: Visit, _: str) -> bool:
     if text.lower() == "strike":
         visit.correct(chosen, None)
     elif at:
-        visit.correct(chosen, visit.understand(measure, state, text))
+        understood = visit.understand(measure, state, text)
+        if not _sure(understood):
+            return False
+        visit.correct(chosen, understood)
     elif text.lower() in YES + NO:
         visit.correct(chosen, bodies.Observed(observation=key, answer=text.lower() in YES))
     else:

@@ -15,6 +15,10 @@ if TYPE_CHECKING:
 
 LABEL_WIDTH: Final = 9
 _DOTS: Final = ((0x01, 0x08), (0x02, 0x10), (0x04, 0x20), (0x40, 0x80))
+TINY: Final = 1e-300
+"""Sizes below this are drawn as zero."""
+NARROWEST: Final = 1e-12
+"""A span narrower than this share of its ends is drawn as one value."""
 _STEPS: Final = (1.0, 2.0, 2.5, 5.0, 10.0)
 
 
@@ -184,10 +188,13 @@ def _between(points: list[tuple[float, float, float]], x: float) -> tuple[float 
 
 
 def _span(low: float, high: float) -> tuple[float, float]:
-    """Return a span that is never empty."""
-    if high > low:
+    """Return a span that is never empty, nor so narrow that its width is lost in rounding."""
+    size = max(abs(low), abs(high))
+    if size < TINY:
+        return -0.5, 0.5
+    if high - low > NARROWEST * size:
         return low, high
-    return (low - 0.5, low + 0.5) if low == 0 else tuple(sorted((low * 0.9, low * 1.1)))  # type: ignore[return-value]
+    return low - 0.1 * size, high + 0.1 * size
 
 
 def nice_span(low: float, high: float) -> tuple[float, float]:

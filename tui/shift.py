@@ -23,7 +23,7 @@ if TYPE_CHECKING:
     from casebook.fold import Case
     from rules.answer import Diagnosis
     from rules.gate import ShutLine
-    from rules.knowledge import Knowledge
+    from rules.knowledge import GateRule, Knowledge
 
 SHIFT: Final = timedelta(hours=12)
 """How long an isolation record and what cleared the gate hold: a long shift; common practice."""
@@ -65,12 +65,31 @@ def recent_sheet(case: Case, now: datetime) -> CaseSheet:
     return msgspec.structs.replace(case.sheet, readings=readings, observations=seen)
 
 
+def standing_sheet(case: Case, knowledge: Knowledge, now: datetime) -> CaseSheet:
+    """Return the recent sheet, without what was answered for an isolation that no longer holds."""
+    recent = recent_sheet(case, now)
+    holds = bool(case.isolation) and case.isolation[-1].what.isolated and not isolation_lapse(case, now)
+    fallen = set() if holds else {ask for rule in before_isolated(case, knowledge) for ask in rule.asks}
+    if not fallen & set(recent.observations):
+        return recent
+    kept = {name: yes for name, yes in recent.observations.items() if name not in fallen or not yes}
+    return msgspec.structs.replace(recent, observations=kept)
+
+
+def before_isolated(case: Case, knowledge: Knowledge) -> tuple[GateRule, ...]:
+    """Return the lines of the gate that stand before readings on this isolated machine."""
+    kinds = {"any", case.machine.kind}
+    return tuple(
+        rule for rule in knowledge.gates.values() if "isolated" in rule.guards and kinds & set(rule.kinds)
+    )
+
+
 def gate_now(
     case: Case, knowledge: Knowledge, *, suspects: Mapping[str, float], now: datetime | None = None
 ) -> GateState:
     """Return the gate of a case, shut again where only old entries cleared a line."""
     now = now or datetime.now(UTC)
-    recent = recent_sheet(case, now)
+    recent = standing_sheet(case, knowledge, now)
     whole = gate(case.sheet, knowledge, suspects=suspects)
     if recent == case.sheet or case.status == "closed":
         return whole
@@ -117,11 +136,15 @@ def for_this_shift(now: Diagnosis, case: Case, knowledge: Knowledge) -> Diagnosi
 
     Where an entry forbids energising, clearing the other lines is not proposed: it would lead nowhere.
     """
-    if recent_sheet(case, datetime.now(UTC)) == case.sheet:
+    if standing_sheet(case, knowledge, datetime.now(UTC)) == case.sheet:
         return now
     odds = {fault.id: fault.probability for fault in now.faults}
     state = gate_now(case, knowledge, suspects=odds)
-    lapsed = [one for one in state.shut if one.line.because.startswith(WAS_CLEARED)]
+    lapsed = [
+        one
+        for one in state.shut
+        if one.line.because.startswith(WAS_CLEARED) and one.states & ENERGISED_STATES
+    ]
     wants = [] if state.energise.because else [ask for one in lapsed for ask in one.wants]
     first = tuple(_item(ask, knowledge, now.next) for ask in dict.fromkeys(wants))
     asked = {item.key for item in first}

@@ -2,22 +2,29 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import math
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
+import msgspec
+
 from calc.errors import InputError, Problem
-from calc.quantities import INNER_UNIT
+from calc.plausible import far_off_times
+from calc.quantities import INNER_UNIT, MEASURES
 from calc.sheet import CaseSheet
 from calc.sheet_io import sheet_from_plain, sheet_to_plain
 from calc.typed import parse_typed, spell_out
-from calc.values import ValueTextError
+from calc.units import find_unit
+from calc.values import ValueTextError, parse_value
 from calc.vocabulary import CHECKED, CONTEXT_DIMENSION, CONTEXT_WORDS
-from tui.words import measure_name, plain
+from tui.words import band_text, measure_name, plain
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from calc.sheet import Machine, Reading
+    from calc.sheet import Machine, Reading, Value
+    from rules.answer import Band
+    from rules.knowledge import ReadingRule
 
 
 @dataclass(frozen=True)
@@ -46,6 +53,45 @@ def understand(
     reading, asks = _decoded(machine, plain_reading)
     echo = ", ".join([f"{spell_out(measure, reading.values)} ({plain(state)})", *noted(reading)])
     return Understood(reading=reading, echo=echo, asks=asks)
+
+
+def doubted(understood: Understood, rule: ReadingRule | None, band: Band | None) -> Understood:
+    """Return what was understood, asked about where it is hardly possible or far off its band."""
+    if understood.asks:
+        return understood
+    reading = understood.reading
+    asks = [_beyond(reading, value, rule) or _far_off(reading, value, band) for value in reading.values]
+    said = next((text for text in asks if text), "")
+    if not said:
+        return understood
+    note = f"{reading.note} ({CHECKED})" if reading.note else CHECKED
+    return replace(understood, reading=msgspec.structs.replace(reading, note=note), asks=said)
+
+
+def _beyond(reading: Reading, value: Value, rule: ReadingRule | None) -> str:
+    """Return why a value is outside the plausible range of its reading rule, or nothing."""
+    if rule is None or rule.plausible is None or not math.isfinite(value.number):
+        return ""
+    dimension = MEASURES[reading.measure].dimension
+    low, high = (parse_value(text, dimension=dimension) for text in rule.plausible)
+    if low.number <= value.number <= high.number:
+        return ""
+    return f"{value.text} is outside what is ever read here, {low.text} to {high.text}"
+
+
+def _far_off(reading: Reading, value: Value, band: Band | None) -> str:
+    """Return why a value is likelier a slip of the unit than a reading, or nothing."""
+    measure = MEASURES[reading.measure]
+    unit = find_unit(band.unit, dimension=measure.dimension) if band is not None else None
+    if band is None or unit is None or measure.usual_unit == "Mohm" or not math.isfinite(value.number):
+        return ""
+    times, number = far_off_times(), (value.number - float(unit.offset)) / float(unit.factor)
+    is_part = measure.dimension in {"resistance", "capacitance"}
+    if band.high < math.inf and number > times * band.high > 0.0:
+        return f"{value.text} is more than {times:g} times the {band_text(band)} expected"
+    if is_part and 0.0 < number < band.low / times:
+        return f"{value.text} is less than 1/{times:g} of the {band_text(band)} expected"
+    return ""
 
 
 def noted(reading: Reading) -> list[str]:

@@ -157,11 +157,12 @@ class UnknownGateLine(Issue):
 
 
 class GateLineCheck:
-    """What must be shown before energising is a line of the gate."""
+    """What must be shown before energising, or before a reading, is a line of the gate."""
 
     def look(self, knowledge: Knowledge) -> Iterator[Mistaken]:
         """Yield unknown gate lines."""
-        yield from unknown(UnknownGateLine, uses(knowledge, "faults.before_energising"), knowledge.gates)
+        named_lines = uses(knowledge, "faults.before_energising", "readings.needs")
+        yield from unknown(UnknownGateLine, named_lines, knowledge.gates)
 
 
 class UnknownGateCheck(Issue):

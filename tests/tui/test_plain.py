@@ -157,3 +157,29 @@ def test_the_kit_is_asked_once(talk, known, casebook):
     second = talk(*OPEN_CASE)
     assert "asked only once" in first.out
     assert "asked only once" not in second.out
+
+
+def test_what_may_be_typed_with_a_reading_is_told_in_its_question(talk, known, kit, casebook):
+    done = talk(*OPEN_CASE, "read insulation_resistance isolated", "350 at 24 C 500 V", *ISOLATION)
+    said = " ".join(done.out.split())
+    assert "one value in Mohm; add: at 24 C, 500 V" in said
+    assert newest(casebook).readings[0].what.reading.temperature.number == 24.0
+
+
+def test_a_correction_that_can_hardly_be_is_asked_about_once(talk, known, kit, casebook):
+    steps = ("read supply_voltage loaded 401 398 399", "yes", "correct", "1", "4010 398 399")
+    talk(*OPEN_CASE, *steps, "no")
+    assert newest(casebook).readings[0].what.reading.numbers[0] == 401.0
+
+
+def test_the_isolation_record_of_a_single_phase_machine_asks_for_its_capacitors(
+    talk, run, kit, sheet, casebook
+):
+    run("log", sheet("single_phase_capacitor_weak"), "--person", "Ines")
+    number = newest(casebook).number
+    before = len(newest(casebook).readings)
+    wanting = talk("Ines", number, "read main_resistance isolated 4.1", *ISOLATION, "no")
+    assert "Motor capacitors discharged by a resistor, proved below 50 V?" in " ".join(wanting.out.split())
+    assert len(newest(casebook).readings) == before
+    talk("Ines", number, "read main_resistance isolated 4.1", *ISOLATION, "yes")
+    assert len(newest(casebook).readings) == before + 1

@@ -103,7 +103,7 @@ class ClosingPage(FormPage[dict[str, str]]):
             one_of(dict(self.names), part) or "" for part in values["found"].split("+")
         )
         values["confirmed"] = one_of(CONFIRMED, values["confirmed"]) or "believed"
-        self.dismiss(values)
+        self.finish(values)
 
 
 def hear_minutes(text: str) -> Heard:

@@ -22,7 +22,7 @@ if TYPE_CHECKING:
 
     from casebook.fold import Case
     from rules.answer import Energise, GateLine
-    from rules.knowledge import Knowledge
+    from rules.knowledge import GateRule, Knowledge
 
 ORDER = ("forbids", "needed", "cleared")
 STATUS = {"needed": "needed", "cleared": "cleared", "forbids": "FORBIDS"}
@@ -87,10 +87,12 @@ class IsolationPage(FormPage[Isolation]):
     KEYS = "isolation"
     BINDINGS = bindings("isolation")
 
-    def __init__(self, person: str, tag: str, typed: dict[str, str] | None = None) -> None:
-        super().__init__(typed)
+    def __init__(self, person: str, tag: str, also: Sequence[GateRule] = ()) -> None:
+        super().__init__()
         self.person = person
         self.tag = tag
+        self.also = also
+        """What the gate asks for before readings on this machine when it is isolated."""
 
     def form_lines(self) -> list[Line]:
         """Return the lines of the record."""
@@ -105,6 +107,7 @@ class IsolationPage(FormPage[Isolation]):
                 width=5,
             ),
             Line("tester_proved", "tester", "y: proved on a live source before and after", hear=yes, width=5),
+            *(Line(line.id, "also", f"y: {line.name}", hear=yes, width=5) for line in self.also),
             Line("note", "points", "where it is isolated and locked", width=34),
         ]
 
@@ -117,17 +120,22 @@ class IsolationPage(FormPage[Isolation]):
                   "Locked out, with your own lock.", self.room),
         ]  # fmt: skip
 
+    @property
+    def proved(self) -> tuple[str, ...]:
+        """The lines in which a yes must stand."""
+        return ("proved_dead", "tester_proved", *(line.id for line in self.also))
+
     def done(self) -> None:
         """Store the record where it is whole."""
         values = self.values
         if not values["person"]:
             self.go_to("person")
             self.say("A name must stand there: who isolated and locked out.")
-        elif missing := [n for n in ("proved_dead", "tester_proved") if one_of(YES_NO, values[n]) != "yes"]:
+        elif missing := [name for name in self.proved if one_of(YES_NO, values[name]) != "yes"]:
             self.go_to(missing[0])
             self.say("Not proved: a y must stand there. F9 goes back without a record.")
         else:
-            self.dismiss(
+            self.finish(
                 Isolation(
                     by=values["person"], points=values["note"], locked_out=True, proved_dead=True,
                     tester_proved_before=True, tester_proved_after=True,

@@ -11,11 +11,11 @@ from textual.worker import get_current_worker
 
 from rules.answer import NextItem
 from rules.cautions import states_of
+from tui.context import values_wanted
 from tui.keys import bindings
 from tui.look import FAINT, STOP, STRONG, WATCH
 from tui.screens import worksheet_lines as blocks
 from tui.screens.reasons import reason_lines
-from tui.screens.worksheet_choices import values_wanted
 from tui.screens.worksheet_typing import WorksheetTyping
 from tui.shift import gate_now
 from tui.widgets.ruled import Ruled, fill, row, rows
@@ -190,7 +190,7 @@ class Worksheet(WorksheetTyping):
             and item.state not in self.was_read
         ):
             return "shut"
-        return self.visit.wants_first(item.state, item.hazards)
+        return self.visit.wants_first(item.state, item.hazards, item.measure)
 
     def placeholder(self) -> str:
         """Return what the line to type expects."""
@@ -260,8 +260,10 @@ class Worksheet(WorksheetTyping):
         return f"case-{self.visit.case.id}-{self.visit.person}"
 
     def draft(self) -> tuple[str, dict[str, Any]] | None:
-        """Keep what stands in the line."""
-        return self.draft_name, {"typed": self.query_one(TypedLine).value, "case": self.visit.case.id}
+        """Keep what stands in the line, or was taken out of it and waits for what must come first."""
+        typed = next(iter(self.query(TypedLine)), None)
+        text = (typed.value if typed is not None else "") or self.under_way
+        return self.draft_name, {"typed": text, "case": self.visit.case.id} if text.strip() else {}
 
     def unsaved(self) -> str:
         """Say that there is something typed."""

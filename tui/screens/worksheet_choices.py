@@ -4,10 +4,9 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from calc.quantities import MEASURES, arity
+from calc.quantities import MEASURES
 from casebook.bodies import Closed
 from rules.answer import NextItem
-from tui.context import context_hint
 from tui.screens.ask import Ask
 from tui.screens.closing import CONFIRMED
 from tui.screens.pick import Choice
@@ -103,14 +102,3 @@ def item_of(key: str, proposals: Sequence[NextItem], knowledge: Knowledge) -> Ne
     if how is None:
         return NextItem(measure=measure, state=state)
     return NextItem(measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards)
-
-
-def values_wanted(measure: str, kind: str, context: Sequence[str] = ()) -> str:
-    """Return what belongs into the line for a measure, in words, and what may go with it."""
-    known = MEASURES.get(measure)
-    if known is None:
-        return "a value with its unit"
-    many = "three values" if arity(measure, kind) == 3 else "one value"
-    values = f"{many}{f' in {known.usual_unit}' if known.usual_unit else ''}"
-    hint = context_hint(measure, context)
-    return f"{values}; {hint}" if hint else values

@@ -24,6 +24,7 @@ from tui.screens.worksheet_choices import (
     shut_question,
     stored_choices,
 )
+from tui.shift import before_isolated
 from tui.words import key_words, question
 
 if TYPE_CHECKING:
@@ -160,11 +161,12 @@ class WorksheetKeys(Page[None]):
 
     async def isolate(self) -> bool:
         """Ask for the isolation record and store it."""
-        page = IsolationPage(self.visit.person, self.visit.sheet.machine.tag or "")
-        record = await self.app.push_screen_wait(page)
-        if record is None:
+        also = before_isolated(self.visit.case, self.visit.knowledge)
+        page = IsolationPage(self.visit.person, self.visit.sheet.machine.tag or "", also)
+        shown = [name for line in also for name in line.asks]
+        page.store = lambda record: self.visit.isolate(record, shown=shown)
+        if await self.app.push_screen_wait(page) is None:
             return False
-        self.visit.isolate(record)
         self.say("stored: isolation record", FAINT)
         self.weigh()
         return True
@@ -183,7 +185,7 @@ class WorksheetKeys(Page[None]):
         elif page.wants_lifting:
             self.visit.lift()
             self.say("stored: isolation lifted", FAINT)
-            self.show_blocks()
+            self.weigh()
 
     def isolation_words(self) -> list[str]:
         """Return the isolation records in words."""
@@ -223,9 +225,9 @@ class WorksheetKeys(Page[None]):
         fitting = [o for o in knowledge.observations.values() if {"any", kind} & set(o.kinds)]
         fitting.sort(key=lambda o: proposed.index(o.id) if o.id in proposed else len(proposed))
         questions = [(o.id, o.name) for o in fitting]
-        new = await self.app.push_screen_wait(Tick(questions, dict(self.visit.sheet.observations)))
-        for name, seen in (new or {}).items():
-            self.visit.observe(name, seen)
+        page = Tick(questions, dict(self.visit.sheet.observations))
+        page.store = self.visit.observe_all
+        new = await self.app.push_screen_wait(page)
         if new:
             words = "; ".join(
                 f"{question(name, knowledge)} {'yes' if seen else 'no'}" for name, seen in new.items()
@@ -235,9 +237,10 @@ class WorksheetKeys(Page[None]):
     @work(group="enter")
     async def action_note(self) -> None:
         """Store a remark."""
-        text = await self.app.push_screen_wait(Note())
-        if text:
-            self.visit.note(text)
+        page = Note()
+        page.draft_name = f"note-{self.draft_name}"
+        page.store = self.visit.note
+        if await self.app.push_screen_wait(page):
             self.say("stored: remark", FAINT)
 
     # correct, close
@@ -286,9 +289,10 @@ class WorksheetKeys(Page[None]):
         whole = knowledge.faults.get(found)
         known = whole.for_kind(self.visit.kind) if whole else None
         retest = [key_words(key, knowledge) for key in known.retest] if known else []
-        answer = await self.app.push_screen_wait(ClosingPage(self.visit, found, names, retest))
-        if answer is None:
+        page = ClosingPage(self.visit, found, names, retest)
+        page.draft_name = f"closing-{self.draft_name}"
+        page.store = lambda answer: self.visit.close(closing_of(answer, known.retest if known else ()))
+        if await self.app.push_screen_wait(page) is None:
             return
-        self.visit.close(closing_of(answer, known.retest if known else ()))
         self.plateside.desk.drafts.drop(self.draft_name)
         self.dismiss(None)
