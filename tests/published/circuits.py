@@ -173,7 +173,12 @@ def run(
         positive=one(share), negative=one(complex(negative)), frequency=one(frequency), regulation=one(0.0)
     )
     state: StateResult = solve(
-        circuit, rows, feed, one(max(gap_w, 1e-6 * power_base) / power_base), standing=standing, r1=circuit.r1
+        circuit,
+        rows,
+        feed,
+        one(max(gap_w, 1e-6 * power_base) / power_base),
+        standing=one(float(standing)),
+        r1=circuit.r1,
     )
     amps = machine.phase_v / machine.base_ohm
     return Solved(

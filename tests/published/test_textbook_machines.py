@@ -127,7 +127,8 @@ WHAT = {LOCKED: "locked-rotor current", NO_LOAD: "no-load current", HALF[0]: "cu
 def source_of(name, key="", told=""):
     fields = {"": "", BARE: ", bare plate", WITH_LOSSES: ", plate with losses", FULL: ", full plate"}[told]
     return published(
-        name, "parameters of its circuit", known="looked up" if name.startswith("Fitzgerald") else "from memory",
+        name, "parameters of its circuit",
+        known="looked up" if name.startswith("Fitzgerald") else "from memory",
         checks=["calc.induction_3ph.model.fit", "calc.induction_3ph.equivalent.circuit"],
         says=f"{WHAT.get(key, 'what the plate tells')} of the exact circuit in the 90 % band{fields}",
     )  # fmt: skip
