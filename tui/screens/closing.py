@@ -9,6 +9,7 @@ from tui.look import STRONG
 from tui.screens.form import FormPage, Heard, Line, hear_choice, one_of
 from tui.screens.sheet import SheetPage
 from tui.widgets.ruled import rows
+from tui.words import plain
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -41,7 +42,13 @@ class ClosingPage(FormPage[dict[str, str]]):
     def form_lines(self) -> list[Line]:
         """Return the lines: all but the first may stay blank."""
         return [
-            Line("found", "found", "what it really was; two faults joined by +", self.found, self.hear_found),
+            Line(
+                "found",
+                "found",
+                "what it really was; two faults joined by +",
+                plain(self.found),
+                self.hear_found,
+            ),
             Line(
                 "confirmed",
                 "known by",

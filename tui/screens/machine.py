@@ -11,7 +11,7 @@ from tui.look import STRONG
 from tui.plate_lines import plate_lines, typed_of
 from tui.screens.page import TextPage
 from tui.screens.worksheet_lines import band_number
-from tui.widgets.ruled import blank, pad, row, rows, tagged
+from tui.widgets.ruled import INDENT, blank, pad, row, rows, tagged
 from tui.words import fault_name, kind_name, measure_name, plain, reading_text
 
 if TYPE_CHECKING:
@@ -33,6 +33,10 @@ HISTORY = (
     "bearing_temperature",
 )
 """Readings that are worth following over the years."""
+
+
+BAND_ROOM, NAME_ROOM = 30, 56
+"""Cells for a band with its temperature, and at most for the name of its reading."""
 
 
 class MachinePage(TextPage):
@@ -72,7 +76,7 @@ class MachinePage(TextPage):
         """Return the whole page."""
         if self.visit is None:
             return rows("machine", f"{self.tag or 'No tag'}: no case is stored.", self.room)
-        return [*self.plate(), *self.expectation(), *self.history(), *self.case_lines()]
+        return [*self.plate(), *self.case_lines(), *self.history(), *self.expectation()]
 
     def plate(self) -> list[Content]:
         """Return the plate and how the machine stands, in the plate's words, as many abreast as fit."""
@@ -83,7 +87,7 @@ class MachinePage(TextPage):
         typed = typed_of(sheet_of(machine))
         shown = [(line.word, typed[line.field]) for line in plate_lines(machine.kind) if line.field in typed]
         out = rows(*tagged(self.tag, kind_name(machine.kind)), self.room, style=STRONG)
-        abreast = max((self.room - 11) // COLUMN, 1)
+        abreast = max((self.room - INDENT) // COLUMN, 1)
         for start in range(0, len(shown), abreast):
             cells = [f"{word} {plain(text)}" for word, text in shown[start : start + abreast]]
             out.append(
@@ -94,11 +98,13 @@ class MachinePage(TextPage):
     def expectation(self) -> list[Content]:
         """Return what the healthy machine should read."""
         out: list[Content] = [blank()]
+        name_room = max(self.room - INDENT - BAND_ROOM - 1, BAND_ROOM)
         for place, band in enumerate(self.expected):
             what = f"{measure_name(band.measure)}, {plain(band.state)}"
             text = f"{band_number(band.low)} to {band_number(band.high)} {band.unit}"
             at = f" at {band.temperature_c:g} degC" if band.temperature_c is not None else ""
-            out.append(row("" if place else "expected", pad(what, 44), " ", text + at))
+            said = pad(text + at, BAND_ROOM)
+            out.append(row("" if place else "expected", pad(what, min(name_room, NAME_ROOM)), " ", said))
         return (
             out if len(out) > 1 else [*out, row("expected", "worked out now, or the kind has no model yet")]
         )

@@ -177,7 +177,7 @@ def reading_lines(reads: Sequence[Read], room: int) -> list[Content]:
 def _reading_line(read: Read, word: str, room: int) -> Content:
     """Return one reading in one line."""
     wide = room >= WIDE
-    name_room, value_room = (34, 24) if wide else (21, 18)
+    name_room, value_room = (31, 24) if wide else (21, 18)
     values = reading_text(read.reading).replace(" / ", " ")
     verdict, style = _verdict(read)
     rest = room - INDENT - name_room - value_room - SCALE_WIDTH - 3
