@@ -46,9 +46,13 @@ def write(key: str, knowledge: Knowledge) -> None:
         place = folder()
         place.mkdir(parents=True, exist_ok=True)
         handle, name = tempfile.mkstemp(dir=place, prefix=".rules-")
-        with os.fdopen(handle, "wb") as file:
-            file.write(msgspec.json.encode(knowledge))
-        Path(name).replace(place / f"rules-{key}.json")
+        try:
+            with os.fdopen(handle, "wb") as file:
+                file.write(msgspec.json.encode(knowledge))
+            Path(name).replace(place / f"rules-{key}.json")
+        except OSError:  # such as a full disk: no half file may stay
+            Path(name).unlink(missing_ok=True)
+            raise
         kept = sorted(place.glob("rules-*.json"), key=lambda path: path.stat().st_mtime)
         for old in kept[:-_KEPT]:
             old.unlink()

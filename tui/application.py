@@ -11,13 +11,14 @@ from typing import TYPE_CHECKING, Any, Final
 
 from rich.text import Text
 from textual.app import App
-from textual.events import Event, Key
+from textual.events import Event, Key, Paste
 
 from tui import look, mishaps
 from tui.desk import Desk
 from tui.driver import cell_driver
 from tui.screens.casebook import CasebookPage
 from tui.screens.page import Page, refusal
+from tui.steady import Steady
 from tui.typeahead import TypeAhead
 
 if TYPE_CHECKING:
@@ -27,11 +28,14 @@ if TYPE_CHECKING:
     from rich.console import RenderableType
     from textual.filter import LineFilter
     from textual.screen import Screen
+    from textual.timer import Timer
 
 TERMINATED: Final = 128 + signal.SIGTERM
+KEEP_S: Final = 1.0
+"""How long after a key what is typed goes into its draft."""
 
 
-class PlatesideApp(App[int]):
+class PlatesideApp(Steady, App[int]):
     """Casebook, worksheet and the pages around them."""
 
     CSS_PATH = "app.tcss"
@@ -52,6 +56,7 @@ class PlatesideApp(App[int]):
         self.braille = bool(os.environ.get("PLATESIDE_BRAILLE")) and not ascii_only
         self._plain = look.AsciiFilter()
         self.ahead = TypeAhead(self)
+        self._keeping: Timer | None = None
 
     def get_line_filters(self) -> Sequence[LineFilter]:
         """Add the ASCII filter where the terminal needs it."""
@@ -71,13 +76,15 @@ class PlatesideApp(App[int]):
     def watch_signals(self) -> None:
         """Hear what ends the program from outside, as far as this system can tell it."""
         loop = asyncio.get_running_loop()
-        for name, act in (("SIGTERM", self.on_terminate), ("SIGHUP", self.on_hang_up)):
-            if hasattr(signal, name):  # Windows has no SIGHUP, and its loops hear no signal
-                with contextlib.suppress(NotImplementedError):
-                    loop.add_signal_handler(getattr(signal, name), act)
+        with contextlib.suppress(NotImplementedError):  # the loops of Windows hear no signal
+            loop.add_signal_handler(signal.SIGTERM, self.on_terminate)
+        if hasattr(signal, "SIGHUP"):  # not by the loop, which a line that takes no more output holds up
+            signal.signal(signal.SIGHUP, lambda _number, _frame: self.on_hang_up())
 
     async def on_event(self, event: Event) -> None:
         """Hand events on; a key waits while the page that it is meant for opens."""
+        if isinstance(event, Key | Paste) and self._keeping is None:
+            self._keeping = self.set_timer(KEEP_S, self.keep_soon)
         if isinstance(event, Key) and not event.is_forwarded and self.ahead.holds(event):
             return
         await super().on_event(event)
@@ -115,20 +122,28 @@ class PlatesideApp(App[int]):
         from tui.screens.ask import Ask
 
         def answered(yes: bool | None) -> None:
+            why = self.keep_drafts() if yes else ""
+            if why:
+                self.push_screen(Ask(f"No draft can be kept ({why}). Leave without what is typed?"), given_up)
+            elif yes:
+                self.exit(0)
+
+        def given_up(yes: bool | None) -> None:
             if yes:
-                self.keep_drafts()
                 self.exit(0)
 
         if not isinstance(self.screen, Ask):
             self.push_screen(Ask(f"Leave? Typed and not stored: {'; '.join(unsaved)}"), answered)
 
-    def keep_drafts(self) -> None:
-        """Put what is typed and not stored on disk."""
-        for page in self.pages():
-            draft = page.draft()
-            if draft is not None:
-                with contextlib.suppress(OSError):
-                    self.desk.drafts.save(*draft)
+    def keep_drafts(self, *, sync: bool = True) -> str:
+        """Put what is typed and not stored on disk; return why that could not be, if so."""
+        drafts = [draft for page in self.pages() if (draft := page.draft()) is not None]
+        return "; ".join({why for draft in drafts if (why := self.desk.drafts.save(*draft, sync=sync))})
+
+    def keep_soon(self) -> None:
+        """Keep the drafts a moment after a key: a program that is killed has no last words."""
+        self._keeping = None
+        self.keep_drafts(sync=False)
 
     def on_terminate(self) -> None:
         """End as asked by the system: drafts first, then the terminal as it was."""
@@ -137,7 +152,8 @@ class PlatesideApp(App[int]):
 
     def on_hang_up(self) -> None:
         """Keep the drafts and end at once: the line is gone."""
-        self.keep_drafts()
+        with contextlib.suppress(Exception):
+            self.keep_drafts()
         os._exit(0)
 
     async def action_quit(self) -> None:

@@ -55,11 +55,10 @@ class Desk:
         """Whether name and kit were asked."""
         return bool(self.person) and self.kit is not None
 
-    def remember(self, person: str, kit: Sequence[str]) -> None:
-        """Keep who works here and what they carry."""
+    def remember(self, person: str, kit: Sequence[str]) -> str:
+        """Keep who works here and what they carry; return why that could not be put on disk, if so."""
         self.person, self.kit = person, tuple(kit)
-        self.drafts.remember("person", person)
-        self.drafts.remember("kit", list(kit))
+        return self.drafts.remember("person", person) or self.drafts.remember("kit", list(kit))
 
     def rows(self, typed: str, *, limit: int) -> list[CaseRow]:
         """Return the newest cases, or those that hold what is typed."""

@@ -11,6 +11,7 @@ import contextlib
 import json
 import os
 import re
+from itertools import chain, count
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
@@ -25,20 +26,35 @@ class Drafts:
     def __init__(self, casebook: Path) -> None:
         self.folder = casebook.with_name(casebook.name + ".drafts")
 
-    def save(self, name: str, fields: dict[str, Any]) -> None:
-        """Put a draft on disk; an empty one removes it. Usable from a signal handler's last moments."""
+    def save(self, name: str, fields: dict[str, Any], *, sync: bool = True) -> str:
+        """Put a draft on disk; an empty one removes it. Usable from a signal handler's last moments.
+
+        Without ``sync`` it outlives the end of the program, but perhaps not that of the power. Return why
+        it could not be, such as a full disk (the draft before stays then); nothing where it is done.
+        """
         if not any(fields.values()):
             self.drop(name)
-            return
-        self.folder.mkdir(mode=0o700, parents=True, exist_ok=True)
+            return ""
         target = self._path(name)
         beside = target.with_name(f"{target.name}.{os.getpid()}")
-        handle = os.open(beside, os.O_WRONLY | os.O_CREAT | os.O_TRUNC, 0o600)
-        with os.fdopen(handle, "w", encoding="utf-8") as file:
-            json.dump(fields, file, ensure_ascii=False)
+        try:
+            self._write(beside, json.dumps(fields, ensure_ascii=False), sync=sync)
+            beside.replace(target)
+        except OSError as error:
+            with contextlib.suppress(OSError):
+                beside.unlink(missing_ok=True)
+            return error.strerror or str(error)
+        return ""
+
+    def _write(self, path: Path, text: str, *, sync: bool) -> None:
+        """Write a file that is its owner's own."""
+        self.folder.mkdir(mode=0o700, parents=True, exist_ok=True)
+        handle = os.open(path, os.O_WRONLY | os.O_CREAT | os.O_TRUNC, 0o600)
+        with os.fdopen(handle, "w", encoding="utf-8", errors="replace") as file:
+            file.write(text)
             file.flush()
-            os.fsync(file.fileno())
-        beside.replace(target)
+            if sync:
+                os.fsync(file.fileno())
 
     def load(self, name: str) -> dict[str, Any]:
         """Return a draft, or nothing where there is none that can be read."""
@@ -61,9 +77,15 @@ class Drafts:
             return [path.stem for path in sorted(files, key=lambda path: -path.stat().st_mtime)]
         return []
 
-    def remember(self, key: str, value: object) -> None:
-        """Keep an answer that is asked only once, such as the kit."""
-        self.save("remembered", {**self.load("remembered"), key: value})
+    def free_name(self, name: str) -> str:
+        """Return a name for a new draft that is not one of those that wait."""
+        taken = set(self.names())
+        numbered = (f"{name}-{number}" for number in count(2))
+        return next(one for one in chain((name,), numbered) if one not in taken)
+
+    def remember(self, key: str, value: object) -> str:
+        """Keep an answer that is asked only once, such as the kit; return why that could not be, if so."""
+        return self.save("remembered", {**self.load("remembered"), key: value})
 
     def recall(self, key: str) -> object:
         """Return a remembered answer, or None."""

@@ -38,7 +38,9 @@ async def ask_person(app: PlatesideApp) -> bool:
     answer = await app.push_screen_wait(Person(desk.person, desk.kit, instruments))
     if answer is None:
         return False
-    desk.remember(answer["person"], answer["kit"].split())
+    why = desk.remember(answer["person"], answer["kit"].split())
+    if why:
+        app.pages()[-1].say(f"Name and kit hold until you leave; they could not be kept ({why}).")
     return True
 
 
@@ -66,18 +68,18 @@ class Begun:
     complaint: str = ""
     kind: str = ""
     lines: dict[str, str] = field(default_factory=dict)
+    name: str = DRAFT
+    """Its draft; each case that is begun has its own."""
     machine: Raw | None = None
     """The machine as it goes into the sheet: known, or from its plate."""
 
     @classmethod
-    def of(cls, draft: dict[str, Any]) -> Begun:
-        """Take up a draft."""
-        return cls(
-            draft.get("tag"),
-            draft.get("complaint") or "",
-            draft.get("kind") or "",
-            dict(draft.get("lines") or {}),
-        )
+    def of(cls, draft: dict[str, Any], name: str) -> Begun:
+        """Take up a draft; what somebody else wrote into its file is left out."""
+        words = {key: draft[key] for key in ("tag", "complaint", "kind") if isinstance(draft.get(key), str)}
+        lines = draft.get("lines")
+        typed = {str(key): str(text) for key, text in lines.items()} if isinstance(lines, dict) else {}
+        return cls(**words, lines=typed, name=name)
 
     @property
     def step(self) -> int:
@@ -92,22 +94,26 @@ class Begun:
 
     def draft(self) -> tuple[str, dict[str, Any]] | None:
         """Return the draft of what is told, once there is a machine."""
-        return (DRAFT, self.kept()) if self.tag is not None else None
+        return (self.name, self.kept()) if self.tag is not None else None
 
 
-async def new_case(app: PlatesideApp, draft: dict[str, Any] | None = None) -> None:
+async def new_case(app: PlatesideApp, draft: dict[str, Any] | None = None, name: str = "") -> None:
     """Go from the machine to the worksheet; back goes one question back and keeps what was told."""
     if not app.desk.knows_person and not await ask_person(app):
         return
-    begun = Begun.of(draft or {})
+    drafts = app.desk.drafts
+    begun = Begun.of(draft or {}, name or drafts.free_name(DRAFT))
     steps = (tell_machine, tell_complaint, tell_kind, tell_plate)
     step = begun.step
-    while 0 <= step < len(steps):
-        step += 1 if await steps[step](app, begun) else -1
-        if step == PLATE_STEPS and begun.machine is not None:
-            break
-    if step >= 0 and begun.machine is not None:
-        await start(app, begun.machine, begun.complaint)
+    while step >= 0:
+        if begun.machine is None or step not in {PLATE_STEPS, len(steps)}:
+            step += 1 if await steps[step](app, begun) else -1
+        elif await start(app, begun):
+            return
+        else:  # nothing of it is stored: back to the last question, with all that was told
+            step -= 1
+    if not begun.lines:
+        drafts.drop(begun.name)
 
 
 async def tell_machine(app: PlatesideApp, begun: Begun) -> bool:
@@ -143,27 +149,29 @@ async def tell_plate(app: PlatesideApp, begun: Begun) -> bool:
     """Ask for the plate; going back, or for another kind, keeps what is typed."""
     check, extra = check_of(begun.complaint), {"complaint": begun.complaint}
     page = NameplatePage(begun.kind, begun.tag or "", check, begun.lines, extra)
+    page.begun_as = begun.name
     machine = await app.push_screen_wait(page)
     begun.machine = machine if machine and machine["kind"] else None
     begun.lines = {name: text for name, text in page.values.items() if text}
     if begun.machine is None and begun.lines:
-        app.desk.drafts.save(DRAFT, begun.kept())
+        app.desk.drafts.save(begun.name, begun.kept())
     return begun.machine is not None
 
 
-async def start(app: PlatesideApp, machine: Raw, complaint: str) -> None:
-    """Open the case on disk and go to its worksheet."""
+async def start(app: PlatesideApp, begun: Begun) -> bool:
+    """Open the case on disk and go to its worksheet; return whether it could be stored."""
     from calc.sheet_io import sheet_from_plain
 
-    kit = list(app.desk.kit or ())
+    told = {"machine": begun.machine, "complaint": begun.complaint, "kit": list(app.desk.kit or ())}
     try:
-        sheet = sheet_from_plain({"format": 1, "machine": machine, "complaint": complaint, "kit": kit})
+        sheet = sheet_from_plain({"format": 1, **told})
         visit = app.desk.open_case(sheet)
     except PlatesideError as error:
         await app.push_screen_wait(Ask("The case could not be stored.", refusal(error)))
-        return
-    app.desk.drafts.drop(DRAFT)
+        return False
+    app.desk.drafts.drop(begun.name)
     await app.push_screen_wait(Worksheet(visit))
+    return True
 
 
 async def pick_machine(app: PlatesideApp, before: str | None = None) -> str | None:
@@ -245,10 +253,12 @@ async def edit_plate(app: PlatesideApp, visit: Visit) -> bool:
     page = NameplatePage(
         machine.kind, machine.tag or "", check_of(visit.sheet.complaint), typed_of(sheet_of(machine))
     )
+
+    def store(raw: Raw) -> None:
+        sheet = {"format": 1, "machine": raw, "complaint": visit.sheet.complaint}
+        if raw["kind"]:
+            visit.set_machine(sheet_from_plain(sheet).machine)
+
+    page.store = store
     raw = await app.push_screen_wait(page)
-    if raw is None or not raw["kind"]:
-        return False
-    visit.set_machine(
-        sheet_from_plain({"format": 1, "machine": raw, "complaint": visit.sheet.complaint}).machine
-    )
-    return True
+    return raw is not None and bool(raw["kind"])

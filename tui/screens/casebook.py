@@ -10,6 +10,7 @@ from textual.containers import Horizontal
 from textual.widgets import Input, OptionList, Static
 from textual.widgets.option_list import Option
 
+from tui.harmless import harmless
 from tui.keys import bindings
 from tui.look import FAINT, STRONG, WATCH
 from tui.screens.page import Page
@@ -75,7 +76,7 @@ class CasebookPage(Page[None]):
         """List drafts and cases."""
         desk, typed = self.plateside.desk, self.query_one(Input).value
         self.shown = desk.rows(typed, limit=MOST)
-        self.waiting = [name for name in desk.drafts.names() if name == "new_case"] if not typed else []
+        self.waiting = [] if typed else [n for n in desk.drafts.names() if n.startswith("new_case")]
         picker = self.query_one(Lines)
         at = picker.highlighted or 0
         now = datetime.now(UTC)
@@ -87,7 +88,8 @@ class CasebookPage(Page[None]):
     def draft_line(self, name: str) -> Content:
         """Return the line of a draft that waits."""
         draft = self.plateside.desk.drafts.load(name)
-        text = f"{draft.get('tag') or 'no tag'}: a new case was begun and not stored. Enter takes it up."
+        tag = harmless(str(draft.get("tag") or "no tag"))
+        text = f"{tag}: a new case was begun and not stored. Enter takes it up."
         return row("draft", (pad(text, self.room - INDENT), WATCH))
 
     def say(self, text: str) -> None:
@@ -140,7 +142,9 @@ class CasebookPage(Page[None]):
         if case is not None:
             await open_case(self.plateside, case.id)
         elif at is not None and at < len(self.waiting):
-            await new_case(self.plateside, self.plateside.desk.drafts.load(self.waiting[at]))
+            name = self.waiting[at]
+            await new_case(self.plateside, self.plateside.desk.drafts.load(name), name)
+            self.list_cases()
 
     @work(exclusive=True)
     async def action_new_case(self) -> None:
@@ -148,6 +152,7 @@ class CasebookPage(Page[None]):
         from tui.flow import new_case
 
         await new_case(self.plateside)
+        self.list_cases()
 
     @work(exclusive=True)
     async def action_kit(self) -> None:

@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Any, Final
 
 from textual.containers import Container
 from textual.widgets import Input
@@ -43,6 +43,9 @@ class Line:
 class FormPage(Page[Answer]):
     """Lines to type; subclasses name them and say what becomes of them."""
 
+    draft_name = ""
+    """The draft that keeps what is typed here, where there is to be one."""
+
     def __init__(self, typed: dict[str, str] | None = None) -> None:
         super().__init__()
         self.typed = typed or {}
@@ -71,7 +74,9 @@ class FormPage(Page[Answer]):
     def body(self) -> list[Widget]:
         """Return head, lines and remarks."""
         self.table = self.form_lines()
-        self.texts = {line.name: self.typed.get(line.name, line.start) for line in self.table}
+        kept = self.plateside.desk.drafts.load(self.draft_name) if self.draft_name else {}
+        before = {line.name: self.typed.get(line.name, line.start) for line in self.table}
+        self.texts = {name: str(kept.get(name, text)) for name, text in before.items()}
         empty = [place for place, line in enumerate(self.table) if not self.texts[line.name]]
         self.at = empty[0] if empty else 0
         form = Container(Ruled(id="lines"), TypedLine(), id="form")
@@ -88,6 +93,12 @@ class FormPage(Page[Answer]):
     def line(self) -> Line:
         """The line that is typed now."""
         return self.table[self.at]
+
+    @property
+    def texts_now(self) -> dict[str, str]:
+        """What stands in the lines, the one that is typed included."""
+        typed = next(iter(self.query(TypedLine)), None)
+        return self.texts | ({self.line.name: typed.value} if typed is not None and self.table else {})
 
     @property
     def values(self) -> dict[str, str]:
@@ -224,10 +235,25 @@ class FormPage(Page[Answer]):
         """Answer with what stands here, or say what is missing."""
         raise NotImplementedError
 
+    def finish(self, answer: Answer) -> bool:
+        """Store the answer and go; the draft has done its work then."""
+        done = super().finish(answer)
+        if done and self.draft_name:
+            self.plateside.desk.drafts.drop(self.draft_name)
+        return done
+
     def action_back(self) -> None:
-        """Go back without an answer; what is typed can still be asked for."""
+        """Go back without an answer; what is typed can still be asked for, a draft only where one is kept."""
         self.keep_line()
+        if self.draft_name:
+            self.plateside.desk.drafts.drop(self.draft_name)
         super().action_back()
+
+    def draft(self) -> tuple[str, dict[str, Any]] | None:
+        """Keep what is typed, where the page has a draft and something stands there that did not at first."""
+        now = self.texts_now
+        before = {line.name: self.typed.get(line.name, line.start) for line in self.table}
+        return (self.draft_name, now if now != before else {}) if self.draft_name and self.table else None
 
     def unsaved(self) -> str:
         """Say that there is something typed."""

@@ -42,6 +42,8 @@ class NameplatePage(FormPage[Raw]):
         self.kind, self.tag, self.check = kind, tag, check
         self.extra = extra or {}
         """What the draft must also keep, such as the complaint."""
+        self.begun_as = ""
+        """The draft of the new case, where the plate is that of one."""
 
     def form_lines(self) -> list[Line]:
         """Return one line per word of the plate, then how the machine stands."""
@@ -100,19 +102,15 @@ class NameplatePage(FormPage[Raw]):
                     self.go_to(line.field)
                     self.say(f"{line.word}: {error}")
                     return
-        self.dismiss(machine_of(self.kind, self.tag, self.values))
+        self.finish(machine_of(self.kind, self.tag, self.values))
 
     def action_kind(self) -> None:
         """Go back for another kind; what is typed is kept."""
         self.keep_line()
         self.dismiss({"kind": ""})
 
-    def kept(self) -> dict[str, Any]:
-        """Return what a draft must hold: tag, kind, every line, and what the page was given to keep."""
-        lines = {name: text for name, text in self.values.items() if text}
-        return {"tag": self.tag, "kind": self.kind, "lines": lines, **self.extra}
-
     def draft(self) -> tuple[str, dict[str, Any]] | None:
-        """Keep what is typed, unless every line is blank."""
-        self.keep_line()
-        return ("new_case", self.kept()) if any(self.values.values()) else None
+        """Keep what is typed with tag, kind and what else the case needs, unless all lines are blank."""
+        lines = {name: text.strip() for name, text in self.texts_now.items() if text.strip()}
+        kept = {"tag": self.tag, "kind": self.kind, "lines": lines, **self.extra}
+        return (self.begun_as, kept) if lines and self.begun_as else None

@@ -34,4 +34,7 @@ class Note(FormPage[str]):
     def done(self) -> None:
         """Store what stands there."""
         text = self.values["text"]
-        self.dismiss(text or None)
+        if text:
+            self.finish(text)
+        else:
+            self.dismiss(None)

@@ -11,9 +11,12 @@ from textual.widgets import Static
 from calc.errors import InputError, PlatesideError
 from tui.keys import key_line
 from tui.look import FAINT, WATCH
+from tui.steady import Steady
 from tui.widgets.ruled import INDENT, Ruled, fill, row
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
     from textual.app import ComposeResult
     from textual.events import Resize
     from textual.widget import Widget
@@ -26,12 +29,14 @@ NARROWEST, LOWEST = 40, 12
 """What a terminal must at least have; below that the page says so."""
 
 
-class Page(Screen[Answer]):
+class Page(Steady, Screen[Answer]):
     """One ruled page: ``KEYS`` names its keys in ``tui.keys``, ``body`` is what stands above the key line."""
 
     KEYS: ClassVar[str] = "help"
     is_ready = False
     """Whether keys can come: everything stands and has the focus."""
+    store: Callable[[Answer], object] | None = None
+    """What puts the answer on disk; the page stays, with all that is typed, where that cannot be done."""
 
     def compose(self) -> ComposeResult:
         """Yield the body and the key line."""
@@ -79,6 +84,17 @@ class Page(Screen[Answer]):
     def say(self, text: str) -> None:
         """Say something on the key line; pages with a place for it say it there."""
         self.query_one("#keys", Static).update(row("note", (text, WATCH)))
+
+    def finish(self, answer: Answer) -> bool:
+        """Store the answer, where the page is to do that, and go; else say why not, and stay."""
+        if self.store is not None:
+            try:
+                self.store(answer)
+            except PlatesideError as error:
+                self.say(refusal(error))
+                return False
+        self.dismiss(answer)
+        return True
 
     def unsaved(self) -> str:
         """Return what is typed here and not stored, in words; nothing where there is none."""

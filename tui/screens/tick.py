@@ -98,7 +98,7 @@ class Tick(Page[dict[str, bool]]):
             for name, seen in self.answers.items()
             if seen is not None and self.before.get(name) is not seen
         }
-        self.dismiss(new)
+        self.finish(new)
 
     def unsaved(self) -> str:
         """Say that answers are ticked and not stored."""

@@ -29,6 +29,8 @@ class WorksheetTyping(WorksheetKeys):
     """Understands while it is typed; Enter stores, or does what comes first."""
 
     resting: Timer | None = None
+    under_way = ""
+    """The text that was taken out of the line and is not stored yet."""
     answered = ""
     """The text that Enter was pressed on last: what was said of it stays."""
 
@@ -81,9 +83,11 @@ class WorksheetTyping(WorksheetKeys):
         """Do the obvious with what stood in the line."""
         item = self.target
         stored = False
+        self.under_way = text
         try:
             stored = await self.enter_for(item, text)
         finally:
+            self.under_way = ""
             if not stored:
                 self.give_back(text)
 

@@ -7,13 +7,15 @@ from typing import TYPE_CHECKING
 from textual.style import Style
 from textual.widgets import OptionList
 
+from tui.steady import Steady
+
 if TYPE_CHECKING:
     from collections.abc import Iterable
 
     from textual.content import Content
 
 
-class Lines(OptionList):
+class Lines(Steady, OptionList):
     """Lines to choose from. The bar is reverse video: Textual drops that from a component's style."""
 
     def __init__(self) -> None:

@@ -9,6 +9,7 @@ from textual.widgets import Input
 from textual.widgets.input import Selection
 
 from tui.harmless import UNSEEN
+from tui.steady import Steady
 
 if TYPE_CHECKING:
     from textual.events import Key, Paste
@@ -30,7 +31,7 @@ class TakesLines(Protocol):
         """Go down."""
 
 
-class TypedLine(Input):
+class TypedLine(Steady, Input):
     """An input of one line without blinking; tells its page synchronously of Enter."""
 
     def __init__(self, value: str = "", *, placeholder: str = "", id: str = "typed") -> None:
