@@ -11,6 +11,8 @@ import pytest
 from calc.dc.plate import read_plate as read_dc
 from calc.induction_1ph.plate import read_plate as read_1ph
 from calc.induction_3ph.plate import read_base
+from calc.nameplate import check_plate
+from calc.sheet_io import sheet_from_plain
 from calc.typical import typical_efficiency, typical_locked_rotor_ratio, typical_power_factor
 from tests.calc.dc.builders import machine as dc_machine
 from tests.calc.induction_1ph.plates import machine as machine_1ph
@@ -113,6 +115,30 @@ def test_the_locked_rotor_ratio_of_a_plate_is_taken_as_sure_as_its_tolerance():
     base = read_base(machine_3ph(**plate, locked_rotor_current_ratio=6.5))
     assert base.locked_ratio == 6.5
     assert 2.0 < math.log1p(0.20) / base.locked_spread < 3.0
+
+
+@published(
+    "IEC 60034-1", "tolerances: losses +15 %, power factor -1/6 of what it lacks", known="looked up",
+    says="a plate that is off by a whole tolerance is not remarked; amps that are off by 15 % are",
+    checks=["calc.nameplate.check_plate", "calc/tables/plate_checks.yaml"],
+)  # fmt: skip
+@pytest.mark.parametrize(("power_w", "eta", "power_factor"), [(7500.0, 88.7, 0.84), (90e3, 95.0, 0.86)])
+def test_a_plate_within_its_tolerances_does_not_contradict_itself(power_w, eta, power_factor):
+    amps = power_w / (math.sqrt(3.0) * 400.0 * power_factor * eta / 100.0)
+    plate = {"power": f"{power_w} W", "voltage": "400 V", "frequency": "50 Hz", "speed": "1475 rpm"}
+    whole = {"efficiency": eta, "power_factor": power_factor, "current": amps}
+    units = {"efficiency": " %", "current": " A", "power_factor": ""}
+
+    def remarked(**fields):
+        typed = {name: f"{number:.4g}{units[name]}" for name, number in (whole | fields).items()}
+        machine = {"kind": "induction_3ph", "nameplate": plate | typed}
+        sheet = sheet_from_plain({"format": 1, "machine": machine, "complaint": "routine_check"})
+        return [one.id for one in check_plate(sheet.machine)]
+
+    assert remarked() == []
+    assert remarked(efficiency=eta - 0.15 * (100.0 - eta)) == []
+    assert remarked(power_factor=power_factor - (1.0 - power_factor) / 6.0) == []
+    assert remarked(current=1.15 * amps) == ["power_balance"]
 
 
 # Rated currents where a plate is silent: plausibility.
