@@ -99,13 +99,20 @@ _STANDS: Final = (
 )  # fmt: skip
 
 
+_DC_HINTS: Final = {
+    "source": "three-phase rectifier, DC bus, battery, mains ...",
+    "starter": "armature resistance, direct ...",
+}
+
+
 def plate_lines(kind: str) -> tuple[PlateLine, ...]:
     """Return the lines for a kind of machine: the plate, then how it stands."""
     if kind in DC_KINDS or kind == "dc_generator":
         plate: tuple[PlateLine, ...] = _DC
         if kind in {"dc_series", "dc_permanent_magnet"}:
             plate = tuple(line for line in plate if line.field not in {"field_voltage", "field_current"})
-        return (*plate, *(line for line in _STANDS if line.field != "nominal_frequency"))
+        stands = (line for line in _STANDS if line.field != "nominal_frequency")
+        return (*plate, *(line._replace(hint=_DC_HINTS.get(line.field, line.hint)) for line in stands))
     return (*(_ONE if kind == "induction_1ph" else _THREE), *_STANDS)
 
 

@@ -183,3 +183,10 @@ def test_the_isolation_record_of_a_single_phase_machine_asks_for_its_capacitors(
     assert len(newest(casebook).readings) == before
     talk("Ines", number, "read main_resistance isolated 4.1", *ISOLATION, "yes")
     assert len(newest(casebook).readings) == before + 1
+
+
+def test_what_is_tried_by_hand_waits_for_the_isolation_record(talk, known, kit, casebook):
+    talk(*OPEN_CASE, "seen shaft_turns_freely yes", "Ines", "Q4", "yes", "yes", "no", "yes")
+    assert newest(casebook).observations == {}
+    talk(*OPEN_CASE, "seen shaft_turns_freely yes", *ISOLATION)
+    assert newest(casebook).observations == {"shaft_turns_freely": True}

@@ -152,3 +152,16 @@ async def test_values_with_nothing_asked_for_stay_in_the_line(tmp_path: Path):
         await until(pilot, "No reading is asked for: F3 or a word picks one")
         assert "15.2 15.9 14.8" in screen_text(app)
         assert not newest(app).readings
+
+
+async def test_a_dash_says_that_a_question_cannot_be_answered(tmp_path: Path):
+    async with at_worksheet(tmp_path) as (app, pilot):
+        await keys(pilot, "f3", *"burnt smell", "enter")
+        await until(pilot, "Does it smell burnt?")
+        await keys(pilot, "9", "enter")
+        await until(pilot, "y or n; - or F4 where it cannot be told")
+        await keys(pilot, "-", "enter")
+        await until(pilot, "cannot be taken now: Does it smell burnt?")
+        case = newest(app)
+    assert [one.what.observation for one in case.skipped] == ["burnt_smell"]
+    assert not case.observed

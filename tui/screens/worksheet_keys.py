@@ -33,7 +33,7 @@ if TYPE_CHECKING:
 
 
 class WorksheetKeys(Page[None]):
-    """Other reading, skip, reasons, gate, tick list, correct, curves, close."""
+    """Other reading, reasons, gate, tick list, correct, curves, close."""
 
     visit: Visit
     chosen: NextItem | None
@@ -88,7 +88,7 @@ class WorksheetKeys(Page[None]):
         """Return what belongs into the line for an item."""
         raise NotImplementedError
 
-    # other reading, skip
+    # other reading
 
     @work(group="enter")
     async def action_other(self) -> None:
@@ -108,16 +108,6 @@ class WorksheetKeys(Page[None]):
         self.say(f"picked: {key_words(key, self.visit.knowledge)}; F3 shows the others" if meant else "", "")
         self.show_blocks()
         return True
-
-    @work(group="enter")
-    async def action_skip(self) -> None:
-        """Remember that the reading cannot be taken."""
-        item = self.target
-        if item is None:
-            self.say("There is nothing to skip.", "")
-            return
-        self.visit.skip(item.key)
-        self.stored(f"cannot be taken now: {key_words(item.key, self.visit.knowledge)}")
 
     def action_cursor_up(self) -> None:
         """Show older readings."""

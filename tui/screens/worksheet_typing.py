@@ -13,7 +13,7 @@ from tui.look import FAINT
 from tui.screens.page import refusal
 from tui.screens.worksheet_keys import WorksheetKeys
 from tui.widgets.typed import TypedLine
-from tui.words import question
+from tui.words import key_words, question
 
 if TYPE_CHECKING:
     from textual.timer import Timer
@@ -22,6 +22,7 @@ if TYPE_CHECKING:
 
 REST_S: Final = 0.12
 """How long the typing must rest before it is said in words what is understood."""
+NOT_KNOWN: Final = frozenset({"-", "?"})
 YES_WORDS: Final = {"y": True, "yes": True, "n": False, "no": False}
 
 
@@ -76,7 +77,8 @@ class WorksheetTyping(WorksheetKeys):
         """Put text that was not stored back in the line, unless something else is typed there by now."""
         typed = next(iter(self.query(TypedLine)), None)  # the page may be gone
         if typed is not None and not typed.value:
-            typed.put(text)
+            is_question = self.target is not None and self.target.observation is not None
+            typed.put(text, chosen=is_question)  # no answer is mended by adding to it
 
     @work(group="enter")
     async def enter(self, text: str) -> None:
@@ -128,15 +130,32 @@ class WorksheetTyping(WorksheetKeys):
         if answer is None:
             if text and self.is_a_word(text):
                 return await self.pick_other(text)
+            if text in NOT_KNOWN:
+                await self.skip()
+                return True
             if not text and not await self.come_first(item):
                 return False
-            self.say("y or n; F4 where it cannot be told.", "")
+            self.say("y or n; - or F4 where it cannot be told; a word picks a reading.", "")
             return False
         if not await self.come_first(item):
             return False
         self.visit.observe(str(item.observation), answer)
         self.stored(f"{question(str(item.observation), self.visit.knowledge)} {'yes' if answer else 'no'}")
         return True
+
+    @work(group="enter")
+    async def action_skip(self) -> None:
+        """Remember that the reading cannot be taken."""
+        await self.skip()
+
+    async def skip(self) -> None:
+        """Put what the line is for aside."""
+        item = self.target
+        if item is None:
+            self.say("There is nothing to skip.", "")
+            return
+        self.visit.skip(item.key)
+        self.stored(f"cannot be taken now: {key_words(item.key, self.visit.knowledge)}")
 
     def understood(self, item: NextItem, text: str) -> Understood | None:
         """Understand a reading; say what is wrong with it where it is none."""
