@@ -7,7 +7,7 @@ from pathlib import Path
 import pytest
 
 from casebook.errors import DiskFull
-from tests.tui.helpers import keys, screen_text, settled, until
+from tests.tui.helpers import SMALL, keys, known_machine, new_app, screen_text, settled, until
 from tests.tui.visit import at_worksheet, newest
 from tui.screens.worksheet import Worksheet
 
@@ -165,3 +165,15 @@ async def test_a_dash_says_that_a_question_cannot_be_answered(tmp_path: Path):
         case = newest(app)
     assert [one.what.observation for one in case.skipped] == ["burnt_smell"]
     assert not case.observed
+
+
+async def test_a_reading_in_the_state_that_was_read_last_stands_first(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    visit = app.desk.visit(app.desk.book.cases()[0].id)
+    visit.record(visit.understand("line_current", "light_load", "6.1 6.2 6.0"))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "P-104")
+        await keys(pilot, "enter")
+        await settled(pilot)
+        await keys(pilot, "f3", *"input power", "enter")
+        await until(pilot, "input power, light load")

@@ -61,7 +61,7 @@ def stored_choices(visit: Visit) -> dict[str, Choice]:
 
 
 def other_choices(visit: Visit, proposed: Sequence[str]) -> list[Choice]:
-    """Return all readings and questions that suit the machine, the proposed ones first."""
+    """Return all readings and questions that suit the machine: proposed, in the state last read, the rest."""
     knowledge, kind = visit.knowledge, visit.kind
     choices = {}
     for rule in knowledge.readings.values():
@@ -77,7 +77,12 @@ def other_choices(visit: Visit, proposed: Sequence[str]) -> list[Choice]:
         if {"any", kind} & set(seen.kinds):
             choices[seen.id] = Choice(seen.id, seen.name, word="proposed" if seen.id in proposed else "")
     order = {key: place for place, key in enumerate(proposed)}
-    return sorted(choices.values(), key=lambda choice: order.get(choice.key, len(order)))
+    last = next((reading.state for reading in reversed(visit.sheet.readings)), "")
+
+    def place(choice: Choice) -> tuple[int, bool]:
+        return order.get(choice.key, len(order)), choice.key.partition("@")[2] != last
+
+    return sorted(choices.values(), key=place)
 
 
 def only_one_meant(choices: Sequence[Choice], typed: str) -> str | None:
