@@ -11,7 +11,7 @@ from calc.induction_3ph import effects, thermal
 from calc.induction_3ph.equivalent import Circuit, circuit
 from calc.induction_3ph.network import terminal_resistance
 from calc.induction_3ph.plate import COPPER_K, INDEX, LATENTS, Base, read_base
-from calc.induction_3ph.stacking import joined, part, repeated
+from calc.induction_3ph.stacking import part, repeated, stacked
 from calc.induction_3ph.states import StateResult, Supply, rated_torque, solve, supply
 from calc.induction_3ph.windings import line_extra, with_path
 from calc.sheet import Machine, Reading
@@ -185,12 +185,12 @@ class InductionTwin:
         """Solve all states at once, each with the torque and the winding temperature that belong to it."""
         load = self._load(rows, z, feed)
         parts = [self._in_state(state, machine, rows, load, thermal.ambient_c(z)) for state in states]
-        stacked, torque, r1 = zip(*parts, strict=True)
+        changes, torque, r1 = zip(*parts, strict=True)
         count, size = len(states), len(z)
         standing = np.repeat([1.0 if state in _STANDING else 0.0 for state in states], size)
         found = solve(
             repeated(machine, count),
-            joined(stacked),
+            stacked(rows, changes),
             repeated(feed, count),
             np.concatenate(torque),
             standing=standing,
@@ -201,17 +201,18 @@ class InductionTwin:
     def _in_state(
         self, state: str, machine: Circuit, rows: Mapping[str, Floats], load: Floats, ambient: Floats
     ) -> tuple[Mapping[str, Floats], Floats, Floats]:
-        """Attributes, torque demanded and stator resistance in one state."""
+        """What one state changes in the attributes, the torque demanded and the stator resistance in it."""
+        changes = {}
         if state == "no_load":
-            rows = {**rows, "stall": rows["stall"] * (1.0 - rows["load_stalls"])}
+            changes["stall"] = rows["stall"] * (1.0 - rows["load_stalls"])
         if state == "starting" and self.starter == "star_delta":
             # The first seconds are in star: a third of line current and torque.
-            rows = {**rows, "running_star": np.ones(len(load))}
+            changes["running_star"] = np.ones(len(load))
         share = {"loaded": 1.0, "light_load": 0.4}.get(state, 0.0)
         useful = load * share * machine.p_out + machine.p_friction + share * load**2 * machine.p_stray
         torque = useful / (1.0 - machine.slip) + rows["friction"] * rated_torque(machine)
         warm = ambient + (0.6 * machine.rise_k if share else 0.25 * machine.rise_k)
-        return rows, torque, machine.r1 * (COPPER_K + warm) / (COPPER_K + 25.0 + machine.rise_k)
+        return changes, torque, machine.r1 * (COPPER_K + warm) / (COPPER_K + 25.0 + machine.rise_k)
 
     def _load(self, rows: Mapping[str, Floats], z: Floats, feed: Supply) -> Floats:
         """Load torque over rated; pumps and fans ask for torque as the square of speed."""

@@ -31,10 +31,13 @@ def part(arrays: Arrays, rows: slice) -> Arrays:
     return replace(arrays, **{field.name: getattr(arrays, field.name)[rows] for field in fields(arrays)})
 
 
-def joined(parts: Sequence[Mapping[str, Floats]]) -> Mapping[str, Floats]:
-    """The same attributes of several states one after the other."""
-    if len(parts) == 1:
-        return parts[0]
-    names = list(parts[0])
-    grid = np.concatenate([np.array([part[name] for name in names]) for part in parts], axis=1)
-    return dict(zip(names, grid, strict=True))
+def stacked(rows: Mapping[str, Floats], changes: Sequence[Mapping[str, Floats]]) -> Mapping[str, Floats]:
+    """The same attributes once per state, one after the other, with what each state changes in them."""
+    places = {name: place for place, name in enumerate(rows)}
+    one = np.array(list(rows.values()))
+    size = one.shape[1]
+    grid = np.concatenate([one] * len(changes), axis=1)
+    for k, changed in enumerate(changes):
+        for name, values in changed.items():
+            grid[places[name], k * size : (k + 1) * size] = values
+    return dict(zip(rows, grid, strict=True))

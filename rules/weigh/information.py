@@ -72,7 +72,7 @@ def _draws(count: int, dims: int) -> Floats:
 
 
 def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings) -> Floats:
-    """Mutual information of readings with the fault, and with half the weight with the part: (readings,). [nats]
+    """Mutual information of readings with fault, and less weighted with part: (readings,). [nats]
 
     Parameters
     ----------

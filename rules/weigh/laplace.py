@@ -191,8 +191,7 @@ def _survey(fitter: Fitter, modes: Sequence[Mode], keep: int) -> tuple[NDArray[n
     Active is a latent that changes any reading asked for, or the plate's misfit, in any effect.
     """
     first = {mode.effect: place for place, mode in reversed(list(enumerate(modes)))}
-    last = {mode.effect: place for place, mode in enumerate(modes)}
-    shown = list(dict.fromkeys([keep, *first.values(), *last.values()]))
+    shown = list(dict.fromkeys([keep, *first.values()]))
     base = np.full((len(shown), fitter.dim), _OFF_CENTRE)
     every = np.arange(fitter.dim)
     y, dy, plate, dp = fitter.slopes([modes[place] for place in shown], base, every, _COARSE)
