@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 from calc.errors import PlatesideError
 from calc.quantities import KINDS
+from tui.begun import DRAFT, Begun
 from tui.plate_lines import typed_of
 from tui.screens.ask import Ask
 from tui.screens.nameplate import NameplatePage
@@ -23,7 +23,6 @@ if TYPE_CHECKING:
     from tui.compose import Visit
     from tui.plate_lines import Raw
 
-DRAFT = "new_case"
 NO_TAG = "-"
 PLATE_STEPS = 2
 """Where the questions begin that a known machine answers by itself."""
@@ -58,43 +57,6 @@ async def open_case(app: PlatesideApp, case: str) -> None:
             return
         visit.reopen("goes on")
     await app.push_screen_wait(Worksheet(visit))
-
-
-@dataclass
-class Begun:
-    """A new case as far as it is told; going back keeps all of it."""
-
-    tag: str | None = None
-    complaint: str = ""
-    kind: str = ""
-    lines: dict[str, str] = field(default_factory=dict)
-    name: str = DRAFT
-    """Its draft; each case that is begun has its own."""
-    machine: Raw | None = None
-    """The machine as it goes into the sheet: known, or from its plate."""
-
-    @classmethod
-    def of(cls, draft: dict[str, Any], name: str) -> Begun:
-        """Take up a draft; what somebody else wrote into its file is left out."""
-        words = {key: draft[key] for key in ("tag", "complaint", "kind") if isinstance(draft.get(key), str)}
-        lines = draft.get("lines")
-        typed = {str(key): str(text) for key, text in lines.items()} if isinstance(lines, dict) else {}
-        return cls(**words, lines=typed, name=name)
-
-    @property
-    def step(self) -> int:
-        """The question to go on with: the plate once its kind is told, else complaint or machine."""
-        if self.tag is None:
-            return 0
-        return 3 if self.complaint and self.kind else 1
-
-    def kept(self) -> dict[str, Any]:
-        """Return what a draft must hold."""
-        return {"tag": self.tag, "complaint": self.complaint, "kind": self.kind, "lines": self.lines}
-
-    def draft(self) -> tuple[str, dict[str, Any]] | None:
-        """Return the draft of what is told, once there is a machine."""
-        return (self.name, self.kept()) if self.tag is not None else None
 
 
 async def new_case(app: PlatesideApp, draft: dict[str, Any] | None = None, name: str = "") -> None:

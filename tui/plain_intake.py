@@ -4,15 +4,17 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
-from calc.errors import InputError
+from calc.errors import InputError, PlatesideError
 from calc.quantities import KINDS
 from calc.sheet import CaseSheet
 from calc.sheet_io import sheet_from_plain, sheet_to_plain
-from casebook.errors import UnknownCase
+from casebook.errors import CasebookError
+from tui.begun import DRAFT, Begun, waiting
 from tui.compose import Visit, recall
+from tui.harmless import harmless
 from tui.output import say
 from tui.plate_lines import hear, machine_of, plate_lines
-from tui.talk import ask, ask_choice, ask_yes, tell
+from tui.talk import Left, ask, ask_choice, ask_yes, tell
 
 if TYPE_CHECKING:
     from calc.sheet import Machine
@@ -23,45 +25,71 @@ if TYPE_CHECKING:
 
 def ask_case(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit:
     """Go on with an open case that is named by its number, or open a new one."""
-    while True:
+    begun = _taken_up(drafts)
+    while begun is None:
         name = ask("Machine tag for a new case, or number of an open case")
-        if not name:
-            continue
         if name.upper().startswith("C-"):
             try:
                 return Visit(book, book.case_id(name), person=person, knowledge=knowledge)
-            except UnknownCase as error:
+            except CasebookError as error:
                 tell(str(error))
-                continue
-        machine = _machine(book, name)
-        complaint = _complaint(machine["kind"], knowledge)
-        sheet = {"format": 1, "machine": machine, "complaint": complaint, "kit": _kit(drafts, knowledge)}
-        try:
-            return Visit.new(book, sheet_from_plain(sheet), person=person, knowledge=knowledge)
-        except InputError as error:
-            for problem in error.problems:
-                tell(f"{problem.where}: {problem.given}; {problem.allowed}")
+        elif name:
+            begun = Begun(tag=name, name=drafts.free_name(DRAFT))
+    while (visit := _opened(book, begun, drafts, person, knowledge)) is None:
+        pass
+    drafts.drop(begun.name)
+    return visit
 
 
-def _machine(book: Casebook, tag: str) -> dict[str, Any]:
+def _taken_up(drafts: Drafts) -> Begun | None:
+    """Return the new case that was begun and not stored, where the person goes on with it."""
+    for name in waiting(drafts):
+        begun = Begun.of(drafts.load(name), name)
+        said = f"{harmless(begun.tag or 'no tag')}: a new case was begun and not stored."
+        if ask_yes(f"{said} Go on with it?"):
+            return begun
+    return None
+
+
+def _opened(book: Casebook, begun: Begun, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit | None:
+    """Ask for what is still to be told and open the case; None where it could not be stored and goes on."""
+    machine = _machine(book, begun, drafts)
+    begun.complaint = begun.complaint or _complaint(machine["kind"], knowledge)
+    drafts.save(begun.name, begun.kept())
+    sheet = {"format": 1, "machine": machine, "complaint": begun.complaint, "kit": _kit(drafts, knowledge)}
+    try:
+        return Visit.new(book, sheet_from_plain(sheet), person=person, knowledge=knowledge)
+    except InputError as error:
+        for problem in error.problems:
+            tell(f"{problem.where}: {problem.given}; {problem.allowed}")
+    except PlatesideError as error:
+        tell(str(error))
+        if not ask_yes("Try again? What you told stays"):
+            raise Left from error
+    return None
+
+
+def _machine(book: Casebook, begun: Begun, drafts: Drafts) -> dict[str, Any]:
     """Return the machine as a sheet holds it: recalled by its tag, or asked for."""
-    known = recall(book, tag)
+    known = recall(book, begun.tag or "") if not begun.kind else None
     if known is not None:
         plain = as_plain(known)
         tell(f"Known: {', '.join(f'{name} {value}' for name, value in plain.get('nameplate', {}).items())}")
         if ask_yes("Is it this one?"):
             return plain
-    kind = ask_choice("Kind of machine", KINDS)
-    typed: dict[str, str] = {}
-    say("What the plate says; Enter where it says nothing.")
-    for line in plate_lines(kind):
-        while text := ask(f"{line.word} ({line.hint})"):
+    if begun.kind not in KINDS:
+        begun.kind = ask_choice("Kind of machine", KINDS)
+    say("What the plate says; Enter where it says nothing, or where it is right in brackets.")
+    for line in plate_lines(begun.kind):
+        while text := ask(f"{line.word} ({line.hint})", begun.lines.get(line.field, "")):
             said, is_kept = hear(line, text)
             if is_kept:
-                typed[line.field] = text
+                begun.lines[line.field] = text
+                drafts.save(begun.name, begun.kept())
                 break
+            begun.lines.pop(line.field, None)
             tell(said)
-    return machine_of(kind, tag, typed)
+    return machine_of(begun.kind, begun.tag or "", begun.lines)
 
 
 def as_plain(machine: Machine) -> dict[str, Any]:

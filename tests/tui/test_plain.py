@@ -5,6 +5,8 @@ import io
 import pytest
 
 from casebook.book import open_casebook
+from casebook.errors import DiskFull
+from casebook.sqlite_store import SqliteStore
 from tui.drafts import Drafts
 from tui.plate_lines import plate_lines
 
@@ -190,3 +192,40 @@ def test_what_is_tried_by_hand_waits_for_the_isolation_record(talk, known, kit, 
     assert newest(casebook).observations == {}
     talk(*OPEN_CASE, "seen shaft_turns_freely yes", *ISOLATION)
     assert newest(casebook).observations == {"shaft_turns_freely": True}
+
+
+def test_a_plate_that_was_begun_is_asked_for_only_where_it_was_not_told(talk, kit, casebook):
+    first, second, *rest = plate_lines("induction_3ph")
+    dropped = talk("Ines", "WP-9", "induction_3ph", "7.5 kW", "400")
+    assert "Left. What was accepted is in the casebook" in dropped.out
+    again = talk("Ines", "yes", *([""] * (2 + len(rest))), "runs_hot")
+    assert "WP-9: a new case was begun and not stored. Go on with it? yes/no" in again.out
+    case = newest(casebook)
+    plate = case.machine.nameplate
+    assert (first.field, second.field) == ("power", "voltage")
+    assert (case.tag, plate.number("power"), plate.number("voltage")) == ("WP-9", 7500.0, 400.0)
+    assert Drafts(casebook).names() == []
+
+
+def test_a_new_case_that_cannot_be_stored_is_tried_again_without_asking_anew(
+    talk, kit, casebook, monkeypatch
+):
+    add, tries = SqliteStore.add, iter([True])
+
+    def refuse_once(store, *arguments, **more):
+        if next(tries, False):
+            raise DiskFull("the disk that holds casebook.db is full")
+        return add(store, *arguments, **more)
+
+    monkeypatch.setattr(SqliteStore, "add", refuse_once)
+    blank = [""] * (len(plate_lines("induction_3ph")) - 1)
+    told = talk("Ines", "WP-9", "induction_3ph", "7.5 kW", *blank, "runs_hot", "yes", "", *blank)
+    assert "is full. Nothing was written" in " ".join(told.out.split())
+    assert newest(casebook).machine.nameplate.number("power") == 7500.0
+
+
+def test_a_place_that_takes_no_draft_does_not_stop_the_visit(talk, known, casebook):
+    Drafts(casebook).folder.write_text("a file stands where the folder should be", encoding="utf-8")
+    done = talk(*OPEN_CASE, *["yes"] * KIT, "note dry")
+    assert newest(casebook).notes[0].what.text == "dry"
+    assert "mistake of the program" not in done.err

@@ -10,6 +10,7 @@ from textual.containers import Horizontal
 from textual.widgets import Input, OptionList, Static
 from textual.widgets.option_list import Option
 
+from tui.begun import waiting
 from tui.harmless import harmless
 from tui.keys import bindings
 from tui.look import FAINT, STRONG, WATCH
@@ -76,7 +77,7 @@ class CasebookPage(Page[None]):
         """List drafts and cases."""
         desk, typed = self.plateside.desk, self.query_one(Input).value
         self.shown = desk.rows(typed, limit=MOST)
-        self.waiting = [] if typed else [n for n in desk.drafts.names() if n.startswith("new_case")]
+        self.waiting = [] if typed else waiting(desk.drafts)
         picker = self.query_one(Lines)
         at = picker.highlighted or 0
         now = datetime.now(UTC)
