@@ -1,7 +1,7 @@
 """Grade folders of cases and print the table of accuracy.
 
 ``python -m benchmarks.accuracy FOLDER... [--limit N] [--shift NAME] [--interactive]
-[--per-fault] [--json FILE]``
+[--per-fault] [--short] [--json FILE]``
 
 Every case is answered three times: as received, with every reading that could be had and, with
 ``--interactive``, in a visit that answers up to eight proposals. The same folders give the same
@@ -85,6 +85,7 @@ def arguments(words: Sequence[str] | None = None) -> argparse.Namespace:
         "--interactive", action="store_true", help="let the tool ask for up to 8 more readings"
     )
     parser.add_argument("--per-fault", action="store_true", help="add a table per fault")
+    parser.add_argument("--short", action="store_true", help="without the bands of the healthy cases")
     parser.add_argument("--json", type=Path, metavar="FILE", help="write all figures there as well")
     return parser.parse_args(words)
 
@@ -102,7 +103,7 @@ def main(words: Sequence[str] | None = None) -> int:
     if chosen.shift:
         cases = shifted(chosen.shift, cases)
     report = grade(cases, answer, interactive=chosen.interactive)
-    print(accuracy_table.text(report, per_fault=chosen.per_fault))
+    print(accuracy_table.text(report, per_fault=chosen.per_fault, short=chosen.short))
     if chosen.json:
         plain: dict[str, Any] = accuracy_table.plain(report)
         chosen.json.write_text(json.dumps({"shift": chosen.shift, **plain}, indent=1), encoding="utf-8")

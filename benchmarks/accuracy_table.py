@@ -27,10 +27,10 @@ ROWS = {
 NUMBERS = frozenset({"log_loss", "calibration_error"})
 
 
-def text(report: Report, *, per_fault: bool = False) -> str:
-    """Return the whole table."""
+def text(report: Report, *, per_fault: bool = False, short: bool = False) -> str:
+    """Return the whole table; a short one has the bands of the healthy twins only."""
     parts = [*_stages(report), *(_visit_lines(report.visits) if report.visits else ()), *_times(report)]
-    for title, bands in report.bands.items():
+    for title, bands in list(report.bands.items())[-1 if short else 0 :]:
         parts += _bands(title, bands)
     if per_fault:
         for name, found in report.stages.items():
@@ -41,12 +41,12 @@ def text(report: Report, *, per_fault: bool = False) -> str:
 def _stages(report: Report) -> Iterator[str]:
     names = list(report.stages)
     yield f"{len(next(iter(report.stages.values())).marks)} cases; in brackets the 95 % interval"
-    yield f"{'':44}" + "".join(f"{name:>26}" for name in names)
+    yield f"{'':40}" + "".join(f"{name:>22}" for name in names)
     for key, called in ROWS.items():
         cells = (s.figures[key] for s in report.stages.values())
         shown = (cell.as_number() if key in NUMBERS else cell.as_share() for cell in cells)
-        yield f"{called:44}" + "".join(f"{cell:>26}" for cell in shown)
-    yield f"{'errors':44}" + "".join(f"{s.errors:>26}" for s in report.stages.values())
+        yield f"{called:40}" + "".join(f"{cell:>22}" for cell in shown)
+    yield f"{'errors':40}" + "".join(f"{s.errors:>22}" for s in report.stages.values())
 
 
 def _visit_lines(visits: Visits) -> Iterator[str]:

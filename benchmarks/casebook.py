@@ -17,12 +17,12 @@ import shutil
 import tempfile
 import time
 from collections.abc import Callable, Iterator, Sequence
+from dataclasses import replace
 from datetime import UTC, datetime, timedelta
 from functools import partial
 from itertools import cycle
 from pathlib import Path
 
-import plateside  # noqa: F401  (puts the layers on the import path)
 from benchmarks.rows import Row, at_most, middle_and_worst, told
 from calc.sheet import CaseSheet, Machine, Nameplate, Reading, Value
 from casebook import bodies as b
@@ -117,7 +117,7 @@ def timed(what: str, act: Callable[[], object], times: int = 20, most: float | N
     """Return median and worst time of some runs; the median is what is judged."""
     middle, worst = middle_and_worst(act, time.perf_counter, times)
     judged = at_most(what, middle, "ms", most, decimals=2)
-    return Row(what, f"{judged.figure}, worst {worst:.1f}", judged.target, judged.is_reached)
+    return replace(judged, figure=f"{judged.figure}, worst {worst:.1f}")
 
 
 def one_sync(folder: Path) -> float:
@@ -159,7 +159,7 @@ def forget(path: Path) -> None:
 def open_and_list(path: Path) -> None:
     """Do what happens before the first screen."""
     with open_casebook(path) as book:
-        assert len(book.cases()) == 50
+        assert book.cases()
 
 
 def opened(path: Path) -> Iterator[Row]:
@@ -171,12 +171,18 @@ def opened(path: Path) -> Iterator[Row]:
     yield timed("open and list 50, warm", lambda: open_and_list(path), most=50)
 
 
+def slowest_search(book: Casebook) -> Row:
+    """Measure what people type, and return the slowest of it."""
+    took = {typed: middle_and_worst(partial(book.search, typed), time.perf_counter, 20) for typed in SEARCHES}
+    typed, (middle, worst) = max(took.items(), key=lambda item: item[1][0])
+    judged = at_most(f"search, the slowest of {len(took)}: '{typed}'", middle, "ms", 20, decimals=2)
+    return replace(judged, figure=f"{judged.figure}, worst {worst:.1f}")
+
+
 def read(book: Casebook) -> Iterator[Row]:
     """Measure what is asked of a casebook."""
     yield timed("list 50", book.cases, most=20)
-    for typed in SEARCHES:
-        book.search(typed)
-        yield timed(f"search '{typed}'", partial(book.search, typed), most=20)
+    yield slowest_search(book)
     token = book.changed_since(10**9).token
     yield timed("ask for changes", lambda: book.changed_since(token))
     yield timed("machines that begin with M-0", lambda: book.machines("M-0"), most=20)
@@ -195,6 +201,7 @@ def written(folder: Path, book: Casebook) -> Iterator[Row]:
     )
     yield at_most("one fdatasync of this disk", sync, "ms", decimals=2)
     yield Row("append to a case of 20", f"{append:.2f} ms, worst {worst:.1f}")
+    yield at_most("append, without the sync", append - sync, "ms", decimals=2)
     yield at_most("append, against one fdatasync", append / sync, "x", 2, decimals=2)
 
 

@@ -19,7 +19,6 @@ from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
 from pathlib import Path
 
-import plateside  # noqa: F401  (puts the layers on the import path)
 from benchmarks.rows import Row, at_most, percentile, told
 from calc.sheet_io import sheet_from_plain
 from casebook.book import open_casebook
@@ -164,11 +163,13 @@ def choose(terminal: Terminal) -> None:
     terminal.pump(0.5)
 
 
-def at_rest(terminal: Terminal, rounds: int) -> Iterator[Row]:
+def at_rest(terminal: Terminal, rounds: int, bare_ms: float) -> Iterator[Row]:
     """Measure keys and readings on the worksheet while nothing else runs."""
     choose(terminal)
     keys = typing(terminal, rounds)
-    yield at_most("key to its echo, p95", percentile((ms for ms, _ in keys), 0.95), "ms", 25, decimals=1)
+    p95 = percentile((ms for ms, _ in keys), 0.95)
+    yield at_most("key to its echo, p95", p95, "ms", 25, decimals=1)
+    yield at_most("the same, against a bare app", p95 / bare_ms, "x", decimals=2)
     yield at_most("one key, p90", percentile((size for _, size in keys), 0.9), "bytes", 200)
     terminal.type("15.2 15.9 14.8\r")
     terminal.wait("Before readings")  # a case with none is asked once
@@ -202,13 +203,11 @@ def under_load(path: Path) -> Iterator[Row]:
     yield at_most(f"meanwhile ({len(keys)} keys) the program takes", busy, "% of a core")
 
 
-def bare(path: Path, rounds: int) -> Iterator[Row]:
-    """Measure keys and memory of a bare app with an input."""
+def bare(path: Path, rounds: int) -> tuple[float, float]:
+    """Return the 95 % point of a key's echo in a bare app with an input, in ms, and its memory in MB."""
     with started(path, BARE) as terminal:
         terminal.pump(0.5)
-        ms = percentile((ms for ms, _ in typing(terminal, rounds)), 0.95)
-        yield at_most("bare app: key to its echo, p95", ms, "ms", decimals=1)
-        yield at_most("bare app: memory", memory_mb(terminal), "MB")
+        return percentile((ms for ms, _ in typing(terminal, rounds)), 0.95), memory_mb(terminal)
 
 
 def fields(terminal: Terminal) -> Iterator[Row]:
@@ -244,15 +243,17 @@ def rows(rounds: int) -> Iterator[Row]:
     with tempfile.TemporaryDirectory() as folder:
         path = casebook(Path(folder))
         yield from starts(path, rounds)
+        bare_ms, bare_mb = bare(path, rounds)
         with started(path) as terminal:
             yield from screens(terminal)
-            yield from at_rest(terminal, rounds)
-            yield at_most("memory after this visit", memory_mb(terminal), "MB", 90)
+            yield from at_rest(terminal, rounds, bare_ms)
+            memory = memory_mb(terminal)
+            yield at_most("memory after this visit", memory, "MB", 90)
+            yield at_most("the same, against a bare app", memory / bare_mb, "x", decimals=2)
         yield from under_load(path)
         with started(path) as terminal:
             terminal.pump(1.0)
             yield from fields(terminal)
-        yield from bare(path, rounds)
 
 
 def main(words: Sequence[str] | None = None) -> int:
