@@ -126,6 +126,28 @@ def test_fitzgerald_7_1_terminal_volts_above_induced_volts_motor_the_machine() -
     assert 125 * ampere / (3000 * RAD) == pytest.approx(59.68, abs=0.01)
 
 
+@example(FITZGERALD, "example 7.2", "21.9 kW at 123 V: 119.4 V induced, 2867 r/min")
+def test_fitzgerald_7_2_less_volts_and_more_current_slow_the_motor() -> None:
+    """125 V at 3000 r/min, 0.02 ohm; 21.9 kW in at 123 V is 178 A."""
+    ampere = 21900 / 123
+    armature = circuit(volts=123 / 125, resistance=0.02 * ampere / 125, emf=1.0)
+    point = settle(armature, poles(), 1.0)
+    assert point.current[0] == pytest.approx(1.0, rel=1e-6)
+    assert point.speed[0] * 125 == pytest.approx(119.4, abs=0.05)
+    assert point.speed[0] * 3000 == pytest.approx(2866.5, abs=0.5)
+
+
+@example(HUBERT, "example 10.4", "850 to 1650 r/min at 50.4 A: flux 47.4 % less")
+def test_hubert_10_4_nearly_half_the_flux_gives_nearly_twice_the_speed() -> None:
+    """240 V, field 95.2 ohm, armature 0.242 ohm, 72 A in the line at 850 r/min."""
+    full_a, weak_a, share = 72 - 240 / 95.2, 50.4, 1 - 0.4742
+    emf = (240 - full_a * 0.242) / 240
+    armature = circuit(resistance=0.242 * full_a / 240, emf=emf)
+    point = settle(armature, poles(flux=share), share * weak_a / full_a)
+    assert point.current[0] * full_a == pytest.approx(50.4, abs=1e-3)
+    assert point.speed[0] * 850 == pytest.approx(1650, abs=1.0)
+
+
 @example(
     FITZGERALD,
     "example 7.9",

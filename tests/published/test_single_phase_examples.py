@@ -189,6 +189,29 @@ def test_a_start_capacitor_for_ninety_degrees_raises_torque_as_in_hubert_6_2():
     assert after.torque_w[0] / before.torque_w[0] == pytest.approx(338.98 / 87.45, rel=1e-3)
 
 
+@example(FITZGERALD, "example 9.1", "4.5 + j3.7 and 9.5 + j3.5 ohm at 120 V, 60 Hz: 176 µF for 90°")
+def test_the_start_capacitor_of_fitzgerald_9_1_turns_the_currents_by_ninety_degrees():
+    in_series = capacitor(microfarad=176.2, frequency_hz=60.0)
+    found = at_standstill(main=4.5 + 3.7j, auxiliary=9.5 + 3.5j + in_series)
+    assert degrees(found.auxiliary) - degrees(found.main) == pytest.approx(90.0, abs=0.05)
+
+
+@example(
+    "Sen, Principles of Electric Machines", "example 7.4",
+    "1.5 + j4 and 3 + j6 ohm at 120 V, 60 Hz: 405 µF for most torque, 314 µF for most torque an ampere",
+)  # fmt: skip
+def test_the_start_capacitors_of_sen_7_4_give_most_torque_and_most_torque_an_ampere():
+    sizes = np.linspace(250.0, 500.0, 251)
+    found = [
+        at_standstill(main=1.5 + 4j, auxiliary=3 + 6j + capacitor(microfarad=c, frequency_hz=60.0))
+        for c in sizes
+    ]
+    torque = np.array([f.torque_w[0] for f in found])
+    amps = np.array([abs(f.main[0] + f.auxiliary[0]) for f in found])
+    assert sizes[torque.argmax()] == pytest.approx(405.0, abs=2.0)
+    assert sizes[(torque / amps).argmax()] == pytest.approx(314.0, abs=2.0)
+
+
 @example(
     "Guru, Electric Machinery and Transformers",
     "example 10.3",
