@@ -7,7 +7,7 @@ before a repair, it is asked for again.
 from __future__ import annotations
 
 from datetime import UTC, datetime, timedelta
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Any, Final
 
 import msgspec
 
@@ -20,13 +20,16 @@ if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
 
     from calc.sheet import CaseSheet
-    from casebook.fold import Case
+    from casebook.fold import Case, Logged
     from rules.answer import Diagnosis
     from rules.gate import ShutLine
     from rules.knowledge import GateRule, Knowledge
 
 SHIFT: Final = timedelta(hours=12)
 """How long an isolation record and what cleared the gate hold: a long shift; common practice."""
+
+AHEAD: Final = timedelta(minutes=15)
+"""By how much two clocks may differ; what is dated further ahead was written before a clock was set back."""
 
 WAS_CLEARED: Final = "was cleared"
 
@@ -52,16 +55,26 @@ def isolation_lapse(case: Case, now: datetime) -> str:
                     return "void: a repair was recorded after it"
         after = after or line.entry.id == record.entry.id
     age = now - record.time_utc
+    if age < -AHEAD:
+        return f"void: it is dated {age_words(-age)} ahead of this clock, isolate and prove it anew"
     return f"void: it is {age_words(age)} old, isolate and prove it anew" if age > SHIFT else ""
 
 
 def recent_sheet(case: Case, now: datetime) -> CaseSheet:
-    """Return the sheet of a case without the readings and answers of an earlier shift, or before a repair."""
-    since = max([now - SHIFT, *(repair.time_utc for repair in case.repairs)])
-    readings = tuple(one.what.reading for one in case.readings if one.time_utc >= since)
-    if len(readings) == len(case.readings) and all(one.time_utc >= since for one in case.observed.values()):
+    """Return the sheet of a case without the readings and answers of an earlier shift, or before a repair.
+
+    What comes before a repair is told by the order of the log: clocks are set back.
+    """
+    place = {line.entry.id: number for number, line in enumerate(case.lines)}
+    repaired = max((place.get(repair.entry.id, -1) for repair in case.repairs), default=-1)
+
+    def is_recent(one: Logged[Any]) -> bool:
+        return place.get(one.entry.id, -1) > repaired and now - SHIFT <= one.time_utc <= now + AHEAD
+
+    readings = tuple(one.what.reading for one in case.readings if is_recent(one))
+    if len(readings) == len(case.readings) and all(map(is_recent, case.observed.values())):
         return case.sheet
-    seen = {name: yes for name, yes in case.observations.items() if case.observed[name].time_utc >= since}
+    seen = {name: yes for name, yes in case.observations.items() if is_recent(case.observed[name])}
     return msgspec.structs.replace(case.sheet, readings=readings, observations=seen)
 
 
@@ -108,7 +121,10 @@ def _was(case: Case, shut: ShutLine, because: str, now: datetime) -> str:
     """Return what cleared a line, and how old that is."""
     moments = [one.time_utc for one in case.readings if one.what.reading.key in shut.line.asks]
     moments += [one.time_utc for name, one in case.observed.items() if name in shut.line.asks]
-    age = f"; {age_words(now - max(moments))} ago" if moments else ""
+    age = ""
+    if moments:
+        passed = now - max(moments)
+        age = f"; {age_words(passed)} ago" if passed > -AHEAD else "; dated ahead of this clock"
     return f"{WAS_CLEARED}: {because or 'on record'}{age}. A new shift looks again."
 
 

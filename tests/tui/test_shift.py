@@ -13,7 +13,7 @@ from casebook.book import open_casebook
 from rules.gate import gate
 from rules.loading import load_knowledge
 from tui.compose import Visit
-from tui.shift import gate_now
+from tui.shift import gate_now, recent_sheet
 
 NOW = datetime.now(UTC)
 PROVED = bodies.Isolation(by="Ines", locked_out=True, proved_dead=True)
@@ -121,3 +121,51 @@ def test_what_forbids_never_grows_old(book, knowledge, sheet):
     book.record(visit.case.id, bodies.ReadingTaken(reading=low), person="Ines", at=NOW - timedelta(hours=39))
     visit.refresh()
     assert lines_of(gate_now(visit.case, knowledge, suspects={}), "forbids")
+
+
+def test_an_isolation_record_from_before_the_clock_was_set_back_is_void(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet, hours_ago=-26.0)
+    book.record(visit.case.id, PROVED, person="Ines", at=NOW + timedelta(hours=26))
+    visit.refresh()
+    assert visit.wants_first("isolated", ()) == "isolation"
+    assert visit.isolation_lapse == "void: it is dated 26 h ahead of this clock, isolate and prove it anew"
+
+
+def test_a_clock_that_differs_by_minutes_voids_nothing(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet)
+    book.record(visit.case.id, PROVED, person="Ines", at=NOW + timedelta(minutes=9))
+    visit.refresh()
+    assert visit.wants_first("isolated", ()) == ""
+
+
+def test_what_cleared_the_gate_before_the_clock_was_set_back_is_asked_for_again(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet, hours_ago=-30.0)
+    later = NOW + timedelta(hours=30)
+    for measure, text in (("insulation_resistance", "350 at 24"), ("winding_resistance", "1.9 1.9 1.9")):
+        taken = visit.understand(measure, "isolated", text)
+        body = bodies.ReadingTaken(reading=taken.reading)
+        book.record(visit.case.id, body, person="Ines", at=later)
+    visit.refresh()
+    read = {"insulation_to_earth", "winding_balanced"}
+    assert read <= cleared_lines(visit, knowledge, later)
+    assert not read & cleared_lines(visit, knowledge, NOW)
+    again = gate_now(visit.case, knowledge, suspects={}, now=NOW)
+    assert any("dated ahead of this clock" in line.because for line in again.energise.lines)
+
+
+def cleared_lines(visit, knowledge, now):
+    """The lines of the gate that are cleared at a moment."""
+    lines = gate_now(visit.case, knowledge, suspects={}, now=now).energise.lines
+    return {line.id for line in lines if line.status == "cleared"}
+
+
+def test_a_repair_stands_after_what_the_log_has_before_it_whatever_the_clock_says(book, knowledge, sheet):
+    visit = visit_of(book, knowledge, sheet, hours_ago=2.0)
+    taken = visit.understand("insulation_resistance", "isolated", "350 at 24")
+    body = bodies.ReadingTaken(reading=taken.reading)
+    book.record(visit.case.id, body, person="Ines", at=NOW - timedelta(hours=1))
+    book.record(
+        visit.case.id, bodies.Repaired(done="new bearings"), person="Ines", at=NOW - timedelta(hours=3)
+    )
+    visit.refresh()
+    assert "insulation_resistance@isolated" not in {r.key for r in recent_sheet(visit.case, NOW).readings}
