@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import replace
+from functools import cache
 
 from calc.twin import Mode, Severity
 
@@ -234,6 +235,7 @@ _MAKERS: dict[str, tuple[Callable[[tuple[float, float]], tuple[Mode, ...]], tupl
 EFFECTS = tuple(_MAKERS)
 
 
+@cache
 def modes(effect: str, severity: tuple[float, float] | None, connection: str | None) -> tuple[Mode, ...]:
     """Enumerate the ways of an effect on a winding linked in star, delta, or unknown (both, half each).
 

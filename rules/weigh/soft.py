@@ -91,10 +91,15 @@ def direct_tables(
         family = next((n for n, f in w.families.items() if reading.measure in f.measures), reading.key)
         rho = w.families[family].correlation if family in w.families else 0.0
         table: Table = {}
+        earlier = before.get(family, [])
+        known: dict[tuple[Spread | None, ...], float] = {}  # most faults leave a reading as it is
         for fault in faults:
-            table[fault.id] = _density(
-                reading, before.get(family, []), fault, healthy, instruments, rho, w.spread_nu
+            spreads = tuple(
+                spread_of(fault, healthy, r.measure, r.state) for r in (reading, *(r for r, _ in earlier))
             )
+            if spreads not in known:
+                known[spreads] = _density(reading, earlier, fault, healthy, instruments, rho, w.spread_nu)
+            table[fault.id] = known[spreads]
         tables[_unused(reading.key, tables)] = table
         before.setdefault(family, []).append((reading, rho))
     return tables
