@@ -14,8 +14,12 @@ import pytest
 
 from calc.errors import PlatesideError
 from casebook import place
+from casebook.book import open_casebook
+from rules.loading import load_knowledge
 from tui import driver, look, printing
-from tui.page import Page
+from tui.compose import Visit
+from tui.drafts import Drafts
+from tui.page_parts import Page
 
 ROOT = Path(__file__).resolve().parent.parent
 SHEET = ROOT / "tests" / "sheets" / "pump_overload.yaml"
@@ -211,11 +215,35 @@ def shipped_files():
 def test_every_file_of_the_project_can_be_unpacked_on_windows():
     names = list(shipped_files())
     assert len(names) == len({name.lower() for name in names})
-    for name in names:
-        assert not set(name) & set('<>:"|?*\\'), name
-        for part in name.split("/"):
-            assert part.partition(".")[0].upper() not in DEVICES, name
-            assert not part.endswith((".", " ")), name
+    assert [name for name in names if not is_a_name_on_windows(name)] == []
+
+
+def is_a_name_on_windows(name):
+    """Whether Windows can have a file of this name; the parts stand between slashes."""
+    return not set(name) & set('<>:"|?*\\') and all(
+        part.partition(".")[0].upper() not in DEVICES and not part.endswith((".", " "))
+        for part in name.split("/")
+    )
+
+
+def test_every_file_that_the_program_writes_has_a_name_that_windows_can_have(tmp_path):
+    sheet = tmp_path / "given.yaml"
+    text = SHEET.read_text(encoding="utf-8")
+    sheet.write_text(text.replace("WP-104 wash water", "'NUL: a/b*?.'"), encoding="utf-8")
+    for words in (
+        ["log", str(sheet), "--person", "CON: *?"],
+        ["export", "--to", "sheets"],
+        ["copy", "copy.db"],
+        ["demo", "--build", "plant.db"],
+    ):
+        assert program(words, tmp_path, PLATESIDE_CASEBOOK="book/casebook.db").returncode == 0
+    Drafts(tmp_path / "book" / "casebook.db").save("case-1-CON: *?", {"typed": "15.2"})
+    with open_casebook(tmp_path / "book" / "casebook.db") as book:
+        visit = Visit(book, book.cases()[0].id, person="x", knowledge=load_knowledge())
+        printing.write(EMPTY, tmp_path / "book" / "casebook.db", printing.usual_name(visit))
+    written = [path.relative_to(tmp_path).as_posix() for path in tmp_path.rglob("*") if path.is_file()]
+    assert len(written) >= 6
+    assert [name for name in written if not is_a_name_on_windows(name)] == []
 
 
 def program(words, folder, *options, typed=b"", **environment):
