@@ -150,6 +150,17 @@ def test_a_user_without_rights_sees_the_demo_and_nothing_of_it_stays(home):
     assert not list(scratch.iterdir())
 
 
+def test_pipx_puts_the_command_on_the_path_from_the_wheelhouse_alone(everybodys, wheelhouse):
+    maker = everybodys / "maker" / "bin"
+    call(maker / "python", "-m", "pip", "install", "-q", "pipx", cwd=everybodys)
+    places = {"PIPX_HOME": str(everybodys / "pipx"), "PIPX_BIN_DIR": str(everybodys / "bin")}
+    env = {**clean(everybodys), **places}
+    only = f"--isolated --no-index --find-links {wheelhouse}"
+    call(maker / "pipx", "install", f"--pip-args={only}", "plateside", cwd=everybodys, env=env)
+    program = everybodys / "bin" / "plateside"
+    assert call(program, "--version", cwd=everybodys, env=env).startswith("plateside ")
+
+
 def test_the_sdist_gives_the_same_wheel_as_the_checkout(tmp_path):
     build = (sys.executable, "-m", "hatchling", "build")
     call(*build, "-t", "wheel", "-d", tmp_path / "direct", cwd=ROOT)
