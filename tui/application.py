@@ -83,10 +83,11 @@ class PlatesideApp(Steady, App[int]):
 
     async def on_event(self, event: Event) -> None:
         """Hand events on; a key waits while the page that it is meant for opens."""
-        if isinstance(event, Key | Paste) and self._keeping is None:
-            self._keeping = self.set_timer(KEEP_S, self.keep_soon)
-        if isinstance(event, Key) and not event.is_forwarded and self.ahead.holds(event):
-            return
+        if isinstance(event, Key | Paste):
+            if self._keeping is None:
+                self._keeping = self.set_timer(KEEP_S, self.keep_soon)
+            if not event.is_forwarded and self.ahead.holds(event):
+                return
         await super().on_event(event)
 
     def load(self) -> None:

@@ -10,10 +10,11 @@ from __future__ import annotations
 from collections import deque
 from typing import TYPE_CHECKING, Final
 
+from textual.events import Key
 from textual.widgets import Input
 
 if TYPE_CHECKING:
-    from textual.events import Key
+    from textual.events import Paste
 
     from tui.application import PlatesideApp
 
@@ -44,16 +45,16 @@ class TypeAhead:
 
     def __init__(self, app: PlatesideApp) -> None:
         self.app = app
-        self.held: deque[Key] = deque()
+        self.held: deque[Key | Paste] = deque()
         self.is_holding = False
         self.waited = 0
 
-    def holds(self, event: Key) -> bool:
-        """Hold a key back where an earlier one is still at work; else note whether this one will be."""
+    def holds(self, event: Key | Paste) -> bool:
+        """Hold a key or a paste back where an earlier key is at work; else note whether this one will be."""
         if self.is_holding:
             self.held.append(event)
             return True
-        if self.is_decisive(event):
+        if isinstance(event, Key) and self.is_decisive(event):
             self.is_holding, self.waited = True, 0
             self.app.set_timer(QUIET_S, self.go_on)
         return False

@@ -171,6 +171,7 @@ async def test_what_was_typed_on_closing_is_there_after_the_line_dropped(tmp_pat
     async with at_worksheet(tmp_path) as (app, pilot):
         await to_closing(pilot, "bearing")
         await keys(pilot, "enter", *"bearings replaced")
+        await until(pilot, "bearings replaced")
         app.keep_drafts()  # what a dropped line does first
         case = newest(app).id
     again = new_app(tmp_path)
