@@ -3,17 +3,17 @@
 from __future__ import annotations
 
 import os
+import time
 from pathlib import Path
 
 import pytest
 from textual.pilot import Pilot
 
 from casebook.errors import CasebookError, DiskFull
-from tests.tui.helpers import SMALL, keys, new_app, screen_text, until
+from tests.tui.helpers import PATIENCE_S, SMALL, keys, new_app, screen_text, until
 from tests.tui.visit import at_worksheet, newest, to_closing, to_complaint
-from tui.application import KEEP_S, PlatesideApp
+from tui.application import PlatesideApp
 from tui.screens.casebook import CasebookPage
-from tui.typeahead import QUIET_S
 
 
 class Disk:
@@ -150,9 +150,18 @@ async def test_a_refusal_in_the_middle_of_a_key_leaves_every_key_working(
 async def test_what_is_typed_is_in_its_draft_a_moment_later(tmp_path: Path):
     async with at_worksheet(tmp_path) as (app, pilot):
         await keys(pilot, "f3", *"speed loaded", "enter", *"1450")
-        await pilot.pause(KEEP_S + 5 * QUIET_S)
-        (name,) = app.desk.drafts.names()
-        assert app.desk.drafts.load(name)["typed"] == "1450"
+        await until(pilot, "1450")
+        assert await drafted(app, pilot) == "1450"
+
+
+async def drafted(app: PlatesideApp, pilot: Pilot[int]) -> str:
+    """Wait until something typed is in a draft by itself; return it."""
+    end = time.monotonic() + PATIENCE_S
+    while time.monotonic() < end:
+        for name in app.desk.drafts.names():
+            return str(app.desk.drafts.load(name)["typed"])
+        await pilot.pause(0.05)
+    raise AssertionError("no draft")
 
 
 async def test_a_reading_that_waits_for_its_hazards_is_in_the_draft(tmp_path: Path):
