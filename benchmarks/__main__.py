@@ -8,7 +8,7 @@ speed       starts, answers, memory, as ratios to a bare Python
 terminal    first paint, key latency at rest and under load, bytes, memory, as ratios to a bare app
 casebook    a million entries
 
-All take about twenty minutes, ``--quick`` two. ``--readme`` also puts each part that ran into its
+All take about twenty minutes, ``--quick`` three. ``--readme`` also puts each part that ran into its
 place in README.md, with the day and the machine; the other parts stay as they are.
 """
 

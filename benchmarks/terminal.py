@@ -57,7 +57,8 @@ F3, F5, F9 = "\x1b[13~", "\x1b[15~", "\x1b[20~"
 UP, DOWN, CLEAR = "\x1b[A", "\x1b[B", "\x15" + "\x7f" * 12
 TYPED = "15.2 15.9"
 READING = "line current loaded"
-PLATE = ("7.5 kW", "400 V", "14.9 A", "50 Hz", "1455 rpm", "0.84")
+PLATE = ("7.5 kW", "400 V", "14.9 A", "50 Hz", "1455 rpm", "0.3 kW")  # the last is no power factor
+FURTHER = 24  # lines of the plate, more than fit on the page
 
 
 def casebook(folder: Path) -> Path:
@@ -211,7 +212,7 @@ def bare(path: Path, rounds: int) -> tuple[float, float]:
 
 
 def fields(terminal: Terminal) -> Iterator[Row]:
-    """Measure the bytes from one line of the nameplate to the next, values typed."""
+    """Measure the bytes from one line of the nameplate to the next: typed, refused, rolling to the last."""
     for page in ("n", "X-9\r", "runs hot\r", "three-phase\r"):
         terminal.type(page)
         terminal.pump(0.5)
@@ -221,6 +222,7 @@ def fields(terminal: Terminal) -> Iterator[Row]:
         terminal.type(text)
         terminal.pump(0.5)
         sizes.append(after(terminal, "\r", 0.6)[1])
+    sizes += [after(terminal, DOWN, 0.4)[1] for _ in range(FURTHER)]
     yield at_most(f"one field to the next, the largest of {len(sizes)}", max(sizes), "bytes", 6_000)
 
 
