@@ -160,7 +160,7 @@ SCREENS: Final[dict[str, tuple[Key, ...]]] = {
         Key("enter,f8", "done", "store", "Store the answers."),
     ),
     "closing": (
-        Key("enter", "next_field", "next line", "The next line; on the last one it asks whether to close."),
+        Key("enter", "next_field", "next line", "The next line; on the last one the case is closed."),
         *_UP_DOWN,
         Key("space", "toggle", "", "Tick or untick in the list of faults."),
         Key(_DONE, "done", "close the case", "Close the case with what stands here."),

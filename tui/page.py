@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from calc.quantities import MEASURES
 from calc.units import find_unit
 from tui.answer_text import LEAST_SHOWN, NO_MODEL, NOTHING_FORBIDS, condition
-from tui.page_history import Chart, charts, trend_sentences
+from tui.page_history import charts, trend_sentences
+from tui.page_parts import Block, Page, Row, Scale
 from tui.words import (
     band_text,
     complaint_name,
@@ -31,12 +31,8 @@ if TYPE_CHECKING:
     from casebook.fold import Case
     from rules.answer import Band, Diagnosis
     from rules.knowledge import Knowledge
+    from tui.curve_pictures import Picture
 
-DEFERRAL = (
-    "This sheet records readings and what they make likely. It replaces no standard, no local code and no "
-    "site rule; limits are quoted with their source, the edition at hand decides. Work on and near "
-    "electrical equipment, and the decision to energise, belong to qualified persons under licensed practice."
-)
 CONFIRMED = {
     "teardown": "confirmed by teardown",
     "repair": "confirmed by repair",
@@ -44,48 +40,15 @@ CONFIRMED = {
 }
 
 
-@dataclass(frozen=True)
-class Scale:
-    """A reading beside its band, in the unit of the band."""
-
-    low: float
-    high: float
-    read: tuple[float, ...]
-
-
-@dataclass(frozen=True)
-class Row:
-    """One line of a table; ``scale`` may be drawn beside it."""
-
-    cells: tuple[str, ...]
-    scale: Scale | None = None
-
-
-@dataclass(frozen=True)
-class Block:
-    """A titled part of the sheet: a table, or sentences."""
-
-    title: str
-    head: tuple[str, ...] = ()
-    rows: tuple[Row, ...] = ()
-    sentences: tuple[str, ...] = ()
-    charts: tuple[Chart, ...] = ()
-    """Drawn on the page; in the text their sentences must do."""
-
-
-@dataclass(frozen=True)
-class Page:
-    """The whole sheet."""
-
-    title: str
-    facts: tuple[tuple[str, str], ...]
-    blocks: tuple[Block, ...]
-    deferral: str = DEFERRAL
-    warning: str = field(default="")
-
-
-def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases: Sequence[Case] = ()) -> Page:
-    """Return the printed sheet of a case; ``cases`` are all of the machine, for its history."""
+def sheet_page(
+    case: Case,
+    diagnosis: Diagnosis,
+    knowledge: Knowledge,
+    *,
+    cases: Sequence[Case] = (),
+    curves: Sequence[Picture] = (),
+) -> Page:
+    """Return the printed sheet of a case; ``cases`` are all of the machine, ``curves`` its own to draw."""
     blocks = [
         Block("Energising", sentences=tuple(_gate(diagnosis))),
         Block("Limits crossed", sentences=tuple(_findings(diagnosis))),
@@ -96,6 +59,7 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases:
         Block("To confirm and to do", sentences=tuple(_to_do(diagnosis, case.machine.kind, knowledge))),
         Block("Found and done", sentences=tuple(_closing(case, knowledge))),
         history_block(case, cases, knowledge),
+        Block("Curves", pictures=tuple(curves)),
         Block("Isolation", sentences=tuple(_isolation(case))),
         Block("Cautions", sentences=diagnosis.cautions),
         Block("Remarks", sentences=tuple(_remarks(case, diagnosis, knowledge))),
@@ -104,7 +68,9 @@ def sheet_page(case: Case, diagnosis: Diagnosis, knowledge: Knowledge, *, cases:
     return Page(
         title=f"{case.number}  {case.tag or '(no tag)'}",
         facts=tuple(_facts(case, knowledge)),
-        blocks=tuple(block for block in blocks if block.rows or block.sentences or block.charts),
+        blocks=tuple(
+            block for block in blocks if block.rows or block.sentences or block.charts or block.pictures
+        ),
         warning=f"STOP: {stop.first}" if stop is not None and stop.stop else "",
     )
 
@@ -140,7 +106,7 @@ def shop_tag(case: Case, diagnosis: Diagnosis, knowledge: Knowledge) -> Page:
     return Page(
         title=f"REPAIR TAG  {case.tag or '(no tag)'}  {case.number}",
         facts=tuple(_facts(case, knowledge)),
-        blocks=tuple(block for block in blocks if block.rows or block.sentences or block.charts),
+        blocks=tuple(filter(None, blocks)),
     )
 
 

@@ -5,11 +5,15 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING
 
+from tui.plot import nice_span
 from tui.words import number
 
 if TYPE_CHECKING:
-    from tui.page import Scale
+    from collections.abc import Callable, Sequence
+
+    from tui.curve_pictures import Picture
     from tui.page_history import Chart
+    from tui.page_parts import Scale
 
 DECADE = 5.0  # a spread above this factor is drawn on a logarithmic scale
 
@@ -59,3 +63,58 @@ def chart_svg(chart: Chart, *, width: int = 420, height: int = 110) -> str:
         f'<svg width="{width}" height="{height}" viewBox="0 0 {width} {height}" role="img" '
         f'aria-label="history"><path d="M{line}" fill="none" stroke="#555"/>{marks}{texts}{last}</svg>'
     )
+
+
+def curve_svg(picture: Picture, *, width: int = 420, height: int = 190) -> str:
+    """Return curves with their bands: the band in grey, lines, and a ring with its mark for every point."""
+    xs = [x for curve in picture.curves for x in curve.x if math.isfinite(x)]
+    ys = [y for curve in picture.curves for y in curve.y if math.isfinite(y)]
+    ys += [y for band in picture.bands for y in (*band.low, *band.high) if math.isfinite(y)]
+    if not xs or not ys:
+        return ""
+    (left, right), (low, high) = (min(xs), max(xs) or 1.0), nice_span(min(ys), max(ys))
+
+    def place(x: float, y: float) -> str:
+        across = 60 + (x - left) / ((right - left) or 1.0) * (width - 75)
+        return f"{across:.1f} {height - 32 - (y - low) / (high - low) * (height - 45):.1f}"
+
+    drawn = ""
+    for band in picture.bands:
+        there = [*zip(band.x, band.high, strict=True), *reversed([*zip(band.x, band.low, strict=True)])]
+        drawn += f'<path d="M{_path(there, place)}Z" fill="#ddd"/>'
+    for curve in picture.curves:
+        points = [
+            (x, y) for x, y in zip(curve.x, curve.y, strict=True) if math.isfinite(x) and math.isfinite(y)
+        ]
+        if curve.joined and points:
+            drawn += f'<path d="M{_path(points, place)}" fill="none" stroke="#111"/>'
+        for x, y in points if not curve.joined else ():
+            across, down = place(x, y).split()
+            drawn += f'<circle cx="{across}" cy="{down}" r="3.5" fill="none" stroke="#111"/>'
+            drawn += f'<text x="{float(across) + 6:.1f}" y="{down}" font-size="11">{curve.mark}</text>'
+    axes = f'<path d="M60 13V{height - 32}H{width - 15}" fill="none" stroke="#999"/>'
+    labels = [
+        (0, 22, "start", f"{high:g}"), (0, height - 30, "start", f"{low:g}"),
+        (60, height - 16, "start", f"{left:g}"),
+        (width - 8, height - 16, "end", f"{number(right)} {picture.x_label}"),
+    ]  # fmt: skip
+    texts = "".join(
+        f'<text x="{x}" y="{y}" font-size="11" text-anchor="{anchor}">{text}</text>'
+        for x, y, anchor, text in labels
+    )
+    return (
+        f'<svg width="{width}" height="{height}" viewBox="0 0 {width} {height}" role="img" '
+        f'aria-label="curve">{axes}{drawn}{texts}</svg>'
+    )
+
+
+def legend(picture: Picture) -> str:
+    """Return in words which mark is what."""
+    said = [f"{curve.mark} {curve.name}" for curve in picture.curves if curve.name and not curve.joined]
+    said += [f"line: {curve.name}" for curve in picture.curves if curve.name and curve.joined]
+    return "; ".join([*said, *(f"grey: {band.name} such machines" for band in picture.bands)])
+
+
+def _path(points: Sequence[tuple[float, float]], place: Callable[[float, float], str]) -> str:
+    """Return points as the steps of a path."""
+    return "L".join(place(x, y) for x, y in points)

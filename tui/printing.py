@@ -14,12 +14,13 @@ import msgspec
 
 from calc.errors import PlatesideError
 from tui import page, report
+from tui.curve_pictures import machine_pictures
 
 if TYPE_CHECKING:
     from pathlib import Path
 
     from tui.compose import Visit
-    from tui.page import Page
+    from tui.page_parts import Page
 
 FOLDER: Final = "sheets"
 _NAME: Final = re.compile(r"[A-Za-z0-9](?:[A-Za-z0-9 ._-]{0,78}[A-Za-z0-9_-])?")
@@ -37,7 +38,8 @@ def printed(visit: Visit, *, shop_tag: bool = False) -> Page:
     if said:
         diagnosis = msgspec.structs.replace(diagnosis, notes=(*diagnosis.notes, said))
     cases = visit.book.machine_cases(case.tag) if case.tag else ()
-    return page.sheet_page(case, diagnosis, visit.knowledge, cases=cases)
+    curves = machine_pictures(visit.sheet)
+    return page.sheet_page(case, diagnosis, visit.knowledge, cases=cases, curves=curves)
 
 
 def usual_name(visit: Visit, *, shop_tag: bool = False) -> str:

@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING
 
 from tui.columns import WIDTH, columns, paragraph
 from tui.harmless import UNSEEN
-from tui.pictures import chart_svg, scale_svg
+from tui.pictures import chart_svg, curve_svg, legend, scale_svg
 
 if TYPE_CHECKING:
-    from tui.page import Block, Page
+    from tui.curve_pictures import Picture
+    from tui.page_parts import Block, Page
 
 POLICY = "default-src 'none'; style-src 'unsafe-inline'"
 STYLE = """
@@ -36,6 +37,8 @@ def as_text(page: Page) -> list[str]:
     for label, value in page.facts:
         lines += paragraph(value, first=f"{label + ':':<12}")
     for block in page.blocks:
+        if block.pictures:  # drawn on the HTML page only
+            continue
         lines += ["", block.title, "-" * len(block.title), *_block_text(block)]
     return [*lines, "", *paragraph(page.deferral)]
 
@@ -70,7 +73,9 @@ def _stacked(head: tuple[str, ...], cells: tuple[str, ...]) -> list[str]:
 
 
 def _block_html(block: Block) -> str:
-    """Return a block as a table or a list."""
+    """Return a block as a table, a list or pictures."""
+    if block.pictures:
+        return "".join(_curve_html(picture) for picture in block.pictures)
     if block.charts:
         pictures = (
             f"<p>{_html(chart.title)}, {_html(chart.unit)}<br/>{chart_svg(chart)}</p>"
@@ -89,6 +94,12 @@ def _block_html(block: Block) -> str:
         for row in block.rows
     )
     return f"<table><thead><tr>{head}</tr></thead><tbody>{body}</tbody></table>"
+
+
+def _curve_html(picture: Picture) -> str:
+    """Return one curve with its title and what its marks mean."""
+    title = f"{picture.title}, {picture.y_label} ({legend(picture)})"
+    return f"<p>{_html(title)}<br/>{curve_svg(picture)}</p>"
 
 
 def _list_html(sentences: tuple[str, ...]) -> str:

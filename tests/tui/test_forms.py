@@ -1,4 +1,4 @@
-"""Pages of lines to type: the line that is typed is seen, and one that is not understood is not left by Enter."""
+"""Pages of lines to type: the line that is typed is seen; Enter stays on one that is not understood."""
 
 from __future__ import annotations
 

@@ -4,11 +4,13 @@ from html.parser import HTMLParser
 
 import pytest
 
-from tui.page import Scale
+from tui.curve_pictures import Picture
 from tui.page_history import Chart
-from tui.pictures import chart_svg, scale_svg
+from tui.page_parts import Scale
+from tui.pictures import chart_svg, curve_svg, scale_svg
+from tui.plot import Band, Curve
 
-VOID = {"meta", "rect", "path", "br"}
+VOID = {"meta", "rect", "path", "br", "circle"}
 
 
 class Tags(HTMLParser):
@@ -118,6 +120,44 @@ def test_a_falling_insulation_is_drawn_falling():
     picture = chart_svg(Chart(title="insulation", unit="Mohm", points=points, first="a", last="b"))
     heights = [float(part.split('"')[0]) for part in picture.split('cy="')[1:]]
     assert heights == sorted(heights)  # downwards on a page
+
+
+@pytest.mark.parametrize(
+    ("name", "titles"),
+    [
+        ("pump_overload", ("torque over speed", "line current over speed")),
+        ("single_phase_switch_stuck", ("S start switch opens", "line current over speed")),
+        ("shunt_winder_weak_field", ("back-EMF over speed",)),
+    ],
+)
+def test_the_page_draws_the_curves_of_its_machine_and_the_text_leaves_them_out(run, sheet, name, titles):
+    number = run("log", sheet(name)).out.split()[0]
+    page = run("report", number, "--html").out
+    assert page.count('aria-label="curve"') == len(titles)
+    assert all(title in page for title in titles)
+    tags = Tags()
+    tags.feed(page)
+    assert tags.open == []
+    assert "Curves" not in run("report", number).out
+
+
+def test_a_curve_is_drawn_through_its_points_inside_its_band():
+    line = Curve(x=[0.0, 100.0], y=[0.0, 10.0], name="middle")
+    point = Curve(x=[50.0, float("nan")], y=[5.0, 1.0], mark="R", joined=False, name="rated")
+    band = Band(x=[0.0, 100.0], low=[0.0, 8.0], high=[1.0, 12.0])
+    picture = curve_svg(Picture("t", (line, point), (band,)), width=475, height=145)
+    x, y = (float(picture.split(f'{name}="')[1].split('"')[0]) for name in ("cx", "cy"))
+    ends = [
+        tuple(map(float, part.split())) for part in picture.split('fill="none" stroke="#111"')[0]
+        .rsplit('d="M', 1)[1].split('"')[0].split("L")
+    ]  # fmt: skip
+    assert x == pytest.approx((ends[0][0] + ends[1][0]) / 2, abs=0.1)
+    assert y == pytest.approx((ends[0][1] + ends[1][1]) / 2, abs=0.1)
+    assert "nan" not in picture
+
+
+def test_nothing_finite_is_no_picture():
+    assert curve_svg(Picture("t", (Curve(x=[float("nan")], y=[1.0]),))) == ""
 
 
 def test_the_history_of_a_machine_stands_on_its_sheet(run, tmp_path):

@@ -9,6 +9,7 @@ from pathlib import Path
 
 from textual.pilot import Pilot
 
+from calc.sheet_io import sheet_from_plain
 from casebook.fold import Case
 from tests.tui.helpers import PATIENCE_S, SMALL, keys, known_machine, new_app, screen_text, settled, until
 from tui.application import PlatesideApp
@@ -47,6 +48,16 @@ async def at_worksheet(
     async with app.run_test(size=SMALL) as pilot:
         await to_worksheet(pilot, complaint)
         yield app, pilot
+
+
+def single_phase_case(app: PlatesideApp, tag: str = "K-12") -> PlatesideApp:
+    """Open a case on a capacitor-start motor that hums and does not turn."""
+    plate = {"power": "1.5 hp", "voltage": "230 V", "current": "8.4 A", "speed": "1725 rpm"}
+    plate |= {"frequency": "60 Hz", "start_capacitor": "161-193 uF"}
+    machine = {"tag": tag, "kind": "induction_1ph", "nameplate": plate}
+    sheet = {"format": 1, "machine": machine, "complaint": "hums_will_not_turn"}
+    app.desk.book.log_sheet(sheet_from_plain(sheet), "R. Varga")
+    return app
 
 
 def newest(app: PlatesideApp) -> Case:

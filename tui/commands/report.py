@@ -4,10 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-import msgspec
-
 from casebook.book import open_casebook
-from tui import cli, page, places, report
+from tui import cli, places, printing, report
 from tui.compose import Visit
 from tui.output import say
 
@@ -21,14 +19,6 @@ def run(arguments: Namespace) -> int:
     with open_casebook(places.existing_casebook(arguments)) as book:
         visit = Visit(book, arguments.case, person="", knowledge=knowledge)
         visit.use_learned = not arguments.no_learned
-        case, diagnosis = visit.case, visit.weigh().diagnosis
-        cases = book.machine_cases(case.tag) if case.tag else ()
-    said = visit.learned_words()
-    if said:
-        diagnosis = msgspec.structs.replace(diagnosis, notes=(*diagnosis.notes, said))
-    if arguments.tag:
-        sheet = page.shop_tag(case, diagnosis, knowledge)
-    else:
-        sheet = page.sheet_page(case, diagnosis, knowledge, cases=cases)
+        sheet = printing.printed(visit, shop_tag=arguments.tag)
     say(report.as_html(sheet) if arguments.html else report.as_text(sheet))
     return cli.DONE

@@ -6,10 +6,10 @@ from typing import TYPE_CHECKING
 
 from textual import work
 
+from tui.curve_pictures import history_pictures, machine_pictures
 from tui.keys import bindings
 from tui.look import FAINT, STRONG
 from tui.plot import plot
-from tui.screens.curve_pictures import history_pictures, machine_pictures
 from tui.screens.page import TextPage
 from tui.widgets.ruled import INDENT, pad, row, rows
 
@@ -18,7 +18,7 @@ if TYPE_CHECKING:
 
     from casebook.fold import Case
     from tui.compose import Visit
-    from tui.screens.curve_pictures import Picture
+    from tui.curve_pictures import Picture
 
 
 class Curves(TextPage):
@@ -43,7 +43,7 @@ class Curves(TextPage):
     @work(thread=True, exit_on_error=False)
     def draw(self, cases: tuple[Case, ...]) -> None:
         """Work the pictures out."""
-        pictures = [*machine_pictures(self.visit), *history_pictures(self.visit, cases)]
+        pictures = [*machine_pictures(self.visit.sheet), *history_pictures(self.visit, cases)]
         self.app.call_from_thread(self.drawn, pictures)
 
     def drawn(self, pictures: list[Picture]) -> None:

@@ -16,7 +16,7 @@ from tui.widgets.ruled import INDENT
 
 if TYPE_CHECKING:
     from tui.compose import Visit
-    from tui.page import Page
+    from tui.page_parts import Page
 
 
 class SheetPage(TextPage):

@@ -1,4 +1,4 @@
-"""What the curves page draws: the machine's own curves, and what was read over the days."""
+"""What is drawn of a machine: its own curves, and what was read over the days. No terminal here."""
 
 from __future__ import annotations
 
@@ -15,7 +15,8 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from calc.dc.model import DcTwin
-    from calc.induction_3ph.model import InductionTwin
+    from calc.induction_1ph.curves import SpeedCurves as OnePhaseCurves
+    from calc.induction_3ph.curves import SpeedCurves
     from calc.sheet import CaseSheet
     from casebook.fold import Case
     from casebook.history import Point, Series
@@ -92,16 +93,24 @@ def limit_line(measure: str, visit: Visit, days: Sequence[float], factor: float)
     return Curve(x=[min(days), max(days)], y=[value, value], mark="=", name=f"limit {floor[1]}")
 
 
-def machine_pictures(visit: Visit) -> list[Picture]:
+def machine_pictures(sheet: CaseSheet) -> list[Picture]:
     """Return the curves that the machine's model offers, each with its band; none where it offers none."""
     from calc.dc.model import DcTwin
+    from calc.induction_1ph.model import SinglePhaseTwin
     from calc.induction_3ph.model import InductionTwin
     from calc.kinds import twin_of
 
-    twin = twin_of(visit.sheet.machine, visit.sheet.readings)
+    twin = twin_of(sheet.machine, sheet.readings)
     if isinstance(twin, InductionTwin):
-        return speed_pictures(twin, visit.sheet)
-    return emf_pictures(twin, visit.sheet) if isinstance(twin, DcTwin) else []
+        from calc.induction_3ph.curves import speed_curves
+
+        return speed_pictures(speed_curves(twin), sheet)
+    if isinstance(twin, SinglePhaseTwin):
+        from calc.induction_1ph.curves import speed_curves as one_phase_curves
+
+        drawn = one_phase_curves(twin)
+        return speed_pictures(drawn, sheet, switch_rpm=drawn.switch_rpm)
+    return emf_pictures(twin, sheet) if isinstance(twin, DcTwin) else []
 
 
 def emf_pictures(twin: DcTwin, sheet: CaseSheet) -> list[Picture]:
@@ -139,17 +148,16 @@ def spun_readings(sheet: CaseSheet) -> Curve:
     )
 
 
-def speed_pictures(twin: InductionTwin, sheet: CaseSheet) -> list[Picture]:
+def speed_pictures(
+    drawn: SpeedCurves | OnePhaseCurves, sheet: CaseSheet, *, switch_rpm: float | None = None
+) -> list[Picture]:
     """Return torque and current over speed, with the rated point and the currents that were read."""
-    from calc.induction_3ph.curves import speed_curves
-
-    drawn = speed_curves(twin)
     speed = drawn.speed_rpm.tolist()
     low, middle, high = ([max(value, 0.0) for value in values] for values in drawn.torque_nm)
     rated = Curve(x=[drawn.rated_speed_rpm], y=[drawn.rated_torque_nm], mark="R", joined=False, name="rated")
     torque = Picture(
         title="torque over speed at rated volts",
-        curves=(Curve(x=speed, y=middle, name="middle"), rated),
+        curves=(Curve(x=speed, y=middle, name="middle"), rated, *_switch(switch_rpm)),
         bands=(Band(x=speed, low=low, high=high, name=NINE_IN_TEN),),
         x_label="rpm",
         y_label="N m",
@@ -163,6 +171,13 @@ def speed_pictures(twin: InductionTwin, sheet: CaseSheet) -> list[Picture]:
         y_label="A",
     )
     return [torque, current]
+
+
+def _switch(switch_rpm: float | None) -> list[Curve]:
+    """Return where the start switch opens, as a mark on the axis."""
+    if switch_rpm is None:
+        return []
+    return [Curve(x=[switch_rpm], y=[0.0], mark="S", joined=False, name="start switch opens")]
 
 
 def currents_read(sheet: CaseSheet) -> Curve:
