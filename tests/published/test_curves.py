@@ -7,9 +7,12 @@ import pytest
 
 from calc.dc import fit as fit_dc
 from calc.dc.curves import emf_curve
+from calc.induction_1ph import fit as fit_1ph
+from calc.induction_1ph.curves import speed_curves as speed_curves_1ph
 from calc.induction_3ph import fit
 from calc.induction_3ph.curves import speed_curves
 from tests.calc.dc.builders import machine as dc_machine
+from tests.calc.induction_1ph.plates import machine as machine_1ph
 from tests.calc.induction_3ph.plates import machine
 from tests.published.circuits import MACHINES
 from tests.published.sources import published
@@ -77,3 +80,25 @@ def test_the_back_emf_of_chapman_9_1_lies_in_the_drawn_band():
     curve = emf_curve(fit_dc(dc_machine("dc_shunt", plate)))
     low, high = (float(np.interp(1143.8, curve.speed_rpm, curve.emf_v[i])) for i in (0, 2))
     assert low < 238.3 < high
+
+
+FITZGERALD_9_2 = {"power": 147.4, "voltage": 110, "current": 3.6, "frequency": 60, "speed": 1710,
+                  "power_factor": 0.62, "efficiency": 0.60}  # fmt: skip
+FITZGERALD_9_5 = {"power": 3532, "voltage": 230, "current": 18.5, "frequency": 60, "speed": 3500,
+                  "power_factor": 0.92, "efficiency": 0.874, "run_capacitor": 35e-6}  # fmt: skip
+
+
+@published(
+    "Fitzgerald, Electric Machinery", "examples 9.2 and 9.5", known="looked up",
+    checks="calc.induction_1ph.curves.speed_curves",
+    says="0.823 N·m and 3.6 A at 1710 r/min; 9.64 N·m and 18.5 A at 3500 r/min",
+)  # fmt: skip
+@pytest.mark.parametrize(
+    ("plate", "torque_nm", "amps"), [(FITZGERALD_9_2, 0.8233, 3.605), (FITZGERALD_9_5, 9.637, 18.55)]
+)
+def test_torque_and_current_of_a_single_phase_example_lie_in_the_drawn_band(plate, torque_nm, amps):
+    curves = speed_curves_1ph(fit_1ph(machine_1ph(plate)))
+    order = np.argsort(curves.speed_rpm)
+    for band, truth in ((curves.torque_nm, torque_nm), (curves.current_a, amps)):
+        low, high = (np.interp(plate["speed"], curves.speed_rpm[order], band[i][order]) for i in (0, 2))
+        assert low < truth < high

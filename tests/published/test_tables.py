@@ -8,11 +8,12 @@ import pytest
 
 from calc.induction_3ph.plate import read_base
 from calc.lookup import code_letter_kva_per_hp, code_letters
+from calc.overload_relay import REFERENCE_MULTIPLE
 from calc.sheet import Reading, Value
 from calc.typical import class_efficiency
 from calc.units import find_unit
 from calc.vocabulary import DESIGN_LETTERS, INSULATION_CLASSES
-from rules.trips import trip_table
+from rules.trips import LEG, WARM_MULTIPLE, trip_table
 from tests.calc.induction_3ph.plates import machine as machine_3ph
 from tests.published.sources import column_table, published
 
@@ -115,6 +116,16 @@ def test_a_relay_holds_and_trips_at_the_printed_multiples():
     table = trip_table()
     assert (table.holds_at, table.trips_at, table.within_s) == (1.05, 1.2, 7200.0)
     assert set(table.classes) == {row["class"] for row in column_table("trip_classes")}
+
+
+@published(
+    "IEC 60947-4-1", "points at which times are fixed; a relay in the phase leg of a star-delta starter",
+    known="from memory", says="1.5 times from warm, 7.2 times from cold; 0.58 of the line current",
+    checks=["rules.trips.LEG", "rules.trips.WARM_MULTIPLE", "calc.overload_relay.REFERENCE_MULTIPLE"],
+)  # fmt: skip
+def test_the_multiples_of_the_trip_arithmetic_are_the_printed_ones():
+    assert (WARM_MULTIPLE, REFERENCE_MULTIPLE) == (1.5, 7.2)
+    assert pytest.approx(0.58, abs=0.003) == LEG
 
 
 # Words and units.
