@@ -90,7 +90,11 @@ def arguments(words: Sequence[str] | None = None) -> argparse.Namespace:
     parser.add_argument("--readme", action="store_true", help="write what was measured into README.md")
     parser.add_argument("--cases", type=int, help="of each folder")
     parser.add_argument("--entries", type=int, help="of the casebook")
-    return parser.parse_args(words)
+    chosen = parser.parse_args(words)
+    for folder in chosen.folders:
+        if not any(folder.glob("*.truth.json")):
+            parser.error(f"{folder}: no graded cases (NNNN.yaml with NNNN.truth.json)")
+    return chosen
 
 
 def main(words: Sequence[str] | None = None) -> int:

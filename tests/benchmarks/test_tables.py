@@ -53,10 +53,17 @@ def test_the_readme_quotes_each_part_with_its_day_and_machine(part):
 
 
 def test_every_part_names_a_module_that_is_there(tmp_path):
+    (tmp_path / "0001.truth.json").touch()
     chosen = table.arguments(["--quick", str(tmp_path)])
     for part in table.PARTS:
         for _, (module, *_) in table.commands(part, chosen, "made"):
             assert (README.parent / f"{module.replace('.', '/')}.py").exists()
+
+
+def test_a_folder_without_graded_cases_is_refused_before_anything_is_measured(tmp_path, capsys):
+    with pytest.raises(SystemExit, match="2"):
+        table.main([str(tmp_path)])
+    assert f"{tmp_path}: no graded cases" in capsys.readouterr().err
 
 
 def test_a_small_casebook_can_be_measured_too(tmp_path, capsys):
