@@ -38,7 +38,8 @@ def check_entry(entry: Entry) -> None:
     if not entry.person.strip() or len(entry.person) > MAX_PERSON or _unclean(entry.person, line=True):
         raise BadEntry("person", entry.person, f"a name of 1 to {MAX_PERSON} printable characters")
     if entry.time_utc.tzinfo is None or not FIRST <= entry.time_utc < LAST:
-        raise BadEntry("time_utc", entry.time_utc.isoformat(), "a time with zone from 1970 to 2199")
+        allowed = "a time from 1970 to 2199; is the clock right?"
+        raise BadEntry("time_utc", entry.time_utc.isoformat(), allowed)
     if abs(entry.offset_minutes) > MAX_OFFSET:
         raise BadEntry("offset_minutes", entry.offset_minutes, f"-{MAX_OFFSET} to {MAX_OFFSET}")
     if not 1 <= entry.body_version < 10_000:

@@ -46,6 +46,12 @@ class DiskFull(CasebookError):  # noqa: N818
     advice = "Nothing was written. Free some space and press Enter again"
 
 
+class DiskFails(CasebookError):  # noqa: N818
+    """The disk gives an error, is gone, or takes no larger file."""
+
+    advice = "Nothing was written. See that the disk is there and has room, then try again"
+
+
 class NoPermission(CasebookError):  # noqa: N818
     """The file or its folder may not be written, or not be read."""
 

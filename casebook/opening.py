@@ -21,6 +21,7 @@ from casebook.errors import (
     CasebookBusy,
     CasebookError,
     DamagedCasebook,
+    DiskFails,
     DiskFull,
     NewerCasebook,
     NoPermission,
@@ -259,6 +260,8 @@ def _in_words(error: sqlite3.Error, path: Path) -> CasebookError:
         return NoPermission(f"{path} may not be written, or not be opened, by you")
     if code == sqlite3.SQLITE_NOTADB:
         return NotACasebook(f"{path} is no casebook")
+    if code == sqlite3.SQLITE_IOERR:
+        return DiskFails(f"the disk that holds {path.name} does not do what is asked of it ({error})")
     if code in {sqlite3.SQLITE_CORRUPT}:
         return DamagedCasebook(f"{path} is damaged ({error})")
     return CasebookError(f"{path} could not be used ({error})")

@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import contextlib
 import importlib
 import os
 import sys
+import time
+from datetime import datetime, timedelta
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -15,12 +18,15 @@ if TYPE_CHECKING:
     from argparse import Namespace
     from collections.abc import Sequence
 
+FARTHEST = timedelta(hours=14)
+"""How far local time is from UTC at most, on either side."""
 DONE, FAILED, WRONG_INPUT, INTERRUPTED = 0, 1, 2, 130
 
 
 def main(argv: Sequence[str] | None = None) -> int:
     """Run one command; return 0 done, 1 could not be done, 2 the input is wrong."""
     _open_closed_streams()
+    _mend_zone()
     try:
         words = sys.argv[1:] if argv is None else list(argv)
         status = run(parser.build(words).parse_args(words))
@@ -92,6 +98,17 @@ def _open_closed_streams() -> None:
         sys.stdout = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115
     if sys.stderr is None:
         sys.stderr = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115
+
+
+def _mend_zone() -> None:
+    """Go on in UTC where the zone is one that no place on earth has: no moment could be shown or stored."""
+    with contextlib.suppress(ValueError, OverflowError):
+        if abs(datetime.now().astimezone().utcoffset() or timedelta()) <= FARTHEST:
+            return
+    zone, os.environ["TZ"] = os.environ.get("TZ", ""), "UTC0"
+    if hasattr(time, "tzset"):
+        time.tzset()
+    _told(f"there is no time zone {zone}: times are shown in UTC", FAILED)
 
 
 def _finish(status: int) -> int:

@@ -178,3 +178,17 @@ def test_machines_are_offered_by_the_beginning_of_their_tag(book: Casebook):
     machines = book.machines("p-1")
     assert [(machine.tag, machine.cases) for machine in machines] == [("p-104", 2), ("P-105", 1)]
     assert len(book.machine_cases("P-104")) == 2
+
+
+@pytest.mark.parametrize("year", [1969, 2200])
+def test_a_clock_far_from_the_truth_is_told_and_nothing_is_written(book: Casebook, year: int):
+    with pytest.raises(BadEntry, match=r"time_utc is .*; it must be a time from 1970 to 2199; is the clock"):
+        book.log_sheet(a_sheet(), "Ada", at=datetime(year, 7, 1, tzinfo=UTC))
+    assert book.store.count() == 0
+
+
+def test_a_clock_that_was_set_back_changes_no_order(book: Casebook):
+    case = book.log_sheet(a_sheet(), "Ada", at=datetime(2026, 3, 2, 9, 0, tzinfo=UTC))
+    for hour, text in ((9, "first"), (7, "second"), (5, "third")):
+        book.record(case, b.Note(text=text), person="Ada", at=datetime(2026, 3, 2, hour, 5, tzinfo=UTC))
+    assert [note.what.text for note in book.case(case).notes] == ["first", "second", "third"]

@@ -7,7 +7,7 @@ import re
 import subprocess
 import sys
 import time
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from pathlib import Path
 
 import pexpect
@@ -30,6 +30,7 @@ class Terminal:
         rows: int = 24,
         env: Mapping[str, str | None] | None = None,
         command: list[str] | None = None,
+        before: Callable[[], None] | None = None,
     ) -> None:
         self.screen = pyte.Screen(columns, rows)
         self.stream = pyte.ByteStream(self.screen)
@@ -50,6 +51,7 @@ class Terminal:
             dimensions=(rows, columns),
             env={name: value for name, value in wanted.items() if value is not None},
             cwd=ROOT,
+            preexec_fn=before,
         )
 
         self.process.delaybeforesend = None
