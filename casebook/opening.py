@@ -250,18 +250,23 @@ def translated(path: Path) -> Iterator[None]:
         raise DamagedCasebook(f"{path} is damaged ({error})") from error
 
 
+_READ_ONLY: Final = {
+    sqlite3.SQLITE_READONLY, sqlite3.SQLITE_PERM, sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_AUTH,
+}  # fmt: skip
+
+
 def _in_words(error: sqlite3.Error, path: Path) -> CasebookError:
     code = (getattr(error, "sqlite_errorcode", None) or 0) & 0xFF
-    if code in {sqlite3.SQLITE_BUSY, sqlite3.SQLITE_LOCKED}:
-        return CasebookBusy(f"{path.name} is held by another program")
-    if code == sqlite3.SQLITE_FULL:
-        return DiskFull(f"the disk that holds {path.name} is full")
-    if code in {sqlite3.SQLITE_READONLY, sqlite3.SQLITE_PERM, sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_AUTH}:
-        return NoPermission(f"{path} may not be written, or not be opened, by you")
-    if code == sqlite3.SQLITE_NOTADB:
-        return NotACasebook(f"{path} is no casebook")
-    if code == sqlite3.SQLITE_IOERR:
-        return DiskFails(f"the disk that holds {path.name} does not do what is asked of it ({error})")
-    if code in {sqlite3.SQLITE_CORRUPT}:
-        return DamagedCasebook(f"{path} is damaged ({error})")
-    return CasebookError(f"{path} could not be used ({error})")
+    known: dict[int, tuple[type[CasebookError], str]] = {
+        sqlite3.SQLITE_FULL: (DiskFull, f"the disk that holds {path.name} is full"),
+        sqlite3.SQLITE_IOERR: (DiskFails, f"the disk that holds {path.name} does not obey ({error})"),
+        sqlite3.SQLITE_NOTADB: (NotACasebook, f"{path} is no casebook"),
+        sqlite3.SQLITE_CORRUPT: (DamagedCasebook, f"{path} is damaged ({error})"),
+        **dict.fromkeys(
+            (sqlite3.SQLITE_BUSY, sqlite3.SQLITE_LOCKED),
+            (CasebookBusy, f"{path.name} is held by another program"),
+        ),
+        **dict.fromkeys(_READ_ONLY, (NoPermission, f"{path} may not be written, or not be opened, by you")),
+    }
+    kind, what = known.get(code, (CasebookError, f"{path} could not be used ({error})"))
+    return kind(what)
