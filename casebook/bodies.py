@@ -197,6 +197,9 @@ class Closed(Body, frozen=True, kw_only=True):
     parts: tuple[str, ...] = ()
     minutes: float | None = None
     retest: tuple[str, ...] = ()
+    """What is to be read again, as ``measure@state``."""
+    retested: tuple[ReadingTaken, ...] = ()
+    """What was read again after the repair; no evidence on the fault."""
     winding_is_new: bool = False
     note: str = ""
 

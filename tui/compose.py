@@ -133,7 +133,7 @@ class Visit:
 
     def record(self, understood: Understood) -> str:
         """Store a reading that was echoed, with the band and the limit that stood beside it."""
-        return self._put(self._taken(understood))
+        return self._put(self.taken(understood))
 
     def observe(self, observation: str, answer: bool | None) -> str:
         """Store one answer to an observation; None takes an earlier one back."""
@@ -162,7 +162,7 @@ class Visit:
 
     def correct(self, entry: str, instead: bodies.Body | Understood | None = None, *, why: str = "") -> str:
         """Put something else in the place of an entry, or strike it out (None); the log keeps both."""
-        body = self._taken(instead) if isinstance(instead, Understood) else instead
+        body = self.taken(instead) if isinstance(instead, Understood) else instead
         made = self.book.correct(self.case.id, entry, body, person=self.person, why=why)
         self.refresh()
         return made.id
@@ -257,7 +257,7 @@ class Visit:
         bands = self._weighed.diagnosis.expected if self._weighed else ()
         return next((band for band in bands if f"{band.measure}@{band.state}" == key), None)
 
-    def _taken(self, understood: Understood) -> bodies.ReadingTaken:
+    def taken(self, understood: Understood) -> bodies.ReadingTaken:
         """Return a reading as it is logged: with the band that was shown and the limit that it crosses."""
         reading = understood.reading
         band = self._band(reading.key)

@@ -229,6 +229,9 @@ def _closing(case: Case, knowledge: Knowledge) -> Iterable[str]:
         yield f"done: {closed.done}"
     if closed.parts:
         yield f"parts: {', '.join(closed.parts)}"
+    for taken in closed.retested:
+        band = f"; expected {taken.expected}" if taken.expected else ""
+        yield f"re-test: {reading_name(taken.reading)}: {reading_text(taken.reading)}{band}"
     if closed.minutes is not None:
         yield f"minutes: {closed.minutes:g}"
     if closed.note:

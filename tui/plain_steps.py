@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from calc.errors import InputError
 from calc.quantities import MEASURES, STATES
 from casebook import bodies
 from tui.answer_text import gate_lines, hazard_texts, reason_lines
@@ -237,6 +238,10 @@ def close(visit: Visit, _: str) -> bool:
     ordered = {one: faults[one] for one in [*likely, *(one for one in faults if one not in likely)]}
     found = ask_choice("What was found", ordered)
     how = ask_choice("How is that known", CONFIRMED)
+    whole = visit.knowledge.faults.get(found)
+    retest = whole.for_kind(visit.kind).retest if whole is not None else ()
+    asked = retest if how != "believed" and found != "healthy" else ()
+    again = [taken for key in asked if "@" in key and (taken := _again(visit, key)) is not None]
     minutes = ask("Minutes")
     visit.close(
         bodies.Closed(
@@ -245,9 +250,28 @@ def close(visit: Visit, _: str) -> bool:
             done=ask("What was done"),
             parts=tuple(part.strip() for part in ask("Parts, with commas").split(",") if part.strip()),
             minutes=float(minutes) if minutes.isdecimal() else None,
+            retest=retest,
+            retested=tuple(again),
         )
     )
     return True
+
+
+def _again(visit: Visit, key: str) -> bodies.ReadingTaken | None:
+    """Ask what a reading shows after the repair; nothing where it was not taken."""
+    measure, _, state = key.partition("@")
+    wanted = values_wanted(measure, visit.kind, visit.context_of(measure))
+    name = f"{measure_name(measure)}, {plain(state)}"
+    while text := ask(f"Re-test: {name} ({wanted}; Enter where it was not read)"):
+        try:
+            understood = visit.understand(measure, state, text)
+        except InputError as error:
+            for problem in error.problems:
+                tell(f"{problem.given}; {problem.allowed}")
+            continue
+        if _first(visit, measure, state, _hazards(visit, measure, state)) and _sure(understood):
+            return visit.taken(understood)
+    return None
 
 
 STEPS: dict[str, Callable[[Visit, str], bool]] = {

@@ -229,3 +229,29 @@ def test_a_place_that_takes_no_draft_does_not_stop_the_visit(talk, known, casebo
     done = talk(*OPEN_CASE, *["yes"] * KIT, "note dry")
     assert newest(casebook).notes[0].what.text == "dry"
     assert "mistake of the program" not in done.err
+
+
+def test_what_is_read_after_the_repair_is_asked_for_at_the_closing(talk, run, kit, sheet, casebook):
+    run("log", sheet("single_phase_capacitor_weak"), "--person", "Ines")
+    number = newest(casebook).number
+    before = len(newest(casebook).readings)
+    talk(
+        "Ines",
+        number,
+        "close",
+        "run_capacitor_weak",
+        "repair",
+        "2o",
+        "20.1",
+        *ISOLATION,
+        "yes",
+        "",
+        "",
+        "25",
+        "new capacitor",
+        "",
+    )
+    closed = newest(casebook).closed.what
+    assert [one.reading.numbers for one in closed.retested] == [(20.1e-6,)]
+    assert len(newest(casebook).readings) == before
+    assert "re-test: run capacitor, isolated: 20.1 uF" in " ".join(run("report", number).out.split())

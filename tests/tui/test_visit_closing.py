@@ -8,7 +8,7 @@ from pathlib import Path
 from textual.pilot import Pilot
 
 from tests.tui.helpers import SMALL, keys, known_machine, new_app, screen_text, settled, until
-from tests.tui.visit import at_worksheet, newest, to_closing
+from tests.tui.visit import at_worksheet, newest, single_phase_case, to_closing
 from tui.screens.casebook import CasebookPage
 from tui.screens.worksheet import Worksheet
 
@@ -115,3 +115,45 @@ async def take_what_is_proposed(pilot: Pilot[int], press: Callable[..., Awaitabl
     await settled(pilot)
     if "Enter again" in screen_text(pilot.app):
         await press("enter")
+
+
+async def test_what_is_read_after_the_repair_is_kept_with_the_closing_and_on_the_sheet(tmp_path: Path):
+    app = single_phase_case(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "K-12")
+        await keys(pilot, "enter")
+        await settled(pilot)
+        await to_closing(pilot, "main winding or its")
+        await keys(pilot, "r", "enter", *"lead crimped", "enter", "enter", *"1,1 at 25")
+        await until(pilot, "main winding resistance: 1.1 ohm (isolated)")
+        await keys(pilot, "enter", "f8")
+        await until(pilot, "Isolation of K-12")
+        assert newest(app).status == "open"
+        await keys(pilot, "y", "enter", "y", "enter", "y", "f8")
+        await until(pilot, "Cases, newest first")
+        await keys(pilot, "enter")
+        await until(pilot, "re-test main winding resistance, isolated: 1,1 ohm expected")
+        case = newest(app)
+    assert case.closed is not None
+    (again,) = case.closed.what.retested
+    assert again.reading.numbers == (1.1,)
+    assert again.expected
+    assert not case.readings  # no evidence on the fault
+
+
+async def test_a_retest_value_that_can_hardly_be_is_asked_about_once(tmp_path: Path):
+    app = single_phase_case(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "K-12")
+        await keys(pilot, "enter")
+        await settled(pilot)
+        await to_closing(pilot, "main winding or its")
+        await keys(pilot, "enter", "enter", "enter", *"1.1k", "enter", "f8")
+        await until(pilot, "Isolation of K-12")
+        await keys(pilot, "y", "enter", "y", "enter", "y", "f8")
+        await until(pilot, "more than 100 times the")
+        assert newest(app).status == "open"
+        await keys(pilot, "f8")
+        await until(pilot, "Cases, newest first")
+        closed = newest(app).closed
+    assert closed is not None and closed.what.retested[0].reading.note == "checked"

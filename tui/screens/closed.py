@@ -17,7 +17,8 @@ if TYPE_CHECKING:
 
     from textual.content import Content
 
-    from casebook.bodies import Closed, ShownFinding
+    from casebook.bodies import Closed, ReadingTaken, ShownFinding
+    from rules.knowledge import Knowledge
     from tui.compose import Visit
 
 
@@ -73,9 +74,11 @@ class ClosedCase(TextPage):
             out += rows(word, text, room) if text else []
         if closed.minutes is not None:
             out += rows("minutes", f"{closed.minutes:g}", room)
-        if closed.retest:
-            names = "; ".join(key_words(key, self.visit.knowledge) for key in closed.retest)
-            out += rows("re-test", names, room)
+        for taken in closed.retested:
+            out += rows("re-test", retest_text(taken, self.visit.knowledge), room)
+        again = {taken.reading.key for taken in closed.retested}
+        if left := [key_words(key, self.visit.knowledge) for key in closed.retest if key not in again]:
+            out += rows("to read", f"after the repair: {'; '.join(left)}", room)
         return out
 
     def action_sheet(self) -> None:
@@ -90,6 +93,12 @@ class ClosedCase(TextPage):
         """Go on with the case."""
         self.wants_reopening = True
         self.dismiss(None)
+
+
+def retest_text(taken: ReadingTaken, knowledge: Knowledge) -> str:
+    """Return a reading after the repair, with the band that was expected."""
+    band = f"   expected {taken.expected}" if taken.expected else ""
+    return f"{key_words(taken.reading.key, knowledge)}: {reading_text(taken.reading)}{band}"
 
 
 def when(moment: datetime) -> str:

@@ -4,15 +4,19 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Final
 
+from textual import work
+
+from calc.errors import PlatesideError
 from tui.keys import bindings
 from tui.look import STRONG
 from tui.screens.form import FormPage, Heard, Line, hear_choice, one_of
+from tui.screens.page import refusal
 from tui.screens.sheet import SheetPage
 from tui.widgets.ruled import rows
-from tui.words import plain
+from tui.words import key_words, plain
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping, Sequence
+    from collections.abc import Awaitable, Callable, Mapping, Sequence
 
     from textual.content import Content
 
@@ -23,7 +27,7 @@ CONFIRMED: Final = {
     "repair": "confirmed: the repair cured it",
     "teardown": "confirmed: seen when taken apart",
 }
-RETEST_MOST: Final = 400
+RETEST_MOST: Final = 6
 
 
 class ClosingPage(FormPage[dict[str, str]]):
@@ -37,7 +41,11 @@ class ClosingPage(FormPage[dict[str, str]]):
         self.visit = visit
         self.found = found
         self.names = names
-        self.retest = retest
+        self.retest = tuple(key for key in retest if "@" in key)[:RETEST_MOST]
+        self.first: Callable[[str], Awaitable[bool]] | None = None
+        """Asks for what must come before the reading with a key, such as the isolation record."""
+        self.sure_of: dict[str, str] = {}
+        """Re-test values that were asked about once, as they were typed."""
 
     def form_lines(self) -> list[Line]:
         """Return the lines: all but the first may stay blank."""
@@ -59,18 +67,33 @@ class ClosingPage(FormPage[dict[str, str]]):
             ),
             Line("done", "done", "what was done", width=50),
             Line("parts", "parts", "parts that were fitted", width=40),
+            *(self.retest_line(key) for key in self.retest),
             Line("minutes", "minutes", "time spent", hear=hear_minutes),
             Line("note", "remark", "for next shift and shop", width=40),
         ]
 
+    def retest_line(self, key: str) -> Line:
+        """Return the line for what a reading shows after the repair."""
+        word = "re-test" if key == self.retest[0] else ""
+        return Line(key, word, key_words(key, self.visit.knowledge), hear=self.hearer(key))
+
+    def hearer(self, key: str) -> Callable[[str], Heard]:
+        """Return how a re-test reading is understood."""
+        measure, _, state = key.partition("@")
+
+        def hear(text: str) -> Heard:
+            try:
+                understood = self.visit.understand(measure, state, text)
+            except PlatesideError as error:
+                return refusal(error), False
+            return understood.echo, True
+
+        return hear
+
     def head(self) -> list[Content]:
-        """Return the title and what to re-test."""
-        lines = rows(
-            "close", "What was found and done. Closing keeps the odds as they stood.", self.room, style=STRONG
-        )
-        if self.retest:
-            lines += rows("re-test", "; ".join(self.retest)[:RETEST_MOST], self.room, most=3)
-        return lines
+        """Return the title."""
+        said = "What was found and done. Closing keeps the odds as they stood."
+        return rows("close", said, self.room, style=STRONG)
 
     def on_mount(self) -> None:
         """Start where it is said how the fault is known: the fault itself was just picked."""
@@ -95,21 +118,37 @@ class ClosingPage(FormPage[dict[str, str]]):
         self.app.push_screen(SheetPage(self.visit, shop_tag=True))
 
     def done(self) -> None:
-        """Close where fault, how it is known and minutes are understood."""
+        """Close where every line is understood, and what must come before the re-test readings is there."""
         values = self.values
-        for name, (heard, fine) in {
-            "found": self.hear_found(values["found"]),
-            "confirmed": hear_choice(CONFIRMED)(values["confirmed"]),
-            "minutes": hear_minutes(values["minutes"]),
-        }.items():
+        for line in self.table:
+            heard, fine = line.hear(values[line.name]) if values[line.name] else self.blank(line)
             if not fine:
-                self.go_to(name)
+                self.go_to(line.name)
                 self.say(heard)
                 return
         values["found"] = "+".join(
             one_of(dict(self.names), part) or "" for part in values["found"].split("+")
         )
         values["confirmed"] = one_of(CONFIRMED, values["confirmed"]) or "believed"
+        self.finish_with(values)
+
+    def blank(self, line: Line) -> Heard:
+        """Return whether a line may stay blank."""
+        return line.hear("") if line.name in {"found", "confirmed"} else ("", True)
+
+    @work(group="close", exclusive=True)
+    async def finish_with(self, values: dict[str, str]) -> None:
+        """Ask for what comes before the re-test readings, and about hardly possible ones; then close."""
+        for key in (key for key in self.retest if values[key]):
+            measure, _, state = key.partition("@")
+            asks = self.visit.understand(measure, state, values[key]).asks
+            if self.first is not None and not await self.first(key):
+                return
+            if asks and self.sure_of.get(key) != values[key]:
+                self.sure_of[key] = values[key]
+                self.go_to(key)
+                self.say(f"{asks.rstrip('.?')}. Is it so? F8 again keeps it.")
+                return
         self.finish(values)
 
 

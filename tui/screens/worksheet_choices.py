@@ -27,8 +27,10 @@ def shut_question(state: str) -> Ask:
     )
 
 
-def closing_of(answer: dict[str, str], retest: tuple[str, ...]) -> Closed:
+def closing_of(answer: dict[str, str], retest: tuple[str, ...], visit: Visit) -> Closed:
     """Return what the closing page says as what is stored."""
+    typed = [(key.split("@"), answer[key]) for key in retest if answer.get(key)]
+    again = [visit.understand(measure, state, text) for (measure, state), text in typed]
     minutes = answer["minutes"].replace(",", ".")
     confirmed = answer["confirmed"]
     assert confirmed in CONFIRMED
@@ -39,6 +41,7 @@ def closing_of(answer: dict[str, str], retest: tuple[str, ...]) -> Closed:
         parts=tuple(part.strip() for part in answer["parts"].split(",") if part.strip()),
         minutes=float(minutes) if minutes else None,
         retest=retest,
+        retested=tuple(visit.taken(understood) for understood in again),
         note=answer["note"],
     )
 

@@ -149,6 +149,11 @@ class WorksheetKeys(Page[None]):
             self.show_blocks()
         return True
 
+    async def comes_first_for(self, key: str) -> bool:
+        """Ask for what must come before the reading with a key; return whether it is there."""
+        self.chosen = item_of(key, self.proposals, self.visit.knowledge)
+        return await self.come_first(self.chosen)
+
     async def isolate(self) -> bool:
         """Ask for the isolation record and store it."""
         also = before_isolated(self.visit.case, self.visit.knowledge)
@@ -277,12 +282,13 @@ class WorksheetKeys(Page[None]):
         if found is None:
             return
         whole = knowledge.faults.get(found)
-        known = whole.for_kind(self.visit.kind) if whole else None
-        retest = [key_words(key, knowledge) for key in known.retest] if known else []
+        retest = whole.for_kind(kind).retest if whole else ()
         page = ClosingPage(self.visit, found, names, retest)
+        page.first = self.comes_first_for
         page.draft_name = f"closing-{self.draft_name}"
-        page.store = lambda answer: self.visit.close(closing_of(answer, known.retest if known else ()))
+        page.store = lambda answer: self.visit.close(closing_of(answer, retest, self.visit))
         if await self.app.push_screen_wait(page) is None:
+            self.chosen = None
             return
         self.plateside.desk.drafts.drop(self.draft_name)
         self.dismiss(None)
