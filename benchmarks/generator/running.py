@@ -171,7 +171,7 @@ def _settled(
     celsius = site.ambient_c + motor.rated.rise_k * 0.6
     for _ in range(2):
         wound = wound_of(motor, trouble, celsius)
-        slips = np.linspace(upper * 1.25, lower * 0.75, 60)
+        slips = np.linspace(upper * 2.0, lower * 0.5, 150)  # hot bars slip further
         flow = solve(motor.winding, feeder, wound, slips)
         wants = load_torque(motor, site, trouble, sync * (1 - slips), coupled=coupled)
         gap = flow.torque_nm(motor.winding, feeder.hertz) - wants

@@ -22,7 +22,7 @@ DEFAULTS: dict[str, float] = {
     "frequency_change": 0.0,
     "line_r": 0.0,  # pu, in one line
     "line": 0.0,
-    "line_place": 0.0,  # 0 before the volt meter, 1 between it and the ohm meter, 2 where both see the motor
+    "line_place": 0.0,  # 0 before the volt meter, 1 between it and the ohm meter, 2 at the motor, 3 cable
     "phase": 0.0,
     "phase_r": 0.0,  # pu, inside the winding
     "turns": 0.0,  # shorted fraction of one phase
@@ -86,7 +86,13 @@ def _with_stall(modes: tuple[Mode, ...], share: float, *, free_uncoupled: bool =
 
 
 def _lines(effect: str, places: dict[int, float], **fixed: float) -> tuple[Mode, ...]:
-    names = {0: "before the volt meter", 1: "between volt meter and ohm meter", 2: "at the motor"}
+    # In the cable: volts read at the motor and ohms at the starter, so that both meters see it.
+    names = {
+        0: "before the volt meter",
+        1: "between volt meter and ohm meter",
+        2: "at the motor",
+        3: "in the cable",
+    }
     return tuple(
         Mode(
             effect=effect,
@@ -100,7 +106,7 @@ def _lines(effect: str, places: dict[int, float], **fixed: float) -> tuple[Mode,
 
 
 def _series_resistance(severity: tuple[float, float]) -> tuple[Mode, ...]:
-    in_lines = _severe(_lines("series_resistance", {0: 0.34, 1: 0.33, 2: 0.18}), "line_r", severity)
+    in_lines = _severe(_lines("series_resistance", {0: 0.31, 1: 0.31, 2: 0.17, 3: 0.06}), "line_r", severity)
     inside = _severe(_each("series_resistance", 3), "phase_r", severity)
     return in_lines + tuple(
         replace(m, variant=f"joint of phase {m.variant}", weight=0.15 / 3) for m in inside
@@ -109,7 +115,7 @@ def _series_resistance(severity: tuple[float, float]) -> tuple[Mode, ...]:
 
 def _open_line(_severity: tuple[float, float]) -> tuple[Mode, ...]:
     """One line open before or behind the volt meter, or before a delta-star transformer (1 : 2 : 1)."""
-    here = _with_stall(_lines("open_line", {0: 0.46, 1: 0.46}, line_r=OPEN), 0.5)
+    here = _with_stall(_lines("open_line", {0: 0.42, 1: 0.42, 3: 0.08}, line_r=OPEN), 0.5)
     upstream = tuple(
         replace(
             m, variant=f"L{m.variant[1]}, upstream of the transformer", cause="open_upstream_of_transformer"

@@ -274,7 +274,8 @@ def _earth(rows: Mapping[str, Floats], current: Phasors, voltage: Phasors) -> Fl
 
 def _seen_voltage(rows: Mapping[str, Floats], voltage: Phasors, current: Phasors) -> Phasors:
     """Phase voltages where the volt meter sits: behind a resistance that lies before it."""
-    before = (rows["line_r"] > 0.0) & (rows["line_place"] < 0.5)
+    place = rows["line_place"]
+    before = (rows["line_r"] > 0.0) & ((place < 0.5) | (place > 2.5))
     if not np.any(before):
         return voltage
     line = rows["line"].astype(np.int64)
