@@ -207,7 +207,9 @@ def test_a_closed_or_full_output_ends_without_a_traceback(sheet, redirection, st
 
 
 @pytest.mark.skipif(sys.platform == "win32", reason="redirections of POSIX shells")
-@pytest.mark.parametrize(("words", "status", "said"), [("diagnose -", 2, "an empty file"), ("--plain", 0, "")])
+@pytest.mark.parametrize(
+    ("words", "status", "said"), [("diagnose -", 2, "an empty file"), ("--plain", 0, "")]
+)
 def test_a_closed_input_is_an_empty_one(tmp_path, words, status, said):
     command = f"{' '.join(PLATESIDE)} {words} <&-"
     done = subprocess.run(
