@@ -7,11 +7,12 @@ from typing import TYPE_CHECKING, Any
 from calc.errors import PlatesideError
 from calc.quantities import KINDS
 from tui.begun import DRAFT, Begun
+from tui.people import USUAL_KIT
 from tui.plate_lines import typed_of
 from tui.screens.ask import Ask
 from tui.screens.nameplate import NameplatePage
 from tui.screens.page import refusal
-from tui.screens.person import USUAL, Person
+from tui.screens.person import Person
 from tui.screens.pick import Choice, Pick
 from tui.screens.worksheet import Worksheet
 from tui.widgets.ruled import tagged
@@ -33,7 +34,7 @@ async def ask_person(app: PlatesideApp) -> bool:
     """Ask for name and kit; return whether they were given."""
     desk = app.desk
     tools = {tool for rule in desk.knowledge.readings.values() for tool in rule.instruments} - {"eyes"}
-    instruments = sorted(tools, key=lambda tool: (tool not in USUAL, tool))
+    instruments = sorted(tools, key=lambda tool: (tool not in USUAL_KIT, tool))
     answer = await app.push_screen_wait(Person(desk.person, desk.kit, instruments))
     if answer is None:
         return False

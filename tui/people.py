@@ -3,8 +3,12 @@
 from __future__ import annotations
 
 import getpass
+from typing import Final
 
 NOBODY = "unknown"
+
+USUAL_KIT: Final = ("clamp_meter", "multimeter", "insulation_tester")
+"""What most carry: offered where nobody has said otherwise."""
 
 
 def login_name() -> str:

@@ -13,8 +13,9 @@ from tui.begun import DRAFT, Begun, waiting
 from tui.compose import Visit, recall
 from tui.harmless import harmless
 from tui.output import say
+from tui.people import USUAL_KIT
 from tui.plate_lines import hear, machine_of, plate_lines
-from tui.talk import Left, ask, ask_choice, ask_yes, tell
+from tui.talk import Left, ask, ask_choice, ask_several, ask_yes, tell
 
 if TYPE_CHECKING:
     from calc.sheet import Machine
@@ -99,11 +100,11 @@ def as_plain(machine: Machine) -> dict[str, Any]:
 
 
 def _complaint(kind: str, knowledge: Knowledge) -> str:
-    """Ask what is wrong, with the complaints that such a machine can have."""
-    fitting = {
-        one.id: one.name for one in knowledge.complaints.values() if "any" in one.kinds or kind in one.kinds
-    }
-    return ask_choice("What is wrong", fitting)
+    """Ask what is wrong, with the complaints that such a machine can have; what means stop is first."""
+    fitting = [one for one in knowledge.complaints.values() if "any" in one.kinds or kind in one.kinds]
+    fitting.sort(key=lambda complaint: not complaint.stop)
+    names = {one.id: f"STOP: {one.name}" if one.stop else one.name for one in fitting}
+    return ask_choice("What is wrong", names)
 
 
 def _kit(drafts: Drafts, knowledge: Knowledge) -> list[str]:
@@ -112,7 +113,7 @@ def _kit(drafts: Drafts, knowledge: Knowledge) -> list[str]:
     if isinstance(kept, list) and kept:
         return [str(instrument) for instrument in kept]
     known = sorted({name for rule in knowledge.readings.values() for name in rule.instruments} - {"eyes"})
-    say("What do you carry? Answer for each; it is asked only once.")
-    kit = [name for name in known if ask_yes(f"  {name.replace('_', ' ')}")]
+    say("What do you carry? It is asked only once; nothing else is proposed.")
+    kit = ask_several("You carry", {name: name.replace("_", " ") for name in known}, USUAL_KIT)
     drafts.remember("kit", kit)
     return kit

@@ -66,6 +66,25 @@ def ask_choice(prompt: str, choices: Mapping[str, str]) -> str:
         tell(f"Which one: {', '.join(found)}?" if found else "Give a number from the list, or its name.")
 
 
+def ask_several(prompt: str, choices: Mapping[str, str], usual: Iterable[str] = ()) -> list[str]:
+    """Show numbered choices and return the ids that are named by numbers, or by names with commas between."""
+    ids = list(choices)
+    say(f"{place:>3}  {choices[one]}" for place, one in enumerate(ids, 1))
+    default = ", ".join(choices[one] for one in ids if one in set(usual))
+    while True:
+        answer = ask(f"{prompt} (numbers, or names with commas)", default)
+        words = answer.replace(",", " ").split()
+        if all(word.isdecimal() for word in words):
+            found = [ids[int(word) - 1 : int(word)] if int(word) else [] for word in words]
+        else:
+            words = [part.strip() for part in answer.split(",") if part.strip()]
+            found = [match(word, choices) for word in words]
+        wrong = [word for word, named in zip(words, found, strict=True) if len(named) != 1]
+        if not wrong:
+            return [one for one in ids if [one] in found]
+        tell(f"Which are: {', '.join(wrong)}? Give numbers from the list, or names.")
+
+
 def match(text: str, choices: Mapping[str, str] | Iterable[str]) -> list[str]:
     """Return the ids that a text names: exactly, else by beginning, else by a word of the name."""
     wanted = text.lower().replace(" ", "_").replace("-", "_")

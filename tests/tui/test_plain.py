@@ -10,8 +10,6 @@ from casebook.sqlite_store import SqliteStore
 from tui.drafts import Drafts
 from tui.plate_lines import plate_lines
 
-KIT = 30  # more answers than there are instruments to ask for
-
 
 @pytest.fixture
 def talk(run, monkeypatch):
@@ -155,10 +153,37 @@ def test_the_end_of_the_input_leaves_and_keeps_what_was_accepted(talk, known, ki
 
 
 def test_the_kit_is_asked_once(talk, known, casebook):
-    first = talk(*OPEN_CASE, *["yes"] * KIT)
+    first = talk(*OPEN_CASE, "")
     second = talk(*OPEN_CASE)
     assert "asked only once" in first.out
     assert "asked only once" not in second.out
+
+
+@pytest.mark.parametrize(
+    ("typed", "carried"),
+    [
+        ("", {"clamp_meter", "insulation_tester", "multimeter"}),
+        ("2, 8", {"clamp_meter", "multimeter"}),
+        ("2 8", {"clamp_meter", "multimeter"}),
+        ("tacho, clamp meter", {"clamp_meter", "tachometer"}),
+    ],
+)
+def test_the_kit_is_told_by_numbers_or_names(talk, known, casebook, typed, carried):
+    talk(*OPEN_CASE, typed)
+    assert set(newest(casebook).kit) == carried
+
+
+def test_an_instrument_that_nobody_knows_is_asked_for_again(talk, known, casebook):
+    done = talk(*OPEN_CASE, "99, clamp", "crystal ball", "clamp")
+    assert "Which are: 99?" in done.out
+    assert "Which are: crystal ball?" in done.out
+    assert newest(casebook).kit == ("clamp_meter",)
+
+
+def test_complaints_that_mean_stop_are_offered_first(talk, kit):
+    asked = talk("Ines", "WP-9", "dc_series", *[""] * 30).out.split("STOP: ")
+    assert asked[1].startswith("somebody felt a shock")
+    assert "  1  " in asked[0].splitlines()[-1]
 
 
 def test_what_may_be_typed_with_a_reading_is_told_in_its_question(talk, known, kit, casebook):
@@ -226,7 +251,7 @@ def test_a_new_case_that_cannot_be_stored_is_tried_again_without_asking_anew(
 
 def test_a_place_that_takes_no_draft_does_not_stop_the_visit(talk, known, casebook):
     Drafts(casebook).folder.write_text("a file stands where the folder should be", encoding="utf-8")
-    done = talk(*OPEN_CASE, *["yes"] * KIT, "note dry")
+    done = talk(*OPEN_CASE, "", "note dry")
     assert newest(casebook).notes[0].what.text == "dry"
     assert "mistake of the program" not in done.err
 

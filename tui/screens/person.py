@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING
 
 from tui.keys import bindings
 from tui.look import STRONG
+from tui.people import USUAL_KIT
 from tui.screens.form import YES_NO, FormPage, Heard, Line, hear_choice, one_of
 from tui.widgets.ruled import rows
 
@@ -13,9 +14,6 @@ if TYPE_CHECKING:
     from collections.abc import Callable, Sequence
 
     from textual.content import Content
-
-USUAL: Final = ("clamp_meter", "multimeter", "insulation_tester")
-"""What most carry: a yes stands there at first."""
 
 
 class Person(FormPage[dict[str, str]]):
@@ -27,7 +25,7 @@ class Person(FormPage[dict[str, str]]):
     def __init__(self, name: str, kit: Sequence[str] | None, instruments: Sequence[str]) -> None:
         super().__init__()
         self.name_now = name
-        self.kit = USUAL if kit is None else tuple(kit)
+        self.kit = USUAL_KIT if kit is None else tuple(kit)
         self.instruments = instruments
 
     def form_lines(self) -> list[Line]:
