@@ -34,6 +34,7 @@ def slips(posterior: Posterior) -> tuple[Slip, ...]:
     """Name readings that are strange under every hypothesis that matters, and what may have happened."""
     s = weighing().slip
     share = posterior.share()
+    share = share / share.sum()  # among the faults: a strange reading speaks for "other" against all of them
     places = sorted({h.place for h, p in zip(posterior.hypotheses, share, strict=True) if p > s.least_share})
     found = []
     for seen, group in zip(posterior.data.seen, posterior.data.groups, strict=True):
