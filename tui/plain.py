@@ -23,7 +23,7 @@ from tui.drafts import Drafts
 from tui.output import say
 from tui.plain_intake import ask_case
 from tui.plain_steps import STEPS, answer_proposal, proposals
-from tui.talk import Left, ask, tell
+from tui.talk import Back, Left, ask, tell
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -42,6 +42,7 @@ HELP = (
     "  isolate, note TEXT       the isolation record; a remark",
     "  correct                  correct or strike out an entry",
     "  close, leave             close the case with what was found; leave it open",
+    "  back                     leave any question without an answer",
 )
 
 
@@ -52,7 +53,7 @@ def converse(path: Path, knowledge: Knowledge, *, use_learned: bool = True) -> i
             tell(note)
         try:
             _visit(book, Drafts(path), knowledge, use_learned=use_learned)
-        except Left:
+        except (Left, Back):
             say("Left. What was accepted is in the casebook.")
     return 0
 
@@ -68,15 +69,16 @@ def _visit(book: Casebook, drafts: Drafts, knowledge: Knowledge, *, use_learned:
         tell(f"Note: {said}")
     show(visit)
     while visit.case.status == "open":
+        changed = False
         try:
             changed = _one(visit, ask(_asked(visit)))
         except InputError as error:
-            changed = False
             for problem in error.problems:
                 tell(f"{problem.given}; {problem.allowed}")
         except PlatesideError as error:
-            changed = False
             tell(str(error))
+        except Back:
+            tell("Back; nothing of it was stored.")
         if changed and visit.case.status == "open":
             show(visit)
     say(f"Case {visit.number} is closed. `plateside report {visit.number}` prints its sheet.")

@@ -15,7 +15,7 @@ from tui.harmless import harmless
 from tui.output import say
 from tui.people import USUAL_KIT
 from tui.plate_lines import hear, machine_of, plate_lines
-from tui.talk import Left, ask, ask_choice, ask_several, ask_yes, tell
+from tui.talk import Back, Left, ask, ask_choice, ask_several, ask_yes, tell
 
 if TYPE_CHECKING:
     from calc.sheet import Machine
@@ -27,19 +27,29 @@ if TYPE_CHECKING:
 def ask_case(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit:
     """Go on with an open case that is named by its number, or open a new one."""
     begun = _taken_up(drafts)
-    while begun is None:
-        name = ask("Machine tag for a new case, or number of an open case")
-        if name.upper().startswith("C-"):
-            try:
-                return Visit(book, book.case_id(name), person=person, knowledge=knowledge)
-            except CasebookError as error:
-                tell(str(error))
-        elif name:
-            begun = Begun(tag=name, name=drafts.free_name(DRAFT))
-    while (visit := _opened(book, begun, drafts, person, knowledge)) is None:
-        pass
-    drafts.drop(begun.name)
-    return visit
+    while True:
+        try:
+            found = begun or _named(book, drafts, person, knowledge)
+            if isinstance(found, Visit):
+                return found
+            begun = found
+            if begun is not None and (visit := _opened(book, begun, drafts, person, knowledge)) is not None:
+                drafts.drop(begun.name)
+                return visit
+        except Back:
+            begun = None
+
+
+def _named(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit | Begun | None:
+    """Ask for a machine or a case: an open case, or a new one that is begun; None where it is neither."""
+    name = ask("Machine tag for a new case, or number of an open case")
+    if not name.upper().startswith("C-"):
+        return Begun(tag=name, name=drafts.free_name(DRAFT)) if name else None
+    try:
+        return Visit(book, book.case_id(name), person=person, knowledge=knowledge)
+    except CasebookError as error:
+        tell(str(error))
+        return None
 
 
 def _taken_up(drafts: Drafts) -> Begun | None:

@@ -8,11 +8,12 @@ from calc.errors import InputError
 from calc.quantities import MEASURES, STATES
 from casebook import bodies
 from tui.answer_text import gate_lines, hazard_texts, reason_lines
+from tui.columns import paragraph
 from tui.context import values_wanted
 from tui.output import say
 from tui.shift import before_isolated
 from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell
-from tui.words import fault_name, measure_name, plain
+from tui.words import fault_name, key_words, measure_name, plain
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -170,7 +171,7 @@ def seen(visit: Visit, rest: str) -> bool:
 def _observe(visit: Visit, observation: str, answer: str) -> bool:
     """Store one answer if it is yes or no."""
     if answer.lower() not in YES + NO:
-        tell("Answer yes or no, or skip.")
+        tell("Answer yes or no, or skip; read takes another reading.")
         return False
     known = visit.knowledge.observations.get(observation)
     by_hand = known is not None and known.states == ("isolated",)
@@ -194,7 +195,8 @@ def gate(visit: Visit, _: str) -> bool:
     say(gate_lines(answer))
     for line in answer.lines:
         if line.status == "cleared":
-            tell(f"  cleared  {line.needs}: {line.because}")
+            because = f" ({line.because})" if line.because else ""
+            say(paragraph(f"{line.needs}{because}", first="  cleared  "))
     return False
 
 
@@ -211,7 +213,8 @@ def correct(visit: Visit, _: str) -> bool:
     if not entries:
         tell("There is nothing to correct.")
         return False
-    chosen = ask_choice("Which entry", {entry: f"{plain(key)}: {text}" for entry, key, text in entries})
+    named = {entry: f"{key_words(key, visit.knowledge)}: {text}" for entry, key, text in entries}
+    chosen = ask_choice("Which entry", named)
     key = next(key for entry, key, _ in entries if entry == chosen)
     text = ask("The right values, or `strike`")
     measure, at, state = key.partition("@")

@@ -19,8 +19,12 @@ class Left(Exception):  # noqa: N818 - nothing is wrong when a person leaves
     """The person has left: end of input."""
 
 
+class Back(Exception):  # noqa: N818 - nothing is wrong when a person goes back
+    """The person leaves a question without an answer."""
+
+
 def ask(prompt: str, default: str = "") -> str:
-    """Ask for one line; Enter alone gives the default. Raises Left at the end of input."""
+    """Ask for one line; Enter alone gives the default. Raises Left at the end of input, Back at ``back``."""
     shown = f"{prompt} [{default}]: " if default else f"{prompt}: "
     while True:
         say(shown, end="")
@@ -29,6 +33,8 @@ def ask(prompt: str, default: str = "") -> str:
         if not line:
             say()
             raise Left
+        if line.strip().lower() == "back":
+            raise Back
         if not any("\ud800" <= sign <= "\udfff" for sign in line):
             return line.strip() or default
         say(f"That line is no {sys.stdin.encoding}: type it again, or without accents.")

@@ -280,3 +280,24 @@ def test_what_is_read_after_the_repair_is_asked_for_at_the_closing(talk, run, ki
     assert [one.reading.numbers for one in closed.retested] == [(20.1e-6,)]
     assert len(newest(casebook).readings) == before
     assert "re-test: run capacitor, isolated: 20.1 uF" in " ".join(run("report", number).out.split())
+
+
+def test_back_leaves_any_question_without_an_answer(talk, known, kit, casebook):
+    done = talk(
+        *OPEN_CASE,
+        "read winding_resistance isolated 1.9 1.9 1.9",
+        "Ines",
+        "back",
+        "close",
+        "back",
+        "seen hums yes",
+    )
+    case = newest(casebook)
+    assert done.out.count("Back; nothing of it was stored.") == 2
+    assert (case.status, case.readings, case.isolation) == ("open", (), ())
+    assert case.observations == {"hums": True}
+
+
+def test_back_in_a_new_case_asks_for_the_machine_again(talk, known, kit, casebook):
+    talk("Ines", "WP-9", "back", "WP-104 wash water", "yes", "routine_check")
+    assert newest(casebook).tag == "WP-104 wash water"
