@@ -86,8 +86,6 @@ def test_a_hot_frame_is_not_explained_by_a_factor():
 
 
 def test_a_single_reading_that_no_fault_explains_is_named_though_nothing_else_was_read():
-    found = answer(
-        case("runs_hot", reading("speed", "loaded", "2900 rpm"), speed="1455 rpm", frequency="50 Hz")
-    )
+    found = answer(case("runs_hot", reading("speed", "loaded", "2900 rpm")))
     assert found.faults[0].id == OTHER
     assert [slip.about for slip in found.slips] == ["speed@loaded"]
