@@ -10,7 +10,8 @@ import difflib
 import math
 import re
 from collections.abc import Callable, Iterable, Iterator
-from typing import TypeAlias, TypeVar
+from itertools import islice
+from typing import Final, TypeAlias, TypeVar
 
 import msgspec
 from msgspec import inspect
@@ -27,6 +28,10 @@ _NUMBER = re.compile(r"[+-]?(0|[1-9][0-9]*)(\.[0-9]+)?([eE][+-]?[0-9]+)?")
 _WORDS = {"yes": "true", "on": "true", "no": "false", "off": "false"}
 
 
+MOST_MISTAKES: Final = 50
+"""Mistakes of one entry that are told."""
+
+
 class Mistake(msgspec.Struct, frozen=True):
     """One thing that is wrong inside an entry: where, what was given, what is allowed."""
 
@@ -40,7 +45,7 @@ def decode(plain: object, kind: type[T]) -> tuple[T | None, list[Mistake]]:
     try:
         return msgspec.convert(_prepared(plain, _info(kind)), kind, strict=False), []
     except msgspec.ValidationError as error:
-        mistakes = list(_walk(plain, _info(kind), ()))
+        mistakes = list(islice(_walk(plain, _info(kind), ()), MOST_MISTAKES))
         return None, mistakes or [Mistake((), "", str(error))]
 
 

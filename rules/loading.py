@@ -48,6 +48,10 @@ SECTIONS: Final[dict[str, type[Entry]]] = {
 RULE_LIMITS: Final = Limits(bytes=2_000_000, depth=20, nodes=100_000)
 MOST_FILES: Final = 500
 """Rule files that a shop's folder may hold."""
+MOST_BYTES: Final = 4_000_000
+"""Text that a folder may hold in all: some ten times what is shipped."""
+MOST_PROBLEMS: Final = 200
+"""Mistakes of one file that are told."""
 _ALSO_CALLED: Final = {"cautions": "hazards"}
 
 Entries = dict[str, dict[str, Entry]]
@@ -109,9 +113,15 @@ def read_texts(extra_folders: Sequence[Path]) -> tuple[Texts, list[Problem]]:
             given = f"more than {MOST_FILES} rule files"
             problems.append(Problem(str(folder), "", given, f"at most {MOST_FILES} in a folder"))
             continue
+        room = MOST_BYTES
         for file in files:
             try:
                 texts.append((number, file, _read(file)))
+                room -= len(texts[-1][2])
+                if room < 0:
+                    given = f"more than {MOST_BYTES} bytes in all"
+                    problems.append(Problem(str(file), "", given, f"at most {MOST_BYTES} in a folder"))
+                    break
             except OSError as error:
                 problems.append(Problem(str(file), "", error.strerror or "unreadable", "a readable file"))
             except InputError as error:
@@ -172,6 +182,7 @@ def build(
 
 def _decoded(document: Document, file: Path, problems: list[Problem]) -> Iterator[tuple[str, Entry, Steps]]:
     """Yield the entries of a document that could be decoded; note what is wrong with the others."""
+    before = len(problems)
     for section, base, plain in _sections(document, file, problems):
         if not isinstance(plain, list):
             given = "nothing" if plain is None else "no list"
@@ -185,13 +196,17 @@ def _decoded(document: Document, file: Path, problems: list[Problem]) -> Iterato
             for mistake in mistakes:
                 where = f"{label}: {spell(mistake.path)}" if mistake.path else label
                 problems.append(_at(document, (*path, *mistake.path), where, mistake.given, mistake.allowed))
+            if len(problems) - before > MOST_PROBLEMS:
+                given = f"more than {MOST_PROBLEMS} mistakes"
+                problems.append(_at(document, path, label, given, "those before put right first"))
+                return
             if entry is not None:
                 yield section, entry, path
 
 
 def _sections(document: Document, file: Path, problems: list[Problem]) -> Iterator[tuple[str, Steps, object]]:
     if isinstance(document.data, dict):
-        for key, plain in document.data.items():
+        for key, plain in islice(document.data.items(), MOST_PROBLEMS):
             section = _ALSO_CALLED.get(key, key)
             if section in SECTIONS:
                 yield section, (key,), plain

@@ -10,7 +10,8 @@ import pytest
 from calc.errors import InputError
 from rules import cache
 from rules.check import check_rules
-from rules.loading import load_knowledge
+from rules.decoding import MOST_MISTAKES
+from rules.loading import MOST_PROBLEMS, load_knowledge
 
 from .makers import built, shop
 
@@ -218,3 +219,27 @@ def test_old_caches_are_dropped(tmp_path):
         load_knowledge(extra_folders=[shop(tmp_path / "own", OBSERVATION.replace("0.1", f"0.{index + 1}"))])
     assert len(list(cache.folder().glob("rules-*.json"))) == 4
     assert not [path for path in cache.folder().iterdir() if path.name.startswith(".")]
+
+
+def test_of_a_thousand_mistakes_the_first_are_told_and_the_rest_is_said(tmp_path):
+    entries = "".join(f"- {{id: own_{n}, colour: red}}\n" for n in range(1000))
+    (tmp_path / "faults.yaml").write_text(f"faults:\n{entries}", encoding="utf-8")
+    with pytest.raises(InputError) as refused:
+        load_knowledge(extra_folders=[tmp_path])
+    assert MOST_PROBLEMS < len(refused.value.problems) < MOST_PROBLEMS + 20
+    assert refused.value.problems[-1].given == f"more than {MOST_PROBLEMS} mistakes"
+
+
+def test_an_entry_of_many_unknown_fields_tells_the_first(tmp_path):
+    fields = ", ".join(f"k{n}: 1" for n in range(5000))
+    (tmp_path / "faults.yaml").write_text(f"faults:\n- {{{fields}}}\n", encoding="utf-8")
+    with pytest.raises(InputError) as refused:
+        load_knowledge(extra_folders=[tmp_path])
+    assert len(refused.value.problems) == MOST_MISTAKES
+
+
+def test_a_folder_with_more_text_than_is_allowed_is_refused(tmp_path):
+    for number in range(3):
+        (tmp_path / f"{number}.yaml").write_text("# " + "x" * 1_900_000 + "\nfaults: []\n", encoding="utf-8")
+    with pytest.raises(InputError, match=r"2\.yaml: more than 4000000 bytes in all; at most 4000000"):
+        load_knowledge(extra_folders=[tmp_path])

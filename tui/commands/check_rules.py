@@ -13,6 +13,9 @@ from tui.output import say, warn
 if TYPE_CHECKING:
     from argparse import Namespace
 
+TOLD = 500
+"""Problems that are told; the others are counted."""
+
 
 def run(arguments: Namespace) -> int:
     """Tell every problem with file, line and field; else count the rules, and name what a shop loosens."""
@@ -21,7 +24,9 @@ def run(arguments: Namespace) -> int:
     )
     problems = check_rules(folders)
     if problems:
-        warn("\n".join(str(problem) for problem in problems))
+        warn("\n".join(str(problem) for problem in problems[:TOLD]))
+        if len(problems) > TOLD:
+            warn(f"and {len(problems) - TOLD} more problems")
         return cli.WRONG_INPUT
     known = load_knowledge(extra_folders=folders)
     parts = ("faults", "readings", "observations", "complaints", "limits", "hazards", "gates")
