@@ -8,10 +8,13 @@ back until the page on top is ready; then they go on in their order.
 from __future__ import annotations
 
 from collections import deque
+from functools import cache
 from typing import TYPE_CHECKING, Final
 
 from textual.events import Key
 from textual.widgets import Input
+
+from tui.keys import keys_of
 
 if TYPE_CHECKING:
     from textual.events import Paste
@@ -40,6 +43,13 @@ EDITING: Final = frozenset(
 )
 
 
+@cache
+def deciding(screen: str) -> frozenset[str]:
+    """Return the keys of a screen that do something: what comes behind one may be meant for another page."""
+    named = {name for key in keys_of(screen) if key.action != "redraw" for name in key.keys.split(",")}
+    return frozenset({"enter", "ctrl+c", *named} - EDITING)
+
+
 class TypeAhead:
     """Stands between the keyboard and the pages."""
 
@@ -62,7 +72,10 @@ class TypeAhead:
     def is_decisive(self, event: Key) -> bool:
         """Whether a key may open or leave a page."""
         types = isinstance(self.app.focused, Input)
-        return event.key not in EDITING and not (types and event.is_printable)
+        if event.key in EDITING or (types and event.is_printable):
+            return False
+        pages = self.app.pages()
+        return not pages or event.key in deciding(pages[-1].KEYS)
 
     async def go_on(self) -> None:
         """Hand on what is held, up to the next decisive key, once the page on top is ready."""

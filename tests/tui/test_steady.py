@@ -35,3 +35,14 @@ async def test_a_paste_waits_behind_the_keys_that_were_typed_before_it(tmp_path:
         await until(pilot, "F-7x: a machine that the casebook does not know")
         assert app.screen.query_one(TypedLine).value == "F-7x"
         await keys(pilot, "f9")
+
+
+async def test_thousands_of_keys_that_mean_nothing_on_a_page_hold_up_nothing(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "No case yet")
+        for _ in range(3000):
+            app.post_message(Key("x", "x"))
+        app.post_message(Key("n", "n"))
+        await until(pilot, "Which machine")
+        assert not app.ahead.held
