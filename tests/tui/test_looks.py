@@ -194,5 +194,10 @@ async def test_a_terminal_that_is_too_small_is_told_what_is_needed(app: Platesid
 async def test_forty_by_twelve_still_shows_gate_and_the_line_to_type(app: PlatesideApp):
     async with app.run_test(size=(40, 12)) as pilot:
         await keys(pilot, "enter")
-        text = await until(pilot, "SHUT")
-        assert "type" in text and "STOP" in text
+        await until(pilot, "faults")
+        lines = [line.partition("│") for line in screen_text(app).splitlines()]
+        words = [word.strip() for word, *_ in lines]
+        assert all(rule for _, rule, _ in lines)  # no line is broken over two
+        for word in ("gate", "limit", "faults", "next", "type", "keys"):
+            assert word in words
+        assert "SHUT" in screen_text(app) and "STOP" in screen_text(app)

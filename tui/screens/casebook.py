@@ -182,6 +182,10 @@ def case_line(case: CaseRow, now: datetime, room: int) -> Content:
         found = " and ".join(plain(part) for part in case.found.split("+"))
         what += f": {found}" + (f" ({case.confirmed})" if case.confirmed not in {"", "believed"} else "")
     text_room = room - INDENT - TAG_WIDTH - NUMBER_WIDTH - 8
+    if text_room < 1:  # a narrow page: which machine and what is wrong
+        left = max(room - INDENT - TAG_WIDTH, 1)
+        style = FAINT if case.status == "closed" else STRONG
+        return row(when(case.last_utc, now), pad(case.tag, TAG_WIDTH - 1), " ", (pad(what, left), style))
     status = "open" if case.status != "closed" else "closed"
     return row(
         when(case.last_utc, now),

@@ -23,6 +23,8 @@ if TYPE_CHECKING:
     from textual.widget import Widget
 
 REST_S: Final = 0.25
+LEAST_HEARD: Final = 14
+"""Cells that a narrow page keeps for what was understood of a line."""
 Heard = tuple[str, bool]
 """What was understood, in words, and whether it can be kept."""
 
@@ -138,7 +140,7 @@ class FormPage(Page[Answer]):
         self.show_remarks()
         typed = self.query_one(TypedLine)
         typed.styles.offset = (INDENT, self.at - self.top)
-        typed.styles.width = self.line.width
+        typed.styles.width = self.width_of(self.line)
 
     def height_of_form(self) -> int:
         """Return how many rows fit between head and remarks; the remarks have at least one."""
@@ -151,8 +153,13 @@ class FormPage(Page[Answer]):
         if text.strip():
             heard, fine = line.hear(text.strip())
             style = "" if fine else WATCH
-        room = max(self.room - INDENT - line.width - 1, 4)
-        return row(line.word, pad(text, line.width), " ", (cut(heard, room), style))
+        width = self.width_of(line)
+        room = max(self.room - INDENT - width - 1, 0)
+        return row(line.word, pad(text, width), " " if room else "", (cut(heard, room), style))
+
+    def width_of(self, line: Line) -> int:
+        """Return the cells to type in; some are left for what was understood where that can be."""
+        return min(line.width, max(self.room - INDENT - LEAST_HEARD, LEAST_HEARD))
 
     def remark_lines(self) -> list[Content]:
         """Return what was said last, then the remarks."""
@@ -164,7 +171,7 @@ class FormPage(Page[Answer]):
     def show_remarks(self) -> None:
         """Show the remarks; where there are none, how many lines stand below."""
         left = len(self.table) - self.top - self.height_of_form()
-        more = [row("", (f"{left} more lines: Down", FAINT))] if left > 0 else []
+        more = [row("", (f"{left} more line{'s' * (left > 1)}: Down", FAINT))] if left > 0 else []
         self.query_one("#remarks", Ruled).show(self.below or more)
 
     def say(self, text: str, *, fine: bool = False) -> None:

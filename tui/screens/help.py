@@ -37,7 +37,7 @@ class Help(TextPage):
 
     def lines(self) -> list[Content]:
         """Return one line per key, then how values are typed and how the scale is read."""
-        out = [row("help", "Keys of this screen. A letter works while nothing is being typed.")]
+        out = rows("help", "Keys of this screen. A letter works while nothing is being typed.", self.room)
         for key in keys_of(self.about):
             first, *rest = wrapped(key.help, self.room - INDENT - KEY_WIDTH)
             out.append(row("", (pad(key.shown, KEY_WIDTH), "bold"), first))

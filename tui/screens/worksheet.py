@@ -16,6 +16,7 @@ from tui.keys import bindings
 from tui.look import FAINT, STOP, STRONG, WATCH
 from tui.screens import worksheet_lines as blocks
 from tui.screens.reasons import reason_lines
+from tui.screens.worksheet_room import share_out, whole_rows
 from tui.screens.worksheet_typing import WorksheetTyping
 from tui.shift import gate_now
 from tui.widgets.ruled import Ruled, fill, row, rows
@@ -126,20 +127,20 @@ class Worksheet(WorksheetTyping):
         findings = blocks.finding_lines(answer, visit.knowledge, room)
         reads = blocks.reading_lines(blocks.readings_of(sheet, answer)[self.older :], room)
         proposed = blocks.next_lines(self.target, self.first_words(), visit.knowledge, room)
-        shared = blocks.share_out(
+        shared = share_out(
             [
-                (head, 2),
-                (stop, 2),
-                (blocks.gate_lines(answer, room), 2),
-                (proposed, 4),
-                (blocks.fault_lines(answer, self.weighed.moved, visit.knowledge, room), 3),
-                (reads, 3),
-                (findings, 2),
-                (self.why_lines(height), 0),
+                (head, 2, 1),
+                (stop, 2, 1),
+                (blocks.gate_lines(answer, room), 2, 1),
+                (proposed, 4, 2),
+                (blocks.fault_lines(answer, self.weighed.moved, visit.knowledge, room), 3, 1),
+                (reads, 3, 1),
+                (findings, 2, 1),
+                (self.why_lines(height), 0, 0),
             ],
             height,
         )
-        shared[3] = blocks.whole_rows(proposed, shared[3])
+        shared[3] = whole_rows(proposed, shared[3])
         order = (0, 1, 2, 6, 4, 7, 5, 3)
         lines = [shared[index] for index in order]
         spare = height - sum(map(len, lines))

@@ -1,7 +1,7 @@
 """The blocks of the worksheet as ruled lines: machine, gate, limits, faults, readings, next.
 
 Each function returns every line that there is to say, the most needed first;
-``share_out`` then gives each block its part of the screen.
+``worksheet_room`` then gives each block its part of the screen.
 """
 
 from __future__ import annotations
@@ -28,7 +28,7 @@ if TYPE_CHECKING:
     from rules.answer import Band, Diagnosis, FaultOdds, Finding, NextItem
     from rules.knowledge import Knowledge
 
-WIDE: Final = 110
+NARROW, WIDE = 60, 110  # below: no room for bars and scales; from the second on: room for bands
 BAR: Final = 8
 WIDE_BAR: Final = 24
 MOVE_ROOM, WIDE_MOVE_ROOM = 10, 14
@@ -38,8 +38,6 @@ FAULTS: Final = 6
 WIDE_FAULTS: Final = 10
 LEAST: Final = 0.015
 """Odds below this are not worth a line."""
-KEPT: Final = ("next", "first", "leads")
-"""Rows of the next reading that are rather shown in part than not at all."""
 MARGIN_STATE: Final = {"light_load": "light ld", "no_load": "no load"}
 
 
@@ -119,6 +117,8 @@ def _fault_line(fault: FaultOdds, moved: float, knowledge: Knowledge, room: int,
     """Return one fault in one line."""
     wide = room >= WIDE
     bar_room, move_room = (WIDE_BAR, WIDE_MOVE_ROOM) if wide else (BAR, MOVE_ROOM)
+    if room < NARROW:
+        bar_room, move_room = 0, 0
     bar = round(fault.probability * bar_room)
     move = ""
     if abs(moved) >= MOVED:
@@ -180,6 +180,11 @@ def _reading_line(read: Read, word: str, room: int) -> Content:
     name_room, value_room = (31, 24) if wide else (21, 18)
     values = reading_text(read.reading).replace(" / ", " ")
     verdict, style = _verdict(read)
+    if room < NARROW:
+        left = room - INDENT - len(verdict) - 1
+        name_room = left - len(values) - 1
+        name = f"{pad(plain(read.reading.measure), name_room)} " if name_room > 1 else ""
+        return row(word, pad(name + values, left), " ", (verdict, style))
     rest = room - INDENT - name_room - value_room - SCALE_WIDTH - 3
     names = plain(read.reading.measure).replace("insulation resistance", "insulation")
     band = ""
@@ -267,23 +272,3 @@ def next_lines(
     if item.why:
         lines += rows("because", item.why, room, most=2)
     return lines
-
-
-def share_out(blocks: Sequence[tuple[Sequence[Content], int]], height: int) -> list[list[Content]]:
-    """Give each block its lines: first everybody's least, then one by one until the page is full."""
-    given = [min(least, len(lines)) for lines, least in blocks]
-    left = height - sum(given)
-    while left > 0 and any(had < len(lines) for had, (lines, _) in zip(given, blocks, strict=True)):
-        for index, (lines, _) in enumerate(blocks):
-            if left > 0 and given[index] < len(lines):
-                given[index] += 1
-                left -= 1
-    return [list(lines[:had]) for had, (lines, _) in zip(given, blocks, strict=True)]
-
-
-def whole_rows(lines: Sequence[Content], shown: Sequence[Content]) -> list[Content]:
-    """Return what is shown of a block without a sentence that is cut off at its end; never without leads."""
-    out = list(shown)
-    while len(out) < len(lines) and lines[len(out)].plain.startswith(" ") and len(out) > 1:
-        out.pop()
-    return list(shown) if len(out) < len(lines) and lines[len(out)].plain.startswith(KEPT) else out
