@@ -130,7 +130,9 @@ async def start(app: PlatesideApp, begun: Begun) -> bool:
         sheet = sheet_from_plain({"format": 1, **told})
         visit = app.desk.open_case(sheet)
     except PlatesideError as error:
-        await app.push_screen_wait(Ask("The case could not be stored.", refusal(error)))
+        await app.push_screen_wait(
+            Ask("The case could not be stored. Go back to what was typed?", refusal(error))
+        )
         return False
     app.desk.drafts.drop(begun.name)
     await app.push_screen_wait(Worksheet(visit))

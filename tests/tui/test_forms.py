@@ -65,3 +65,28 @@ async def test_down_leaves_a_line_that_is_not_understood_as_it_stands(tmp_path: 
         await keys(pilot, *"7,5", "enter", "down")
         assert page.line.name == "voltage"
         assert page.texts["power"] == "7,5"
+
+
+async def test_a_plate_with_a_value_that_no_plate_shows_is_not_done_and_names_its_line(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        page = await to_plate(pilot, app, "induction_3ph")
+        for text in ("7.5 kW", "400", "15", "50", "1455", ".84", "887"):
+            await keys(pilot, *text, "enter")
+        await keys(pilot, "f8")
+        await until(pilot, "note EFF 887 %: 0.05 to 0.999 is possible here")
+        assert app.screen is page
+        assert page.line.name == "efficiency"
+        await keys(pilot, *"88.7", "f8")
+        await until(pilot, "faults")
+
+
+async def test_a_plate_with_two_ratings_is_not_done_without_the_one_in_use(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        page = await to_plate(pilot, app, "induction_3ph")
+        await keys(pilot, *"7.5 kW", "enter", *"230/400", "enter", *"26/15", "f8")
+        await until(pilot, "note IN USE the rating in use: 230 V or 400 V")
+        assert page.line.name == "in_use"
+        await keys(pilot, *"400", "f8")
+        await until(pilot, "faults")

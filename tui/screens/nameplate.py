@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
-from calc.errors import PlatesideError
+from calc.errors import InputError, PlatesideError
 from calc.values import ValueTextError
 from tui.keys import bindings
 from tui.look import STRONG, WATCH
@@ -73,14 +73,26 @@ class NameplatePage(FormPage[Raw]):
         machine = self.machine()
         if machine is None:
             return []
-        try:
-            found = self.check(machine)
-        except PlatesideError as error:
-            found = [refusal(error)]
+        found = [text for _, text in self.refused(machine)] or self.check(machine)
         lines: list[Content] = []
         for text in found[:REMARKS_SHOWN]:
             lines += rows("plate" if not lines else "", text, self.room, style=WATCH, most=2)
         return lines
+
+    def refused(self, machine: Raw) -> list[tuple[str, str]]:
+        """Return what no plate can show: the line, and what is wrong with it in the plate's own word."""
+        try:
+            self.check(machine)
+        except InputError as error:
+            words = {line.field: line.word for line in plate_lines(self.kind)}
+            fields = [problem.where.rpartition(".")[2] for problem in error.problems]
+            said = [refusal(InputError([problem])) for problem in error.problems]
+            return [
+                (name, f"{words.get(name, name)} {text}") for name, text in zip(fields, said, strict=True)
+            ]
+        except PlatesideError as error:
+            return [("", refusal(error))]
+        return []
 
     def machine(self) -> Raw | None:
         """Return the machine from the lines that are understood; None where nothing is typed."""
@@ -102,7 +114,13 @@ class NameplatePage(FormPage[Raw]):
                     self.go_to(line.field)
                     self.say(f"{line.word}: {error}")
                     return
-        self.finish(machine_of(self.kind, self.tag, self.values))
+        machine = machine_of(self.kind, self.tag, self.values)
+        for name, text in self.refused(machine)[:1]:
+            if name in self.values:
+                self.go_to(name)
+            self.say(text)
+            return
+        self.finish(machine)
 
     def action_kind(self) -> None:
         """Go back for another kind; what is typed is kept."""
