@@ -175,7 +175,7 @@ async def test_the_nameplate_looks_as_it_did(app: PlatesideApp, size: tuple[int,
         await keys(
             pilot, *"10 hp", "enter", *"230/460", "enter", *"26/13", "enter", *"60", "enter", *"175o", "enter"
         )
-        await until(pilot, "plate the rating in use")
+        await until(pilot, "plate IN USE the rating in use")
         compare(app, "nameplate")
 
 
