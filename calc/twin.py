@@ -120,6 +120,9 @@ class Twin(Protocol):
     def covers(self, ask: Ask) -> bool:
         """Whether the model predicts this reading."""
 
+    def chance_of_part(self, ask: Ask) -> float:
+        """Chance that the machine has the part that is to be read, where the plate leaves that open."""
+
     def predict(self, z: Floats, attributes: Mapping[str, Floats], asks: Sequence[Ask]) -> list[Floats]:
         """Predict readings.
 

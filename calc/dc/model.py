@@ -93,6 +93,10 @@ class DcTwin:
             found["no_load"] = alone.runs * (alone.speed < _OVERSPEED)
         return found
 
+    def chance_of_part(self, ask: Ask) -> float:
+        """Certain: what is covered is there."""
+        return 1.0 if self.covers(ask) else 0.0
+
     def transform(self, measure: str) -> Transform:
         """How a measure enters the comparison on this machine."""
         return scatter.transform(self.plate, measure)

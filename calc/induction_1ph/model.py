@@ -99,9 +99,9 @@ class SinglePhaseTwin:
         """Whether the model predicts this reading; none of a part that the motor most likely has not."""
         if ask.state not in COVERED.get(ask.measure, frozenset()):
             return False
-        return self._chance_of_part(ask) >= _LEAST_PART
+        return self.chance_of_part(ask) >= _LEAST_PART
 
-    def _chance_of_part(self, ask: Ask) -> float:
+    def chance_of_part(self, ask: Ask) -> float:
         """Chance that the motor has the capacitor that is to be read."""
         run, start = self._fit.known.has_run, self._has_start
         has = {

@@ -91,11 +91,13 @@ class InductionTwin:
             return ask.state in _TURNING or ask.measure == "ambient_temperature"
         if ask.measure == "starting_time":
             return ask.state == "starting"
-        if ask.measure == "sideband_level":
-            return ask.state in _TURNING
-        if ask.measure == "speed":
+        if ask.measure in {"sideband_level", "speed"}:
             return ask.state in _TURNING
         return ask.measure in _ELECTRICAL and ask.state in _STANDING | _TURNING
+
+    def chance_of_part(self, ask: Ask) -> float:
+        """Certain: what is covered is there."""
+        return 1.0 if self.covers(ask) else 0.0
 
     def transform(self, measure: str) -> Transform:
         """How a measure enters the comparison on this machine."""

@@ -16,18 +16,18 @@ import numpy as np
 
 from calc.quantities import RUNNING_STATES
 from calc.sheet import CaseSheet
-from calc.twin import Ask, Floats
+from calc.twin import Ask
 from rules.answer import NextItem
 from rules.gate import GateState, situation_of
 from rules.knowledge import Knowledge, Observation, ReadingRule
 from rules.weigh import wording
 from rules.weigh.gate_asks import gate_items, within_kit
-from rules.weigh.information import Leading, binary_information, information, leading
+from rules.weigh.information import Leading, binary_information, leading
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
 from rules.weigh.sight import smallest_seen
-from rules.weigh.soft import shape, spread_of
+from rules.weigh.worth import gains, view
 
 SEEN_FOR = 3  # proposals that say what the meter can show
 
@@ -148,14 +148,15 @@ def _readings(
     z = posterior.fit.z[[h.place for h in lead.hypotheses]]
     looks = {look.ask.key: look for look in outlooks(twin, modes, z, covered, dict(posterior.meters))}
     views = [
-        _view(posterior, knowledge, lead, looks.get(ask.key), rule, state)
+        view(posterior, knowledge, lead, looks.get(ask.key), rule, state)
         for (rule, state, _), ask in zip(candidates, asks, strict=True)
     ]
     found = []
-    for (rule, state, chance), ask, gain in zip(candidates, asks, _gains(views, lead, s), strict=True):
+    for (rule, state, chance), ask, gain in zip(candidates, asks, gains(views, lead, s), strict=True):
         how = rule.states[state]
         minutes = how.minutes + arranging(sheet, state, s)
-        score = chance * gain / ((minutes + s.overhead_minutes) * _hazard(how.hazards, s))
+        there = twin.chance_of_part(ask) if ask.key in looks else 1.0
+        score = chance * there * gain / ((minutes + s.overhead_minutes) * _hazard(how.hazards, s))
         found.append(
             Candidate(
                 score=score,
@@ -216,66 +217,6 @@ def _context(sheet: CaseSheet, ask: Ask) -> Ask:
 
 def _hazard(hazards: Sequence[str], s: ProposalSettings) -> float:
     return 1.0 + s.hazard_cost * len(hazards)
-
-
-@dataclass(frozen=True)
-class View:
-    """What the leading hypotheses say about one reading: means (h, m), covariances (h, m, m)."""
-
-    mean: Floats
-    spread: Floats
-    share: float = 1.0
-    """How much of the information is new, after what was read of the same family."""
-
-
-def _view(
-    posterior: Posterior,
-    knowledge: Knowledge,
-    lead: Leading,
-    look: Outlook | None,
-    rule: ReadingRule,
-    state: str,
-) -> View | None:
-    """What is expected of one reading; None where some hypothesis says nothing of it."""
-    if look is not None:
-        covariance = posterior.fit.covariance[[h.place for h in lead.hypotheses]]
-        spread = look.slope @ covariance @ look.slope.transpose(0, 2, 1) + np.diag(look.error**2)
-        return View(look.mean, spread)
-    by_id = {f.id: f for f in posterior.faults}
-    healthy = knowledge.faults.get("healthy")
-    shapes = []
-    for h in lead.hypotheses:
-        found = spread_of(by_id[h.fault], healthy, rule.id, state)
-        if found is None:
-            return None
-        shapes.append(shape(found))
-    meter = posterior.meters[rule.id]
-    error = meter.share if shapes[0][0] else meter.floor
-    mean = np.array([[centre] for _, centre, _ in shapes])
-    variance = np.array([[[sigma**2 + error**2]] for _, _, sigma in shapes])
-    return View(mean, variance, _family_factor(posterior, rule.id))
-
-
-def _gains(views: Sequence[View | None], lead: Leading, s: ProposalSettings) -> list[float]:
-    """Information of each reading about fault and part, all readings of one size at once. [nats]"""
-    gains = [0.0] * len(views)
-    sizes = {view.mean.shape[1] for view in views if view is not None}
-    for size in sorted(sizes):
-        places = [i for i, view in enumerate(views) if view is not None and view.mean.shape[1] == size]
-        picked = [view for view in views if view is not None and view.mean.shape[1] == size]
-        mean, spread = np.stack([v.mean for v in picked]), np.stack([v.spread for v in picked])
-        found = information(mean, spread, lead, s)
-        for place, view, gain in zip(places, picked, found, strict=True):
-            gains[place] = view.share * float(gain)
-    return gains
-
-
-def _family_factor(posterior: Posterior, measure: str) -> float:
-    """A reading whose family was read already brings less that is new."""
-    for family in weighing().families.values():
-        if measure in family.measures and any(r.measure in family.measures for r in posterior.sheet.readings):
-            return 1.0 - family.correlation**2 + 0.05
-    return 1.0
 
 
 def _observations(

@@ -45,6 +45,10 @@ class TwinView:
         """Whether the model predicts this reading."""
         return self._twin.covers(ask)
 
+    def chance_of_part(self, ask: Ask) -> float:
+        """Chance that the machine has the part that is to be read."""
+        return self._twin.chance_of_part(ask)
+
     def predict(self, z: Floats, attributes: Mapping[str, Floats], asks: Sequence[Ask]) -> list[Floats]:
         """Predict readings: one array of shape (rows, arity) per ask."""
         return self._twin.predict(self.inner(z), attributes, asks)

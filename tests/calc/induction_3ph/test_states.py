@@ -212,8 +212,25 @@ def test_an_open_line_carries_nothing_in_any_state(line):
 def test_an_open_line_behind_the_ohm_meter_leaves_the_windings_reading_even():
     twin = fit(machine(**PUMP))
     for mode in twin.modes("open_line"):
-        read = predict(twin, mode, ["winding_resistance@isolated"])["winding_resistance@isolated"]
-        assert read == pytest.approx(np.full((1, 3), read[0, 0]))
+        if mode.fixed["line_place"] < 1.5:
+            read = predict(twin, mode, ["winding_resistance@isolated"])["winding_resistance@isolated"]
+            assert read == pytest.approx(np.full((1, 3), read[0, 0]))
+
+
+def test_a_line_open_in_its_cable_reads_open_at_the_starter_and_single_phased_at_the_motor():
+    twin = fit(machine(**PUMP))
+    sound = predict(twin, twin.modes("none")[0], VALUES)["winding_resistance@isolated"][0, 0]
+    in_cable = [m for m in twin.modes("open_line") if m.fixed["line_place"] > 2.5]
+    assert {m.fixed["line"] for m in in_cable} == {0.0, 1.0, 2.0}
+    for mode in in_cable:
+        read = predict(twin, mode, ["winding_resistance@isolated", "supply_voltage@loaded"])
+        line = int(mode.fixed["line"])
+        ohms = read["winding_resistance@isolated"][0]
+        through = [line, (line + 2) % 3]  # U-V and W-U share L1, and so on
+        assert (ohms[through] > 1e3 * sound).all()
+        assert np.delete(ohms, through) == pytest.approx([sound])
+        volts = read["supply_voltage@loaded"][0]
+        assert volts[through].max() < 0.995 * np.delete(volts, through)[0]
 
 
 @pytest.mark.parametrize("connection", ["star", "delta"])
