@@ -156,16 +156,20 @@ def wait_for(holds: Callable[[], bool]) -> None:
         time.sleep(0.02)
 
 
-def test_a_line_that_stalls_and_then_drops_ends_the_program_and_keeps_what_was_typed(start, casebook: Path):
+@pytest.mark.parametrize("how", ["hung up", "gone"])
+def test_a_line_that_stalls_and_then_drops_keeps_what_was_typed(start, casebook: Path, how: str):
     terminal = at_worksheet(start())
     terminal.type("15.2 15.9 14")
     terminal.wait("15.2 15.9 14")
-    for _ in range(400):  # each draws the screen anew; nobody reads, so that the line takes no more
+    for _ in range(100):  # each draws the screen anew; nobody reads, so that the line takes no more
         os.write(terminal.process.child_fd, b"\x0c")
-        time.sleep(0.002)
+        time.sleep(0.03)
     pid = terminal.process.pid
-    terminal.process.ptyproc.fileobj.close()
-    terminal.process.ptyproc.closed = terminal.process.closed = True
+    if how == "hung up":
+        os.kill(pid, signal.SIGHUP)
+    else:
+        terminal.process.ptyproc.fileobj.close()
+        terminal.process.ptyproc.closed = terminal.process.closed = True
     wait_for(lambda: has_ended(pid))
     terminal.process.wait()
     (name,) = Drafts(casebook).names()

@@ -6,7 +6,11 @@ from pathlib import Path
 import pytest
 from textual.events import Key, Paste
 
-from tests.tui.helpers import SMALL, keys, new_app, until
+from tests.tui.helpers import SMALL, keys, known_machine, new_app, until
+from tui.screens.ask import Ask
+from tui.screens.casebook import CasebookPage
+from tui.screens.page import Page
+from tui.screens.worksheet import Worksheet
 from tui.widgets.typed import TypedLine
 
 
@@ -46,3 +50,54 @@ async def test_thousands_of_keys_that_mean_nothing_on_a_page_hold_up_nothing(tmp
         app.post_message(Key("n", "n"))
         await until(pilot, "Which machine")
         assert not app.ahead.held
+
+
+async def test_a_second_press_before_the_page_of_the_first_stands_opens_nothing_twice(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "P-104")
+        page = app.screen
+        assert isinstance(page, CasebookPage)
+        page.action_open()
+        page.action_open()
+        page.action_new_case()
+        await until(pilot, "faults")
+        assert [type(screen) for screen in app.pages()] == [CasebookPage, Worksheet]
+        await keys(pilot, "f9")
+        await until(pilot, "Cases, newest first")
+        await keys(pilot, "n")
+        await until(pilot, "Which machine")
+
+
+async def test_going_back_twice_leaves_one_page(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "P-104")
+        await keys(pilot, "enter")
+        await until(pilot, "faults")
+        await keys(pilot, "f5")
+        await until(pilot, "how usual it is")
+        page = app.screen
+        assert isinstance(page, Page)
+        page.action_back()
+        page.action_back()
+        await pilot.pause()
+        assert isinstance(app.screen, Worksheet)
+        page.action_back()
+        await pilot.pause()
+        assert isinstance(app.screen, Worksheet)
+
+
+async def test_a_page_whose_asker_is_gone_can_be_left(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "No case yet")
+
+        async def ask() -> None:
+            await app.push_screen_wait(Ask("Is it so?"))
+
+        asker = app.run_worker(ask())
+        await until(pilot, "Is it so?")
+        asker.cancel()
+        await keys(pilot, "y")
+        await until(pilot, "No case yet")

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from datetime import UTC, datetime
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from textual import work
 from textual.containers import Horizontal
@@ -20,6 +20,8 @@ from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
 from tui.widgets.typed import TypedLine
 
 if TYPE_CHECKING:
+    from collections.abc import Coroutine
+
     from textual.content import Content
     from textual.events import ScreenResume
     from textual.widget import Widget
@@ -40,6 +42,8 @@ class CasebookPage(Page[None]):
     def __init__(self) -> None:
         super().__init__()
         self.shown: list[CaseRow] = []
+        self.is_busy = False
+        """Whether a case, or who works here, is being asked for."""
         self.waiting: list[str] = []
         """Drafts that wait, by name."""
 
@@ -134,8 +138,23 @@ class CasebookPage(Page[None]):
         place = -1 if at is None else at - len(self.waiting)
         return self.shown[place] if 0 <= place < len(self.shown) else None
 
-    @work(exclusive=True)
+    async def alone(self, deed: Coroutine[Any, Any, object]) -> None:
+        """Do one thing after the other: a second press, before the first one's page stands, goes nowhere."""
+        if self.is_busy:
+            deed.close()
+            return
+        self.is_busy = True
+        try:
+            await deed
+        finally:
+            self.is_busy = False
+
+    @work(group="open")
     async def action_open(self) -> None:
+        """Open the case under the bar, or take up the draft."""
+        await self.alone(self.open_under_bar())
+
+    async def open_under_bar(self) -> None:
         """Open the case under the bar, or take up the draft."""
         from tui.flow import new_case, open_case
 
@@ -147,20 +166,20 @@ class CasebookPage(Page[None]):
             await new_case(self.plateside, self.plateside.desk.drafts.load(name), name)
             self.list_cases()
 
-    @work(exclusive=True)
+    @work(group="open")
     async def action_new_case(self) -> None:
         """Begin a new case."""
         from tui.flow import new_case
 
-        await new_case(self.plateside)
+        await self.alone(new_case(self.plateside))
         self.list_cases()
 
-    @work(exclusive=True)
+    @work(group="open")
     async def action_kit(self) -> None:
         """Ask for name and kit."""
         from tui.flow import ask_person
 
-        await ask_person(self.plateside)
+        await self.alone(ask_person(self.plateside))
 
     def action_machine(self) -> None:
         """Show the machine of the case under the bar."""

@@ -132,12 +132,12 @@ class MachinePage(TextPage):
             out += rows("cases" if case is self.cases[-1] else "", text, self.room, most=2)
         return out
 
-    @work(exclusive=True)
+    @work(group="open")
     async def action_edit(self) -> None:
         """Correct the plate; only inside a case, where the log has a place for it."""
         from tui.flow import edit_plate
 
-        if self.visit is not None and await edit_plate(self.plateside, self.visit):
+        if self.is_current and self.visit is not None and await edit_plate(self.plateside, self.visit):
             self.show()
             self.expect()
 

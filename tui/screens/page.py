@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any, ClassVar, TypeVar
 
+from textual.await_complete import AwaitComplete
 from textual.content import Content
 from textual.screen import Screen
 from textual.widgets import Static
@@ -35,6 +36,8 @@ class Page(Steady, Screen[Answer]):
     KEYS: ClassVar[str] = "help"
     is_ready = False
     """Whether keys can come: everything stands and has the focus."""
+    is_gone = False
+    """Whether the page was dismissed."""
     store: Callable[[Answer], object] | None = None
     """What puts the answer on disk; the page stays, with all that is typed, where that cannot be done."""
 
@@ -95,6 +98,16 @@ class Page(Steady, Screen[Answer]):
                 return False
         self.dismiss(answer)
         return True
+
+    def dismiss(self, result: Answer | None = None) -> AwaitComplete:
+        """Go, once: a key that comes when the page is gone already, or under another one, goes nowhere."""
+        if not self.is_current or self.is_gone:
+            return AwaitComplete()
+        self.is_gone = True
+        asked = self._result_callbacks[-1] if self._result_callbacks else None
+        if asked is not None and asked.future is not None and asked.future.done():
+            asked.future = None  # who asked is no longer there
+        return super().dismiss(result)
 
     def unsaved(self) -> str:
         """Return what is typed here and not stored, in words; nothing where there is none."""
