@@ -15,6 +15,8 @@ from tui.progress import Bar
 if TYPE_CHECKING:
     from argparse import Namespace
 
+    from casebook.merge import MergeReport
+
 REFUSALS_SHOWN = 20
 
 
@@ -45,9 +47,14 @@ def _one(book: Casebook, path: Path) -> int:
         return cli.WRONG_INPUT if isinstance(error, InputError) else cli.FAILED
     finally:
         bar.end()
+    tell(report)
+    return cli.FAILED if report.refused else cli.DONE
+
+
+def tell(report: MergeReport) -> None:
+    """Say what came of a merge, and of what was left out the first ones and why."""
     say(report.says)
     for refusal in report.refusals[:REFUSALS_SHOWN]:
         warn(f"left out: {refusal.where}: {refusal.why}")
     if report.refused > REFUSALS_SHOWN:
         warn(f"and {report.refused - REFUSALS_SHOWN} more were left out")
-    return cli.FAILED if report.refused else cli.DONE

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from calc.errors import PlatesideError
 from casebook.salvage import salvage
 from tui import cli
-from tui.output import say, warn
+from tui.commands.merge import tell
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -22,7 +22,5 @@ def run(arguments: Namespace) -> int:
     if target.exists():
         raise PlatesideError(f"{target} exists already; name a new file")
     report = salvage(source, target)
-    say(report.says)
-    for refusal in report.refusals:
-        warn(f"left out: {refusal.where}: {refusal.why}")
-    return cli.DONE
+    tell(report)
+    return cli.DONE if report.new else cli.FAILED
