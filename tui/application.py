@@ -165,6 +165,12 @@ class PlatesideApp(Steady, App[int]):
         """Leave, for hands that are used to Ctrl+C."""
         self.leave()
 
+    def exit(self, *arguments: Any, **named: Any) -> None:  # noqa: ANN401  (Textual's own)
+        """End; from now on Ctrl+C is a signal again, and there is nothing left to interrupt."""
+        if not self.is_headless:
+            signal.signal(signal.SIGINT, signal.SIG_IGN)
+        super().exit(*arguments, **named)
+
     # mishaps
 
     def trouble(self, error: BaseException) -> str:

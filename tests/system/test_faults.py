@@ -377,3 +377,14 @@ def test_a_casebook_that_another_program_holds_is_told_and_what_is_typed_stays(s
     holder.close()
     terminal.type("\r")
     terminal.wait("stored: remark")
+
+
+def test_ctrl_c_pressed_again_and_again_leaves_once_and_quietly(start, casebook: Path):
+    terminal = start()
+    terminal.wait("P-104")
+    for _ in range(200):
+        terminal.type("\x03")
+        if not terminal.pump(0.005):
+            break
+    assert terminal.end() == 0
+    assert b"Traceback" not in terminal.raw and b"KeyboardInterrupt" not in terminal.raw
