@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from typing import TYPE_CHECKING
 
 from calc.quantities import KINDS, MEASURES
@@ -22,6 +23,8 @@ _CONTEXT = (
     "position",
     "direction",
 )
+_DIGIT = re.compile(r"[0-9]")
+_NUMBER_AND_UNIT = re.compile(r"([<>=≤≥]*\s*[-+0-9.,]+(?:[eE][-+]?[0-9]+)?)\s*([^\s0-9].*)")
 
 
 def plain(identifier: str) -> str:
@@ -78,10 +81,14 @@ def value_text(value: Value) -> str:
 def reading_text(reading: Reading) -> str:
     """Return the values of a reading as typed, the unit once where it is the same for all."""
     texts = [value_text(value) for value in reading.values]
-    parts = [text.split(" ", 1) for text in texts if text != "-"]
-    units = {part[1] for part in parts if len(part) > 1}
-    if len(units) == 1 and len(texts) > 1 and all(len(part) > 1 for part in parts):
-        return " / ".join(text.split(" ", 1)[0] for text in texts) + f" {units.pop()}"
+    parts = [_NUMBER_AND_UNIT.fullmatch(text) for text in texts]
+    units = {part[2] for part in parts if part is not None}
+    is_one = len(units) == 1 and all(
+        part or not _DIGIT.search(text) for part, text in zip(parts, texts, strict=True)
+    )
+    if is_one and len(texts) > 1:
+        numbers = [part[1] if part else text for part, text in zip(parts, texts, strict=True)]
+        return f"{' / '.join(numbers)} {units.pop()}"
     return " / ".join(texts)
 
 

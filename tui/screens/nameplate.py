@@ -73,26 +73,26 @@ class NameplatePage(FormPage[Raw]):
         machine = self.machine()
         if machine is None:
             return []
-        found = [text for _, text in self.refused(machine)] or self.check(machine)
+        found, refused = self.judged(machine)
+        found = [text for _, text in refused] or found
         lines: list[Content] = []
         for text in found[:REMARKS_SHOWN]:
-            lines += rows("plate" if not lines else "", text, self.room, style=WATCH, most=2)
+            lines += rows("plate" if not lines else "", text, self.room, style=WATCH, most=3)
         return lines
 
-    def refused(self, machine: Raw) -> list[tuple[str, str]]:
-        """Return what no plate can show: the line, and what is wrong with it in the plate's own word."""
+    def judged(self, machine: Raw) -> tuple[list[str], list[tuple[str, str]]]:
+        """Return the contradictions, and what no plate can show: its line, and why in the plate's own word."""
         try:
-            self.check(machine)
+            return self.check(machine), []
         except InputError as error:
             words = {line.field: line.word for line in plate_lines(self.kind)}
-            fields = [problem.where.rpartition(".")[2] for problem in error.problems]
-            said = [refusal(InputError([problem])) for problem in error.problems]
-            return [
-                (name, f"{words.get(name, name)} {text}") for name, text in zip(fields, said, strict=True)
-            ]
+            refused = []
+            for problem in error.problems:
+                name = problem.where.rpartition(".")[2]
+                refused.append((name, f"{words.get(name, name)} {refusal(InputError([problem]))}"))
+            return [], refused
         except PlatesideError as error:
-            return [("", refusal(error))]
-        return []
+            return [], [("", refusal(error))]
 
     def machine(self) -> Raw | None:
         """Return the machine from the lines that are understood; None where nothing is typed."""
@@ -115,7 +115,7 @@ class NameplatePage(FormPage[Raw]):
                     self.say(f"{line.word}: {error}")
                     return
         machine = machine_of(self.kind, self.tag, self.values)
-        for name, text in self.refused(machine)[:1]:
+        for name, text in self.judged(machine)[1][:1]:
             if name in self.values:
                 self.go_to(name)
             self.say(text)
