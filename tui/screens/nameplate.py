@@ -81,7 +81,7 @@ class NameplatePage(FormPage[Raw]):
         return lines
 
     def judged(self, machine: Raw) -> tuple[list[str], list[tuple[str, str]]]:
-        """Return the contradictions, and what no plate can show: its line, and why in the plate's own word."""
+        """Return the contradictions; and what no plate can show: its line, and why in the plate's word."""
         try:
             return self.check(machine), []
         except InputError as error:
