@@ -2,9 +2,13 @@
 
 from pathlib import Path
 
-from textual.events import Paste
+from hypothesis import given
+from hypothesis import strategies as st
+from textual.events import Key, Paste
 
 from tests.tui.helpers import SMALL, new_app, screen_text, until
+from tui.harmless import width
+from tui.widgets.ruled import cut
 from tui.widgets.typed import LONGEST, TypedLine
 
 
@@ -34,3 +38,26 @@ async def test_several_lines_are_pasted_as_one(tmp_path: Path):
 async def test_a_paste_of_ten_megabytes_is_cut_to_what_a_line_takes(tmp_path: Path):
     value, _ = await pasted(tmp_path, "x" * 10_000_000, "y")
     assert value == "x" * LONGEST
+
+
+@given(st.text(alphabet="ab技é\u0301ｗ ", max_size=30), st.integers(-2, 20))
+def test_a_cut_text_is_the_longest_beginning_that_fits(text: str, room: int):
+    fitting = [text[:length] for length in range(len(text) + 1) if width(text[:length]) <= room]
+    assert width(cut(text, room)) <= max(room, 0)
+    assert text.startswith(cut(text, room))
+    if fitting:
+        assert width(cut(text, room)) == max(map(width, fitting))
+
+
+async def test_a_long_text_in_the_line_narrows_a_list_at_once(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "No case yet")
+        await pilot.press("n")
+        await until(pilot, "Which machine")
+        app.post_message(Paste("技" * LONGEST))
+        for _ in range(300):
+            app.post_message(Key("backspace", None))
+        await until(pilot, "技技技")
+        await pilot.press("f9")
+        await until(pilot, "No case yet")

@@ -107,8 +107,10 @@ class CasebookPage(Page[None]):
         """Type a search."""
         self.set_focus(self.query_one(Input))
 
-    def on_input_changed(self, _event: Input.Changed) -> None:
-        """Search as it is typed."""
+    def on_input_changed(self, event: Input.Changed) -> None:
+        """Search as it is typed; once for all that was typed meanwhile."""
+        if event.value != self.query_one(Input).value:
+            return
         self.list_cases()
         if self.shown:
             self.query_one(Lines).highlighted = 0

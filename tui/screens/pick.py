@@ -104,8 +104,9 @@ class Pick(Page[str]):
         self.narrow(self.query_one(Input).value)
 
     def on_input_changed(self, event: Input.Changed) -> None:
-        """Narrow the list as it is typed."""
-        self.narrow(event.value)
+        """Narrow the list as it is typed; once for all that was typed meanwhile."""
+        if event.value == self.query_one(Input).value:
+            self.narrow(event.value)
 
     def narrow(self, text: str) -> None:
         """Keep the lines that match; the best first, a fresh one last."""

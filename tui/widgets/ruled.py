@@ -56,8 +56,11 @@ def blank() -> Content:
 
 def cut(text: str, room: int) -> str:
     """Return text that takes at most ``room`` cells."""
-    while text and width(text) > room:
-        text = text[:-1]
+    taken = 0
+    for place, character in enumerate(text):
+        taken += width(character)
+        if taken > room:
+            return text[:place]
     return text
 
 
