@@ -15,7 +15,7 @@ from calc.induction_1ph.machine import connect, run_at
 from calc.induction_1ph.plate import Plate, read_plate
 from calc.induction_1ph.plate_fit import NDIndex, fit_plate, rated_setting
 from calc.induction_1ph.readings import COVERED, error_of, predict_one, transform_of
-from calc.induction_1ph.states import Attributes, Site, Standing, at_standstill, turning
+from calc.induction_1ph.states import Attributes, Site, States
 from calc.quantities import RUNNING_STATES
 from calc.sheet import Machine, Reading
 from calc.twin import Ask, Floats, Mode, ModelError, Transform
@@ -114,8 +114,8 @@ class SinglePhaseTwin:
     def predict(self, z: Floats, attributes: Attributes, asks: Sequence[Ask]) -> list[Floats]:
         """Predict readings: one array of shape (rows, 1) per reading asked for, in inner units."""
         site = self.site(z, attributes)
-        states = {ask.state for ask in asks}
-        solved = {state: self._solve(site, attributes, state) for state in states}
+        states = States(site, attributes)
+        solved = {state: states.solve(state) for state in dict.fromkeys(ask.state for ask in asks)}
         return [predict_one(self.plate, site, attributes, ask, solved[ask.state])[:, None] for ask in asks]
 
     def plate_misfit(self, z: Floats) -> Floats:
@@ -125,7 +125,7 @@ class SinglePhaseTwin:
     def possible(self, z: Floats, attributes: Attributes) -> Mapping[str, Floats]:
         """For each state, the chance that such a motor can be in it: shape (rows,), 0.0 to 1.0."""
         site = self.site(z, attributes)
-        pulled_out = ~turning(site, attributes, "loaded").running.carries
+        pulled_out = ~States(site, attributes).carries()
         found = found_in(attributes, site.has_switch)
         always = np.ones(len(z))
         return {
@@ -178,11 +178,6 @@ class SinglePhaseTwin:
 
     def _spread(self, z: Floats, name: str, spread: priors.Spread) -> Floats:
         return np.asarray(spread[0] * np.exp(spread[1] * self._latent(z, name)))
-
-    def _solve(self, site: Site, attributes: Attributes, state: str) -> Standing | None:
-        if state in RUNNING_STATES:
-            return turning(site, attributes, state)
-        return at_standstill(site, attributes) if state in {"starting", "stalled"} else None
 
     def _amps(self) -> float:
         return float(self._fit.known.base_current_a @ self._fit.weights)

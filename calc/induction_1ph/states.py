@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from functools import cached_property
 
 import numpy as np
 
@@ -12,7 +13,8 @@ from calc.induction_1ph.chances import found_in
 from calc.induction_1ph.circuit import Phasors
 from calc.induction_1ph.machine import OPEN_OHM, Motor, Setting, capacitor_ohm, connect, in_parallel, run_at
 from calc.induction_1ph.slip import Running, run_loaded
-from calc.twin import Floats
+from calc.quantities import RUNNING_STATES
+from calc.twin import Flags, Floats
 
 Attributes = Mapping[str, Floats]
 
@@ -135,20 +137,47 @@ def torque_asked(site: Site, attributes: Attributes, state: str) -> Floats:
     return np.asarray((share * load + drag) * rated + machine.friction_w)
 
 
-def turning(site: Site, attributes: Attributes, state: str) -> Standing:
-    """Run in ``no_load``, ``light_load`` or ``loaded``; a motor that cannot is at standstill."""
-    asked = torque_asked(site, attributes, state)
-    share = asked / site.machine.power_w
-    heat = priors.IDLE_HEAT + (1.0 - priors.IDLE_HEAT) * np.minimum(share, 2.0) ** 2
-    warm = site.ambient_c + site.rise_k * attributes["rise"] * heat
-    path, seen = auxiliary_path(site, attributes, at_start=False)
-    setting = settle(site, attributes, warm_c=np.minimum(warm, 220.0), path=path)
-    stands = (attributes["live"] < 0.5) | (attributes["jammed"] * (state != "no_load") > 0.5)
-    running = run_loaded(site.machine, setting, asked, stands)
-    found = _standing(site, attributes, running, seen)
-    if not running.stalled.any():
-        return found
-    return _merge(running.stalled, at_standstill(site, attributes), found)
+@dataclass(frozen=True)
+class States:
+    """Rows in every state; what several states share, the shaft at standstill, is worked out once."""
+
+    site: Site
+    attributes: Attributes
+
+    def solve(self, state: str) -> Standing | None:
+        """Return the rows in a running state or under voltage at standstill; None where nothing flows."""
+        if state in RUNNING_STATES:
+            return self._turning(state)
+        return self._standstill if state in {"starting", "stalled"} else None
+
+    def carries(self) -> Flags:
+        """Whether each row carries its load."""
+        running, _ = self._running("loaded")
+        return running.carries
+
+    @cached_property
+    def _standstill(self) -> Standing:
+        return at_standstill(self.site, self.attributes)
+
+    def _running(self, state: str) -> tuple[Running, Phasors]:
+        """The slip that a running state settles at, and what a meter across the capacitor sees. [ohm]"""
+        site, attributes = self.site, self.attributes
+        asked = torque_asked(site, attributes, state)
+        share = asked / site.machine.power_w
+        heat = priors.IDLE_HEAT + (1.0 - priors.IDLE_HEAT) * np.minimum(share, 2.0) ** 2
+        warm = site.ambient_c + site.rise_k * attributes["rise"] * heat
+        path, seen = auxiliary_path(site, attributes, at_start=False)
+        setting = settle(site, attributes, warm_c=np.minimum(warm, 220.0), path=path)
+        stands = (attributes["live"] < 0.5) | (attributes["jammed"] * (state != "no_load") > 0.5)
+        return run_loaded(site.machine, setting, asked, stands), seen
+
+    def _turning(self, state: str) -> Standing:
+        """``no_load``, ``light_load`` or ``loaded``; a motor that cannot run is at standstill."""
+        running, seen = self._running(state)
+        found = _standing(self.site, self.attributes, running, seen)
+        if not running.stalled.any():
+            return found
+        return _merge(running.stalled, self._standstill, found)
 
 
 def _standing(site: Site, attributes: Attributes, running: Running, seen: Phasors) -> Standing:

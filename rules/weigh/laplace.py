@@ -21,7 +21,7 @@ from rules.weigh.frame import NU, Frame, t_constant
 
 START = 0.2  # severity latents where a fit begins
 HEAT = (9.0, 1.0, 1.0)  # the first round is taken with a wider view
-QUICK = (1.0, 1.0)  # for the healthy machine alone, whose fit is nearly linear
+QUICK = (1.0, 1.0)  # for the healthy machine alone, which is well begun after the survey
 # Modes further behind the best than this are given up: at the start, after the first, after the second round.
 PRUNE_NATS = (100.0, 40.0, 24.0)
 REACH = 4.5  # no latent goes further out than this

@@ -8,7 +8,7 @@ from hypothesis import strategies as st
 from calc.induction_1ph import fit
 from calc.induction_1ph.effects import DEFAULTS, VARIANTS
 from calc.induction_1ph.readings import COVERED
-from calc.induction_1ph.states import torque_asked, turning
+from calc.induction_1ph.states import States, torque_asked
 from calc.quantities import MEASURES
 from calc.sheet import Reading
 from calc.twin import Ask, attribute_rows
@@ -67,7 +67,7 @@ def test_torque_meets_the_load_at_the_slip_found(name, state):
     twin = fit(machine(ALL[name]))
     z, rows = drawn(twin, 200)
     site = twin.site(z, rows)
-    running = turning(site, rows, state).running
+    running = States(site, rows).solve(state).running
     wanted = torque_asked(site, rows, state)
     off = np.abs(running.currents.torque_w - wanted)[~running.stalled]
     assert len(off) > 190
