@@ -157,3 +157,17 @@ async def test_a_retest_value_that_can_hardly_be_is_asked_about_once(tmp_path: P
         await until(pilot, "Cases, newest first")
         closed = newest(app).closed
     assert closed is not None and closed.what.retested[0].reading.note == "checked"
+
+
+async def test_the_fault_that_was_picked_last_is_closed_with_not_that_of_a_draft(tmp_path: Path):
+    async with at_worksheet(tmp_path) as (app, pilot):
+        page = app.screen
+        assert isinstance(page, Worksheet)
+        app.desk.drafts.save(f"closing-{page.draft_name}", {"found": "rotor rub", "done": "fins cleaned"})
+        await to_closing(pilot, "cooling")
+        await until(pilot, "done fins cleaned")
+        await keys(pilot, "f8")
+        await until(pilot, "Cases, newest first")
+        closed = newest(app).closed
+    assert closed is not None
+    assert (closed.what.found, closed.what.done) == ("cooling_lost", "fins cleaned")

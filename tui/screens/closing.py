@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from collections.abc import Awaitable, Callable, Mapping, Sequence
 
     from textual.content import Content
+    from textual.widget import Widget
 
     from tui.compose import Visit
 
@@ -94,6 +95,12 @@ class ClosingPage(FormPage[dict[str, str]]):
         """Return the title."""
         said = "What was found and done. Closing keeps the odds as they stood."
         return rows("close", said, self.room, style=STRONG)
+
+    def body(self) -> list[Widget]:
+        """Return the form; the fault is the one that was just picked, whatever a draft says."""
+        widgets = super().body()
+        self.texts["found"] = plain(self.found)
+        return widgets
 
     def on_mount(self) -> None:
         """Start where it is said how the fault is known: the fault itself was just picked."""
