@@ -219,14 +219,18 @@ def _split_ratings(machine: Raw) -> None:
 def typed_of(machine: Raw) -> dict[str, str]:
     """Return the lines as they would be typed for a machine that is known already."""
     out: dict[str, str] = {}
+    ratings = machine.get("nameplate", {}).get("ratings", ())
+    rated = {name for rating in ratings for name in rating}
     for line in plate_lines(str(machine.get("kind", "induction_3ph"))):
+        if line.field in rated:  # what stands beside the ratings is the one in use, once more
+            continue
         home = machine if line.place == "machine" else machine.get(line.place, {})
         value = home.get(line.field)
         if isinstance(value, bool):
             out[line.field] = "yes" if value else "no"
         elif value is not None:
             out[line.field] = str(value)
-    for rating in machine.get("nameplate", {}).get("ratings", ()):
+    for rating in ratings:
         for name, text in rating.items():
             out[name] = f"{out[name]}/{text}" if out.get(name) else str(text)
     return out

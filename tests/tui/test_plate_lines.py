@@ -70,3 +70,15 @@ def test_a_machine_that_is_recalled_is_typed_again_as_the_same_machine(kind: str
     sheet = sheet_from_plain({"format": 1, "machine": first, "complaint": "routine_check"})
     again = machine_of(kind, "P-1", typed_of(sheet_of(sheet.machine)))
     assert sheet_from_plain({"format": 1, "machine": again, "complaint": "routine_check"}) == sheet
+
+
+def test_a_plate_with_two_ratings_is_typed_again_as_it_was():
+    typed = {"voltage": "230/400", "current": "26/15", "connection": "d/y", "in_use": "400"}
+    first = machine_of("induction_3ph", "P-1", typed)
+    sheet = sheet_from_plain({"format": 1, "machine": first, "complaint": "routine_check"})
+    again = typed_of(sheet_of(sheet.machine))
+    assert (again["voltage"], again["current"], again["connection"]) == (
+        "230 V/400 V", "26 A/15 A", "delta/star",
+    )  # fmt: skip
+    machine = machine_of("induction_3ph", "P-1", again)
+    assert sheet_from_plain({"format": 1, "machine": machine, "complaint": "routine_check"}) == sheet
