@@ -4,14 +4,17 @@ from __future__ import annotations
 
 import io
 import sys
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Final
 
 from tui.columns import paragraph
+from tui.harmless import harmless
 from tui.output import say
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
 
+LONGEST: Final = 4000
+"""Characters that one line may have: a long remark."""
 YES, NO = ("y", "yes"), ("n", "no")
 
 
@@ -25,7 +28,7 @@ class Back(Exception):  # noqa: N818 - nothing is wrong when a person goes back
 
 def ask(prompt: str, default: str = "") -> str:
     """Ask for one line; Enter alone gives the default. Raises Left at the end of input, Back at ``back``."""
-    shown = f"{prompt} [{default}]: " if default else f"{prompt}: "
+    shown = harmless(f"{prompt} [{harmless(default, limit=60)}]: " if default else f"{prompt}: ")
     while True:
         say(shown, end="")
         sys.stdout.flush()
@@ -35,16 +38,22 @@ def ask(prompt: str, default: str = "") -> str:
             raise Left
         if line.strip().lower() == "back":
             raise Back
-        if not any("\ud800" <= sign <= "\udfff" for sign in line):
+        if len(line) > LONGEST:
+            say(f"That line is longer than {LONGEST} characters: type it shorter.")
+        elif not any("\ud800" <= sign <= "\udfff" for sign in line):
             return line.strip() or default
-        say(f"That line is no {sys.stdin.encoding}: type it again, or without accents.")
+        else:
+            say(f"That line is no {sys.stdin.encoding}: type it again, or without accents.")
 
 
 def _line() -> str:
     """Read one line, "" at the end; bytes that are not of the stream's encoding come as lone surrogates."""
     if isinstance(sys.stdin, io.TextIOWrapper) and sys.stdin.errors != "surrogateescape":
         sys.stdin.reconfigure(errors="surrogateescape")
-    return sys.stdin.readline()
+    line = sys.stdin.readline(LONGEST + 1)
+    while line and not line.endswith("\n") and (more := sys.stdin.readline(LONGEST)):
+        line = line[:LONGEST] + more[-2:]  # of a longer line no more is held than shows that it is one
+    return line
 
 
 def ask_yes(prompt: str) -> bool:

@@ -301,3 +301,41 @@ def test_back_leaves_any_question_without_an_answer(talk, known, kit, casebook):
 def test_back_in_a_new_case_asks_for_the_machine_again(talk, known, kit, casebook):
     talk("Ines", "WP-9", "back", "WP-104 wash water", "yes", "routine_check")
     assert newest(casebook).tag == "WP-104 wash water"
+
+
+HOSTILE = [
+    "9" * 5000,
+    "٣" * 5000,
+    "1e" + "9" * 5000,
+    "1/" + "0" * 5000,
+    "9" * 5000 + "/3",
+    "x" * 300_000,
+    "e\u0301" * 2000,
+    "\x1b]0;t\x07\x9b31m\u202e\u200b",
+    "[bold]%s {0} \\",
+    "- - -",
+    "1 2 3 4 5 6 7 8 9",
+    "5 at 99999 C 1e999 V nan",
+]
+STAGES = {
+    "name": (),
+    "tag": ("Ines",),
+    "kind": ("Ines", "WP-9"),
+    "plate": ("Ines", "WP-9", "induction_3ph"),
+    "complaint": ("Ines", "WP-104 wash water", "yes"),
+    "visit": OPEN_CASE,
+    "reading": (*OPEN_CASE, "read"),
+    "note": (*OPEN_CASE, "note " + "x" * 10_000_000),
+    "isolation": (*OPEN_CASE, "isolate"),
+    "correction": (*OPEN_CASE, "seen shaft_turns_freely yes", "correct"),
+    "closing": (*OPEN_CASE, "close", "healthy", "believed"),
+}
+
+
+@pytest.mark.parametrize("stage", STAGES)
+def test_no_line_is_more_than_asked_for_again(talk, known, kit, casebook, stage):
+    for hostile in HOSTILE:
+        done = talk(*STAGES[stage], *[hostile] * 12)
+        assert "mistake of the program" not in done.out + done.err, (hostile[:20], done.err)
+        assert not {"\x1b", "\x07", "\x9b", "\u202e"} & set(done.out + done.err), hostile[:20]
+    assert talk("Ines").status == 0
