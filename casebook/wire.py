@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Iterator
 from datetime import UTC, datetime
 from typing import Any, BinaryIO, Final
@@ -14,6 +15,8 @@ from casebook.errors import BadEntry
 from casebook.rows import stamp
 
 MAX_LINE: Final = 1024 * 1024
+# controls, line separators, marks that turn the writing direction: as ``casebook.entry.steers_terminal``
+_STEERS: Final = re.compile("[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028\u2029\u202a-\u202e\u2066-\u2069]")
 
 
 class WireEntry(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields=True):
@@ -31,7 +34,10 @@ class WireEntry(msgspec.Struct, frozen=True, kw_only=True, forbid_unknown_fields
 
 
 def line_of_entry(entry: Entry) -> bytes:
-    """Return an entry as one line of JSON, with its end."""
+    """Return an entry as one line of JSON, with its end; what could steer a terminal is written as its code.
+
+    A casebook that is damaged, or that a stranger made, may hold such characters.
+    """
     head = {
         "id": entry.id,
         "case": entry.case,
@@ -43,7 +49,11 @@ def line_of_entry(entry: Entry) -> bytes:
         "body_version": entry.body_version,
         "body": msgspec.Raw(entry.body_json.encode()),
     }
-    return msgspec.json.encode(head) + b"\n"
+    line = msgspec.json.encode(head)
+    text = line.decode()
+    if not text.isprintable():
+        line = _STEERS.sub(lambda found: f"\\u{ord(found[0]):04x}", text).encode()
+    return line + b"\n"
 
 
 def entry_of_line(line: bytes) -> Entry:

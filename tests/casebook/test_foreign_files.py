@@ -7,6 +7,7 @@ from pathlib import Path
 import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
+from msgspec import structs
 
 from casebook.book import Casebook, open_casebook
 from casebook.entry import steers_terminal
@@ -230,3 +231,19 @@ def merged_or_refused(folder: Path, data: st.DataObject) -> None:
             assert str(error)
         assert book.case(kept).sheet == a_sheet("M-1")
         assert book.store.case_entries(kept)
+
+
+@given(st.characters())
+def test_what_steers_a_terminal_is_written_as_its_code(character):
+    body = '{"text":"a' + ("" if character in '"\\' or character.isascii() else character) + '"}'
+    entry = structs.replace(entry_of_line(line()), body_json=body, person=f"A{character}")
+    written = line_of_entry(entry).decode()
+    assert not any(steers_terminal(found) or found == "\t" for found in written[:-1])
+    assert json.loads(written)["body"] == json.loads(body)
+    assert json.loads(written)["person"] == f"A{character}"
+
+
+def test_a_control_in_a_damaged_body_breaks_no_line(book: Casebook):
+    entry = structs.replace(entry_of_line(line()), body_json='{"text":"a\x1b[2J\n\x01"}')
+    assert line_of_entry(entry).count(b"\n") == 1
+    assert json.loads(line_of_entry(entry))["body"] == {"text": "a\x1b[2J\n\x01"}
