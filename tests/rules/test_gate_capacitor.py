@@ -5,7 +5,7 @@ import pytest
 from rules.answer import NextItem
 from rules.gate import gate
 
-from .makers import case, insulation, shipped
+from .makers import built, case, insulation, shipped, shop
 
 KNOWN = shipped()
 PLATE = {"power": "1.5 hp", "voltage": "230 V", "current": "8.4 A", "frequency": "60 Hz", "speed": "1725 rpm"}
@@ -74,3 +74,19 @@ def test_every_line_that_a_reading_needs_guards_the_isolated_machine():
 
 def test_insulation_alone_does_not_clear_the_line():
     assert line_of(single_phase("hums_will_not_turn", insulation())).status == "needed"
+
+
+def test_a_shop_that_leaves_the_line_out_of_a_reading_is_told_so(tmp_path):
+    own = """readings:
+- id: run_capacitance
+  name: Run capacitor
+  source: own standard
+  kinds: [induction_1ph]
+  instruments: [capacitance_meter]
+  accuracy_percent: 2
+  states:
+    isolated: {leads: Across its terminals., minutes: 5, hazards: [capacitor_charge]}
+"""
+    knowledge, problems = built(shop(tmp_path, own))
+    assert problems == []
+    assert any(LINE in said for said in knowledge.loosened)

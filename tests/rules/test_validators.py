@@ -42,7 +42,7 @@ LIMIT = Limit(
     **HEAD,
 )  # fmt: skip
 READING = ReadingRule(
-    id="speed", instruments=("tachometer",), accuracy_percent=1.0, plausible=("1 rpm", "9000 rpm"),
+    id="speed", instruments=("tachometer",), accuracy_percent=1.0, plausible=("1 rpm", "9000 rpm"), needs=("g",),
     states={"loaded": ReadingState(leads="at the shaft", minutes=2.0, hazards=("h",))}, **HEAD,
 )  # fmt: skip
 GATE = GateRule(
@@ -100,6 +100,7 @@ WRONG = [
     (ids.HazardCheck, ids.UnknownHazard,
      with_("readings", states={"loaded": ReadingState(leads="x", minutes=1.0, hazards=("hh",))}), "hh"),
     (ids.GateLineCheck, ids.UnknownGateLine, with_("faults", before_energising=("gg",)), "gg"),
+    (ids.GateLineCheck, ids.UnknownGateLine, with_("readings", needs=("gg",)), "gg"),
     (ids.GateCheckCheck, ids.UnknownGateCheck, with_("gates", clears=("looks_nice",)), "looks_nice"),
     (ids.FactCheck, ids.UnknownFact, with_("hazards", when={"colour": "red"}), "colour"),
     (ids.EffectCheck, ids.UnknownEffect,
