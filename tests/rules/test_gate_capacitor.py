@@ -3,6 +3,7 @@
 import pytest
 
 from rules.answer import NextItem
+from rules.cautions import with_hazards
 from rules.gate import gate
 
 from .makers import built, case, insulation, shipped, shop
@@ -59,8 +60,6 @@ def test_isolated_readings_stay_proposed_for_discharging_is_their_first_step():
     ],
 )
 def test_every_isolated_reading_at_the_terminals_of_a_single_phase_machine_names_the_line(measure):
-    from rules.cautions import with_hazards
-
     item = with_hazards(NextItem(measure=measure, state="isolated"), single_phase(), KNOWN)
     assert LINE in KNOWN.readings[measure].needs
     assert "capacitor_charge" in item.hazards or measure == "cable_insulation_resistance"

@@ -42,8 +42,8 @@ LIMIT = Limit(
     **HEAD,
 )  # fmt: skip
 READING = ReadingRule(
-    id="speed", instruments=("tachometer",), accuracy_percent=1.0, plausible=("1 rpm", "9000 rpm"), needs=("g",),
-    states={"loaded": ReadingState(leads="at the shaft", minutes=2.0, hazards=("h",))}, **HEAD,
+    id="speed", instruments=("tachometer",), accuracy_percent=1.0, plausible=("1 rpm", "9000 rpm"),
+    needs=("g",), states={"loaded": ReadingState(leads="at the shaft", minutes=2.0, hazards=("h",))}, **HEAD,
 )  # fmt: skip
 GATE = GateRule(
     id="g", guards=("loaded",), asks=("speed@loaded", "o"), clears=("answered_yes",), suspects={"f": 0.3},
