@@ -5,6 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any, Final
 
+from casebook.entry import clean_line
+
 if TYPE_CHECKING:
     from tui.drafts import Drafts
     from tui.plate_lines import Raw
@@ -33,10 +35,13 @@ class Begun:
     @classmethod
     def of(cls, draft: dict[str, Any], name: str) -> Begun:
         """Take up a draft; what somebody else wrote into its file is left out."""
-        words = {key: draft[key] for key in ("tag", "complaint", "kind") if isinstance(draft.get(key), str)}
+        tag, complaint, kind = (
+            clean_line(text) if isinstance(text := draft.get(key), str) else None
+            for key in ("tag", "complaint", "kind")
+        )
         lines = draft.get("lines")
         typed = {str(key): str(text) for key, text in lines.items()} if isinstance(lines, dict) else {}
-        return cls(**words, lines=typed, name=name)
+        return cls(tag, complaint or "", kind or "", typed, name)
 
     @property
     def step(self) -> int:

@@ -47,9 +47,11 @@ class CellDriver(LinuxDriver):
         return data if difference is None else difference
 
     def _send(self, data: str) -> None:
-        """Send, inside a synchronized update if one was asked for."""
+        """Send, inside a synchronized update if one was asked for; half characters cannot be sent."""
         if not data:
             return
+        if not data.isascii():
+            data = data.encode(errors="replace").decode()
         if self._sync_asked:
             self._sync_asked = False
             super().write(SYNC_ON)

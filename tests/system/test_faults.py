@@ -388,3 +388,28 @@ def test_ctrl_c_pressed_again_and_again_leaves_once_and_quietly(start, casebook:
             break
     assert terminal.end() == 0
     assert b"Traceback" not in terminal.raw and b"KeyboardInterrupt" not in terminal.raw
+
+
+def test_a_draft_that_other_hands_were_at_steers_nothing(start, casebook: Path):
+    with open_casebook(casebook) as book:
+        case = book.cases()[0].id
+    typed = '{"typed": "15\\ud800.2 \\u001b]0;t\\u0007\\u202e", "case": "x"}'
+    Drafts(casebook)._path(f"case-{case}-R. Varga").write_text(typed, encoding="ascii")
+    lines = '"lines": {"power": {}, "no": "\\u0007"}'
+    begun = f'{{"tag": "F-7\\ud800\\u001b[2J", "complaint": ["x"], "kind": 7, {lines}}}'
+    Drafts(casebook)._path("new_case").write_text(begun, encoding="ascii")
+    terminal = start()
+    terminal.wait("a new case was begun")
+    terminal.type("\x1b[B")
+    at_worksheet(terminal)
+    terminal.wait("From your draft")
+    assert "15 .2" in terminal.text()
+    terminal.type("\x1b[20~")
+    terminal.wait("a new case was begun")
+    terminal.type("\x1b[H\r")
+    terminal.wait("What is wrong")
+    terminal.type("hot\r")
+    terminal.wait("What kind")
+    terminal.type("\r")
+    terminal.wait("Nameplate")
+    assert b"\x1b]0;" not in terminal.raw and b"\x1b[2J" not in terminal.raw

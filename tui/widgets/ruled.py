@@ -23,7 +23,8 @@ Part = str | tuple[str, str]
 def row(word: str, *parts: Part) -> Content:
     """Return one line: the word in the margin, the rule, then parts as text or (text, style)."""
     clean = [harmless(part) if isinstance(part, str) else (harmless(part[0]), part[1]) for part in parts]
-    return Content.assemble((word[: MARGIN - 1].ljust(MARGIN), STRONG), (RULE + " ", FAINT), *clean)
+    margin = harmless(word)[: MARGIN - 1].ljust(MARGIN)
+    return Content.assemble((margin, STRONG), (RULE + " ", FAINT), *clean)
 
 
 def rows(word: str, text: str, room: int, *, style: str = "", most: int = 99) -> list[Content]:

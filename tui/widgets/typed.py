@@ -64,6 +64,7 @@ class TypedLine(Steady, Input):
 
     def put(self, text: str, *, chosen: bool = False) -> None:
         """Put another text in the line without telling; ``chosen`` text goes with the next letter."""
+        text = UNSEEN.sub(" ", text)  # a draft is a file, and any hand may have been at it
         with self.prevent(Input.Changed):
             self.value = text
         self.selection = Selection(0, len(text)) if chosen else Selection.cursor(len(text))
