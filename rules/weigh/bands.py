@@ -18,9 +18,10 @@ from calc.sheet import CaseSheet
 from calc.twin import Ask, Floats, Twin
 from rules.answer import Band
 from rules.knowledge import Knowledge
+from rules.weigh.fitting import QUICK, fit_modes
 from rules.weigh.frame import Frame, frame
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import QUICK, Fit, fit_modes, without
+from rules.weigh.laplace import Fit, without
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, in_usual_unit, outlooks, untransform
 from rules.weigh.soft import shape, spread_of

@@ -14,9 +14,9 @@ from calc.observe import make_seen
 from calc.sheet import Reading, Value
 from calc.twin import Ask, Floats, ModelError, Twin
 from rules.knowledge import Knowledge
+from rules.weigh.fitting import fit_modes
 from rules.weigh.frame import frame
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import fit_modes
 from rules.weigh.view import TwinView
 
 OWN_C = 25.0  # earlier windings are given at this temperature

@@ -7,8 +7,9 @@ import math
 import numpy as np
 
 from calc.twin import Floats, Twin
+from rules.weigh.fitting import QUICK, fit_modes
 from rules.weigh.frame import Frame, frame
-from rules.weigh.laplace import QUICK, Fitter, fit_modes
+from rules.weigh.laplace import Fitter
 
 _NU = 3.0
 # Room beyond the healthy spread, in transformed units: level and contrasts. Judgement.

@@ -13,10 +13,11 @@ from calc.sheet import CaseSheet, Reading
 from calc.twin import Floats, Mode, Twin, attribute_rows
 from rules.knowledge import Fault, Knowledge
 from rules.weigh import soft
+from rules.weigh.fitting import fit_modes
 from rules.weigh.frame import Frame, frame
 from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, fit_modes, join_fits
+from rules.weigh.laplace import Fit, join_fits
 from rules.weigh.metered import MeteredTwin, repeatability
 from rules.weigh.other import other_evidence
 from rules.weigh.pairs import make_pairs
