@@ -23,8 +23,10 @@ async def to_plate(pilot, app: PlatesideApp, kind: str) -> NameplatePage:
     return page
 
 
-@pytest.mark.parametrize("size", [SMALL, (40, 12), LARGE])
-@pytest.mark.parametrize("kind", ["induction_3ph", "induction_1ph", "dc_shunt"])
+@pytest.mark.parametrize(
+    ("kind", "size"),
+    [("induction_3ph", SMALL), ("induction_1ph", (40, 12)), ("dc_shunt", SMALL), ("induction_3ph", LARGE)],
+)
 async def test_every_line_of_the_plate_is_on_the_screen_while_it_is_typed(
     tmp_path: Path, kind: str, size: tuple[int, int]
 ):
