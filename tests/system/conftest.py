@@ -1,40 +1,66 @@
-"""What the tests over SSH share: a server of their own, its casebook, and the lines that they open."""
+"""A casebook on a small disk, the program on it, and places that may not be written."""
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import pytest
 
-from tests.system.openssh import Server, serving
-from tests.tui.helpers import KIT, known_machine, new_app
+from calc.sheet_io import sheet_from_plain
+from casebook.book import open_casebook
+from tests.system.faults import Disk
+from tests.tui.helpers import KIT, MACHINE
 from tests.tui.terminal import Terminal
 from tui.drafts import Drafts
 
 
 @pytest.fixture
-def server(tmp_path: Path) -> Iterator[Server]:
-    """An OpenSSH server that runs nothing but Plateside."""
-    with serving(tmp_path) as made:
-        yield made
+def disk(tmp_path: Path) -> Iterator[Disk]:
+    """A disk of its own for the casebook."""
+    disk = Disk(tmp_path / "disk")
+    yield disk
+    disk.end()
 
 
 @pytest.fixture
-def book(server: Server) -> Path:
-    """A casebook on the server with one known machine, the technician known."""
-    app = known_machine(new_app(server.folder / "book"))
-    app.desk.close()
-    drafts = Drafts(server.casebook)
+def casebook(tmp_path: Path, disk: Disk) -> Path:
+    """A casebook with one open case and a known technician."""
+    path = disk.folder / "shop" / "casebook.db"
+    sheet = sheet_from_plain({"format": 1, "machine": {"tag": "P-104", **MACHINE}, "complaint": "runs_hot"})
+    with open_casebook(path) as book:
+        book.log_sheet(sheet, "R. Varga")
+    drafts = Drafts(path)
     drafts.remember("person", "R. Varga")
     drafts.remember("kit", KIT)
-    return server.casebook
+    return path
 
 
 @pytest.fixture
-def lines(server: Server) -> Iterator[list[Terminal]]:
-    """Logins that a test opened; they are ended after it."""
-    opened: list[Terminal] = []
-    yield opened
-    for line in opened:
-        line.kill()
+def start(casebook: Path, tmp_path: Path) -> Iterator[Callable[..., Terminal]]:
+    """Start the program on the casebook; it is ended after the test."""
+    started: list[Terminal] = []
+    home = {f"XDG_{kind}_HOME": str(tmp_path / kind.lower()) for kind in ("CACHE", "STATE", "DATA")}
+
+    def start_it(**more: object) -> Terminal:
+        terminal = Terminal(casebook, env={**home, **more.pop("env", {})}, **more)  # type: ignore[arg-type, dict-item]
+        started.append(terminal)
+        return terminal
+
+    yield start_it
+    for terminal in started:
+        terminal.kill()
+
+
+@pytest.fixture
+def shut(casebook: Path, tmp_path: Path) -> Iterator[Path]:
+    """The casebook and its folder may be read and not be written, nor any folder of the user's own."""
+    folders = [casebook.parent, Drafts(casebook).folder, tmp_path / "home"]
+    folders[-1].mkdir()
+    for path in (casebook, *casebook.parent.glob("casebook.db-*")):
+        path.chmod(0o444)
+    for folder in folders:
+        folder.chmod(0o555)
+    yield folders[-1]
+    for folder in folders:
+        folder.chmod(0o755)
