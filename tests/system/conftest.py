@@ -1,4 +1,4 @@
-"""A casebook on a small disk, the program on it, and places that may not be written."""
+"""What system tests share: an SSH server with its casebook, a small disk, the program on it, shut places."""
 
 from __future__ import annotations
 
@@ -10,9 +10,43 @@ import pytest
 from calc.sheet_io import sheet_from_plain
 from casebook.book import open_casebook
 from tests.system.faults import Disk
-from tests.tui.helpers import KIT, MACHINE
+from tests.system.openssh import Server, serving
+from tests.tui.helpers import KIT, MACHINE, known_machine, new_app
 from tests.tui.terminal import Terminal
 from tui.drafts import Drafts
+
+
+# over SSH
+
+
+@pytest.fixture
+def server(tmp_path: Path) -> Iterator[Server]:
+    """An OpenSSH server that runs nothing but Plateside."""
+    with serving(tmp_path) as made:
+        yield made
+
+
+@pytest.fixture
+def book(server: Server) -> Path:
+    """A casebook on the server with one known machine, the technician known."""
+    app = known_machine(new_app(server.folder / "book"))
+    app.desk.close()
+    drafts = Drafts(server.casebook)
+    drafts.remember("person", "R. Varga")
+    drafts.remember("kit", KIT)
+    return server.casebook
+
+
+@pytest.fixture
+def lines(server: Server) -> Iterator[list[Terminal]]:
+    """Logins that a test opened; they are ended after it."""
+    opened: list[Terminal] = []
+    yield opened
+    for line in opened:
+        line.kill()
+
+
+# faults
 
 
 @pytest.fixture
