@@ -15,7 +15,6 @@ from tests.tui.helpers import KIT, MACHINE, known_machine, new_app
 from tests.tui.terminal import Terminal
 from tui.drafts import Drafts
 
-
 # over SSH
 
 
