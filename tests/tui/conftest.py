@@ -1,11 +1,13 @@
 """What the tests of commands share."""
 
+import io
 from pathlib import Path
 from typing import NamedTuple
 
 import pytest
 
 from tui.cli import main
+from tui.drafts import Drafts
 
 SHEETS = Path(__file__).resolve().parent.parent / "sheets"
 
@@ -45,3 +47,28 @@ def run(capsys, casebook):
 def sheet():
     """Return the path of an example sheet by its name."""
     return lambda name: str(SHEETS / f"{name}.yaml")
+
+
+@pytest.fixture
+def talk(run, monkeypatch):
+    """Hold a visit with typed lines; the input ends after the last."""
+
+    def talk_it(*lines):
+        monkeypatch.setattr("sys.stdin", io.StringIO("".join(f"{line}\n" for line in lines)))
+        return run("--plain")
+
+    return talk_it
+
+
+@pytest.fixture
+def known(run, sheet):
+    """A casebook that knows the wash-water pump."""
+    run("log", sheet("pump_overload"), "--person", "Ines")
+
+
+@pytest.fixture
+def kit(casebook):
+    """A kit that was asked for on an earlier visit."""
+    carried = ["multimeter", "clamp_meter", "insulation_tester", "tachometer"]
+    Drafts(casebook).remember("kit", carried)
+    return carried
