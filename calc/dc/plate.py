@@ -16,7 +16,7 @@ from calc.sheet import Machine, Nameplate, Reading
 # Usual values by output in kW, with the spread of their logarithm. Fitted by eye to the
 # textbook machines (12 to 1250 kW) and to catalogue efficiencies from memory.
 LOSS_RATIO = (0.27, -0.32, 0.22)  # losses over output, field excluded
-FIELD_POWER = (0.05, -0.33, 0.30)  # field input over output
+FIELD_POWER = (0.065, -0.33, 0.47)  # field input over output
 COILS = (46.0, 0.25)  # commutator bars
 
 RISE_K = 65.0  # usual temperature rise of the windings at rated load

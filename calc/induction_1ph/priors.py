@@ -1,8 +1,9 @@
 """What single-phase motors usually are, where the plate does not say it.
 
 Impedances in per unit of rated voltage over rated current at 20 °C, each with its
-median and its spread in the logarithm. Judged from small motors of 0.18 to 3 kW and from the
-textbook machines (Fitzgerald 9.2 and 9.5, Guru 10.3, Hubert 6.1), which lie inside.
+median and its spread in the logarithm. Judged from small motors of 0.18 to 3 kW; the textbook
+machines with a start winding (Fitzgerald 9.5, Guru 10.3, Hubert 6.1) stand at the edges, which
+the spreads take in as rare.
 """
 
 from __future__ import annotations
@@ -15,25 +16,25 @@ Spread = tuple[float, float]
 
 MEDIAN_AND_SPREAD: dict[str, dict[str, Spread]] = {
     SPLIT_PHASE: {
-        "main_resistance": (0.0455, 0.15),
-        "leakage": (0.110, 0.17),
+        "main_resistance": (0.0455, 0.20),
+        "leakage": (0.110, 0.21),
         "rotor_resistance": (0.060, 0.19),
-        "magnetising": (2.00, 0.11),
+        "magnetising": (2.00, 0.16),
         "core": (24.5, 0.20),
         "friction": (0.056, 0.36),
         "turns_ratio": (0.71, 0.14),
-        "auxiliary_resistance": (5.2, 0.23),
+        "auxiliary_resistance": (5.2, 0.33),
         "auxiliary_leakage": (0.50, 0.29),
     },
     CAPACITOR_START: {
-        "main_resistance": (0.049, 0.15),
-        "leakage": (0.125, 0.17),
+        "main_resistance": (0.049, 0.20),
+        "leakage": (0.125, 0.21),
         "rotor_resistance": (0.062, 0.20),
-        "magnetising": (2.17, 0.10),
+        "magnetising": (2.17, 0.16),
         "core": (21.5, 0.22),
         "friction": (0.050, 0.34),
         "turns_ratio": (1.20, 0.11),
-        "auxiliary_resistance": (4.2, 0.25),
+        "auxiliary_resistance": (4.2, 0.33),
         "auxiliary_leakage": (1.32, 0.23),
     },
     CAPACITOR_RUN: {

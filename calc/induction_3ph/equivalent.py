@@ -52,7 +52,7 @@ def circuit(base: Base, z: Floats) -> Circuit:
     Power balance at rated load: P_in = P_out / eta; P_gap = (P_out + P_fw + P_stray) / (1 - s);
     rotor copper s P_gap; stator copper and core share the rest. R2/s follows from the air-gap
     power by the quadratic of the series rotor branch, X_m from the reactive power left over.
-    The iterative nameplate methods reach the same circuit (facts 7.10); this one needs no iteration.
+    The iterative nameplate methods reach the same circuit; this one needs no iteration.
 
     """
     column = {name: z[:, place] for name, place in INDEX.items()}

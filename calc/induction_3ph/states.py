@@ -24,6 +24,7 @@ from calc.induction_3ph.plate import INDEX, Base
 from calc.twin import Floats
 
 ROOT3 = np.sqrt(3.0)
+_FLUX_STEPS = 3
 # Cable and transformer together: about as much resistance as reactance (judgement).
 _SOURCE_ANGLE = np.exp(1j * np.pi / 4.0)
 
@@ -158,10 +159,20 @@ def solve(
 
 
 def _magnetising(circuit: Circuit, v1: Floats, f: Floats, scale: Floats) -> Floats:
-    """Magnetising reactance at this flux: the current grows as 1 - g + g phi^6 beyond the rated flux."""
-    winding = np.where(scale < 0.9, 1.0 / np.sqrt(scale), np.where(scale > 1.1, 1.0 / np.sqrt(scale), 1.0))
-    phi = np.minimum(v1 * winding / f * (0.97 / np.maximum(circuit.flux, 0.5)), 2.0)
+    """Magnetising reactance at the flux of this voltage; the current grows with h = 1 - g + g phi^6.
+
+    The flux phi, over the rated one, is what the drop of the magnetising current in the stator leakage
+    leaves of the voltage: phi (1 + d h(phi)) = applied, with d = x1 / xm, by Newton's method.
+    """
     g = np.minimum(circuit.saturation, 0.8)
+    drop = circuit.x1 / circuit.xm
+    applied = v1 / (np.sqrt(scale) * f * np.maximum(circuit.flux, 0.5))
+    phi = applied / (1.0 + drop)
+    for _ in range(_FLUX_STEPS):
+        bent = g * np.minimum(phi, 2.0) ** 6
+        gap = phi * (1.0 + drop * (1.0 - g + bent)) - applied
+        phi = phi - gap / (1.0 + drop * (1.0 - g + 7.0 * bent))
+    phi = np.clip(phi, 0.0, 2.0)
     return np.asarray(circuit.xm / (1.0 - g + g * phi**6))
 
 

@@ -88,11 +88,6 @@ def test_in_star_the_iron_takes_less_than_a_third_of_the_no_load_current(machine
     known="another road", checks="calc.induction_3ph.states.solve",
     says="no-load current 6 to 12 times that of a sound motor; trade usage says 5 to 10 times",
 )  # fmt: skip
-@pytest.mark.xfail(
-    strict=True,
-    raises=AssertionError,
-    reason="the flux is taken from the terminal voltage, without the drop that such a current makes",
-)
 @each_machine
 @each_share
 def test_linked_in_delta_where_it_belongs_in_star_it_takes_the_no_load_current_of_the_equations(

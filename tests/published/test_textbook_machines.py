@@ -102,10 +102,6 @@ EXCITED = (
     "efficiency; what the plate leaves open is then taken for power factor"
 )
 FRICTIONLESS = "1.7 sigma: the published circuit has no friction and no core loss, so half load takes less"
-LARGE = (
-    "1.8 and 2.2 sigma: the usual efficiency stays at its value of 200 kW where large motors lose less, and "
-    "the published circuit has no friction and no core loss"
-)
 LOSSY = "2.5 and 3.0 sigma: it loses 17 % where 6 to 12 % is published for its size, and the plate is silent"
 LIVELY = (
     "2.1 and 1.7 sigma: it starts above the highest current of NEMA design B for its size (61 and 121 A), "
@@ -120,8 +116,6 @@ MISSES = {
     ("Krause 50 hp", BARE, HALF[2]): FRICTIONLESS,
     ("Krause 50 hp", WITH_LOSSES, HALF[2]): FRICTIONLESS,
     ("Krause 50 hp", FULL, HALF[2]): FRICTIONLESS,
-    ("Krause 500 hp", BARE, HALF[2]): LARGE,
-    ("Krause 2250 hp", BARE, HALF[2]): LARGE,
     ("Chapman 25 hp", BARE, HALF[0]): LOSSY,
     ("Chapman 25 hp", BARE, NO_LOAD): LOSSY,
     ("Fitzgerald 7.5 hp", BARE, LOCKED): LIVELY,

@@ -149,15 +149,7 @@ TOTAL_LOSSES = ((3, 14, 35), (45, 6, 12), (550, 4, 7), (3000, 2.3, 4.5))  # hp i
     says="1-10 hp 14-35 %, 10-200 hp 6-12 %, 200-1500 hp 4-7 %, above 1500 hp 2.3-4.5 %",
     checks="calc.typical.typical_efficiency",
 )  # fmt: skip
-@pytest.mark.parametrize(
-    ("hp", "low", "high"),
-    [
-        pytest.param(hp, low, high, marks=[] if hp < 1500 else [
-            pytest.mark.xfail(strict=True, raises=AssertionError,
-                              reason="the usual efficiency stays at its value of 200 kW: 5.7 % of losses")])
-        for hp, low, high in TOTAL_LOSSES
-    ],
-)  # fmt: skip
+@pytest.mark.parametrize(("hp", "low", "high"), TOTAL_LOSSES)
 def test_the_usual_losses_of_a_size_lie_in_the_published_range(hp, low, high):
     power_w = hp * HP_W
     usual = 100.0 * (1.0 - typical_efficiency(power_w=power_w, poles=4, frequency_hz=60.0))

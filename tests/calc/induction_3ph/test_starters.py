@@ -39,7 +39,7 @@ def start_a(starter):
 
 
 def test_a_star_delta_starter_draws_a_third_of_the_direct_starting_current():
-    """Identity of the linear circuit: star on the same volts takes a third (facts 7.4.1, computed)."""
+    """Identity of the linear circuit: star on the same volts takes a third (computed)."""
     ratio = start_a("star_delta") / start_a("direct")
     assert ratio == pytest.approx(1 / 3, rel=0.06)  # the supply sags less
 
