@@ -165,7 +165,8 @@ def typical_efficiency(*, power_w: float, poles: int, frequency_hz: float) -> fl
     """
     efficiency = class_efficiency(efficiency_class="IE2", power_w=power_w, poles=poles)
     efficiency += -0.012 - (0.02 if poles >= 8 else 0.0) + (0.005 if frequency_hz > 55.0 else 0.0)
-    return 1.0 - (1.0 - efficiency) * max(power_w / 200_000.0, 1.0) ** -0.25
+    fewer = math.pow(max(power_w / 200_000.0, 1.0), -0.25)
+    return 1.0 - (1.0 - efficiency) * fewer
 
 
 def typical_power_factor(*, power_w: float, poles: int) -> float:

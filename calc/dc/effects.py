@@ -64,19 +64,19 @@ def _ways(
 
 def _open_armature(plate: Plate) -> tuple[tuple[str, float, dict[str, float]], ...]:
     ways: tuple[tuple[str, float, dict[str, float]], ...] = (
-        ("brushes", 0.8, {"armature_open": 1.0, "armature_reads_open": 1.0}),
-        ("interpole", 0.1, {"armature_open": 1.0, "armature_reads_open": 1.0, "interpole_open": 1.0}),
+        ("at the brushes", 0.8, {"armature_open": 1.0, "armature_reads_open": 1.0}),
+        ("in the interpoles", 0.1, {"armature_open": 1.0, "armature_reads_open": 1.0, "interpole_open": 1.0}),
     )
     if plate.has_series_field:
-        ways += (("series_field", 0.1, {"armature_open": 1.0, "series_open": 1.0}),)
+        ways += (("in the series field", 0.1, {"armature_open": 1.0, "series_open": 1.0}),)
     return ways
 
 
-_AT_LIMIT: Final = ("at_limit", 0.1, {"at_limit": 1.0})
+_AT_LIMIT: Final = ("drive at its current limit", 0.1, {"at_limit": 1.0})
 _EFFECTS: Final[Mapping[str, Effect]] = {
     "none": Effect(None, 0.0, 0.0, _one()),
     "low_voltage": Effect(
-        "volts_below", 0.08, 0.35, _ways(("", 0.95, {}), ("stalled", 0.05, {"stalled": 1.0}))
+        "volts_below", 0.08, 0.35, _ways(("", 0.95, {}), ("standing", 0.05, {"stalled": 1.0}))
     ),
     "high_voltage": Effect("volts_above", 0.08, 0.25, _one()),
     "open_armature": Effect(None, 0.0, 0.0, _open_armature),
@@ -84,10 +84,16 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
         None,
         0.0,
         0.0,
-        _ways(("circuit", 0.8, {"field_open": 1.0}), ("no_supply", 0.2, {"field_unfed": 1.0})),
+        _ways(
+            ("in the field circuit", 0.8, {"field_open": 1.0}),
+            ("without field supply", 0.2, {"field_unfed": 1.0}),
+        ),
     ),
     "weak_field": Effect(
-        "field_shorted", 0.05, 0.5, _ways(("one_pole", 0.5, {}), ("two_poles", 0.5, {"short_poles": 0.5}))
+        "field_shorted",
+        0.05,
+        0.5,
+        _ways(("in one pole", 0.5, {}), ("in two poles", 0.5, {"short_poles": 0.5})),
     ),
     "weak_magnets": Effect("magnets_lost", 0.1, 0.5, _ways(("", 0.9, {}), _AT_LIMIT)),
     "shorted_coil": Effect("coil_shorted", 0.002, 0.08, _one()),
@@ -95,12 +101,18 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
         None,
         0.0,
         0.0,
-        _ways(("two_paths", 0.65, {"coil_open": 0.95}), ("four_paths", 0.35, {"coil_open": 0.33})),
+        _ways(
+            ("winding of two paths", 0.65, {"coil_open": 0.95}),
+            ("winding of four paths", 0.35, {"coil_open": 0.33}),
+        ),
     ),
     "brush_resistance": Effect("brush_ohm", 0.02, 0.3, _one()),
     "dirty_commutator": Effect("brush_ohm", 0.004, 0.06, _one(unevenness=7.0)),
     "off_neutral": Effect(
-        "off_neutral", 0.02, 0.2, _ways(("with", 0.5, {}), ("against", 0.5, {"shift_sense": -1.0}))
+        "off_neutral",
+        0.02,
+        0.2,
+        _ways(("shifted with rotation", 0.5, {}), ("shifted against rotation", 0.5, {"shift_sense": -1.0})),
     ),
     "reversed_series": Effect(
         None,
@@ -108,18 +120,21 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
         0.0,
         _ways(
             ("", 0.7, {"series_sense": -1.0}),
-            ("at_limit", 0.15, {"series_sense": -1.0, "at_limit": 1.0}),
-            ("stalled", 0.15, {"series_sense": -1.0, "stalled": 1.0}),
+            ("drive at its current limit", 0.15, {"series_sense": -1.0, "at_limit": 1.0}),
+            ("standing", 0.15, {"series_sense": -1.0, "stalled": 1.0}),
         ),
     ),
     "missing_pulses": Effect(
         "volts_lost",
         0.1,
         0.5,
-        _ways(("", 0.85, {"pulses_lost": 1.0}), ("made_up", 0.15, {"pulses_lost": 1.0, "volts_lost": 0.0})),
+        _ways(
+            ("", 0.85, {"pulses_lost": 1.0}),
+            ("made up for by the controller", 0.15, {"pulses_lost": 1.0, "volts_lost": 0.0}),
+        ),
     ),
     "excess_load": Effect(
-        "torque", 1.15, 2.0, _ways(("", 0.75, {}), _AT_LIMIT, ("stalled", 0.15, {"stalled": 1.0}))
+        "torque", 1.15, 2.0, _ways(("", 0.75, {}), _AT_LIMIT, ("standing", 0.15, {"stalled": 1.0}))
     ),
     "light_load": Effect("torque", 0.02, 0.2, _one()),
     "stall": Effect(
@@ -127,8 +142,8 @@ _EFFECTS: Final[Mapping[str, Effect]] = {
         0.0,
         0.0,
         _ways(
-            ("load", 0.4, {"stalled": 1.0}),
-            ("machine", 0.4, {"stalled": 1.0, "seized": 1.0}),
+            ("in the load", 0.4, {"stalled": 1.0}),
+            ("in the motor", 0.4, {"stalled": 1.0, "seized": 1.0}),
             ("rubbing", 0.2, {}),
         ),
     ),

@@ -139,7 +139,8 @@ def enumerate_modes(
         suited = [variant for variant in _variants(effect, severity) if variant.suits(design)]
         total = sum(variant.weight for variant in suited)
         for variant in suited:
-            name = variant.name if len(picked) == 1 else f"{variant.name} ({design})".strip()
+            words = design.replace("_", " ")
+            name = variant.name if len(picked) == 1 else f"{variant.name} ({words})".strip()
             modes.append(
                 Mode(
                     effect=effect,

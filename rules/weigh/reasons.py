@@ -108,7 +108,7 @@ def _rest(posterior: Posterior, own: Hypothesis, other: Hypothesis) -> list[Reas
     mode = posterior.modes[own.place]
     ways = _all_ways(posterior, own.fault) - _all_ways(posterior, other.fault)
     start = own.log_weight - other.log_weight
-    where = f"; it would be {mode.variant}" if mode.variant else ""
+    where = f"; most likely: {mode.variant}" if mode.variant else ""
     return [
         Reason(about="start", text=f"how usual it is before any reading{where}", weight=start + ways),
         Reason(

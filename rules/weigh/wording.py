@@ -54,7 +54,11 @@ def amount_text(measure: str, values: Sequence[float], cap: float = math.inf) ->
         figure(in_usual_unit(measure, value))
         for value in values
     ]  # fmt: skip
-    return f"{' '.join(shown)} {entry.usual_unit}".strip()
+    if "open" in shown:
+        unit = "" if set(shown) == {"open"} else f"({entry.usual_unit})"
+    else:
+        unit = entry.usual_unit
+    return f"{' '.join(shown)} {unit}".strip()
 
 
 def title(key: str) -> str:

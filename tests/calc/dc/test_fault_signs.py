@@ -220,7 +220,7 @@ def test_rubbing_heats_the_bearing_less_than_a_bearing_that_fails():
 
 def test_a_drive_at_its_limit_holds_the_current_and_lets_the_volts_give_way():
     twin = fit(machine("dc_permanent_magnet", source="rectifier_1ph"))
-    place = [m.variant for m in twin.modes("weak_magnets")].index("at_limit")
+    place = [m.variant for m in twin.modes("weak_magnets")].index("drive at its current limit")
     given = {"place": place, "severity": (0.4, 0.4001)}
     assert read(twin, "weak_magnets", "armature_voltage", "loaded", **given) < 0.98
     assert read(twin, "weak_magnets", "armature_current", "loaded", **given) > 1.3

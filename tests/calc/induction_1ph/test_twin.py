@@ -105,7 +105,7 @@ def test_weights_of_an_effect_are_the_chance_that_the_motor_has_the_part():
 
 def test_a_part_that_the_motor_has_not_is_next_to_impossible():
     twin = fit(machine(RUN))
-    likely = [m for m in twin.modes("none") if m.variant == "(capacitor_run)"]
+    likely = [m for m in twin.modes("none") if m.variant == "(capacitor run)"]
     assert likely
     split = fit(machine({**SPLIT, "power": 370, "current": 5.0}))
     assert sum(mode.weight for mode in split.modes("run_capacitor_open")) < 0.05
