@@ -6,10 +6,11 @@ from pathlib import Path
 import pytest
 from textual.events import Key, Paste
 
-from tests.tui.helpers import SMALL, keys, known_machine, new_app, until
+from tests.tui.helpers import SMALL, keys, known_machine, new_app, settled, until
 from tui.screens.ask import Ask
 from tui.screens.casebook import CasebookPage
 from tui.screens.page import Page
+from tui.screens.reasons import Reasons
 from tui.screens.worksheet import Worksheet
 from tui.widgets.typed import TypedLine
 
@@ -101,3 +102,24 @@ async def test_a_page_whose_asker_is_gone_can_be_left(tmp_path: Path):
         asker.cancel()
         await keys(pilot, "y")
         await until(pilot, "No case yet")
+
+
+async def test_what_a_thread_finds_after_the_page_is_gone_goes_nowhere(tmp_path: Path):
+    app = known_machine(new_app(tmp_path))
+    async with app.run_test(size=SMALL) as pilot:
+        await until(pilot, "P-104")
+        await keys(pilot, "enter")
+        await until(pilot, "faults")
+        await settled(pilot)
+        await keys(pilot, "f5")
+        await until(pilot, "how usual it is")
+        page = app.screen
+        assert isinstance(page, Reasons)
+        turns = page.visit.turns()
+        await page.query("#keys").remove()  # as it is while a page is taken down
+        page.turns = None
+        page.found(page.diagnosis, turns)
+        page.say("too late")
+        assert page.turns is None
+        await keys(pilot, "f9")
+        await until(pilot, "faults")

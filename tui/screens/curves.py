@@ -49,7 +49,8 @@ class Curves(TextPage):
     def drawn(self, pictures: list[Picture]) -> None:
         """Show the first picture."""
         self.pictures, self.is_drawing = pictures, False
-        self.show()
+        if self.stands:
+            self.show()
 
     def lines(self) -> list[Content]:
         """Return the picture that is chosen."""

@@ -70,7 +70,8 @@ class MachinePage(TextPage):
     def expected_now(self, expected: tuple[Band, ...]) -> None:
         """Show what to expect."""
         self.expected = expected
-        self.show()
+        if self.stands:
+            self.show()
 
     def lines(self) -> list[Content]:
         """Return the whole page."""

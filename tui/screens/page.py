@@ -59,6 +59,11 @@ class Page(Steady, Screen[Answer]):
         return self.app
 
     @property
+    def stands(self) -> bool:
+        """Whether the page is there with all its parts: what a thread found too late goes nowhere."""
+        return self.is_attached and not self.is_gone and bool(self.query("#keys"))
+
+    @property
     def room(self) -> int:
         """Cells in a line."""
         return int(self.app.size.width)
@@ -86,7 +91,8 @@ class Page(Steady, Screen[Answer]):
 
     def say(self, text: str) -> None:
         """Say something on the key line; pages with a place for it say it there."""
-        self.query_one("#keys", Static).update(row("note", (text, WATCH)))
+        if self.stands:
+            self.query_one("#keys", Static).update(row("note", (text, WATCH)))
 
     def finish(self, answer: Answer) -> bool:
         """Store the answer, where the page is to do that, and go; else say why not, and stay."""

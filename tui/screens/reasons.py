@@ -67,7 +67,7 @@ class Reasons(TextPage):
 
     def found(self, now: Diagnosis, turns: tuple[Turn, ...] | None) -> None:
         """Show an answer, and what would turn it."""
-        if self.is_attached and (now, turns) != (self.diagnosis, self.turns):
+        if self.stands and (now, turns) != (self.diagnosis, self.turns):
             self.diagnosis, self.turns = now, turns
             self.at = min(self.at, max(len(now.faults) - 1, 0))
             self.show()

@@ -50,7 +50,7 @@ class SheetPage(TextPage):
     def made_now(self, made: Page, text: list[str]) -> None:
         """Show the sheet."""
         self.made, self.text = made, text
-        if self.is_attached:
+        if self.stands:
             self.show()
 
     def lines(self) -> list[Content]:

@@ -239,7 +239,7 @@ class Worksheet(WorksheetTyping):
     def weighed_now(self, weighed: Weighed | None, trouble: Exception | None) -> None:
         """Show a new answer."""
         self.is_weighing = False
-        if not self.is_attached:
+        if not self.stands:
             return
         if self.again:
             self.again = False
