@@ -11,6 +11,7 @@ from tui.answer_text import gate_lines, hazard_texts, reason_lines
 from tui.columns import paragraph
 from tui.context import values_wanted
 from tui.output import say
+from tui.picked import item_of
 from tui.shift import before_isolated
 from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell
 from tui.words import fault_name, key_words, measure_name, plain
@@ -132,23 +133,12 @@ def read(visit: Visit, rest: str) -> bool:
     allowed = {one: f"{plain(one)}: {STATES[one]}" for one in STATES if rule is None or one in rule.states}
     known = [state for state in states if state in allowed]
     state = known[0] if known else ask_choice("In which state", allowed)
-    hazards = _hazards(visit, measure, state)
+    hazards = item_of(f"{measure}@{state}", visit.sheet, visit.knowledge).hazards
     if rule is not None:
         tell(rule.states[state].leads)
     wanted = values_wanted(measure, visit.kind, visit.context_of(measure))
     values = " ".join(words[2:]) or ask(f"{measure_name(measure)}, {plain(state)} ({wanted})")
     return bool(values) and take(visit, measure, state, values, hazards)
-
-
-def _hazards(visit: Visit, measure: str, state: str) -> tuple[str, ...]:
-    """Return the hazards of a reading that was picked by hand, with those of this very machine."""
-    from rules.answer import NextItem
-    from rules.cautions import with_hazards
-
-    rule = visit.knowledge.readings.get(measure)
-    own = rule.states[state].hazards if rule is not None else ()
-    item = NextItem(measure=measure, state=state, hazards=own)
-    return with_hazards(item, visit.sheet, visit.knowledge).hazards
 
 
 def seen(visit: Visit, rest: str) -> bool:
@@ -272,7 +262,8 @@ def _again(visit: Visit, key: str) -> bodies.ReadingTaken | None:
             for problem in error.problems:
                 tell(f"{problem.given}; {problem.allowed}")
             continue
-        if _first(visit, measure, state, _hazards(visit, measure, state)) and _sure(understood):
+        hazards = item_of(key, visit.sheet, visit.knowledge).hazards
+        if _first(visit, measure, state, hazards) and _sure(understood):
             return visit.taken(understood)
     return None
 

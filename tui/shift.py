@@ -13,11 +13,11 @@ import msgspec
 
 from calc.quantities import ENERGISED_STATES
 from casebook import bodies
-from rules.answer import NextItem
 from rules.gate import DECISIVE, SAYS_SHUT, GateState, gate
+from tui.picked import item_of
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping
+    from collections.abc import Mapping
 
     from calc.sheet import CaseSheet
     from casebook.fold import Case, Logged
@@ -32,6 +32,7 @@ AHEAD: Final = timedelta(minutes=15)
 """By how much two clocks may differ; what is dated further ahead was written before a clock was set back."""
 
 WAS_CLEARED: Final = "was cleared"
+AGED: Final = "what cleared this line of the gate is from an earlier shift, or from before a repair"
 
 
 def age_words(age: timedelta) -> str:
@@ -162,27 +163,9 @@ def for_this_shift(now: Diagnosis, case: Case, knowledge: Knowledge) -> Diagnosi
         if one.line.because.startswith(WAS_CLEARED) and one.states & ENERGISED_STATES
     ]
     wants = [] if state.energise.because else [ask for one in lapsed for ask in one.wants]
-    first = tuple(_item(ask, knowledge, now.next) for ask in dict.fromkeys(wants))
+    first = tuple(item_of(ask, case.sheet, knowledge, now.next, why=AGED) for ask in dict.fromkeys(wants))
     asked = {item.key for item in first}
     left = (
         item for item in now.next if item.key not in asked and not state.forbids(item.state or "isolated")
     )
     return msgspec.structs.replace(now, energise=state.energise, next=(*first, *left))
-
-
-def _item(key: str, knowledge: Knowledge, proposed: Iterable[NextItem]) -> NextItem:
-    """Return what a line of the gate asks for as a proposal."""
-    for item in proposed:
-        if item.key == key:
-            return item
-    measure, at, state = key.partition("@")
-    why = "what cleared this line of the gate is from an earlier shift, or from before a repair"
-    rule = knowledge.readings.get(measure)
-    how = rule.states.get(state) if rule is not None else None
-    if not at:
-        return NextItem(observation=key, why=why)
-    if how is None:
-        return NextItem(measure=measure, state=state, why=why)
-    return NextItem(
-        measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards, why=why
-    )

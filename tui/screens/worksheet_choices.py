@@ -6,7 +6,6 @@ from typing import TYPE_CHECKING
 
 from calc.quantities import MEASURES
 from casebook.bodies import Closed
-from rules.answer import NextItem
 from tui.screens.ask import Ask
 from tui.screens.closing import CONFIRMED
 from tui.screens.pick import Choice
@@ -15,7 +14,6 @@ from tui.words import key_words, percent, plain
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from rules.knowledge import Knowledge
     from tui.compose import Visit
 
 
@@ -95,18 +93,3 @@ def only_one_meant(choices: Sequence[Choice], typed: str) -> str | None:
     proposed = [choice for choice in fitting if choice.word]
     named = [choice for choice in proposed if choice.text.lower().startswith(typed.lower().strip())]
     return next((found[0].key for found in (fitting, named, proposed) if len(found) == 1), None)
-
-
-def item_of(key: str, proposals: Sequence[NextItem], knowledge: Knowledge) -> NextItem:
-    """Return what was picked by hand: the proposal where there is one, else what the rules say of it."""
-    for item in proposals:
-        if item.key == key:
-            return item
-    measure, at, state = key.partition("@")
-    if not at:
-        return NextItem(observation=key)
-    rule = knowledge.readings.get(measure)
-    how = rule.states.get(state) if rule else None
-    if how is None:
-        return NextItem(measure=measure, state=state)
-    return NextItem(measure=measure, state=state, minutes=how.minutes, leads=how.leads, hazards=how.hazards)

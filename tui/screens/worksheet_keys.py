@@ -8,6 +8,7 @@ from textual import work
 
 from rules.answer import NextItem
 from tui.look import FAINT, WATCH
+from tui.picked import item_of
 from tui.screens.closing import ClosingPage
 from tui.screens.gate import Gate, Hazards, IsolationPage, hazards_text, isolation_text
 from tui.screens.note import Note
@@ -18,7 +19,6 @@ from tui.screens.tick import Tick
 from tui.screens.worksheet_choices import (
     closing_of,
     found_choices,
-    item_of,
     only_one_meant,
     other_choices,
     shut_question,
@@ -104,10 +104,14 @@ class WorksheetKeys(Page[None]):
             key = await self.app.push_screen_wait(Pick("reading", "Which reading?", choices, typed=typed))
         if key is None:
             return False
-        self.chosen = item_of(key, self.proposals, self.visit.knowledge)
+        self.chosen = self.picked(key)
         self.say(f"picked: {key_words(key, self.visit.knowledge)}; F3 shows the others" if meant else "", "")
         self.show_blocks()
         return True
+
+    def picked(self, key: str) -> NextItem:
+        """Return what a key names, with its hazards on this machine."""
+        return item_of(key, self.visit.sheet, self.visit.knowledge, self.proposals)
 
     def action_cursor_up(self) -> None:
         """Show older readings."""
@@ -151,7 +155,7 @@ class WorksheetKeys(Page[None]):
 
     async def comes_first_for(self, key: str) -> bool:
         """Ask for what must come before the reading with a key; return whether it is there."""
-        self.chosen = item_of(key, self.proposals, self.visit.knowledge)
+        self.chosen = self.picked(key)
         return await self.come_first(self.chosen)
 
     async def isolate(self) -> bool:
@@ -261,7 +265,7 @@ class WorksheetKeys(Page[None]):
             self.visit.correct(entry)
             self.stored(f"taken back: {stored[entry].text}")
         elif way == "anew":
-            self.chosen, self.correcting = item_of(keys[entry], self.proposals, self.visit.knowledge), entry
+            self.chosen, self.correcting = self.picked(keys[entry]), entry
             self.show_blocks()
             self.say("Type the right values; Enter stores the correction.", "")
 
