@@ -23,7 +23,7 @@ from tui.drafts import Drafts
 from tui.output import say
 from tui.plain_intake import ask_case
 from tui.plain_steps import STEPS, answer_proposal, proposals
-from tui.talk import Back, Left, ask, tell
+from tui.talk import Back, Left, ask, tell, tell_problems
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -73,8 +73,7 @@ def _visit(book: Casebook, drafts: Drafts, knowledge: Knowledge, *, use_learned:
         try:
             changed = _one(visit, ask(_asked(visit)))
         except InputError as error:
-            for problem in error.problems:
-                tell(f"{problem.given}; {problem.allowed}")
+            tell_problems(error)
         except PlatesideError as error:
             tell(str(error))
         except Back:

@@ -13,7 +13,8 @@ from tui.context import values_wanted
 from tui.output import say
 from tui.picked import item_of
 from tui.shift import before_isolated
-from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell
+from tui.talk import NO, YES, ask, ask_choice, ask_yes, match, tell, tell_problems
+from tui.typed import minutes_of
 from tui.words import fault_name, key_words, measure_name, plain
 
 if TYPE_CHECKING:
@@ -235,19 +236,28 @@ def close(visit: Visit, _: str) -> bool:
     retest = whole.for_kind(visit.kind).retest if whole is not None else ()
     asked = retest if how != "believed" and found != "healthy" else ()
     again = [taken for key in asked if "@" in key and (taken := _again(visit, key)) is not None]
-    minutes = ask("Minutes")
+    minutes = _minutes()
     visit.close(
         bodies.Closed(
             found=found,
             confirmed="teardown" if how == "teardown" else "repair" if how == "repair" else "believed",
             done=ask("What was done"),
             parts=tuple(part.strip() for part in ask("Parts, with commas").split(",") if part.strip()),
-            minutes=float(minutes) if minutes.isdecimal() else None,
+            minutes=minutes,
             retest=retest,
             retested=tuple(again),
         )
     )
     return True
+
+
+def _minutes() -> float | None:
+    """Ask how long it took, until that is a number or a blank line."""
+    while True:
+        try:
+            return minutes_of(ask("Minutes"))
+        except InputError as error:
+            tell_problems(error)
 
 
 def _again(visit: Visit, key: str) -> bodies.ReadingTaken | None:
@@ -259,8 +269,7 @@ def _again(visit: Visit, key: str) -> bodies.ReadingTaken | None:
         try:
             understood = visit.understand(measure, state, text)
         except InputError as error:
-            for problem in error.problems:
-                tell(f"{problem.given}; {problem.allowed}")
+            tell_problems(error)
             continue
         hazards = item_of(key, visit.sheet, visit.knowledge).hazards
         if _first(visit, measure, state, hazards) and _sure(understood):

@@ -13,6 +13,8 @@ from tui.output import say
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
 
+    from calc.errors import InputError
+
 LONGEST: Final = 4000
 """Characters that one line may have: a long remark."""
 YES, NO = ("y", "yes"), ("n", "no")
@@ -109,6 +111,12 @@ def match(text: str, choices: Mapping[str, str] | Iterable[str]) -> list[str]:
     names = {one: choices[one] if isinstance(choices, dict) else one for one in ids}
     begins = [one for one in ids if one.startswith(wanted)]
     return begins or [one for one in ids if text.lower() in names[one].lower()]
+
+
+def tell_problems(error: InputError) -> None:
+    """Say what is wrong with something typed, and what is allowed."""
+    for problem in error.problems:
+        tell(f"{problem.given}; {problem.allowed}")
 
 
 def tell(text: str) -> None:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, Final
 
 import msgspec
 
@@ -25,6 +25,8 @@ if TYPE_CHECKING:
     from calc.sheet import Machine, Reading, Value
     from rules.answer import Band
     from rules.knowledge import ReadingRule
+
+MOST_MINUTES: Final = 100_000
 
 
 @dataclass(frozen=True)
@@ -92,6 +94,19 @@ def _far_off(reading: Reading, value: Value, band: Band | None) -> str:
     if is_part and 0.0 < number < band.low / times:
         return f"{value.text} is less than 1/{times:g} of the {band_text(band)} expected"
     return ""
+
+
+def minutes_of(text: str) -> float | None:
+    """Return minutes as typed, None for a blank line. Raises InputError where it is no such number."""
+    if not text.strip():
+        return None
+    try:
+        minutes = float(text.replace(",", "."))
+    except ValueError:
+        minutes = math.nan
+    if not 0.0 <= minutes < MOST_MINUTES:
+        raise InputError([Problem("", "minutes", text, "a number of minutes, zero or more")])
+    return minutes
 
 
 def noted(reading: Reading) -> list[str]:

@@ -207,6 +207,14 @@ def test_what_is_read_after_the_repair_is_asked_for_at_the_closing(talk, run, ki
     assert "re-test: run capacitor, isolated: 20.1 uF" in " ".join(run("report", number).out.split())
 
 
+@pytest.mark.parametrize(("typed", "kept"), [(("7,5",), 7.5), (("an hour", "-5", "60"), 60.0), (("",), None)])
+def test_the_minutes_of_a_closing_are_kept_as_typed_or_asked_for_again(
+    talk, known, kit, casebook, typed, kept
+):
+    talk(*OPEN_CASE, "close", "healthy", "believed", *typed, "", "")
+    assert newest(casebook).closed.what.minutes == kept
+
+
 def test_back_leaves_any_question_without_an_answer(talk, known, kit, casebook):
     done = talk(
         *OPEN_CASE,

@@ -12,6 +12,7 @@ from tui.look import STRONG
 from tui.screens.form import FormPage, Heard, Line, hear_choice, one_of
 from tui.screens.page import refusal
 from tui.screens.sheet import SheetPage
+from tui.typed import minutes_of
 from tui.widgets.ruled import rows
 from tui.words import key_words, plain
 
@@ -161,14 +162,8 @@ class ClosingPage(FormPage[dict[str, str]]):
 
 def hear_minutes(text: str) -> Heard:
     """Understand a number of minutes."""
-    if not text:
-        return "", True
     try:
-        minutes = float(text.replace(",", "."))
-    except ValueError:
-        return "a number of minutes", False
-    return (
-        (f"{minutes:g} minutes", True)
-        if 0 <= minutes < 100000
-        else ("a number of minutes, zero or more", False)
-    )
+        minutes = minutes_of(text)
+    except PlatesideError as error:
+        return refusal(error), False
+    return ("" if minutes is None else f"{minutes:g} minutes"), True

@@ -9,6 +9,7 @@ from casebook.bodies import Closed
 from tui.screens.ask import Ask
 from tui.screens.closing import CONFIRMED
 from tui.screens.pick import Choice
+from tui.typed import minutes_of
 from tui.words import key_words, percent, plain
 
 if TYPE_CHECKING:
@@ -29,7 +30,6 @@ def closing_of(answer: dict[str, str], retest: tuple[str, ...], visit: Visit) ->
     """Return what the closing page says as what is stored."""
     typed = [(key.split("@"), answer[key]) for key in retest if answer.get(key)]
     again = [visit.understand(measure, state, text) for (measure, state), text in typed]
-    minutes = answer["minutes"].replace(",", ".")
     confirmed = answer["confirmed"]
     assert confirmed in CONFIRMED
     return Closed(
@@ -37,7 +37,7 @@ def closing_of(answer: dict[str, str], retest: tuple[str, ...], visit: Visit) ->
         confirmed=confirmed,  # type: ignore[arg-type]
         done=answer["done"],
         parts=tuple(part.strip() for part in answer["parts"].split(",") if part.strip()),
-        minutes=float(minutes) if minutes else None,
+        minutes=minutes_of(answer["minutes"]),
         retest=retest,
         retested=tuple(visit.taken(understood) for understood in again),
         note=answer["note"],
