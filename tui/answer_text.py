@@ -6,7 +6,17 @@ from typing import TYPE_CHECKING
 
 from calc.quantities import STATES
 from tui.columns import columns, paragraph
-from tui.words import fault_name, heading, key_words, measure_name, number, percent, plain, question
+from tui.words import (
+    fault_name,
+    heading,
+    key_words,
+    measure_name,
+    number,
+    percent,
+    plain,
+    question,
+    stop_words,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Sequence
@@ -61,10 +71,8 @@ def hazard_texts(hazards: Iterable[str], knowledge: Knowledge) -> list[str]:
 
 def stop_lines(sheet: CaseSheet, knowledge: Knowledge) -> list[str]:
     """Return what comes before everything else where the complaint means stop."""
-    complaint = knowledge.complaints.get(sheet.complaint)
-    if complaint is None or not complaint.stop:
-        return []
-    return paragraph(complaint.first or "Isolate it, lock it out, prove it dead.", first="STOP  ")
+    first = stop_words(sheet.complaint, knowledge)
+    return paragraph(first, first="STOP  ") if first else []
 
 
 def gate_lines(energise: Energise) -> list[str]:

@@ -22,6 +22,7 @@ from tui.words import (
     question,
     reading_name,
     reading_text,
+    stop_words,
 )
 
 if TYPE_CHECKING:
@@ -64,14 +65,12 @@ def sheet_page(
         Block("Cautions", sentences=diagnosis.cautions),
         Block("Remarks", sentences=tuple(_remarks(case, diagnosis, knowledge))),
     ]
-    stop = knowledge.complaints.get(case.complaint)
+    stop = stop_words(case.complaint, knowledge)
     return Page(
         title=f"{case.number}  {case.tag or '(no tag)'}",
         facts=tuple(_facts(case, knowledge)),
-        blocks=tuple(
-            block for block in blocks if block.rows or block.sentences or block.charts or block.pictures
-        ),
-        warning=f"STOP: {stop.first}" if stop is not None and stop.stop else "",
+        blocks=tuple(filter(None, blocks)),
+        warning=f"STOP: {stop}" if stop else "",
     )
 
 

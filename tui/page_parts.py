@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
@@ -59,4 +59,4 @@ class Page:
     facts: tuple[tuple[str, str], ...]
     blocks: tuple[Block, ...]
     deferral: str = DEFERRAL
-    warning: str = field(default="")
+    warning: str = ""

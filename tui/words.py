@@ -23,6 +23,7 @@ _CONTEXT = (
     "position",
     "direction",
 )
+STOP_FIRST = "Isolate it, lock it out, prove it dead."
 _DIGIT = re.compile(r"[0-9]")
 _NUMBER_AND_UNIT = re.compile(r"([<>=≤≥]*\s*[-+0-9.,]+(?:[eE][-+]?[0-9]+)?)\s*([^\s0-9].*)")
 
@@ -46,6 +47,12 @@ def complaint_name(complaint: str, knowledge: Knowledge) -> str:
     """Return a complaint in words."""
     known = knowledge.complaints.get(complaint)
     return known.name if known else plain(complaint)
+
+
+def stop_words(complaint: str, knowledge: Knowledge) -> str:
+    """Return what comes before everything else where a complaint means stop; nothing where it does not."""
+    known = knowledge.complaints.get(complaint)
+    return (known.first or STOP_FIRST) if known is not None and known.stop else ""
 
 
 def question(observation: str, knowledge: Knowledge) -> str:

@@ -17,7 +17,17 @@ from tui.look import FAINT, STOP, STRONG, VERDICT_STYLE, VERDICT_WORD, WATCH
 from tui.widgets.ruled import INDENT, pad, row, rows, tagged
 from tui.widgets.scale import WIDTH as SCALE_WIDTH
 from tui.widgets.scale import scale, side
-from tui.words import complaint_name, fault_name, key_words, percent, plain, question, reading_text
+from tui.words import (
+    complaint_name,
+    fault_name,
+    key_words,
+    number,
+    percent,
+    plain,
+    question,
+    reading_text,
+    stop_words,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -63,12 +73,8 @@ def machine_lines(sheet: CaseSheet, number: str, knowledge: Knowledge, room: int
 
 def stop_lines(sheet: CaseSheet, knowledge: Knowledge, room: int) -> list[Content]:
     """Return what comes before everything else where the complaint means stop."""
-    complaint = knowledge.complaints.get(sheet.complaint)
-    if complaint is None or not complaint.stop:
-        return []
-    return rows(
-        "STOP", complaint.first or "Isolate it, lock it out, prove it dead.", room, style=STOP, most=2
-    )
+    first = stop_words(sheet.complaint, knowledge)
+    return rows("STOP", first, room, style=STOP, most=2) if first else []
 
 
 def gate_lines(diagnosis: Diagnosis, room: int) -> list[Content]:
@@ -243,9 +249,7 @@ def in_unit(reading: Reading, unit: str) -> tuple[float, ...]:
 
 def band_number(value: float) -> str:
     """Return a number of a band with three digits."""
-    if not math.isfinite(value):
-        return "open"
-    return f"{value:.0f}" if abs(value) >= 1000 else f"{value:#.3g}".rstrip(".")
+    return number(value) if math.isfinite(value) else "open"
 
 
 def next_lines(
