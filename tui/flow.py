@@ -8,7 +8,7 @@ from calc.errors import PlatesideError
 from calc.quantities import KINDS
 from tui.begun import DRAFT, Begun
 from tui.people import USUAL_KIT
-from tui.plate_lines import typed_of
+from tui.plate_lines import raw_of, typed_of
 from tui.screens.ask import Ask
 from tui.screens.nameplate import NameplatePage
 from tui.screens.page import refusal
@@ -19,7 +19,8 @@ from tui.widgets.ruled import tagged
 from tui.words import kind_name
 
 if TYPE_CHECKING:
-    from calc.sheet import Machine
+    from collections.abc import Callable
+
     from tui.application import PlatesideApp
     from tui.compose import Visit
     from tui.plate_lines import Raw
@@ -93,7 +94,7 @@ async def tell_machine(app: PlatesideApp, begun: Begun) -> bool:
 async def tell_complaint(app: PlatesideApp, begun: Begun) -> bool:
     """Ask what is wrong; return whether it was told."""
     known = app.desk.machine(begun.tag) if begun.tag and not begun.lines else None
-    begun.machine = sheet_of(known) if known else None
+    begun.machine = raw_of(known) if known else None
     complaint = await pick_complaint(app, begun, known.kind if known else "")
     begun.complaint = complaint or begun.complaint
     return complaint is not None
@@ -187,27 +188,16 @@ async def pick_complaint(app: PlatesideApp, begun: Begun, kind: str) -> str | No
     return await app.push_screen_wait(page)
 
 
-def check_of(complaint: str) -> Any:  # noqa: ANN401  (a function from a raw machine to remarks)
+def check_of(complaint: str) -> Callable[[Raw], list[str]]:
     """Return what finds contradictions in a machine as typed."""
-    from calc import nameplate
+    from calc.nameplate import check_plate
     from calc.sheet_io import sheet_from_plain
 
     def check(machine: Raw) -> list[str]:
-        if not hasattr(nameplate, "check_plate"):
-            return []
         sheet = sheet_from_plain({"format": 1, "machine": machine, "complaint": complaint or "routine_check"})
-        return [str(remark) for remark in nameplate.check_plate(sheet.machine)]
+        return [str(remark) for remark in check_plate(sheet.machine)]
 
     return check
-
-
-def sheet_of(machine: Machine) -> Raw:
-    """Return a machine as a sheet holds it."""
-    from calc.sheet import CaseSheet
-    from calc.sheet_io import sheet_to_plain
-
-    plain_sheet = sheet_to_plain(CaseSheet(machine=machine, complaint="routine_check"))
-    return dict(plain_sheet["machine"])
 
 
 async def edit_plate(app: PlatesideApp, visit: Visit) -> bool:
@@ -216,7 +206,7 @@ async def edit_plate(app: PlatesideApp, visit: Visit) -> bool:
 
     machine = visit.sheet.machine
     page = NameplatePage(
-        machine.kind, machine.tag or "", check_of(visit.sheet.complaint), typed_of(sheet_of(machine))
+        machine.kind, machine.tag or "", check_of(visit.sheet.complaint), typed_of(raw_of(machine))
     )
 
     def store(raw: Raw) -> None:

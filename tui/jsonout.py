@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any, TypeAlias
 import msgspec
 
 if TYPE_CHECKING:
-    from calc.errors import InputError
+    from calc.errors import Problem
     from rules.answer import Band, Diagnosis, FaultOdds, NextItem
 
 Json: TypeAlias = "dict[str, Json] | list[Json] | str | float | bool | None"
@@ -38,11 +38,11 @@ def as_json(diagnosis: Diagnosis) -> dict[str, Any]:
 def error_json(sheet: str, error: Exception) -> dict[str, Any]:
     """Return the line of a sheet that could not be answered."""
     answer: dict[str, Any] = {"sheet": sheet, "error": str(error) or type(error).__name__}
-    problems: list[Any] = getattr(error, "problems", [])
-    return {**answer, "problems": [vars_of(problem) for problem in problems]} if problems else answer
+    problems: list[Problem] = getattr(error, "problems", [])
+    return {**answer, "problems": [_problem(problem) for problem in problems]} if problems else answer
 
 
-def vars_of(problem: InputError | object) -> dict[str, Any]:
+def _problem(problem: Problem) -> Json:
     """Return the fields of one problem."""
     return {name: getattr(problem, name) for name in ("file", "line", "where", "given", "allowed")}
 

@@ -108,7 +108,7 @@ COMMANDS = (
     Command("log", "put case sheets into the casebook; prints the case numbers", "log", _log),
     Command("cases", "list cases, or search them", "cases", _cases),
     Command("report", "the printed sheet of one case", "report", _report),
-    Command("merge", "take in another casebook, or exported entries", "merge", _merge),
+    Command("merge", "take in another casebook, exported entries, or case sheets", "merge", _merge),
     Command("export", "cases as YAML sheets, JSON lines or CSV", "export", _export),
     Command("learned", "what confirmed cases do to the odds, and how well the odds did", "learned", _learned),
     Command("copy", "a whole copy of the casebook, taken while others write", "copy", _copy),

@@ -16,12 +16,11 @@ if TYPE_CHECKING:
 
 def casebook_path(arguments: Namespace) -> Path:
     """Return the casebook: from ``--casebook``, $PLATESIDE_CASEBOOK, or in the user's data folder."""
-    named = arguments.casebook or os.environ.get("PLATESIDE_CASEBOOK")
-    if named:
-        return Path(named).expanduser()
-    import platformdirs
+    if arguments.casebook:
+        return Path(arguments.casebook).expanduser()
+    from casebook.place import default_path
 
-    return Path(platformdirs.user_data_dir("plateside", appauthor=False)) / "casebook.db"
+    return default_path()
 
 
 def existing_casebook(arguments: Namespace) -> Path:

@@ -2,26 +2,25 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 from calc.errors import InputError, PlatesideError
 from calc.quantities import KINDS
-from calc.sheet import CaseSheet
-from calc.sheet_io import sheet_from_plain, sheet_to_plain
+from calc.sheet_io import sheet_from_plain
 from casebook.errors import CasebookError
 from tui.begun import DRAFT, Begun, waiting
 from tui.compose import Visit, recall
 from tui.harmless import harmless
 from tui.output import say
 from tui.people import USUAL_KIT
-from tui.plate_lines import hear, machine_of, plate_lines
+from tui.plate_lines import hear, machine_of, plate_lines, raw_of
 from tui.talk import Back, Left, ask, ask_choice, ask_several, ask_yes, tell
 
 if TYPE_CHECKING:
-    from calc.sheet import Machine
     from casebook.book import Casebook
     from rules.knowledge import Knowledge
     from tui.drafts import Drafts
+    from tui.plate_lines import Raw
 
 
 def ask_case(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit:
@@ -80,11 +79,11 @@ def _opened(book: Casebook, begun: Begun, drafts: Drafts, person: str, knowledge
     return None
 
 
-def _machine(book: Casebook, begun: Begun, drafts: Drafts) -> dict[str, Any]:
+def _machine(book: Casebook, begun: Begun, drafts: Drafts) -> Raw:
     """Return the machine as a sheet holds it: recalled by its tag, or asked for."""
     known = recall(book, begun.tag or "") if not begun.kind else None
     if known is not None:
-        plain = as_plain(known)
+        plain = raw_of(known)
         tell(f"Known: {', '.join(f'{name} {value}' for name, value in plain.get('nameplate', {}).items())}")
         if ask_yes("Is it this one?"):
             return plain
@@ -101,12 +100,6 @@ def _machine(book: Casebook, begun: Begun, drafts: Drafts) -> dict[str, Any]:
             begun.lines.pop(line.field, None)
             tell(said)
     return machine_of(begun.kind, begun.tag or "", begun.lines)
-
-
-def as_plain(machine: Machine) -> dict[str, Any]:
-    """Return a machine as a case sheet holds it."""
-    plain: dict[str, Any] = sheet_to_plain(CaseSheet(machine=machine, complaint="routine_check"))["machine"]
-    return plain
 
 
 def _complaint(kind: str, knowledge: Knowledge) -> str:

@@ -15,6 +15,8 @@ from calc.values import ValueTextError, parse_value
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
+    from calc.sheet import Machine
+
 Raw = dict[str, Any]
 YES_NO: Final = {"yes": "yes", "no": "no"}
 _SIGNS: Final = {
@@ -214,6 +216,14 @@ def _split_ratings(machine: Raw) -> None:
     for name in pairs:
         del plate[name]
     plate["ratings"] = ratings
+
+
+def raw_of(machine: Machine) -> Raw:
+    """Return a machine that is known already as a case sheet holds it."""
+    from calc.sheet import CaseSheet
+    from calc.sheet_io import sheet_to_plain
+
+    return dict(sheet_to_plain(CaseSheet(machine=machine, complaint="routine_check"))["machine"])
 
 
 def typed_of(machine: Raw) -> dict[str, str]:

@@ -4,8 +4,7 @@ import pytest
 
 from calc.quantities import KINDS
 from calc.sheet_io import sheet_from_plain
-from tui.flow import sheet_of
-from tui.plate_lines import hear, machine_of, plate_lines, typed_of
+from tui.plate_lines import hear, machine_of, plate_lines, raw_of, typed_of
 
 
 def line(field: str, kind: str = "induction_3ph"):
@@ -68,7 +67,7 @@ def test_a_machine_that_is_recalled_is_typed_again_as_the_same_machine(kind: str
     }
     first = machine_of(kind, "P-1", typed)
     sheet = sheet_from_plain({"format": 1, "machine": first, "complaint": "routine_check"})
-    again = machine_of(kind, "P-1", typed_of(sheet_of(sheet.machine)))
+    again = machine_of(kind, "P-1", typed_of(raw_of(sheet.machine)))
     assert sheet_from_plain({"format": 1, "machine": again, "complaint": "routine_check"}) == sheet
 
 
@@ -76,7 +75,7 @@ def test_a_plate_with_two_ratings_is_typed_again_as_it_was():
     typed = {"voltage": "230/400", "current": "26/15", "connection": "d/y", "in_use": "400"}
     first = machine_of("induction_3ph", "P-1", typed)
     sheet = sheet_from_plain({"format": 1, "machine": first, "complaint": "routine_check"})
-    again = typed_of(sheet_of(sheet.machine))
+    again = typed_of(raw_of(sheet.machine))
     assert (again["voltage"], again["current"], again["connection"]) == (
         "230 V/400 V", "26 A/15 A", "delta/star",
     )  # fmt: skip

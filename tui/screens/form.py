@@ -287,6 +287,3 @@ def hear_choice(choices: dict[str, str]) -> Callable[[str], Heard]:
         return choices[found], True
 
     return hear
-
-
-YES_NO = {"yes": "yes", "no": "no"}

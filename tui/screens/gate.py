@@ -9,7 +9,8 @@ from casebook.bodies import Isolation
 from tui.answer_text import NOTHING_FORBIDS
 from tui.keys import bindings
 from tui.look import STOP, STRONG
-from tui.screens.form import YES_NO, FormPage, Line, hear_choice, one_of
+from tui.plate_lines import YES_NO
+from tui.screens.form import FormPage, Line, hear_choice, one_of
 from tui.screens.page import Page, TextPage
 from tui.widgets.ruled import Ruled, blank, fill, row, rows
 from tui.words import key_words, plain

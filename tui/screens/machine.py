@@ -8,7 +8,7 @@ from textual import work
 
 from tui.keys import bindings
 from tui.look import STRONG
-from tui.plate_lines import plate_lines, typed_of
+from tui.plate_lines import plate_lines, raw_of, typed_of
 from tui.screens.page import TextPage
 from tui.screens.worksheet_lines import band_number
 from tui.widgets.ruled import INDENT, blank, pad, row, rows, tagged
@@ -81,11 +81,9 @@ class MachinePage(TextPage):
 
     def plate(self) -> list[Content]:
         """Return the plate and how the machine stands, in the plate's words, as many abreast as fit."""
-        from tui.flow import sheet_of
-
         assert self.visit is not None
         machine = self.visit.sheet.machine
-        typed = typed_of(sheet_of(machine))
+        typed = typed_of(raw_of(machine))
         shown = [(line.word, typed[line.field]) for line in plate_lines(machine.kind) if line.field in typed]
         out = rows(*tagged(self.tag, kind_name(machine.kind)), self.room, style=STRONG)
         abreast = max((self.room - INDENT) // COLUMN, 1)

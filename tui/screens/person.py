@@ -7,7 +7,8 @@ from typing import TYPE_CHECKING
 from tui.keys import bindings
 from tui.look import STRONG
 from tui.people import USUAL_KIT
-from tui.screens.form import YES_NO, FormPage, Heard, Line, hear_choice, one_of
+from tui.plate_lines import YES_NO
+from tui.screens.form import FormPage, Heard, Line, hear_choice, one_of
 from tui.widgets.ruled import rows
 
 if TYPE_CHECKING:

@@ -34,9 +34,14 @@ class TakesLines(Protocol):
 class TypedLine(Steady, Input):
     """An input of one line without blinking; tells its page synchronously of Enter."""
 
-    def __init__(self, value: str = "", *, placeholder: str = "", id: str = "typed") -> None:
+    def __init__(self, value: str = "", *, placeholder: str = "") -> None:
         super().__init__(
-            value, placeholder=placeholder, compact=True, id=id, select_on_focus=False, max_length=LONGEST
+            value,
+            placeholder=placeholder,
+            compact=True,
+            id="typed",
+            select_on_focus=False,
+            max_length=LONGEST,
         )
         self.cursor_blink = False
 
