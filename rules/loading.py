@@ -32,6 +32,7 @@ from rules.knowledge import (
     ReadingRule,
 )
 from rules.loosening import loosened_by
+from rules.spelling_out import spelled_out
 from rules.validators import Mistaken, all_mistakes
 
 SHIPPED: Final = Path(__file__).resolve().parent
@@ -50,6 +51,8 @@ MOST_FILES: Final = 500
 """Rule files that a shop's folder may hold."""
 MOST_BYTES: Final = 4_000_000
 """Text that a folder may hold in all: some ten times what is shipped."""
+MOST_ENTRIES: Final = 20_000
+"""Entries that a folder may hold in all, each row of a table counted."""
 MOST_PROBLEMS: Final = 200
 """Mistakes of one file that are told."""
 _ALSO_CALLED: Final = {"cautions": "hazards"}
@@ -157,6 +160,7 @@ def build(
     places: Places = {}
     problems: list[Problem] = []
     loosened: list[str] = []
+    room = [MOST_ENTRIES] * (1 + len(extra_folders))
     for number, file, text in texts:
         try:
             document = load_document(text, file=str(file), limits=RULE_LIMITS)
@@ -164,6 +168,11 @@ def build(
             problems += error.problems
             continue
         for section, entry, path in _decoded(document, file, problems):
+            room[number] -= 1
+            if room[number] < 0:
+                given = f"more than {MOST_ENTRIES} entries in all"
+                problems.append(Problem(str(file), "", given, f"at most {MOST_ENTRIES} in a folder"))
+                break
             known = entries[section].get(entry.id)
             if known is not None and places[section, entry.id].folder == number:
                 problems.append(
@@ -190,7 +199,12 @@ def _decoded(document: Document, file: Path, problems: list[Problem]) -> Iterato
             continue
         for index, part in enumerate(plain):
             path = (*base, index)
-            entry, mistakes = decode(part, SECTIONS[section])
+            spelled, mistakes = spelled_out(part)
+            for one in spelled:
+                entry, mistakes = decode(one, SECTIONS[section])
+                if entry is None:  # the other rows of a table have the same mistakes
+                    break
+                yield section, entry, path
             name = part.get("id") if isinstance(part, dict) else None
             label = str(name) if name else f"{section}[{index + 1}]"
             for mistake in mistakes:
@@ -200,8 +214,6 @@ def _decoded(document: Document, file: Path, problems: list[Problem]) -> Iterato
                 given = f"more than {MOST_PROBLEMS} mistakes"
                 problems.append(_at(document, path, label, given, "those before put right first"))
                 return
-            if entry is not None:
-                yield section, entry, path
 
 
 def _sections(document: Document, file: Path, problems: list[Problem]) -> Iterator[tuple[str, Steps, object]]:
