@@ -22,7 +22,7 @@ from casebook.learned import LearnedCounts, Score, learned_counts, learned_group
 from casebook.numbers import SHOWN, full_number, read_number, shown_number
 from casebook.place import default_path
 from casebook.sqlite_store import SqliteStore
-from casebook.store import CaseRow, Changes, MachineRow, Store
+from casebook.store import CaseRow, Changes, MachineRow, Store, machine_key
 
 
 class Casebook:
@@ -110,7 +110,7 @@ class Casebook:
 
     def machine(self, tag: str) -> Machine | None:
         """Return what the casebook knows of a machine, its last plate above all; None if it knows nothing."""
-        return fold_machine(self.machine_cases(tag))
+        return fold_machine(self.machine_cases(tag)) if machine_key(tag) else None
 
     def history(self, tag: str) -> MachineHistory:
         """Return one machine's readings over time."""

@@ -136,10 +136,15 @@ def fold_case(entries: Iterable[Entry]) -> Case:
 
 
 def fold_machine(cases: Iterable[Case]) -> Machine | None:
-    """Return what is known of one machine: its cases folded, what was said last holds; None without cases."""
+    """Return what is known of one machine: its cases folded, what was said last holds; None without cases.
+
+    Another kind under the same tag is another machine: what was known of the one before is left out.
+    """
     fields: dict[str, Any] = {}
     for case in sorted(cases, key=lambda case: (case.last_utc, case.id)):
         said = case.machine
+        if "machine" in fields and fields["machine"].kind != said.kind:
+            fields.clear()
         changes = {name: getattr(said, name) for name in said.__struct_fields__}
         unsaid = {"nameplate": Nameplate(), "supply": Supply()}
         _change(fields, {name: value for name, value in changes.items() if value != unsaid.get(name)})

@@ -271,12 +271,6 @@ class Visit:
         )
 
 
-def recall(book: Casebook, tag: str) -> Machine | None:
-    """Return the machine with a tag as its newest case knows it; None where the casebook does not know it."""
-    cases = book.machine_cases(tag)
-    return cases[-1].machine if cases else None
-
-
 def weigh(
     sheet: CaseSheet,
     knowledge: Knowledge,

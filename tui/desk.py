@@ -65,10 +65,8 @@ class Desk:
         return self.book.search(typed, limit=limit) if typed.strip() else self.book.cases(limit=limit)
 
     def machine(self, tag: str) -> Machine | None:
-        """Return a machine as its newest case knows it."""
-        from tui.compose import recall
-
-        return recall(self.book, tag)
+        """Return a machine as the casebook knows it."""
+        return self.book.machine(tag)
 
     def visit(self, case: str) -> Visit:
         """Take up a case."""

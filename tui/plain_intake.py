@@ -9,7 +9,7 @@ from calc.quantities import KINDS
 from calc.sheet_io import sheet_from_plain
 from casebook.errors import CasebookError
 from tui.begun import DRAFT, Begun, waiting
-from tui.compose import Visit, recall
+from tui.compose import Visit
 from tui.harmless import harmless
 from tui.output import say
 from tui.people import USUAL_KIT
@@ -81,7 +81,7 @@ def _opened(book: Casebook, begun: Begun, drafts: Drafts, person: str, knowledge
 
 def _machine(book: Casebook, begun: Begun, drafts: Drafts) -> Raw:
     """Return the machine as a sheet holds it: recalled by its tag, or asked for."""
-    known = recall(book, begun.tag or "") if not begun.kind else None
+    known = book.machine(begun.tag or "") if not begun.kind else None
     if known is not None:
         plain = raw_of(known)
         tell(f"Known: {', '.join(f'{name} {value}' for name, value in plain.get('nameplate', {}).items())}")

@@ -131,6 +131,18 @@ def test_what_is_known_of_a_machine_is_what_was_said_last(book: Casebook):
     )
 
 
+def test_another_kind_under_the_same_tag_is_another_machine(book: Casebook):
+    book.log_sheet(a_sheet(), "Ada", at=START)
+    other = Machine(kind="dc_shunt", tag="P-104")
+    book.log_sheet(a_sheet(machine=other), "Bo", at=START + timedelta(days=1))
+    assert book.machine("P-104") == other
+
+
+def test_a_machine_without_a_tag_is_not_known_again(book: Casebook):
+    book.log_sheet(a_sheet(machine=Machine(kind="dc_shunt")), "Ada")
+    assert book.machine(" ") is None
+
+
 def test_a_case_from_a_clock_in_the_future_does_not_lead_the_list_for_ever(book: Casebook):
     future = book.log_sheet(a_sheet("F-1"), "Ada", at=datetime.now(UTC) + timedelta(days=3650))
     today = book.log_sheet(a_sheet(), "Ada")

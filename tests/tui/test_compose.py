@@ -9,7 +9,7 @@ from casebook import bodies
 from casebook.book import open_casebook
 from rules.answer import Diagnosis, FaultOdds
 from rules.loading import load_knowledge
-from tui.compose import Visit, moved, recall
+from tui.compose import Visit, moved
 
 
 @pytest.fixture(scope="module")
@@ -163,8 +163,8 @@ def test_a_machine_is_recalled_by_its_tag_as_it_was_last_known(book, knowledge, 
     visit = Visit.new(book, first, person="Ines", knowledge=knowledge)
     changed = msgspec.structs.replace(first.machine, starter="soft_starter")
     visit.set_machine(changed)
-    assert recall(book, "wp-104  WASH water") == changed
-    assert recall(book, "nobody's pump") is None
+    assert book.machine("wp-104  WASH water") == changed
+    assert book.machine("nobody's pump") is None
 
 
 def test_another_persons_entry_is_seen_after_refresh(visit, casebook):
