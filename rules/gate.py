@@ -133,6 +133,9 @@ def _floor_line(sheet: CaseSheet, knowledge: Knowledge) -> ShutLine:
             checked = Checked("forbids", f"the complaint means stop: {named}")
         elif low is not None:
             checked = Checked("forbids", floor_words(low))
+        elif sheet.complaint not in knowledge.complaints:
+            unknown = f"the complaint {sheet.complaint} is not among the rules: it may mean stop"
+            checked = Checked("forbids", unknown)
     except Exception as error:
         checked = Checked("forbids", f"the sheet could not be judged: {type(error).__name__}")
     return _line("nothing_means_stop", needs, checked, (), ENERGISED_STATES)

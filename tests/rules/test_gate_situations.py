@@ -8,6 +8,15 @@ from .gates import CLEARED, LOADED, STARTED, lines, shut
 from .makers import case, insulation, reading, windings
 
 
+# ------------------------------------------------------------------ a complaint that nobody knows
+@pytest.mark.parametrize("complaint", ["shock", "shock_from_frames", "smoke_or_burnig"])
+def test_a_misspelt_complaint_keeps_every_energised_state_shut(knowledge, complaint):
+    state = gate(case(complaint, LOADED), knowledge)
+    assert state.energise.gate == "shut"
+    assert all(state.forbids(one) for one in ("starting", "no_load", "loaded"))
+    assert any(complaint in words for words in state.energise.because)
+
+
 # ------------------------------------------------------------------ found running, trips, repair
 def test_a_machine_found_running_may_be_read_with_the_clamp(knowledge):
     assert shut(case("runs_hot"), knowledge) == set()
