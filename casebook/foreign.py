@@ -21,12 +21,11 @@ from casebook.check import MAX_BODY, check_entry
 from casebook.entry import Entry, canonical_json
 from casebook.errors import BadEntry, CasebookError, NewerCasebook, NotACasebook
 from casebook.opening import translated
-from casebook.place import uri
+from casebook.place import MAGIC, uri
 from casebook.rows import entry_of_row, moment_of, stamp
 from casebook.walk import UNREADABLE, Gap, walk
 from casebook.wire import entry_of_line, read_lines
 
-_MAGIC: Final = b"SQLite format 3\0"
 _MAX_CELL: Final = 4 * MAX_BODY
 
 
@@ -45,7 +44,7 @@ def kind_of_file(path: Path) -> str:
             head = file.read(4096)
     except OSError as error:
         raise CasebookError(f"{path} cannot be read: {error.strerror}") from error
-    if head.startswith(_MAGIC):
+    if head.startswith(MAGIC):
         return "casebook"
     return "lines" if head.lstrip(b"\xef\xbb\xbf \t\r\n").startswith(b"{") else "sheet"
 

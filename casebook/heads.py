@@ -12,14 +12,11 @@ from typing import Any, Final
 from casebook.entry import Entry, canonical_json
 from casebook.fold import Case, fold_case
 from casebook.numbers import full_number, shown_number
-from casebook.rows import entry_of_row, moment_of, stamp
+from casebook.rows import COLUMNS, entry_of_row, moment_of, stamp
 from casebook.search import bare_tag, plate_text, words_text
 from casebook.store import CaseRow, machine_key
 
-_ENTRIES: Final = (
-    "SELECT id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body"
-    " FROM entry WHERE case_id = ? ORDER BY seq"
-)
+_ENTRIES: Final = f"SELECT {COLUMNS} FROM entry WHERE case_id = ? ORDER BY seq"
 _HEAD: Final = (
     "INSERT INTO case_head (place, case_id, number, status, opened_utc, last_utc, last_id, entries, tag,"
     " machine_key, kind, complaint, suspect, found, confirmed, persons, plate, words)"
@@ -27,6 +24,8 @@ _HEAD: Final = (
 )
 _OUTCOME: Final = "INSERT INTO outcome VALUES (?,?,?,?,?,?,?,?,?,?,?)"
 _PLACES_PER_MICROSECOND: Final = 256
+AWAY_MINUTES: Final = 60.0
+"""A longer gap between two lines of a case was spent elsewhere."""
 
 
 def entries_of_case(connection: sqlite3.Connection, case: str) -> tuple[Entry, ...]:
@@ -98,11 +97,11 @@ def suspect(case: Case) -> str:
     return faults[0].id if faults else ""
 
 
-def worked_minutes(case: Case, *, away_minutes: float = 60.0) -> float:
-    """Return the minutes spent on a case: from line to line, gaps longer than ``away_minutes`` left out."""
+def worked_minutes(case: Case) -> float:
+    """Return the minutes spent on a case: from line to line, gaps longer than ``AWAY_MINUTES`` left out."""
     times = [line.entry.time_utc for line in case.lines]
     gaps = [abs((later - earlier).total_seconds()) / 60 for earlier, later in pairwise(times)]
-    return sum(gap for gap in gaps if gap <= away_minutes)
+    return sum(gap for gap in gaps if gap <= AWAY_MINUTES)
 
 
 def _outcome(case: Case) -> tuple[object, ...]:

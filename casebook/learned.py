@@ -59,15 +59,10 @@ class Score(msgspec.Struct, frozen=True, kw_only=True):
     minutes: float
     reliability: tuple[Bin, ...] = ()
 
-    @property
-    def first_right_share(self) -> float:
-        """Share of cases whose first suspect was what was found; nan without cases."""
-        return self.first_right / self.cases if self.cases else float("nan")
 
-
-def size_class(power_w: float | None, *, edges_w: tuple[float, ...] = SIZE_EDGES_W) -> int | None:
+def size_class(power_w: float | None) -> int | None:
     """Return the size class of a rated output [W]: 0 below the first edge; None if the plate is silent."""
-    return None if power_w is None else sum(power_w >= edge for edge in edges_w)
+    return None if power_w is None else sum(power_w >= edge for edge in SIZE_EDGES_W)
 
 
 def learned_counts(

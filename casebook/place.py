@@ -14,7 +14,8 @@ from casebook.errors import CasebookError, NoPermission, NotACasebook
 
 ENVIRONMENT: Final = "PLATESIDE_CASEBOOK"
 FILE_NAME: Final = "casebook.db"
-_MAGIC: Final = b"SQLite format 3\0"
+MAGIC: Final = b"SQLite format 3\0"
+"""What every database of SQLite begins with."""
 
 # File systems on which two hosts do not share memory; names as the kernel lists them.
 # From memory, with the SQLite documentation ("WAL does not work over a network filesystem").
@@ -114,10 +115,10 @@ def refuse_other_files(path: Path) -> None:
         raise NotACasebook(f"{path} is no ordinary file")
     try:
         with path.open("rb") as file:
-            head = file.read(16)
+            head = file.read(len(MAGIC))
     except PermissionError as error:
         raise NoPermission(f"{path} may not be read") from error
-    if head and head != _MAGIC:
+    if head and head != MAGIC:
         raise NotACasebook(f"{path} is no casebook")
 
 

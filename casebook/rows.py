@@ -10,14 +10,9 @@ import msgspec
 from casebook.entry import Entry
 from casebook.errors import BadRow
 
-INSERT: Final = (
-    "INSERT INTO entry (id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body)"
-    " VALUES (?,?,?,?,?,?,?,?,?) ON CONFLICT (id) DO NOTHING"
-)
-
-
-# id, case, person, time_utc, offset_minutes, kind, body_version, after, body
-_ROW: Final = tuple[str, str, str, str, int, str, int, str | None, str]
+COLUMNS: Final = "id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body"
+INSERT: Final = f"INSERT INTO entry ({COLUMNS}) VALUES (?,?,?,?,?,?,?,?,?) ON CONFLICT (id) DO NOTHING"
+_ROW: Final = tuple[str, str, str, str, int, str, int, str | None, str]  # as in COLUMNS
 
 
 def stamp(moment: datetime) -> str:

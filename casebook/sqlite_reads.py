@@ -14,11 +14,10 @@ import msgspec
 from casebook import heads
 from casebook.entry import Entry
 from casebook.opening import translated
-from casebook.rows import entry_of_row, moment_of
+from casebook.rows import COLUMNS, entry_of_row, moment_of
 from casebook.search import query_of
 from casebook.store import CaseRow, Changes, MachineRow, Outcome, TakenIn, machine_key
 
-_ENTRY_COLUMNS: Final = "id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body"
 _ROW_COLUMNS: Final = (
     "h.place, h.case_id, h.number, h.status, h.opened_utc, h.last_utc, h.entries, h.tag, h.kind,"
     " h.complaint, h.suspect, h.found, h.confirmed, h.persons"
@@ -43,7 +42,7 @@ class SqliteReads:
     def all_entries(self) -> Iterator[Entry]:
         """Yield every entry in the order in which they came, without holding them all."""
         last = 0
-        ask = f"SELECT {_ENTRY_COLUMNS}, seq FROM entry WHERE seq > ? ORDER BY seq LIMIT ?"
+        ask = f"SELECT {COLUMNS}, seq FROM entry WHERE seq > ? ORDER BY seq LIMIT ?"
         while rows := self._made(lambda row: (entry_of_row(row[:-1]), row[-1]), ask, (last, _BATCH)):
             yield from (entry for entry, _ in rows)
             last = rows[-1][1]
@@ -51,7 +50,7 @@ class SqliteReads:
     def held(self, ids: Iterable[str]) -> dict[str, Entry]:
         """Return those of these entry ids that are there, with their entries."""
         with self._reading():
-            ask = f"SELECT {_ENTRY_COLUMNS} FROM entry WHERE id = ?"
+            ask = f"SELECT {COLUMNS} FROM entry WHERE id = ?"
             rows = [self._connection.execute(ask, (one,)).fetchone() for one in ids]
             return {row[0]: entry_of_row(row) for row in rows if row}
 

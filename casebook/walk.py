@@ -6,9 +6,10 @@ import sqlite3
 from collections.abc import Iterator
 from typing import Any, Final, NamedTuple
 
-_COLUMNS: Final = "id, case_id, person, time_utc, offset_minutes, kind, body_version, after, body, seq"
-_ABOVE: Final = f"SELECT {_COLUMNS} FROM entry WHERE seq > ? ORDER BY seq"
-_ONE: Final = f"SELECT {_COLUMNS} FROM entry WHERE seq = ?"
+from casebook.rows import COLUMNS
+
+_ABOVE: Final = f"SELECT {COLUMNS}, seq FROM entry WHERE seq > ? ORDER BY seq"
+_ONE: Final = f"SELECT {COLUMNS}, seq FROM entry WHERE seq = ?"
 _LONGEST_GAP: Final = 200_000
 
 UNREADABLE: Final = (sqlite3.DatabaseError, UnicodeDecodeError)

@@ -1,6 +1,7 @@
 """A casebook in a throw-away folder, and a case sheet of the invented plant."""
 
 import math
+import sqlite3
 import stat
 from collections.abc import Iterator
 from pathlib import Path
@@ -17,6 +18,15 @@ def value(text: str, number: float, unit: str, **more: object) -> Value:
 
 def mode(path: Path) -> int:
     return stat.S_IMODE(path.stat().st_mode)
+
+
+def is_sound(path: Path) -> bool:
+    connection = sqlite3.connect(path)
+    try:
+        connection.execute("INSERT INTO case_text (case_text) VALUES ('integrity-check')")
+        return connection.execute("PRAGMA integrity_check").fetchall() == [("ok",)]
+    finally:
+        connection.close()
 
 
 def a_sheet(tag: str = "P-104", **changes: object) -> CaseSheet:

@@ -3,7 +3,6 @@
 import os
 import random
 import signal
-import sqlite3
 import subprocess
 import sys
 import time
@@ -16,7 +15,7 @@ from casebook import bodies as b
 from casebook.book import open_casebook
 from casebook.errors import CasebookError, DiskFull
 
-from .conftest import a_sheet
+from .conftest import a_sheet, is_sound
 
 WRITER = Path(__file__).with_name("writer.py")
 
@@ -48,15 +47,6 @@ def write_at_once(path: Path, processes: int, count: int) -> None:
         assert sum(row.entries for row in book.cases()) == len(held)
         assert len(book.search("note")) == processes
     assert is_sound(path)
-
-
-def is_sound(path: Path) -> bool:
-    connection = sqlite3.connect(path)
-    try:
-        connection.execute("INSERT INTO case_text (case_text) VALUES ('integrity-check')")
-        return connection.execute("PRAGMA integrity_check").fetchall() == [("ok",)]
-    finally:
-        connection.close()
 
 
 def kill_at_random_moments(path: Path, times: int) -> None:

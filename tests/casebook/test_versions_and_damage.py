@@ -17,9 +17,9 @@ from casebook.errors import (
     NewerCasebook,
     NotACasebook,
 )
-from casebook.salvage import examine, salvage
+from casebook.salvage import salvage
 
-from .conftest import a_sheet, mode
+from .conftest import a_sheet, is_sound, mode
 
 FIXTURES = Path(__file__).with_name("fixtures")
 
@@ -158,16 +158,13 @@ def leaf_pages(path: Path, size: int) -> list[int]:
 
 def test_of_a_damaged_casebook_the_rest_is_saved(path: Path, tmp_path: Path):
     count = damaged(path)
-    found = examine(path)
-    assert not found.is_sound
-    assert count - 40 < found.readable < count
     report = salvage(path, tmp_path / "saved.db")
-    assert report.new == found.readable
+    assert count - 40 < report.new < count
     assert report.refused >= 1
     assert "cannot be read" in report.refusals[0].why
     with open_casebook(tmp_path / "saved.db") as saved:
         assert saved.case(saved.cases()[0].id).sheet == a_sheet("P-59")
-    assert examine(tmp_path / "saved.db").is_sound
+    assert is_sound(tmp_path / "saved.db")
 
 
 def test_using_a_damaged_casebook_says_what_to_do(path: Path):
