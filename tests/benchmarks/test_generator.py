@@ -62,7 +62,7 @@ def test_exchanging_two_lines_turns_the_field_round():
 
 
 def test_a_standing_single_phased_motor_draws_866_of_its_locked_current_and_makes_no_torque():
-    # star or delta alike: line voltage across two line impedances in series (facts of the trade)
+    # star or delta alike: line voltage across two line impedances in series (trade knowledge, from memory)
     sound = np.abs(flows().line_a[0])
     single = flows(Feeder(*_like(after=(0.0, 0.0, OPEN_OHM))))
     assert np.abs(single.line_a[0, :2]) == pytest.approx(0.866 * sound[:2], rel=0.04)
