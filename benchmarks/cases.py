@@ -47,7 +47,7 @@ def make_case(name: str, random: np.random.Generator, fault: str | None = None) 
         severity = 0.0 if chosen == "healthy" else round(float(random.uniform(0.05, 1.0)), 3)
         trouble = draw_trouble(chosen, severity, motor, site, random)
         operation = operate(motor, site, trouble)
-        if _is_apt(motor, site, trouble, operation):
+        if _is_apt(motor, trouble, operation):
             break
     return _case(name, motor, site, trouble, operation, random)
 
@@ -58,7 +58,7 @@ def _draw_fault(random: np.random.Generator) -> str:
     return str(random.choice(list(weights), p=chances / chances.sum()))
 
 
-def _is_apt(motor: Motor, site: Site, trouble: Trouble, operation: Operation) -> bool:
+def _is_apt(motor: Motor, trouble: Trouble, operation: Operation) -> bool:
     """Return whether the case is one: sound machines start, a relay set low has something to trip on."""
     if trouble.fault == "healthy":
         return operation.mode == "runs"
@@ -83,8 +83,8 @@ def _case(
     meters = draw_meters(motor, random)
     readings = read_everything(motor, site, trouble, operation, meters, random)
     signs = signs_of(motor, trouble, operation)
-    found = answers(trouble, operation, signs, random)
-    called = complaint(trouble, operation, signs, random)
+    found = answers(operation, signs, random)
+    called = complaint(operation, signs, random)
     if called == "after_repair" and random.random() < 0.8:
         found["recently_rewound_or_reconnected"] = True
     kept, said = first_look(readings, found, random)

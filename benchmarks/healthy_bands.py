@@ -12,20 +12,11 @@ from benchmarks.figures import Figure, share
 from benchmarks.graded import Case, Plain
 from calc.quantities import MEASURES
 from calc.values import ValueTextError, parse_value
+from casebook.history import WINDINGS
 
 AT_REST = frozenset({"isolated", "no_load", "spun", "starting"})
 """States whose healthy reading does not hang on the load of the day; a faulty case's twin counts there."""
 _COPPER_ZERO_C = 234.5
-_WINDINGS = frozenset(
-    {
-        "winding_resistance",
-        "phase_resistance",
-        "main_resistance",
-        "auxiliary_resistance",
-        "armature_resistance",
-    }
-    | {"field_resistance", "series_field_resistance", "interpole_resistance"}
-)
 
 
 @dataclass(frozen=True)
@@ -90,7 +81,7 @@ def _number(reading: Plain) -> float:
 def _to_condition(band: Plain, reading: Plain) -> float:
     """Return the factor that brings a reading to the temperature or speed that the band is given at."""
     factor = 1.0
-    if reading["measure"] in _WINDINGS and "temperature" in band and "temperature" in reading:
+    if reading["measure"] in WINDINGS and "temperature" in band and "temperature" in reading:
         factor *= (_COPPER_ZERO_C + _degc(band)) / (_COPPER_ZERO_C + _degc(reading))
     if reading["measure"] == "open_circuit_voltage" and "speed" in band and "speed" in reading:
         factor *= _rpm(band) / _rpm(reading)

@@ -18,6 +18,7 @@ import numpy as np
 
 from benchmarks.graded import Case, Plain
 from benchmarks.texts import number_of, shown, stepped, turned, unit_of, values_of, with_values
+from casebook.history import WINDINGS
 
 Random: TypeAlias = np.random.Generator
 Change: TypeAlias = Callable[[Plain], Plain]
@@ -47,16 +48,6 @@ _PREFIXES = {
     "kohm": "ohm",
 }
 _NO_POINT = frozenset({"degC", "dB"})  # read in whole numbers: there two digits change places
-_OHMS = frozenset(
-    {
-        "winding_resistance",
-        "phase_resistance",
-        "main_resistance",
-        "auxiliary_resistance",
-        "armature_resistance",
-    }
-    | {"field_resistance", "series_field_resistance", "interpole_resistance"}
-)
 _CLAMPED = frozenset({"line_current", "main_current", "auxiliary_current", "armature_current"})
 _VOLTS = frozenset({"supply_voltage", "armature_voltage", "field_voltage", "capacitor_voltage"})
 
@@ -169,7 +160,7 @@ def _with_plate(case: Case, fields: Sequence[str]) -> Case:
 
 
 def _coarse_ohm(reading: Plain) -> Plain:
-    if reading["measure"] not in _OHMS:
+    if reading["measure"] not in WINDINGS:
         return reading
     return with_values(reading, [_through_leads(text) for text in values_of(reading)])
 

@@ -88,7 +88,7 @@ class Promise:
     def misses(self, logs: Floats) -> Floats:
         """Return how far current, power factor, torque and locked-rotor current are from the rating."""
         rated, machine = self.rated, self.winding(logs)
-        stiff = balanced(machine, rated.volts, rated.hertz)
+        stiff = balanced(rated.volts, rated.hertz)
         flow = solve(machine, stiff, joined_as_rated(machine), np.array([rated.slip, 1.0]))
         running, locked = (float(x) for x in np.abs(flow.line_a[:, 0]))
         factor = flow.power_w(MOTOR)[0] / (math.sqrt(3) * rated.volts * running)

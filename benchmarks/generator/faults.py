@@ -22,8 +22,7 @@ def draw_trouble(fault: str, severity: float, motor: Motor, site: Site, random: 
     )
     if fault == "healthy":
         return replace(plain, severity=0.0)
-    changed = _DRAW[fault](plain, severity, motor, site, random)
-    return changed
+    return _DRAW[fault](plain, severity, motor, site, random)
 
 
 def _at(line: int, value: float, otherwise: float = 0.0) -> Triple:

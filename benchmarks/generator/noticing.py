@@ -84,7 +84,7 @@ def _running_signs(motor: Motor, trouble: Trouble, operation: Operation) -> Sign
     return found | {"calm": 1.0 - max(found.values(), default=0.0)}
 
 
-def answers(trouble: Trouble, operation: Operation, signs: Signs, random: Random) -> dict[str, bool]:
+def answers(operation: Operation, signs: Signs, random: Random) -> dict[str, bool]:
     """Return every yes-or-no answer that can be had; one in twelve of the rarer ones nobody knows."""
     found = {}
     for name, weights in habits()["observations"].items():
@@ -101,7 +101,7 @@ def answers(trouble: Trouble, operation: Operation, signs: Signs, random: Random
     return found
 
 
-def complaint(trouble: Trouble, operation: Operation, signs: Signs, random: Random) -> str:
+def complaint(operation: Operation, signs: Signs, random: Random) -> str:
     """Return why somebody called."""
     t = habits()
     if operation.mode == "trips" and "earthed" in signs and random.random() < t["earth_trip_if_earthed"]:

@@ -37,7 +37,7 @@ SLIPS = np.array([1.0, 0.3, 0.03, 0.001])
 
 
 def flows(feeder=None, **wound):
-    return solve(MACHINE, feeder or balanced(MACHINE, 400, 50), joined_as_rated(MACHINE, **wound), SLIPS)
+    return solve(MACHINE, feeder or balanced(400, 50), joined_as_rated(MACHINE, **wound), SLIPS)
 
 
 def test_power_in_is_copper_air_gap_and_iron():
@@ -55,7 +55,7 @@ def test_balanced_in_is_balanced_out():
 
 
 def test_exchanging_two_lines_turns_the_field_round():
-    feeder = balanced(MACHINE, 400, 50)
+    feeder = balanced(400, 50)
     turned = Feeder(feeder.emf_v[[0, 2, 1]], 50, feeder.source_ohm, feeder.cable_ohm)
     flow = flows(turned)
     assert flow.backward_w[0] > 0.9 * flows().forward_w[0]
@@ -71,7 +71,7 @@ def test_a_standing_single_phased_motor_draws_866_of_its_locked_current_and_make
 
 
 def _like(after):
-    feeder = balanced(MACHINE, 400, 50)
+    feeder = balanced(400, 50)
     return feeder.emf_v, 50, feeder.source_ohm, feeder.cable_ohm, (0.0, 0.0, 0.0), after
 
 
@@ -81,7 +81,7 @@ def test_star_in_place_of_delta_takes_a_third_of_the_current():
 
 
 def test_terminal_ohms_of_star_and_delta_and_of_an_open_phase():
-    feeder = balanced(MACHINE, 400, 50)
+    feeder = balanced(400, 50)
     ohms = {
         name: terminal_ohms(MACHINE, joined_as_rated(MACHINE, **more), feeder, cold=0.5)
         for name, more in {
