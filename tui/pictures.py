@@ -14,6 +14,9 @@ if TYPE_CHECKING:
     from tui.curve_pictures import Picture
     from tui.page_history import Chart
     from tui.page_parts import Scale
+    from tui.plot import Band, Curve
+
+    Place = Callable[[float, float], str]
 
 DECADE = 5.0  # a spread above this factor is drawn on a logarithmic scale
 
@@ -78,20 +81,8 @@ def curve_svg(picture: Picture, *, width: int = 420, height: int = 190) -> str:
         across = 60 + (x - left) / ((right - left) or 1.0) * (width - 75)
         return f"{across:.1f} {height - 32 - (y - low) / (high - low) * (height - 45):.1f}"
 
-    drawn = ""
-    for band in picture.bands:
-        there = [*zip(band.x, band.high, strict=True), *reversed([*zip(band.x, band.low, strict=True)])]
-        drawn += f'<path d="M{_path(there, place)}Z" fill="#ddd"/>'
-    for curve in picture.curves:
-        points = [
-            (x, y) for x, y in zip(curve.x, curve.y, strict=True) if math.isfinite(x) and math.isfinite(y)
-        ]
-        if curve.joined and points:
-            drawn += f'<path d="M{_path(points, place)}" fill="none" stroke="#111"/>'
-        for x, y in points if not curve.joined else ():
-            across, down = place(x, y).split()
-            drawn += f'<circle cx="{across}" cy="{down}" r="3.5" fill="none" stroke="#111"/>'
-            drawn += f'<text x="{float(across) + 6:.1f}" y="{down}" font-size="11">{curve.mark}</text>'
+    drawn = "".join(_band_svg(band, place) for band in picture.bands)
+    drawn += "".join(_line_svg(curve, place) for curve in picture.curves)
     axes = f'<path d="M60 13V{height - 32}H{width - 15}" fill="none" stroke="#999"/>'
     labels = [
         (0, 22, "start", f"{high:g}"), (0, height - 30, "start", f"{low:g}"),
@@ -108,6 +99,25 @@ def curve_svg(picture: Picture, *, width: int = 420, height: int = 190) -> str:
     )
 
 
+def _band_svg(band: Band, place: Place) -> str:
+    """Return a band as an area in grey."""
+    there = [*zip(band.x, band.high, strict=True), *reversed([*zip(band.x, band.low, strict=True)])]
+    return f'<path d="M{_path(there, place)}Z" fill="#ddd"/>'
+
+
+def _line_svg(curve: Curve, place: Place) -> str:
+    """Return a curve as a line through its points, or as a ring with its mark for each."""
+    points = [(x, y) for x, y in zip(curve.x, curve.y, strict=True) if math.isfinite(x) and math.isfinite(y)]
+    if curve.joined:
+        return f'<path d="M{_path(points, place)}" fill="none" stroke="#111"/>' if points else ""
+    drawn = ""
+    for x, y in points:
+        across, down = place(x, y).split()
+        drawn += f'<circle cx="{across}" cy="{down}" r="3.5" fill="none" stroke="#111"/>'
+        drawn += f'<text x="{float(across) + 6:.1f}" y="{down}" font-size="11">{curve.mark}</text>'
+    return drawn
+
+
 def legend(picture: Picture) -> str:
     """Return in words which mark is what."""
     said = [f"{curve.mark} {curve.name}" for curve in picture.curves if curve.name and not curve.joined]
@@ -115,6 +125,6 @@ def legend(picture: Picture) -> str:
     return "; ".join([*said, *(f"grey: {band.name} such machines" for band in picture.bands)])
 
 
-def _path(points: Sequence[tuple[float, float]], place: Callable[[float, float], str]) -> str:
+def _path(points: Sequence[tuple[float, float]], place: Place) -> str:
     """Return points as the steps of a path."""
     return "L".join(place(x, y) for x, y in points)
