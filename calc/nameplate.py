@@ -13,28 +13,7 @@ from calc.formatting import format_value, in_unit
 from calc.plate_checks import Finding, findings, limit, plate_of
 from calc.plate_slips import HP_FOR_KW, KW_FOR_HP, Slip, explanations
 from calc.sheet import Machine, Nameplate, Rating, Value
-from calc.typical import (
-    class_efficiency,
-    poles_from_speed,
-    synchronous_speed_rpm,
-    typical_efficiency,
-    typical_locked_rotor_ratio,
-    typical_power_factor,
-    typical_slip,
-)
 from calc.vocabulary import PERCENT_RATIOS, PLATE_DIMENSION
-
-__all__ = [
-    "PlateRemark",
-    "check_plate",
-    "class_efficiency",
-    "poles_from_speed",
-    "synchronous_speed_rpm",
-    "typical_efficiency",
-    "typical_locked_rotor_ratio",
-    "typical_power_factor",
-    "typical_slip",
-]
 
 
 class PlateRemark(msgspec.Struct, frozen=True, kw_only=True):

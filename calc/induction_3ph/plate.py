@@ -12,15 +12,20 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from calc.errors import RangeError
 from calc.induction_3ph.context import filled
-from calc.lookup import code_letter_kva_per_hp
-from calc.nameplate import synchronous_speed_rpm
+from calc.lookup import code_letter_kva_per_hp, code_letters
+from calc.plate_checks import HORSEPOWER_W
 from calc.sheet import Machine, Nameplate, Reading
-from calc.typical import typical_efficiency, typical_locked_rotor_ratio, typical_power_factor
+from calc.temperature import INFERRED_ZERO_K
+from calc.typical import (
+    synchronous_speed_rpm,
+    typical_efficiency,
+    typical_locked_rotor_ratio,
+    typical_power_factor,
+    typical_slip,
+)
 
-HORSEPOWER_W = 745.69987
-COPPER_K = 235.0  # IEC 60034-1: inferred zero-resistance temperature, degC below zero
+COPPER_K = INFERRED_ZERO_K["copper"]
 
 LATENTS = (
     "losses",
@@ -175,7 +180,7 @@ def _poles(plate: Nameplate, frequency: float) -> int:
 
 def _slip(plate: Nameplate, frequency: float, poles: int, power: float) -> tuple[float, float]:
     """Rated slip, and its relative spread: the tolerance of IEC 60034-1 and the plate's rounding."""
-    typical = 0.045 * max(power / 1000.0, 0.1) ** -0.28
+    typical = typical_slip(power_w=power)
     speed = plate.number("speed")
     if not speed or plate.speed is None:
         return typical, 0.35
@@ -195,19 +200,8 @@ def _locked(
     ratio = plate.number("locked_rotor_current_ratio")
     if ratio:
         return ratio, 0.07
-    if plate.code_letter:
-        span = _code_letter(plate.code_letter)
-        if span:
-            middle = math.sqrt(span[0] * span[1])
-            amps = middle * power / HORSEPOWER_W * 1000.0 / (math.sqrt(3.0) * voltage)
-            return amps / current, 0.08
+    if plate.code_letter in code_letters():
+        low, high = code_letter_kva_per_hp(plate.code_letter)
+        amps = math.sqrt(low * high) * power / HORSEPOWER_W * 1000.0 / (math.sqrt(3.0) * voltage)
+        return amps / current, 0.08
     return typical_locked_rotor_ratio(power_w=power, poles=poles), 0.19
-
-
-def _code_letter(letter: str) -> tuple[float, float] | None:
-    """Locked-rotor kVA per hp of a code letter; the last letter has no upper end, A no lower one."""
-    try:
-        low, high = code_letter_kva_per_hp(letter)
-    except (KeyError, RangeError):
-        return None
-    return max(low, 2.5), high if high is not None else 1.12 * low

@@ -6,9 +6,9 @@ import math
 from collections.abc import Iterator
 from typing import Final
 
-from calc.nameplate import synchronous_speed_rpm
 from calc.quantities import MEASURES
 from calc.sheet import CaseSheet, Value
+from calc.typical import synchronous_speed_rpm
 from rules.derived.base import Derived, numbers_of, plate, readings_of
 
 START_TOLERANCE: Final = 1.2

@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 
 from calc.errors import RangeError
 from calc.lookup import code_letter_kva_per_hp, code_letters
-from calc.nameplate import (
+from calc.typical import (
     class_efficiency,
     poles_from_speed,
     synchronous_speed_rpm,

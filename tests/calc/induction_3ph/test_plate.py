@@ -7,7 +7,8 @@ from hypothesis import strategies as st
 
 from calc.induction_3ph import fit
 from calc.induction_3ph.equivalent import circuit
-from calc.induction_3ph.plate import HORSEPOWER_W, INDEX, read_base
+from calc.induction_3ph.plate import INDEX, read_base
+from calc.plate_checks import HORSEPOWER_W
 from calc.sheet import Machine, Nameplate, Supply, Value
 from tests.calc.induction_3ph.plates import ALL, FAN, LIFT, MILL, PUMP, machine
 
