@@ -8,10 +8,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from calc.formatting import in_unit
 from calc.observe import InstrumentError, Seen
 from calc.quantities import MEASURES, arity
 from calc.twin import Ask, Floats, Mode, ModelError, Transform, Twin
-from calc.units import find_unit
 from rules.weigh.frame import frame
 from rules.weigh.laplace import Fitter
 
@@ -99,5 +99,4 @@ def untransform(level: Floats, transform: Transform) -> Floats:
 def in_usual_unit(measure: str, number: float) -> float:
     """From the inner unit to the usual unit of a measure."""
     entry = MEASURES[measure]
-    unit = find_unit(entry.usual_unit, dimension=entry.dimension)
-    return number if unit is None else (number - float(unit.offset)) / float(unit.factor)
+    return in_unit(number, dimension=entry.dimension, unit=entry.usual_unit)

@@ -84,7 +84,7 @@ def direct_tables(
     """
     healthy = knowledge.faults.get("healthy")
     tables: dict[str, Table] = {}
-    before: dict[str, list[tuple[Reading, float]]] = {}
+    before: dict[str, list[Reading]] = {}
     order = [m for family in w.families.values() for m in family.measures]
     ranked = sorted(readings, key=lambda r: (order.index(r.measure) if r.measure in order else -1, r.key))
     for reading in ranked:
@@ -94,14 +94,12 @@ def direct_tables(
         earlier = before.get(family, [])
         known: dict[tuple[Spread | None, ...], float] = {}  # most faults leave a reading as it is
         for fault in faults:
-            spreads = tuple(
-                spread_of(fault, healthy, r.measure, r.state) for r in (reading, *(r for r, _ in earlier))
-            )
+            spreads = tuple(spread_of(fault, healthy, r.measure, r.state) for r in (reading, *earlier))
             if spreads not in known:
                 known[spreads] = _density(reading, earlier, fault, healthy, instruments, rho, w.spread_nu)
             table[fault.id] = known[spreads]
         tables[_unused(reading.key, tables)] = table
-        before.setdefault(family, []).append((reading, rho))
+        before.setdefault(family, []).append(reading)
     return tables
 
 
@@ -122,8 +120,8 @@ def worst(reading: Reading) -> float:
 
 def _standard(
     reading: Reading, fault: Fault, healthy: Fault | None, instruments: Mapping[str, InstrumentError]
-) -> tuple[float, float, float] | None:
-    """Standardised deviation, sigma, and log of the density's scale, of one reading under a fault."""
+) -> tuple[float, float] | None:
+    """Standardised deviation and sigma of one reading under a fault."""
     spread = spread_of(fault, healthy, reading.measure, reading.state)
     value = worst(reading)
     if spread is None or math.isnan(value):
@@ -135,14 +133,14 @@ def _standard(
         step = max((v.resolution for v in reading.values), default=0.0)
         blur = math.hypot(meter.share, (meter.floor + 0.3 * step) / max(number, 1e-9))
         total = math.hypot(sigma, min(blur, 2.0))
-        return (math.log(max(number, 1e-12)) - centre) / total, total, 0.0
+        return (math.log(max(number, 1e-12)) - centre) / total, total
     total = math.hypot(sigma, meter.share * abs(value) + meter.floor)
-    return (min(value, 1e12) - centre) / total, total, 0.0
+    return (min(value, 1e12) - centre) / total, total
 
 
 def _density(
     reading: Reading,
-    before: Sequence[tuple[Reading, float]],
+    before: Sequence[Reading],
     fault: Fault,
     healthy: Fault | None,
     instruments: Mapping[str, InstrumentError],
@@ -152,8 +150,8 @@ def _density(
     own = _standard(reading, fault, healthy, instruments)
     if own is None:
         return 0.0
-    u, total, _ = own
-    earlier = [s[0] for r, _ in before if (s := _standard(r, fault, healthy, instruments)) is not None]
+    u, total = own
+    earlier = [s[0] for r in before if (s := _standard(r, fault, healthy, instruments)) is not None]
     mean, shrink = _conditioned(earlier, rho)
     sigma = total * shrink
     # A bound above (">5 Gohm") speaks only of what lies beyond it.

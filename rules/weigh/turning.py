@@ -22,7 +22,7 @@ from rules.weigh.wording import figure, title, values_of
 
 _TRIED = 5  # proposals that are looked at
 _SHOWN = 3
-_OPEN_OHM = 1e8
+_OPEN_OHM = 1e8  # a supposed winding above this is typed as open
 
 
 @dataclass(frozen=True)
@@ -144,11 +144,7 @@ def _value_under(
 def _typed(measure: str, number: float) -> Value:
     """A number as it would be typed: three digits in the usual unit."""
     entry = MEASURES[measure]
-    shown = (
-        figure(in_usual_unit(measure, number)) if number < 1e8 or entry.dimension != "resistance" else "open"
-    )
-    if "insulation" in measure:
-        shown = figure(in_usual_unit(measure, number))
-    return parse_value(
-        f"{shown} {entry.usual_unit}" if shown != "open" else "open", dimension=entry.dimension
-    )
+    if entry.dimension == "resistance" and "insulation" not in measure and number >= _OPEN_OHM:
+        return parse_value("open", dimension=entry.dimension)
+    shown = figure(in_usual_unit(measure, number))
+    return parse_value(f"{shown} {entry.usual_unit}", dimension=entry.dimension)

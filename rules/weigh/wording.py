@@ -20,7 +20,7 @@ if TYPE_CHECKING:
     from rules.weigh.information import Leading
     from rules.weigh.posterior import Posterior
 
-_OPEN_OHM = 1e6
+_OPEN_OHM = 1e9  # a winding above this is shown as open
 
 
 def values_of(y: Floats, transform: Transform) -> Floats:
@@ -50,7 +50,7 @@ def amount_text(measure: str, values: Sequence[float], cap: float = math.inf) ->
     """Values of a measure in its usual unit, such as ``15.2 15.9 14.8 A``."""
     entry = MEASURES[measure]
     shown = [
-        "open" if entry.dimension == "resistance" and value > min(_OPEN_OHM * 1e3, 0.9 * cap) else
+        "open" if entry.dimension == "resistance" and value > min(_OPEN_OHM, 0.9 * cap) else
         figure(in_usual_unit(measure, value))
         for value in values
     ]  # fmt: skip
