@@ -21,7 +21,7 @@ from rules.knowledge import Knowledge
 from rules.weigh.fitting import QUICK, fit_modes
 from rules.weigh.frame import Frame, frame
 from rules.weigh.instruments import instrument_errors
-from rules.weigh.laplace import Fit, without
+from rules.weigh.laplace import Fit, fit_of, without
 from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, in_usual_unit, outlooks, untransform
 from rules.weigh.soft import shape, spread_of
@@ -94,18 +94,7 @@ def _basis(twin: Twin, posterior: Posterior | None) -> tuple[Frame, Fit]:
     place = next(h.place for h in posterior.hypotheses if h.fault == "healthy")
     sound = sum(p for h, p in zip(posterior.hypotheses, posterior.share(), strict=True) if h.place == place)
     if sound >= _TRUST_BELOW:
-        fit, one = posterior.fit, slice(place, place + 1)
-        return posterior.data, Fit(
-            z=fit.z[one],
-            evidence=fit.evidence[one],
-            predicted=fit.predicted[one],
-            slope=fit.slope[one],
-            covariance=fit.covariance[one],
-            log_likelihood=fit.log_likelihood[one],
-            stretch=fit.stretch[one],
-            freedom=fit.freedom[one],
-            alive=fit.alive[one],
-        )
+        return posterior.data, fit_of(posterior.fit, place)
     supply = frame([s for s in posterior.data.seen if s.ask.measure in _SUPPLY])
     return supply, fit_modes(twin, healthy, supply, heat=QUICK)
 

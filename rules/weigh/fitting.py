@@ -200,5 +200,4 @@ def _finish(fitter: Fitter, search: _Search, active: NDArray[np.int64], rows: ND
         log_likelihood=-fitter.reading_cost(fitter.residual(search.y)) + constants,
         stretch=0.5 * (search.z**2).sum(axis=1) + plate_cost(search.plate),
         freedom=freedom,
-        alive=np.isin(np.arange(count), rows),
     )

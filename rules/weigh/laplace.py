@@ -28,7 +28,7 @@ class Fit:
     z: Floats
     """Most probable latents, (modes, dim)."""
     evidence: Floats
-    """Log evidence of each mode, constants included, (modes,)."""
+    """Log evidence of each mode, constants included, (modes,); a bound where a mode was given up early."""
     predicted: Floats
     """Transformed prediction at the fit, (modes, m)."""
     slope: Floats
@@ -41,8 +41,6 @@ class Fit:
     """Half the squared distance of the latents from typical, plate misfit included, (modes,)."""
     freedom: Floats
     """Half the log determinant: what the data took away from the latents' freedom, (modes,)."""
-    alive: NDArray[np.bool_]
-    """False where a mode was given up early as hopeless; its evidence is then a bound."""
 
 
 def plate_cost(misfit: Floats) -> Floats:
@@ -146,6 +144,11 @@ def without(fit: Fit, data: Frame, row: int, group: slice) -> tuple[Floats, Floa
     middle = np.eye(len(r)) / w - j @ covariance @ j.T
     covariance = covariance + covariance @ j.T @ np.linalg.solve(middle, j @ covariance)
     return z - covariance @ (j.T @ (w * r)), covariance
+
+
+def fit_of(fit: Fit, row: int) -> Fit:
+    """The fit of one mode alone."""
+    return Fit(**{name: getattr(fit, name)[row : row + 1] for name in Fit.__dataclass_fields__})
 
 
 def join_fits(one: Fit, other: Fit) -> Fit:
