@@ -7,11 +7,9 @@ from pathlib import Path
 
 import pytest
 
-from calc.sheet_io import sheet_from_plain
-from casebook.book import open_casebook
 from tests.system.faults import Disk
 from tests.system.openssh import Server, serving
-from tests.tui.helpers import KIT, MACHINE, known_machine, new_app
+from tests.tui.helpers import known_machine, new_app, open_case_in, remember
 from tests.tui.terminal import Terminal
 from tui.drafts import Drafts
 
@@ -30,9 +28,7 @@ def book(server: Server) -> Path:
     """A casebook on the server with one known machine, the technician known."""
     app = known_machine(new_app(server.folder / "book"))
     app.desk.close()
-    drafts = Drafts(server.casebook)
-    drafts.remember("person", "R. Varga")
-    drafts.remember("kit", KIT)
+    remember(server.casebook)
     return server.casebook
 
 
@@ -59,14 +55,7 @@ def disk(tmp_path: Path) -> Iterator[Disk]:
 @pytest.fixture
 def casebook(tmp_path: Path, disk: Disk) -> Path:
     """A casebook with one open case and a known technician."""
-    path = disk.folder / "shop" / "casebook.db"
-    sheet = sheet_from_plain({"format": 1, "machine": {"tag": "P-104", **MACHINE}, "complaint": "runs_hot"})
-    with open_casebook(path) as book:
-        book.log_sheet(sheet, "R. Varga")
-    drafts = Drafts(path)
-    drafts.remember("person", "R. Varga")
-    drafts.remember("kit", KIT)
-    return path
+    return open_case_in(disk.folder / "shop" / "casebook.db")
 
 
 @pytest.fixture

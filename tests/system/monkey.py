@@ -17,6 +17,7 @@ from tests.system.keyboard import Keys, Lines
 ROOT = Path(__file__).resolve().parents[2]
 WATCHED = Path(__file__).with_name("watched.py")
 PATIENCE_S = 60.0
+USUAL = (80, 24)
 FULL_SCREEN = b"\x1b[?1049h"
 MOST_BYTES = 300_000
 """What is kept of the newest output, to be looked at when something went wrong."""
@@ -47,7 +48,7 @@ class Monkey:
         self.raw = b""
         self.received = 0
         self.outcome = Outcome()
-        self.columns, self.rows = 80, 24
+        self.columns, self.rows = USUAL
         self.process = self.start()
 
     def environment(self) -> dict[str, str]:
@@ -66,7 +67,6 @@ class Monkey:
             str(self.home),
             "--casebook",
             str(self.casebook),
-            *self.arguments,
         ]
         process = pexpect.spawn(
             sys.executable, [*command, *self.arguments], env=self.environment(), cwd=self.home,
@@ -115,7 +115,8 @@ class Monkey:
         self.wait_until_it_stands()
         while time.monotonic() < end:
             if self.keys.chance.random() < 0.04:
-                self.resize()
+                self.resize(self.keys.size())
+                self.outcome.resizes += 1
             for pause, piece in self.keys.burst():
                 if pause:
                     self.pump(pause)
@@ -133,10 +134,9 @@ class Monkey:
         self.ended()
         return self.outcome
 
-    def resize(self) -> None:
-        """Give the window another size."""
-        self.columns, self.rows = self.keys.size()
-        self.outcome.resizes += 1
+    def resize(self, size: tuple[int, int]) -> None:
+        """Give the window another size, in columns and rows; the process may just have ended."""
+        self.columns, self.rows = size
         try:
             self.process.setwinsize(self.rows, self.columns)
         except OSError:
@@ -165,8 +165,7 @@ class Monkey:
     def leave(self) -> None:
         """Leave by its own key, and say yes where it asks."""
         self.note_memory()
-        self.columns, self.rows = 80, 24
-        self.resize_to_usual()
+        self.resize(USUAL)
         end = time.monotonic() + PATIENCE_S
         self.send(b"\x1b[201~")
         while time.monotonic() < end:
@@ -177,13 +176,6 @@ class Monkey:
             if not self.pump(0.3):
                 return
         raise AssertionError(f"it cannot be left\n{self.story()}")
-
-    def resize_to_usual(self) -> None:
-        """Give the window the size of a usual terminal."""
-        try:
-            self.process.setwinsize(self.rows, self.columns)
-        except OSError:
-            return
 
     def ended(self) -> None:
         """See that it left by its own key and left the terminal as it was."""

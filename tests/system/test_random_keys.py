@@ -16,9 +16,8 @@ import pytest
 from casebook.book import open_casebook
 from rules.loading import load_knowledge
 from tests.system.monkey import Monkey, PlainMonkey
-from tests.tui.helpers import KIT
+from tests.tui.helpers import remember
 from tui.demo.build import build
-from tui.drafts import Drafts
 
 SHORT_S, LONG_S = 20.0, 600.0
 SEED = int(os.environ.get("PLATESIDE_FUZZ_SEED", "7"))
@@ -44,9 +43,7 @@ def home(tmp_path: Path, plant: Path) -> Iterator[Path]:
     home = tmp_path / "home"
     (home / "tmp").mkdir(parents=True)
     shutil.copyfile(plant, home / "plant.db")
-    drafts = Drafts(home / "plant.db")
-    drafts.remember("person", "R. Varga")
-    drafts.remember("kit", KIT)
+    remember(home / "plant.db")
     yield home
 
 

@@ -6,6 +6,8 @@ from typing import NamedTuple
 
 import pytest
 
+from casebook.book import open_casebook
+from rules.loading import load_knowledge
 from tui.cli import main
 from tui.drafts import Drafts
 
@@ -28,6 +30,19 @@ def casebook(tmp_path, monkeypatch):
     monkeypatch.setenv("XDG_STATE_HOME", str(tmp_path / "state"))
     monkeypatch.delenv("PLATESIDE_RULES", raising=False)
     return path
+
+
+@pytest.fixture(scope="session")
+def knowledge():
+    """The shipped rules, loaded once."""
+    return load_knowledge()
+
+
+@pytest.fixture
+def book(casebook):
+    """That casebook, open."""
+    with open_casebook(casebook) as opened:
+        yield opened
 
 
 @pytest.fixture

@@ -13,9 +13,11 @@ from textual.keys import _character_to_key
 from textual.pilot import Pilot
 
 from calc.sheet_io import sheet_from_plain
+from casebook.book import open_casebook
 from rules.knowledge import Knowledge
 from rules.loading import load_knowledge
 from tui.application import PlatesideApp
+from tui.drafts import Drafts
 from tui.screens.worksheet import Worksheet
 
 SMALL, LARGE = (80, 24), (120, 40)
@@ -69,10 +71,25 @@ async def keys(pilot: Pilot[Any], *names: str) -> None:
 
 
 def known_machine(app: PlatesideApp, tag: str = "P-104") -> PlatesideApp:
-    """Put one closed-looking earlier case of a machine into the casebook."""
+    """Put one earlier case of a machine into the casebook."""
     sheet = sheet_from_plain({"format": 1, "machine": {"tag": tag, **MACHINE}, "complaint": "routine_check"})
     app.desk.book.log_sheet(sheet, "R. Varga")
     return app
+
+
+def open_case_in(path: Path) -> Path:
+    """Make a casebook with one open case and a known technician; return its path."""
+    sheet = sheet_from_plain({"format": 1, "machine": {"tag": "P-104", **MACHINE}, "complaint": "runs_hot"})
+    with open_casebook(path) as book:
+        book.log_sheet(sheet, "R. Varga")
+    remember(path)
+    return path
+
+
+def remember(path: Path) -> None:
+    """Have the technician and the kit known beside a casebook."""
+    Drafts(path).remember("person", "R. Varga")
+    Drafts(path).remember("kit", KIT)
 
 
 async def until(pilot: Pilot[Any], words: str | tuple[str, ...]) -> str:

@@ -8,19 +8,7 @@ from calc.sheet_io import read_sheet, sheet_from_plain
 from casebook import bodies
 from casebook.book import open_casebook
 from rules.answer import Diagnosis, FaultOdds
-from rules.loading import load_knowledge
 from tui.compose import Visit, moved
-
-
-@pytest.fixture(scope="module")
-def knowledge():
-    return load_knowledge()
-
-
-@pytest.fixture
-def book(casebook):
-    with open_casebook(casebook) as opened:
-        yield opened
 
 
 @pytest.fixture

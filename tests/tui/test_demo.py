@@ -3,22 +3,14 @@
 import os
 from pathlib import Path
 
-import pytest
-
 from calc.sheet_io import read_sheet
 from casebook.book import open_casebook
-from rules.loading import load_knowledge
 from tui.commands.demo import sweep
 from tui.compose import weigh
 from tui.demo.build import SHEETS, build, plan, sheet_of
 
 PLAN = plan()
 CLOSED = [one for one in PLAN if one.found]
-
-
-@pytest.fixture(scope="module")
-def knowledge():
-    return load_knowledge()
 
 
 def test_every_sheet_is_in_the_plan_once_and_every_plan_has_its_sheet():

@@ -2,6 +2,7 @@
 
 import os
 import stat
+from pathlib import Path
 
 import pytest
 from hypothesis import given
@@ -46,7 +47,7 @@ def test_a_damaged_draft_is_no_draft(drafts):
 
 @given(st.text(min_size=1, max_size=60))
 def test_the_name_of_a_draft_never_leads_out_of_its_folder(name):
-    drafts = Drafts(__import__("pathlib").Path("/somewhere/casebook.db"))
+    drafts = Drafts(Path("/somewhere/casebook.db"))
     assert drafts._path(name).resolve().parent == drafts.folder.resolve()
 
 

@@ -10,11 +10,9 @@ from pathlib import Path
 
 import pytest
 
-from calc.sheet_io import sheet_from_plain
 from casebook.book import open_casebook
-from tests.tui.helpers import KIT, MACHINE
+from tests.tui.helpers import open_case_in, remember
 from tests.tui.terminal import ROOT, Terminal, Tmux
-from tui.drafts import Drafts
 
 pytestmark = pytest.mark.system
 F4, F8, F9 = "\x1b[14~", "\x1b[19~", "\x1b[20~"
@@ -24,14 +22,7 @@ CTRL_G, CTRL_L = "\x07", "\x0c"
 @pytest.fixture
 def casebook(tmp_path: Path) -> Path:
     """A casebook with one open case and a known technician."""
-    path = tmp_path / "casebook.db"
-    sheet = sheet_from_plain({"format": 1, "machine": {"tag": "P-104", **MACHINE}, "complaint": "runs_hot"})
-    with open_casebook(path) as book:
-        book.log_sheet(sheet, "R. Varga")
-    drafts = Drafts(path)
-    drafts.remember("person", "R. Varga")
-    drafts.remember("kit", KIT)
-    return path
+    return open_case_in(tmp_path / "casebook.db")
 
 
 @pytest.fixture
@@ -198,8 +189,7 @@ def test_the_screen_is_the_same_with_and_without_the_cell_diffing_driver(
         own = casebook.with_name(f"{len(shown)}.db")  # what is typed stays there as a draft
         with open_casebook(casebook) as book:
             book.safe_copy(own)
-        Drafts(own).remember("person", "R. Varga")
-        Drafts(own).remember("kit", KIT)
+        remember(own)
         terminal = Terminal(own, command=[*command, str(own)])
         started.append(terminal)
         terminal.wait("P-104")

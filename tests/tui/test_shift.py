@@ -5,29 +5,15 @@ from __future__ import annotations
 from datetime import UTC, datetime, timedelta
 
 import msgspec
-import pytest
 
 from calc.sheet_io import read_sheet
 from casebook import bodies
-from casebook.book import open_casebook
 from rules.gate import gate
-from rules.loading import load_knowledge
 from tui.compose import Visit
 from tui.shift import gate_now, recent_sheet
 
 NOW = datetime.now(UTC)
 PROVED = bodies.Isolation(by="Ines", locked_out=True, proved_dead=True)
-
-
-@pytest.fixture(scope="module")
-def knowledge():
-    return load_knowledge()
-
-
-@pytest.fixture
-def book(casebook):
-    with open_casebook(casebook) as opened:
-        yield opened
 
 
 def visit_of(book, knowledge, sheet, *, hours_ago=0.0):

@@ -7,7 +7,7 @@ from pathlib import Path
 from calc.sheet_io import sheet_from_plain
 from casebook.bodies import Closed
 from tests.tui.helpers import SMALL, keys, known_machine, new_app, settled, until
-from tests.tui.visit import absent, at_worksheet, flat, to_worksheet
+from tests.tui.visit import absent, at_worksheet, flat, single_phase_case, to_worksheet
 from tui.screens.worksheet import Worksheet
 
 
@@ -88,21 +88,7 @@ async def test_back_emf_of_a_dc_machine_is_drawn_over_speed(tmp_path: Path):
 async def test_torque_of_a_single_phase_machine_is_drawn_with_where_its_switch_opens(
     tmp_path: Path,
 ):
-    app = new_app(tmp_path)
-    plate = {
-        "power": "1.5 hp",
-        "voltage": "230 V",
-        "current": "8.4 A",
-        "speed": "1725 rpm",
-        "frequency": "60 Hz",
-    }
-    machine = {
-        "tag": "K-12",
-        "kind": "induction_1ph",
-        "nameplate": {**plate, "start_capacitor": "161-193 uF"},
-    }
-    sheet = {"format": 1, "machine": machine, "complaint": "hums_will_not_turn"}
-    app.desk.book.log_sheet(sheet_from_plain(sheet), "R. Varga")
+    app = single_phase_case(new_app(tmp_path))
     async with app.run_test(size=SMALL) as pilot:
         await until(pilot, "K-12")
         await keys(pilot, "enter")

@@ -4,9 +4,8 @@ from __future__ import annotations
 
 from pathlib import Path
 
-from calc.sheet_io import sheet_from_plain
 from tests.tui.helpers import SMALL, keys, new_app, screen_text, settled, until
-from tests.tui.visit import at_worksheet, newest
+from tests.tui.visit import at_worksheet, newest, single_phase_case
 
 
 async def test_an_isolated_reading_waits_for_the_isolation_record(tmp_path: Path):
@@ -67,17 +66,7 @@ async def test_what_is_tried_by_hand_on_the_isolated_machine_waits_for_the_isola
 
 
 async def test_the_isolation_record_of_a_single_phase_machine_wants_its_capacitors_discharged(tmp_path: Path):
-    app = new_app(tmp_path)
-    plate = {
-        "power": "1.5 hp",
-        "voltage": "230 V",
-        "current": "8.4 A",
-        "frequency": "60 Hz",
-        "speed": "1725 rpm",
-    }
-    machine = {"tag": "K-12", "kind": "induction_1ph", "nameplate": plate}
-    sheet = {"format": 1, "machine": machine, "complaint": "hums_will_not_turn"}
-    app.desk.book.log_sheet(sheet_from_plain(sheet), "R. Varga")
+    app = single_phase_case(new_app(tmp_path))
     async with app.run_test(size=SMALL) as pilot:
         await until(pilot, "K-12")
         await keys(pilot, "enter")
