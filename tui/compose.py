@@ -14,6 +14,8 @@ import msgspec
 
 from calc.quantities import ENERGISED_STATES
 from casebook import bodies
+from rules.answer import NextItem
+from rules.cautions import states_of
 from rules.findings import findings
 from tui.context import split_context
 from tui.experience import Experience
@@ -130,6 +132,10 @@ class Visit:
         """Return what may be noted with a reading, such as ``temperature``; what decides is first."""
         rule = self.knowledge.readings.get(measure)
         return rule.context if rule is not None else ()
+
+    def is_by_hand(self, observation: str) -> bool:
+        """Whether an observation is made on the isolated machine alone."""
+        return states_of(NextItem(observation=observation), self.knowledge) == {"isolated"}
 
     def record(self, understood: Understood) -> str:
         """Store a reading that was echoed, with the band and the limit that stood beside it."""

@@ -164,9 +164,7 @@ def _observe(visit: Visit, observation: str, answer: str) -> bool:
     if answer.lower() not in YES + NO:
         tell("Answer yes or no, or skip; read takes another reading.")
         return False
-    known = visit.knowledge.observations.get(observation)
-    by_hand = known is not None and known.states == ("isolated",)
-    if by_hand and not _first(visit, "", "isolated", ()):
+    if visit.is_by_hand(observation) and not _first(visit, "", "isolated", ()):
         return False
     visit.observe(observation, answer.lower() in YES)
     return True

@@ -10,7 +10,6 @@ from textual.widgets import Static
 from textual.worker import get_current_worker
 
 from rules.answer import NextItem
-from rules.cautions import states_of
 from tui.context import values_wanted
 from tui.keys import bindings
 from tui.look import FAINT, STOP, STRONG, WATCH
@@ -183,7 +182,7 @@ class Worksheet(WorksheetTyping):
         if item is None:
             return ""
         if item.state is None:
-            by_hand = states_of(item, self.visit.knowledge) == {"isolated"}
+            by_hand = self.visit.is_by_hand(str(item.observation))
             return self.visit.wants_first("isolated", ()) if by_hand else ""
         if (
             self.gate_now is not None
