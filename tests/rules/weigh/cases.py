@@ -3,6 +3,7 @@
 import random
 from functools import cache
 
+import msgspec
 import numpy as np
 
 from calc.induction_3ph import fit
@@ -207,3 +208,13 @@ def numbers_of(thing: object) -> list[float]:
     if isinstance(thing, list | tuple):
         return [n for part in thing for n in numbers_of(part)]
     return [n for name in thing.__struct_fields__ for n in numbers_of(getattr(thing, name))]
+
+
+def apart(one, other):
+    """The largest difference between two tables of odds."""
+    return max(abs(one.get(k, 0.0) - other.get(k, 0.0)) for k in one.keys() | other.keys())
+
+
+def with_readings(sheet, readings):
+    """A sheet with other readings."""
+    return msgspec.structs.replace(sheet, readings=tuple(readings))
