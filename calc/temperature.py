@@ -1,4 +1,4 @@
-"""Readings brought to one temperature: winding resistance, temperature rise, insulation resistance."""
+"""Readings brought to one temperature: winding resistance and insulation resistance."""
 
 from __future__ import annotations
 
@@ -66,50 +66,6 @@ def winding_resistance_at(
         if not temperature_c > -k:
             raise RangeError(name, temperature_c, f"above {-k:g} degC")
     return resistance_ohm * (k + wanted_c) / (k + measured_c)
-
-
-def rise_by_resistance_k(
-    *, cold_ohm: float, hot_ohm: float, cold_c: float, ambient_c: float, conductor: Conductor = "copper"
-) -> float:
-    r"""Return the temperature rise of a winding from its cold and its hot resistance.
-
-    Parameters
-    ----------
-    cold_ohm, hot_ohm : float
-        Resistance of the same winding, cold and at the end of the run. [ohm]
-    cold_c : float
-        Winding temperature at the cold reading. [degC]
-    ambient_c : float
-        Coolant temperature at the end of the run. [degC]
-    conductor : str
-        copper or aluminium.
-
-    Returns
-    -------
-    float
-        Rise over the coolant. [K]
-
-    Raises
-    ------
-    RangeError
-        If a resistance is not above zero, or ``cold_c`` not above the inferred zero.
-
-    Notes
-    -----
-    .. math:: \Delta\theta = \left(\frac{R_2}{R_1} - 1\right)(k + \theta_1) + \theta_1 - \theta_a
-
-    References
-    ----------
-    .. [1] IEC 60034-1, rise by resistance (from memory).
-
-    """
-    k = _inferred_zero(conductor)
-    for name, resistance in (("cold_ohm", cold_ohm), ("hot_ohm", hot_ohm)):
-        if not 0.0 < resistance < math.inf:
-            raise RangeError(name, resistance, "above zero")
-    if not cold_c > -k:
-        raise RangeError("cold_c", cold_c, f"above {-k:g} degC")
-    return (hot_ohm / cold_ohm - 1.0) * (k + cold_c) + cold_c - ambient_c
 
 
 def insulation_system(insulation_class: str | None) -> System | None:

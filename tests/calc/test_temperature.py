@@ -10,7 +10,6 @@ from calc.errors import RangeError
 from calc.temperature import (
     insulation_at_40_c,
     insulation_system,
-    rise_by_resistance_k,
     winding_resistance_at,
 )
 
@@ -24,13 +23,6 @@ def test_a_correction_and_its_reverse_cancel(resistance_ohm, measured_c, wanted_
     there = winding_resistance_at(resistance_ohm=resistance_ohm, measured_c=measured_c, wanted_c=wanted_c)
     back = winding_resistance_at(resistance_ohm=there, measured_c=wanted_c, wanted_c=measured_c)
     assert back == pytest.approx(resistance_ohm, rel=1e-12)
-
-
-@given(st.floats(0.01, 100.0), st.floats(-20.0, 60.0), st.floats(0.0, 150.0), st.floats(-20.0, 60.0))
-def test_the_rise_is_the_temperature_that_the_resistance_law_gives_back(cold_ohm, cold_c, rise_k, ambient_c):
-    hot_ohm = winding_resistance_at(resistance_ohm=cold_ohm, measured_c=cold_c, wanted_c=ambient_c + rise_k)
-    found = rise_by_resistance_k(cold_ohm=cold_ohm, hot_ohm=hot_ohm, cold_c=cold_c, ambient_c=ambient_c)
-    assert found == pytest.approx(rise_k, abs=1e-8)
 
 
 @given(st.floats(0.0, 1e12), st.floats(10.0, 85.0))
@@ -58,7 +50,6 @@ def test_the_class_tells_the_system_or_nothing():
         lambda: winding_resistance_at(resistance_ohm=-1.0, measured_c=20.0, wanted_c=40.0),
         lambda: winding_resistance_at(resistance_ohm=1.0, measured_c=-240.0, wanted_c=40.0),
         lambda: winding_resistance_at(resistance_ohm=1.0, measured_c=20.0, wanted_c=40.0, conductor="silver"),
-        lambda: rise_by_resistance_k(cold_ohm=0.0, hot_ohm=1.0, cold_c=20.0, ambient_c=20.0),
         lambda: insulation_at_40_c(insulation_ohm=math.nan, winding_c=40.0),
         lambda: insulation_at_40_c(insulation_ohm=1.0, winding_c=40.0, system="paper"),
     ],
