@@ -5,12 +5,9 @@ from __future__ import annotations
 import shutil
 import sys
 import time
-from typing import TYPE_CHECKING, Final, TextIO
+from typing import Final
 
 from tui.harmless import ascii_only, harmless, width
-
-if TYPE_CHECKING:
-    from collections.abc import Callable
 
 CELLS: Final = 16
 EVERY_S: Final = 0.1
@@ -19,13 +16,10 @@ EVERY_S: Final = 0.1
 class Bar:
     """One line on standard error; where that is no terminal nothing is drawn."""
 
-    def __init__(
-        self, name: str, *, stream: TextIO | None = None, clock: Callable[[], float] = time.monotonic
-    ) -> None:
+    def __init__(self, name: str) -> None:
         self._name = ascii_only(harmless(name, limit=20))
-        self._stream = stream if stream is not None else sys.stderr
+        self._stream = sys.stderr
         self.is_seen = self._stream.isatty()
-        self._clock = clock
         self._next = 0.0
         self._drawn = 0
         self._stage = ""
@@ -33,9 +27,9 @@ class Bar:
     def show(self, stage: str, done: int, of: int) -> None:
         """Draw how far a stage is, a few times a second; ``of`` 0 is not known."""
         is_news = stage != self._stage or done >= of > 0
-        if not self.is_seen or (self._clock() < self._next and not is_news):
+        if not self.is_seen or (time.monotonic() < self._next and not is_news):
             return
-        self._stage, self._next = stage, self._clock() + EVERY_S
+        self._stage, self._next = stage, time.monotonic() + EVERY_S
         self._draw(f"{self._name}: {stage} {_gauge(done, of)}")
 
     def end(self) -> None:

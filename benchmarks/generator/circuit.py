@@ -273,10 +273,10 @@ def _network(feeder: Feeder, wound: Wound) -> tuple[Complexes, Complexes]:
     return nodal, injected
 
 
-def balanced(volts: float, hertz: float, *, cable: complex = 1e-3) -> Feeder:
+def balanced(volts: float, hertz: float) -> Feeder:
     """Return a stiff, balanced supply of some line-to-line voltage."""
     emf = volts / np.sqrt(3) * np.array([1, TURN**2, TURN])
-    return Feeder(emf_v=emf, hertz=hertz, source_ohm=1e-6 + 1e-6j, cable_ohm=cable)
+    return Feeder(emf_v=emf, hertz=hertz, source_ohm=1e-6 + 1e-6j, cable_ohm=1e-3)
 
 
 def joined_as_rated(machine: Winding, **more: object) -> Wound:

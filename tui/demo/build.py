@@ -50,9 +50,9 @@ def sheet_of(planned: Planned) -> CaseSheet:
     return read_sheet(SHEETS / f"{planned.sheet}.yaml")
 
 
-def build(path: Path, knowledge: Knowledge, *, today: datetime | None = None) -> int:
+def build(path: Path, knowledge: Knowledge) -> int:
     """Write the plant's casebook to a new file; return the number of cases."""
-    now = today or datetime.now().astimezone()
+    now = datetime.now().astimezone()
     planned = plan()
     with open_casebook(path) as book, book.store.atomic():
         for one in planned:

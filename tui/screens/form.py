@@ -56,7 +56,7 @@ class FormPage(Page[Answer]):
         self.texts: dict[str, str] = {}
         self.at = 0
         self.top = 0
-        self.said: Heard = ("", True)
+        self.said = ""
         self.below: list[Content] = []
         """What was said last and the remarks, as they were when the typing rested."""
         self.resting: Timer | None = None
@@ -163,9 +163,7 @@ class FormPage(Page[Answer]):
 
     def remark_lines(self) -> list[Content]:
         """Return what was said last, then the remarks."""
-        said = (
-            rows("note", self.said[0], self.room, style="" if self.said[1] else WATCH) if self.said[0] else []
-        )
+        said = rows("note", self.said, self.room, style=WATCH) if self.said else []
         return [*said, *self.remarks()]
 
     def show_remarks(self) -> None:
@@ -174,11 +172,11 @@ class FormPage(Page[Answer]):
         more = [row("", (f"{left} more line{'s' * (left > 1)}: Down", FAINT))] if left > 0 else []
         self.query_one("#remarks", Ruled).show(self.below or more)
 
-    def say(self, text: str, *, fine: bool = False) -> None:
+    def say(self, text: str) -> None:
         """Say something below the form; it stays until something else is typed."""
         if self.resting is not None:
             self.resting.stop()
-        self.said = (text, fine)
+        self.said = text
         self.show_all()
 
     # typing
@@ -199,7 +197,7 @@ class FormPage(Page[Answer]):
 
     def rest(self) -> None:
         """Show the remarks on what is typed."""
-        self.said = ("", True)
+        self.said = ""
         self.show_all()
 
     def entered(self, text: str) -> None:
