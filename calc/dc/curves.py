@@ -6,14 +6,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from calc.curve_bands import PERCENTILES, ROWS
 from calc.dc.model import DcTwin
 from calc.twin import Ask, Floats
 
-ROWS = 200
-"""Machines drawn from what the plate leaves open."""
 POINTS = 31
-LOW, MIDDLE, HIGH = 5.0, 50.0, 95.0
-"""Percentiles of a band: nine in ten machines lie inside."""
 BEYOND = 1.15
 """The highest speed that is drawn, over the speed in the state."""
 
@@ -68,5 +65,5 @@ def emf_curve(twin: DcTwin, *, state: str = "loaded", seed: int = 1) -> EmfCurve
     slope = emf[turns] / speed[turns]
     middle = float(np.median(speed[turns]))
     grid = np.linspace(0.0, BEYOND * middle, POINTS)
-    low, mid, high = (np.percentile(slope, share) * grid for share in (LOW, MIDDLE, HIGH))
+    low, mid, high = (np.percentile(slope, share) * grid for share in PERCENTILES)
     return EmfCurve(grid, (low, mid, high), middle, float(np.median(slope)) * middle)

@@ -7,17 +7,14 @@ from typing import Final
 
 import numpy as np
 
+from calc.curve_bands import ROWS, band
 from calc.induction_1ph import priors
 from calc.induction_1ph.machine import connect, run_at
 from calc.induction_1ph.model import SinglePhaseTwin
 from calc.induction_1ph.states import Attributes, Site, auxiliary_path, settle
 from calc.twin import Floats
 
-ROWS: Final = 200
-"""Machines drawn from what the plate leaves open."""
 POINTS: Final = 61
-LOW, MIDDLE, HIGH = 5.0, 50.0, 95.0
-"""Percentiles of a band: nine in ten machines lie inside."""
 SWITCH_OPENS: Final = 0.75
 """Share of the synchronous speed at which a start switch opens; 0.70 to 0.80 is usual (common practice)."""
 _ROUNDS: Final = 3
@@ -76,13 +73,13 @@ def speed_curves(twin: SinglePhaseTwin, *, seed: int = 1) -> SpeedCurves:
     columns = [_at(site, attributes, slip=float(slip)) for slip in slips]
     torque_w, current_a = (np.stack(part, axis=1) for part in zip(*columns, strict=True))
     plate = twin.plate
-    synchronous_rpm = 120.0 * plate.frequency_hz / plate.poles
+    synchronous_rpm = plate.synchronous_rpm
     omega = synchronous_rpm * 2.0 * np.pi / 60.0
     rated_rpm = synchronous_rpm * (1.0 - float(np.median(site.machine.slip)))
     return SpeedCurves(
         speed_rpm=synchronous_rpm * (1.0 - slips),
-        torque_nm=_band(torque_w / omega),
-        current_a=_band(current_a),
+        torque_nm=band(torque_w / omega),
+        current_a=band(current_a),
         rated_speed_rpm=rated_rpm,
         rated_torque_nm=plate.power_w / (rated_rpm * 2.0 * np.pi / 60.0),
         switch_rpm=SWITCH_OPENS * synchronous_rpm if float(np.mean(site.has_switch)) > 0.5 else None,
@@ -111,9 +108,3 @@ def _at(site: Site, attributes: Attributes, *, slip: float) -> tuple[Floats, Flo
         currents, _volt = run_at(connected, everywhere, emf)
         emf = np.abs(currents.forward_emf)
     return currents.torque_w - machine.friction_w, np.abs(currents.main + currents.auxiliary)
-
-
-def _band(values: Floats) -> tuple[Floats, Floats, Floats]:
-    """Return the low, middle and high percentiles over the rows."""
-    low, middle, high = np.percentile(values, [LOW, MIDDLE, HIGH], axis=0)
-    return low, middle, high

@@ -7,16 +7,13 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from calc.curve_bands import ROWS, band
 from calc.induction_3ph.equivalent import Circuit, circuit
 from calc.induction_3ph.model import InductionTwin
 from calc.induction_3ph.plate import LATENTS
 from calc.twin import Floats
 
-ROWS = 200
-"""Machines drawn from what the plate leaves open."""
 POINTS = 61
-LOW, MIDDLE, HIGH = 5.0, 50.0, 95.0
-"""Percentiles of a band: nine in ten machines lie inside."""
 
 
 @dataclass(frozen=True)
@@ -74,8 +71,8 @@ def speed_curves(twin: InductionTwin, *, seed: int = 1) -> SpeedCurves:
     rated_rpm = base.synchronous_rpm * (1.0 - base.slip)
     return SpeedCurves(
         speed_rpm=base.synchronous_rpm * (1.0 - slip),
-        torque_nm=_band(torque),
-        current_a=_band(current * base.current_a),
+        torque_nm=band(torque),
+        current_a=band(current * base.current_a),
         rated_speed_rpm=rated_rpm,
         rated_torque_nm=base.power_w / (rated_rpm * 2.0 * math.pi / 60.0),
     )
@@ -98,9 +95,3 @@ def _over_slip(machine: Circuit, slip: Floats) -> tuple[Floats, Floats]:
     current = 1.0 / (column["r1"] + 1j * x1 + 1.0 / inner)
     rotor_current = current / inner / rotor
     return np.abs(rotor_current) ** 2 * r2 / slip, np.abs(current)
-
-
-def _band(values: Floats) -> tuple[Floats, Floats, Floats]:
-    """Return the low, middle and high percentiles over the rows."""
-    low, middle, high = np.percentile(values, [LOW, MIDDLE, HIGH], axis=0)
-    return low, middle, high
