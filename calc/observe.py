@@ -52,7 +52,6 @@ class Seen:
     sigma: Floats
     transform: Transform
     present: tuple[int, ...]
-    centre: float = 0.0
 
     def project(self, predicted: Floats) -> Floats:
         """Bring a prediction of shape (rows, arity) into the space of ``y``: (rows, m)."""

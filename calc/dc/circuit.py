@@ -127,13 +127,6 @@ def _losses(rotating: Floats, speed: Floats) -> Floats:
     return np.asarray(rotating * (FRICTION_SHARE + (1.0 - FRICTION_SHARE) * np.minimum(speed, 4.0)))
 
 
-def power_balance(armature: Armature, point: Point) -> tuple[Floats, Floats]:
-    """Return input, and the sum of copper loss, brush loss and air-gap power, of rated V times A."""
-    given = armature.volts * point.current
-    lost = point.current**2 * armature.resistance + armature.brush * point.current
-    return np.asarray(given), np.asarray(lost + armature.emf * point.flux * point.speed * point.current)
-
-
 def field_circuit(
     *, supply_v: Floats, held_a: Floats, held: Floats, series_ohm: Floats, winding_ohm: Floats
 ) -> tuple[Floats, Floats]:
