@@ -10,8 +10,8 @@ import msgspec
 class Band(msgspec.Struct, frozen=True, kw_only=True):
     """What the healthy machine should read: 90 % of such machines lie between low and high.
 
-    Numbers are in ``unit``, the usual unit of the measure. ``temperature`` (degC) or
-    ``speed`` (rpm) is the condition that the band is for, where there is one.
+    Numbers are in ``unit``, the usual unit of the measure. ``temperature_c`` or
+    ``speed_rpm`` is the condition that the band is for, where there is one.
     """
 
     measure: str
