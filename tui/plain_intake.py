@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+import re
+from typing import TYPE_CHECKING, Final
 
 from calc.errors import InputError, PlatesideError
 from calc.quantities import KINDS
@@ -21,6 +22,9 @@ if TYPE_CHECKING:
     from rules.knowledge import Knowledge
     from tui.drafts import Drafts
     from tui.plate_lines import Raw
+
+CASE_NUMBER: Final = re.compile(r"C-[0-9A-Z]{6,12}", re.IGNORECASE)
+"""A number as it is shown; a machine's tag may begin with ``C-`` too, as C-5 compressor does."""
 
 
 def ask_case(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit:
@@ -42,7 +46,7 @@ def ask_case(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) 
 def _named(book: Casebook, drafts: Drafts, person: str, knowledge: Knowledge) -> Visit | Begun | None:
     """Ask for a machine or a case: an open case, or a new one that is begun; None where it is neither."""
     name = ask("Machine tag for a new case, or number of an open case")
-    if not name.upper().startswith("C-"):
+    if not CASE_NUMBER.fullmatch(name):
         return Begun(tag=name, name=drafts.free_name(DRAFT)) if name else None
     try:
         return Visit(book, book.case_id(name), person=person, knowledge=knowledge)

@@ -28,6 +28,19 @@ def test_a_whole_case_from_a_known_tag_to_the_closing(talk, known, kit, casebook
     assert case.kit == tuple(kit)
 
 
+def test_a_tag_that_begins_as_a_case_number_does_is_a_tag(talk, kit, casebook):
+    lines = ["" for _ in plate_lines("induction_1ph")]
+    talk("Ines", "C-5 compressor", "induction_1ph", *lines, "hums_will_not_turn")
+    assert newest(casebook).tag == "C-5 compressor"
+
+
+def test_a_case_number_that_no_case_has_is_named_and_opens_none(talk, kit, casebook):
+    done = talk("Ines", "C-777777")
+    assert "there is no case" in done.out + done.err
+    with open_casebook(casebook) as book:
+        assert not book.cases()
+
+
 def test_a_machine_that_is_new_is_asked_for_line_by_line(talk, kit, casebook):
     plate = {"power": "7.5 kW", "voltage": "400", "current": "14.9", "frequency": "50", "connection": "D"}
     lines = [plate.get(line.field, "") for line in plate_lines("induction_3ph")]
