@@ -173,7 +173,7 @@ def no_stop_finding(seen: Evidence) -> Checked:
     """Forbid the states that crossed limits of verdict stop name."""
     stops = [one for one in seen.crossed if one.band.verdict == "stop" and one.limit.shuts]
     if not stops:
-        return Checked("cleared", "no limit of verdict stop is crossed")
+        return Checked("cleared", "no limit that means stop is crossed")
     because = "; ".join(f"{one.band.says or one.limit.name}: {typed(one.at.reading)}" for one in stops)
     states = {state for one in stops for state in one.limit.shuts}
     return Checked("forbids", because, only=() if "any" in states else tuple(sorted(states)))

@@ -128,7 +128,9 @@ def _gate(diagnosis: Diagnosis) -> Iterable[str]:
     marks = {"forbids": "forbids: ", "needed": "still needed: ", "cleared": "cleared: "}
     listed = [line for line in energise.lines if is_shut or line.status == "needed"]
     for line in sorted(listed, key=lambda line: list(marks).index(line.status)):
-        yield marks[line.status] + line.needs + (f" ({line.because})" if line.because else "")
+        because = "" if line.because == line.needs else line.because
+        unmet = "not met: " if line.status == "forbids" and because else ""
+        yield marks[line.status] + unmet + line.needs + (f" ({because})" if because else "")
 
 
 def _findings(diagnosis: Diagnosis) -> Iterable[str]:

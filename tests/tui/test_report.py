@@ -42,6 +42,20 @@ def number(run, sheet):
     return run("log", sheet("pump_overload"), "--person", "Ines").out.split()[0]
 
 
+def test_what_forbids_reads_as_what_is_not_met(run, tmp_path):
+    """A need behind the word forbids alone would read as its contrary; what always forbids needs no such word."""
+    sheet = tmp_path / "hoist.yaml"
+    sheet.write_text(
+        "format: 1\nmachine: {tag: H-1, kind: dc_series}\ncomplaint: brushes_spark\nreadings:\n"
+        "  - {measure: insulation_resistance, state: isolated, value: 0.4 Mohm}\n"
+    )
+    number = run("log", str(sheet), "--person", "Ines").out.split()[0]
+    text = " ".join(run("report", number).out.split())
+    assert "forbids: not met: insulation to frame read, and not below its limit" in text
+    assert text.count("a series motor is never run without its load") == 1
+    assert "not met: a series motor" not in text
+
+
 def test_the_text_names_what_was_read_with_bands_and_sources(run, number):
     done = run("report", number)
     assert done.status == 0

@@ -27,6 +27,7 @@ if TYPE_CHECKING:
 
 ORDER = ("forbids", "needed", "cleared")
 STATUS = {"needed": "needed", "cleared": "cleared", "forbids": "FORBIDS"}
+NOT_MET = "not met: "
 
 
 class Gate(TextPage):
@@ -63,9 +64,11 @@ class Gate(TextPage):
     def gate_line(self, line: GateLine) -> list[Content]:
         """Return one line of the gate."""
         style = STOP if line.status == "forbids" else ""
-        out = rows(STATUS[line.status], line.needs, self.room, style=style)
-        if line.because:
-            out += rows("", line.because, self.room)
+        because = "" if line.because == line.needs else line.because
+        needs = (NOT_MET if line.status == "forbids" and because else "") + line.needs
+        out = rows(STATUS[line.status], needs, self.room, style=style)
+        if because:
+            out += rows("", because, self.room)
         if line.status != "cleared" and line.asks:
             asked = "; ".join(key_words(key, self.knowledge) for key in line.asks)
             out += rows("", f"shown by: {asked}", self.room)
