@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+import msgspec
+
 from calc.errors import InputError
 from calc.quantities import MEASURES, STATES
 from casebook import bodies
@@ -238,7 +240,7 @@ def close(visit: Visit, _: str) -> bool:
     visit.close(
         bodies.Closed(
             found=found,
-            confirmed="teardown" if how == "teardown" else "repair" if how == "repair" else "believed",
+            confirmed=msgspec.convert(how, bodies.Confirmed),
             done=ask("What was done"),
             parts=tuple(part.strip() for part in ask("Parts, with commas").split(",") if part.strip()),
             minutes=minutes,

@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+import msgspec
+
 from calc.quantities import MEASURES
-from casebook.bodies import Closed
+from casebook.bodies import Closed, Confirmed
 from tui.screens.ask import Ask
-from tui.screens.closing import CONFIRMED
 from tui.screens.pick import Choice
 from tui.typed import minutes_of
 from tui.words import key_words, percent, plain
@@ -30,11 +31,9 @@ def closing_of(answer: dict[str, str], retest: tuple[str, ...], visit: Visit) ->
     """Return what the closing page says as what is stored."""
     typed = [(key.split("@"), answer[key]) for key in retest if answer.get(key)]
     again = [visit.understand(measure, state, text) for (measure, state), text in typed]
-    confirmed = answer["confirmed"]
-    assert confirmed in CONFIRMED
     return Closed(
         found=answer["found"],
-        confirmed=confirmed,  # type: ignore[arg-type]
+        confirmed=msgspec.convert(answer["confirmed"], Confirmed),
         done=answer["done"],
         parts=tuple(part.strip() for part in answer["parts"].split(",") if part.strip()),
         minutes=minutes_of(answer["minutes"]),
