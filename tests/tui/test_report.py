@@ -43,7 +43,7 @@ def number(run, sheet):
 
 
 def test_what_forbids_reads_as_what_is_not_met(run, tmp_path):
-    """A need behind the word forbids alone would read as its contrary; what always forbids needs no such word."""
+    """A need behind the word forbids alone reads as its contrary; what always forbids needs no more."""
     sheet = tmp_path / "hoist.yaml"
     sheet.write_text(
         "format: 1\nmachine: {tag: H-1, kind: dc_series}\ncomplaint: brushes_spark\nreadings:\n"
