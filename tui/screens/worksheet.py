@@ -124,7 +124,7 @@ class Worksheet(WorksheetTyping):
             return [*head, *stop, row("gate", ("SHUT", STRONG)), row("", (waits, FAINT))]
         answer = self.weighed.diagnosis
         findings = blocks.finding_lines(answer, visit.knowledge, room)
-        reads = blocks.reading_lines(blocks.readings_of(sheet, answer)[self.older :], room)
+        reads = blocks.reading_lines(blocks.readings_of(sheet, answer, visit.knowledge)[self.older :], room)
         proposed = blocks.next_lines(self.target, self.first_words(), visit.knowledge, room)
         shared = share_out(
             [

@@ -10,8 +10,11 @@ import math
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Final
 
+import msgspec
+
 from calc.quantities import MEASURES
 from calc.units import find_unit
+from rules.findings import findings
 from tui.answer_text import NOTHING_FORBIDS, NOTHING_LEFT
 from tui.look import FAINT, STOP, STRONG, VERDICT_STYLE, VERDICT_WORD, WATCH
 from tui.widgets.ruled import INDENT, pad, row, rows, tagged
@@ -152,7 +155,7 @@ class Read:
     findings: tuple[Finding, ...]
 
 
-def readings_of(sheet: CaseSheet, diagnosis: Diagnosis) -> list[Read]:
+def readings_of(sheet: CaseSheet, diagnosis: Diagnosis, knowledge: Knowledge) -> list[Read]:
     """Return the readings, newest first, each with its band."""
     out = []
     for reading in reversed(sheet.readings):
@@ -161,11 +164,19 @@ def readings_of(sheet: CaseSheet, diagnosis: Diagnosis) -> list[Read]:
             for band in diagnosis.expected
             if (band.measure, band.state) == (reading.measure, reading.state)
         ]
-        about = tuple(
-            finding for finding in diagnosis.findings if finding.about in {reading.key, reading.measure}
-        )
-        out.append(Read(reading, bands[0] if bands else None, about))
+        out.append(Read(reading, bands[0] if bands else None, _about(reading, sheet, diagnosis, knowledge)))
     return out
+
+
+def _about(
+    reading: Reading, sheet: CaseSheet, diagnosis: Diagnosis, knowledge: Knowledge
+) -> tuple[Finding, ...]:
+    """Return the findings on one reading; where it was read more than once, on this time alone."""
+    crossed = diagnosis.findings
+    alone = tuple(one for one in sheet.readings if one is reading or one.key != reading.key)
+    if len(alone) < len(sheet.readings):
+        crossed = findings(msgspec.structs.replace(sheet, readings=alone), knowledge)
+    return tuple(finding for finding in crossed if finding.about in {reading.key, reading.measure})
 
 
 def reading_lines(reads: Sequence[Read], room: int) -> list[Content]:
