@@ -20,9 +20,6 @@ from rules.answer import Finding
 from rules.derived.base import numbers_of, plate, readings_of
 from rules.gate_record import is_overload_trip
 
-WARM_MULTIPLE: Final = 1.5
-"""From here on the standard fixes the longest time from warm, by class."""
-
 LEG: Final = 3.0**-0.5
 """Line current to phase-leg current of a star-delta starter."""
 
@@ -36,12 +33,14 @@ class TripClass(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
 
 
 class TripTable(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
-    """What the standard fixes for thermal overload relays."""
+    """What the standard fixes for thermal overload relays: multiples of the setting, and times."""
 
     source: str
     holds_at: float
     trips_at: float
     within_s: float
+    warm_at: float
+    """From here on the longest time from warm goes by class."""
     classes: dict[str, TripClass]
 
 
@@ -110,7 +109,7 @@ def _latest_s(trip: Trip, named: TripClass, table: TripTable) -> float:
     """Return the longest time that the standard leaves a relay of one class."""
     if trip.multiple < table.trips_at:
         return math.inf
-    if trip.multiple < WARM_MULTIPLE:
+    if trip.multiple < table.warm_at:
         return table.within_s
     cold_s = trip_time_s(
         multiple=trip.multiple, threshold=table.trips_at, time_at_reference_s=named.cold_to_s
