@@ -15,7 +15,7 @@ from calc.values import MISSING, ValueTextError, parse_value
 from calc.vocabulary import PERCENT_RATIOS
 
 _ID: Final = re.compile(r"[a-z][a-z0-9_]{0,63}")
-_TORN: Final = "a comma parts the fields here: write 1455 rpm, or 1.455 rpm"
+_TORN: Final = "a comma parts the fields here: write a point, 7.5 kW; between thousands nothing, 1455 rpm"
 _YES: Final = frozenset({"yes", "true", "on", "y"})
 _NO: Final = frozenset({"no", "false", "off", "n"})
 
