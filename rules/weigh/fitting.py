@@ -15,15 +15,16 @@ from calc.twin import Floats, Mode, Twin
 from rules.weigh.frame import Frame, t_constant
 from rules.weigh.laplace import Fit, Fitter, plate_cost, plate_weight
 
-HEAT = (9.0, 1.0, 1.0)  # what multiplies the variance of the readings in each round: first a wider view
+HEAT = (25.0, 1.0, 1.0)  # what multiplies the variance of the readings in each round: first a wide view
 QUICK = (1.0, 1.0)  # for the healthy machine alone, which is well begun after the survey
+_FIRST_HEAT = 9.0  # of the step that the survey takes for the mode kept
 START = 0.2  # severity latents where a fit begins
 # Modes further behind the best than this are given up: at the start, after the first, after the second round.
 PRUNE_NATS = (100.0, 40.0, 24.0)
 REACH = 4.5  # no latent goes further out than this
 _STEPS = (1.0, 0.4, 0.12)  # shares of a step that are tried
 _COARSE, _MIDDLE, _FINE = 1.1, 0.5, 0.12  # differences for slopes: survey, start, rounds
-_MATTERS = 0.1  # a latent that moves no reading by more sigmas is left where it is
+_MATTERS = 0.25  # a latent that moves no reading by more sigmas is left where it is
 _OFF_CENTRE = 0.3  # where the latents are surveyed: symmetric effects have no slope in the middle
 
 
@@ -69,7 +70,7 @@ def fit_modes(
 
 
 def _survey(fitter: Fitter, modes: Sequence[Mode], keep: int) -> tuple[NDArray[np.int64], Floats]:
-    """The active latents, and the latents of the mode kept (the healthy one) after two steps.
+    """The active latents, and the latents of the mode kept (the healthy one) after one step.
 
     Active is a latent that changes any reading asked for, or the plate's misfit, in any effect.
     """
@@ -82,13 +83,11 @@ def _survey(fitter: Fitter, modes: Sequence[Mode], keep: int) -> tuple[NDArray[n
     reach = moved.max(axis=(0, 1), initial=0.0)
     reach = np.maximum(reach, _COARSE * np.abs(dp).max(axis=(0, 1), initial=0.0))
     active = np.flatnonzero(reach > _MATTERS)
-    one = [modes[keep]]
     start = base[:1, active]
     z = np.zeros((1, fitter.dim))
-    z[:, active] = start + fitter.step(start, y[:1], dy[:1][..., active], plate[:1], dp[:1][..., active], 9.0)
-    z = np.clip(z, -REACH, REACH)
-    y, dy, plate, dp = fitter.slopes(one, z, active, _FINE)
-    z[:, active] += fitter.step(z[:, active], y, dy, plate, dp, 1.0)
+    z[:, active] = start + fitter.step(
+        start, y[:1], dy[:1][..., active], plate[:1], dp[:1][..., active], _FIRST_HEAT
+    )
     return active, np.clip(z, -REACH, REACH)
 
 
