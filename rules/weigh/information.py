@@ -8,14 +8,11 @@ from functools import cache
 from statistics import NormalDist
 
 import numpy as np
-from numpy.typing import NDArray
 
 from calc.twin import Floats, attribute_rows
-from rules.knowledge import Fault, Observation
 from rules.weigh.hypothesis import Hypothesis
 from rules.weigh.posterior import Posterior
 from rules.weigh.settings import ProposalSettings, weighing
-from rules.weigh.soft import answer_chance
 
 
 @dataclass(frozen=True)
@@ -24,8 +21,6 @@ class Leading:
 
     hypotheses: tuple[Hypothesis, ...]
     share: Floats
-    faults: tuple[str, ...]
-    label: NDArray[np.int64]
     same_fault: Floats
     """1.0 where two hypotheses are of one fault, (h, h)."""
     same_part: Floats
@@ -39,7 +34,6 @@ def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
     order = np.argsort(-share, kind="stable")[: s.hypotheses]
     chosen = tuple(posterior.hypotheses[i] for i in order)
     weights = share[order]
-    faults = tuple(dict.fromkeys(h.fault for h in chosen))
     parts = {f.id: f.part for f in posterior.faults}
     places = [h.place for h in chosen]
     modes = [posterior.modes[p] for p in places]
@@ -48,8 +42,6 @@ def leading(posterior: Posterior, s: ProposalSettings) -> Leading:
     return Leading(
         hypotheses=chosen,
         share=weights / weights.sum(),
-        faults=faults,
-        label=np.array([faults.index(h.fault) for h in chosen]),
         same_fault=_same([h.fault for h in chosen]),
         same_part=_same([parts[h.fault] for h in chosen]),
         possible=posterior.twin.possible(z, rows),
@@ -105,12 +97,9 @@ def information(mean: Floats, spread: Floats, lead: Leading, s: ProposalSettings
     return np.maximum(gain, 0.0)
 
 
-def binary_information(
-    known: Observation, faults: Sequence[Fault], lead: Leading, s: ProposalSettings
-) -> float:
-    """Information of a yes or no about fault and part. [nats]"""
+def binary_information(yes: Floats, lead: Leading, s: ProposalSettings) -> float:
+    """Information of a yes or no about fault and part, ``yes`` its chance per hypothesis, (h,). [nats]"""
     power = weighing().soft_power
-    yes = np.array([answer_chance(known, fault, True) for fault in faults])
     gain = 0.0
     for chance in (yes, 1.0 - yes):
         total = float(lead.share @ chance)

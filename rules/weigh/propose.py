@@ -27,7 +27,8 @@ from rules.weigh.posterior import Posterior
 from rules.weigh.predict import Outlook, outlooks
 from rules.weigh.settings import ProposalSettings, weighing
 from rules.weigh.sight import smallest_seen
-from rules.weigh.worth import gains, view
+from rules.weigh.soft import answer_chance
+from rules.weigh.worth import gains, told_apart, told_apart_by_answer, view
 
 SEEN_FOR = 3  # proposals that say what the meter can show
 
@@ -44,6 +45,8 @@ class Candidate:
     state: str = ""
     look: Outlook | None = None
     known: Observation | None = None
+    pair: tuple[int, int] = (0, 0)
+    """The leading hypotheses, by place, that it does most to tell apart."""
     behind_gate: bool = False
     """The gate keeps its state shut; it is not proposed, but tells what the gate's lines are worth."""
 
@@ -62,9 +65,8 @@ def propose(
         (c for c in found if c.gain >= s.least_bits * math.log(2.0)), key=lambda c: (-c.score, c.key)
     )
     open_items = [c for c in worth if not c.behind_gate]
-    why = wording.why(posterior, lead.faults, lead.share, lead.label)
     items = [
-        _item(c, posterior, knowledge, lead, why, sees=place < SEEN_FOR)
+        _item(c, posterior, knowledge, lead, sees=place < SEEN_FOR)
         for place, c in enumerate(open_items[:limit])
     ]
     return tuple(_with_gate(items, worth, posterior, knowledge, gate)[:limit])
@@ -88,8 +90,9 @@ def _with_gate(
 
 
 def _item(
-    candidate: Candidate, posterior: Posterior, knowledge: Knowledge, lead: Leading, why: str, *, sees: bool
+    candidate: Candidate, posterior: Posterior, knowledge: Knowledge, lead: Leading, *, sees: bool
 ) -> NextItem:
+    why = wording.why(candidate.pair, lead, posterior)
     bits = round(candidate.gain / math.log(2.0), 4)
     if candidate.known is not None:
         known = candidate.known
@@ -113,7 +116,7 @@ def _item(
         leads=how.leads,
         hazards=how.hazards,
         why=why,
-        expect=wording.expect(candidate.look, lead, posterior, knowledge, measure, state),
+        expect=wording.expect(candidate.look, candidate.pair, lead, posterior, knowledge, candidate.key),
         sees=smallest_seen(posterior, candidate.look, lead.hypotheses) if sees and candidate.look else "",
     )
 
@@ -152,7 +155,8 @@ def _readings(
         for (rule, state, _), ask in zip(candidates, asks, strict=True)
     ]
     found = []
-    for (rule, state, chance), ask, gain in zip(candidates, asks, gains(views, lead, s), strict=True):
+    told = zip(candidates, asks, views, gains(views, lead, s), strict=True)
+    for (rule, state, chance), ask, one, gain in told:
         how = rule.states[state]
         minutes = how.minutes + arranging(sheet, state, s)
         there = twin.chance_of_part(ask) if ask.key in looks else 1.0
@@ -166,6 +170,7 @@ def _readings(
                 rule=rule,
                 state=state,
                 look=looks.get(ask.key),
+                pair=(0, 0) if one is None else told_apart(one, lead),
                 behind_gate=shut(state, sheet, knowledge, gate),
             )
         )
@@ -233,9 +238,13 @@ def _observations(
         chance = _can_see(known, sheet, gate, lead, s)
         if chance < s.least_chance:
             continue
-        gain = binary_information(known, [by_id[h.fault] for h in lead.hypotheses], lead, s)
+        yes = np.array([answer_chance(known, by_id[h.fault], True) for h in lead.hypotheses])
+        gain = binary_information(yes, lead, s)
         score = chance * gain / ((known.minutes + s.overhead_minutes) * _hazard(known.hazards, s))
-        found.append(Candidate(score=score, gain=gain, minutes=known.minutes, key=known.id, known=known))
+        pair = told_apart_by_answer(yes, lead)
+        found.append(
+            Candidate(score=score, gain=gain, minutes=known.minutes, key=known.id, known=known, pair=pair)
+        )
     return found
 
 

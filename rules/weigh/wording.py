@@ -7,7 +7,6 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 import numpy as np
-from numpy.typing import NDArray
 
 from calc.observe import contrasts_matrix
 from calc.quantities import MEASURES
@@ -72,26 +71,24 @@ def title(key: str) -> str:
 
 def expect(
     look: Outlook | None,
+    pair: tuple[int, int],
     lead: Leading,
     posterior: Posterior,
     knowledge: Knowledge,
-    measure: str,
-    state: str,
+    key: str,
 ) -> str:
-    """What the leading two faults would show in a reading."""
+    """What each of two hypotheses would show in a reading, named ``measure@state``."""
     names = {f.id: f.name for f in posterior.faults}
+    measure, _, state = key.partition("@")
     parts = []
-    shown: set[str] = set()
-    for row, hypothesis in enumerate(lead.hypotheses):
-        if hypothesis.fault in shown or len(shown) == 2:
-            continue
-        shown.add(hypothesis.fault)
+    for row in dict.fromkeys(pair):
+        fault = lead.hypotheses[row].fault
         if look is not None:
             values = values_of(look.mean[row], look.transform)
             text = amount_text(measure, [float(v) for v in values], look.transform.cap)
         else:
-            text = _spread_text(posterior, knowledge, hypothesis.fault, measure, state)
-        parts.append(f"{names[hypothesis.fault]}: {text}")
+            text = _spread_text(posterior, knowledge, fault, measure, state)
+        parts.append(f"{names[fault]}: {text}")
     return "; ".join(parts)
 
 
@@ -107,9 +104,8 @@ def _spread_text(posterior: Posterior, knowledge: Knowledge, fault: str, measure
     return f"{figure(in_usual_unit(measure, low))} to {figure(in_usual_unit(measure, high))} {unit}".strip()
 
 
-def why(posterior: Posterior, faults: Sequence[str], share: Floats, label: NDArray[np.int64]) -> str:
-    """Which suspects a proposal tells apart."""
+def why(pair: tuple[int, int], lead: Leading, posterior: Posterior) -> str:
+    """Which two suspects a proposal does most to tell apart."""
     names = {f.id: f.name for f in posterior.faults}
-    weight = [(float(share[label == i].sum()), fault) for i, fault in enumerate(faults)]
-    first = [names[fault] for _, fault in sorted(weight, reverse=True)[:3]]
-    return "tells apart: " + "; ".join(first)
+    one, other = (names[lead.hypotheses[row].fault] for row in pair)
+    return f"tells {one} from {other}" if one != other else ""

@@ -1,4 +1,4 @@
-"""What each reading would tell: what the leading hypotheses expect of it, and the information in that."""
+"""What each reading would tell, and of whom: what the leading hypotheses expect of it."""
 
 from __future__ import annotations
 
@@ -74,3 +74,28 @@ def _family_factor(posterior: Posterior, measure: str) -> float:
         if measure in family.measures and any(r.measure in family.measures for r in posterior.sheet.readings):
             return 1.0 - family.correlation**2 + 0.05
     return 1.0
+
+
+def told_apart(view: View, lead: Leading) -> tuple[int, int]:
+    """Return the hypotheses, of two faults, that a reading does most to tell apart, the likelier first.
+
+    By their shares and by how little their expectations overlap (Bhattacharyya's distance of normals
+    of one covariance).
+    """
+    gap = view.mean[:, None, :] - view.mean[None, :, :]
+    spread = 0.5 * (view.spread[:, None] + view.spread[None, :])
+    distance = (gap * np.linalg.solve(spread, gap[..., None])[..., 0]).sum(axis=-1)
+    return _parted(1.0 - np.exp(-distance / 8.0), lead)
+
+
+def told_apart_by_answer(yes: Floats, lead: Leading) -> tuple[int, int]:
+    """Return the hypotheses that a yes or no does most to tell apart; ``yes`` are its chances, (h,)."""
+    overlap = np.sqrt(np.outer(yes, yes)) + np.sqrt(np.outer(1.0 - yes, 1.0 - yes))
+    return _parted(1.0 - overlap, lead)
+
+
+def _parted(apart: Floats, lead: Leading) -> tuple[int, int]:
+    weight = np.outer(lead.share, lead.share) * apart * (1.0 - lead.same_fault)
+    one, other = np.unravel_index(int(np.argmax(weight)), weight.shape)
+    first, second = sorted((int(one), int(other)), key=lambda place: (-lead.share[place], place))
+    return first, second

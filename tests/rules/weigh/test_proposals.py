@@ -172,3 +172,19 @@ def test_a_reading_brings_the_values_to_expect():
     asked = [item for item in answer(sheet).next if item.measure == "line_current"]
     assert asked
     assert all("A" in item.expect for item in asked)
+
+
+def test_a_proposed_reading_tells_two_suspects_apart_and_expects_different_values_of_them():
+    proposed = 0
+    for _, found in answered():
+        names = {f.name for f in found.faults}
+        for item in found.next:
+            if not item.gain_bits or item.observation:
+                continue
+            parts = dict(part.split(": ", 1) for part in item.expect.split("; ") if ": " in part)
+            one, other = parts
+            assert item.why == f"tells {one} from {other}"
+            assert {one, other} <= names
+            assert parts[one] != parts[other], item.key
+            proposed += 1
+    assert proposed > 20
