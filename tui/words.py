@@ -61,6 +61,11 @@ def question(observation: str, knowledge: Knowledge) -> str:
     return known.name if known else plain(observation)
 
 
+def answer_words(observation: str, seen: bool, knowledge: Knowledge) -> str:
+    """Return an answered observation in words."""
+    return f"{question(observation, knowledge)} {'yes' if seen else 'no'}"
+
+
 def fault_name(fault: str, knowledge: Knowledge) -> str:
     """Return a fault, or two at once, in words."""
     return " and ".join(_one_fault(part, knowledge) for part in fault.split("+"))

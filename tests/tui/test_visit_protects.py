@@ -4,8 +4,12 @@ from __future__ import annotations
 
 from pathlib import Path
 
+from textual.pilot import Pilot
+
 from tests.tui.helpers import SMALL, keys, new_app, screen_text, settled, until
 from tests.tui.visit import at_worksheet, newest, single_phase_case
+from tui.screens.tick import Tick
+from tui.widgets.lines import Lines
 
 
 async def test_an_isolated_reading_waits_for_the_isolation_record(tmp_path: Path):
@@ -63,6 +67,60 @@ async def test_what_is_tried_by_hand_on_the_isolated_machine_waits_for_the_isola
         await keys(pilot, "f9")
         await pilot.pause()
         assert not newest(app).observed
+
+
+async def tick_by_hand(pilot: Pilot[int]) -> None:
+    """Tick on the list what is tried by hand, and something that is seen from outside."""
+    await keys(pilot, "f7")
+    await until(pilot, "What was seen")
+    page = pilot.app.screen
+    assert isinstance(page, Tick)
+    names = [name for name, _ in page.questions]
+    for name in ("shaft_turns_freely", "hums"):
+        page.query_one(Lines).highlighted = names.index(name)
+        await keys(pilot, "y")
+    assert {name for name, seen in page.answers.items() if seen} == {"shaft_turns_freely", "hums"}
+
+
+async def test_the_tick_list_stores_what_is_tried_by_hand_only_on_an_isolation_record(tmp_path: Path):
+    async with at_worksheet(tmp_path) as (app, pilot):
+        await tick_by_hand(pilot)
+        await keys(pilot, "enter")
+        await until(pilot, "Isolation of P-104")
+        assert not newest(app).observed
+        await keys(pilot, "y", "enter", "y", "f8")
+        await until(pilot, "stored:")
+        await settled(pilot)
+        case = newest(app)
+        assert case.isolation[0].what.proved_dead
+        assert case.observations == {"shaft_turns_freely": True, "hums": True}
+        assert case.isolation[0].time_utc <= case.observed["shaft_turns_freely"].time_utc
+
+
+async def test_a_tick_list_whose_isolation_record_is_left_stores_none_of_its_answers(tmp_path: Path):
+    async with at_worksheet(tmp_path) as (app, pilot):
+        await tick_by_hand(pilot)
+        await keys(pilot, "enter")
+        await until(pilot, "Isolation of P-104")
+        await keys(pilot, "f9")
+        await until(pilot, "What was seen")
+        page = app.screen
+        assert isinstance(page, Tick)
+        assert set(page.changed()) == {"shaft_turns_freely", "hums"}
+        assert not newest(app).observed
+        assert not newest(app).isolation
+
+
+async def test_the_tick_list_asks_for_no_isolation_record_where_nothing_is_tried_by_hand(tmp_path: Path):
+    async with at_worksheet(tmp_path) as (app, pilot):
+        await tick_by_hand(pilot)
+        page = app.screen
+        assert isinstance(page, Tick)
+        page.query_one(Lines).highlighted = [name for name, _ in page.questions].index("shaft_turns_freely")
+        await keys(pilot, "space", "space", "enter")
+        await until(pilot, "stored:")
+        assert newest(app).observations == {"hums": True}
+        assert not newest(app).isolation
 
 
 async def test_the_isolation_record_of_a_single_phase_machine_wants_its_capacitors_discharged(tmp_path: Path):

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from textual import work
 from textual.widgets import OptionList
 
 from tui.keys import bindings
@@ -13,7 +14,7 @@ from tui.widgets.lines import Lines
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Awaitable, Callable, Collection, Sequence
 
     from textual.content import Content
     from textual.widget import Widget
@@ -33,6 +34,8 @@ class Tick(Page[dict[str, bool]]):
         self.questions = questions
         self.before = dict(answered)
         self.answers: dict[str, bool | None] = {name: answered.get(name) for name, _ in questions}
+        self.first: Callable[[Collection[str]], Awaitable[bool]] | None = None
+        """Asks for what must come before answers are stored, such as the isolation record."""
 
     def body(self) -> list[Widget]:
         """Return title and list."""
@@ -91,18 +94,21 @@ class Tick(Page[dict[str, bool]]):
         """Store on Enter."""
         self.action_done()
 
-    def action_done(self) -> None:
-        """Answer with what changed."""
-        new = {
+    def changed(self) -> dict[str, bool]:
+        """Return the answers that are new or changed."""
+        return {
             name: seen
             for name, seen in self.answers.items()
             if seen is not None and self.before.get(name) is not seen
         }
-        self.finish(new)
+
+    @work(group="tick", exclusive=True)
+    async def action_done(self) -> None:
+        """Answer with what changed, once what must come before it is there."""
+        new = self.changed()
+        if self.first is None or await self.first(new):
+            self.finish(new)
 
     def unsaved(self) -> str:
         """Say that answers are ticked and not stored."""
-        changed = any(
-            seen is not None and self.before.get(name) is not seen for name, seen in self.answers.items()
-        )
-        return "ticked answers" if changed else ""
+        return "ticked answers" if self.changed() else ""

@@ -85,6 +85,13 @@ def other_choices(visit: Visit, proposed: Sequence[str]) -> list[Choice]:
     return sorted(choices.values(), key=place)
 
 
+def tick_questions(visit: Visit, proposed: Sequence[str | None]) -> list[tuple[str, str]]:
+    """Return the id and the words of every observation that suits the machine, the proposed first."""
+    fitting = [o for o in visit.knowledge.observations.values() if {"any", visit.kind} & set(o.kinds)]
+    fitting.sort(key=lambda o: proposed.index(o.id) if o.id in proposed else len(proposed))
+    return [(o.id, o.name) for o in fitting]
+
+
 def only_one_meant(choices: Sequence[Choice], typed: str) -> str | None:
     """Return the one choice that typed words can mean: the only one, or the only proposed one."""
     words = typed.lower().replace("-", " ").split()

@@ -23,11 +23,14 @@ from tui.screens.worksheet_choices import (
     other_choices,
     shut_question,
     stored_choices,
+    tick_questions,
 )
 from tui.shift import before_isolated
-from tui.words import key_words, question
+from tui.words import answer_words, key_words
 
 if TYPE_CHECKING:
+    from collections.abc import Collection
+
     from rules.answer import Diagnosis
     from tui.compose import Visit, Weighed
 
@@ -158,6 +161,11 @@ class WorksheetKeys(Page[None]):
         self.chosen = self.picked(key)
         return await self.come_first(self.chosen)
 
+    async def comes_first_for_answers(self, observations: Collection[str]) -> bool:
+        """Ask for the isolation record where one of the answers is made by hand and it is not there."""
+        by_hand = any(self.visit.is_by_hand(name) for name in observations)
+        return not by_hand or not self.visit.wants_first("isolated", ()) or await self.isolate()
+
     async def isolate(self) -> bool:
         """Ask for the isolation record and store it."""
         also = before_isolated(self.visit.case, self.visit.knowledge)
@@ -219,19 +227,13 @@ class WorksheetKeys(Page[None]):
     @work(group="enter")
     async def action_tick(self) -> None:
         """Tick what was seen."""
-        knowledge, kind = self.visit.knowledge, self.visit.kind
-        proposed = [item.observation for item in self.proposals if item.observation]
-        fitting = [o for o in knowledge.observations.values() if {"any", kind} & set(o.kinds)]
-        fitting.sort(key=lambda o: proposed.index(o.id) if o.id in proposed else len(proposed))
-        questions = [(o.id, o.name) for o in fitting]
+        questions = tick_questions(self.visit, [item.observation for item in self.proposals])
         page = Tick(questions, dict(self.visit.sheet.observations))
-        page.store = self.visit.observe_all
+        page.first, page.store = self.comes_first_for_answers, self.visit.observe_all
         new = await self.app.push_screen_wait(page)
         if new:
-            words = "; ".join(
-                f"{question(name, knowledge)} {'yes' if seen else 'no'}" for name, seen in new.items()
-            )
-            self.stored(words)
+            knowledge = self.visit.knowledge
+            self.stored("; ".join(answer_words(*answer, knowledge) for answer in new.items()))
 
     @work(group="enter")
     async def action_note(self) -> None:

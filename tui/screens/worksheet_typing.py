@@ -13,7 +13,7 @@ from tui.look import FAINT
 from tui.screens.page import refusal
 from tui.screens.worksheet_keys import WorksheetKeys
 from tui.widgets.typed import TypedLine
-from tui.words import key_words, question
+from tui.words import answer_words, key_words
 
 if TYPE_CHECKING:
     from textual.timer import Timer
@@ -140,7 +140,7 @@ class WorksheetTyping(WorksheetKeys):
         if not await self.come_first(item):
             return False
         self.visit.observe(str(item.observation), answer)
-        self.stored(f"{question(str(item.observation), self.visit.knowledge)} {'yes' if answer else 'no'}")
+        self.stored(answer_words(str(item.observation), answer, self.visit.knowledge))
         return True
 
     @work(group="enter")
