@@ -145,9 +145,8 @@ def _is_one(clean: str, dimension: str) -> bool:
 
 def _open(text: str, dimension: str) -> Value:
     if dimension != "resistance":
-        raise ValueTextError(
-            text, f"{_wanted(dimension)}; only a resistance can be open (beyond the meter: write >600 V)"
-        )
+        beyond = f"beyond the meter: write its range, such as >{dimension_facts(dimension).example}"
+        raise ValueTextError(text, f"{_wanted(dimension)}; only a resistance can be open ({beyond})")
     return Value(text=text.strip(), number=math.inf, unit="ohm", kind="open")
 
 

@@ -3,7 +3,7 @@
 import math
 
 import pytest
-from hypothesis import example, given
+from hypothesis import assume, example, given
 from hypothesis import strategies as st
 
 from calc.errors import clip
@@ -160,6 +160,8 @@ def test_thousands_marks_beside_a_decimal_mark_are_understood(text, number):
         ("193-161 uF", "capacitance", "from the lower to the higher"),
         ("4.5", "count", "a whole number"),
         ("open", "voltage", "only a resistance can be open"),
+        ("open", "capacitance", "such as >30 uF"),
+        ("OL", "current", "such as >14.9 A"),
         ("", "current", "leave the field out"),
         ("about 5 A", "current", "a current such as 14.9 A"),
         ("9" * 61 + " A", "current", "in at most 60 characters"),
@@ -172,6 +174,15 @@ def test_what_is_no_value_is_refused_with_what_to_write(text, dimension, says):
         parse_value(text, dimension=dimension)
     assert says in refused.value.allowed
     assert refused.value.given == clip(text)
+
+
+@given(DIMENSIONS)
+def test_what_is_told_to_write_for_a_value_beyond_the_meter_is_understood_in_its_own_unit(dimension):
+    assume(dimension != "resistance")
+    with pytest.raises(ValueTextError) as refused:
+        parse_value("open", dimension=dimension)
+    told = refused.value.allowed.rpartition("such as ")[2].rstrip(")")
+    assert parse_value(told, dimension=dimension).kind == "above"
 
 
 @given(st.text(max_size=70), DIMENSIONS)
