@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import sys
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, NoReturn
 
@@ -36,7 +37,20 @@ def _diagnose(parser: argparse.ArgumentParser) -> None:
 def _cases(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("words", nargs="*", metavar="WORD", help="show only cases with all of these words")
     parser.add_argument("--json", action="store_true", help="one JSON object per line, newest first")
-    parser.add_argument("--limit", type=int, default=50, metavar="N", help="at most N cases (default 50)")
+    parser.add_argument(
+        "--limit", type=_one_or_more, default=50, metavar="N", help="at most N cases (default 50)"
+    )
+
+
+def _one_or_more(text: str) -> int:
+    """Return a whole number from 1 on, at most what a list can hold; argparse tells what else was given."""
+    try:
+        number = int(text)
+    except ValueError:
+        number = 0
+    if number < 1:
+        raise argparse.ArgumentTypeError(f"{text}: give a whole number, 1 or more")
+    return min(number, sys.maxsize)
 
 
 def _expect(parser: argparse.ArgumentParser) -> None:

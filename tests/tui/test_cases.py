@@ -56,3 +56,17 @@ def test_one_reading_makes_no_trend(run, plant):
     done = run("cases", "HP-7")
     assert (done.status, done.err) == (0, "")
     assert "trend" not in done.out
+
+
+@pytest.mark.parametrize("limit", ["0", "-3", "1.5", "many"])
+def test_a_limit_below_one_is_refused_with_what_is_allowed_and_status_2(run, plant, limit):
+    done = run("cases", "--limit", limit)
+    assert (done.status, done.out) == (2, "")
+    assert done.err.startswith(f"plateside: argument --limit: {limit}: give a whole number, 1 or more")
+
+
+def test_a_limit_holds_the_list_to_its_newest_cases(run, plant):
+    every = run("cases", "--json").out.splitlines()
+    assert run("cases", "--limit", "1", "--json").out.splitlines() == every[:1]
+    assert len(run("cases", "--limit", "3", "--json").out.splitlines()) == 3
+    assert run("cases", "--limit", "9" * 30, "--json").out.splitlines() == every

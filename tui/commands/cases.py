@@ -27,7 +27,7 @@ ROOM = (9, 10, 18, 16, 19)  # eighty columns with the gaps between
 def run(arguments: Namespace) -> int:
     """Print the cases that hold every word, newest first; below them where one machine's readings lead."""
     with open_casebook(places.existing_casebook(arguments)) as book:
-        rows = book.search(" ".join(arguments.words), limit=max(1, arguments.limit))
+        rows = book.search(" ".join(arguments.words), limit=arguments.limit)
         trends = _trends(book, rows, arguments)
     if arguments.json:
         more = {"trends": trends} if trends else {}
