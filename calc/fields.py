@@ -16,13 +16,16 @@ from calc.vocabulary import PERCENT_RATIOS
 
 _ID: Final = re.compile(r"[a-z][a-z0-9_]{0,63}")
 _TORN: Final = "a comma parts the fields here: write a point, 7.5 kW; between thousands nothing, 1455 rpm"
+MOST_BEGUN: Final = 3
+"""Of words that begin as what was written, at most so many are told."""
 _YES: Final = frozenset({"yes", "true", "on", "y"})
 _NO: Final = frozenset({"no", "false", "off", "n"})
 
 
 def did_you_mean(word: str, known: Collection[str]) -> str:
-    """Say which known word is near, or list what is known where the list is short."""
-    near = difflib.get_close_matches(word.casefold(), list(known), n=2, cutoff=0.6)
+    """Say which known words are near or begin so, or list what is known where the list is short."""
+    begun = [one for one in sorted(known) if word and one.startswith(f"{word.casefold()}_")]
+    near = difflib.get_close_matches(word.casefold(), list(known), n=2, cutoff=0.6) or begun[:MOST_BEGUN]
     if near:
         return f"did you mean {' or '.join(near)}?"
     return f"one of: {', '.join(sorted(known))}" if len(known) <= 30 else "see the case sheet's vocabulary"

@@ -14,7 +14,7 @@ from tui.compose import Visit
 from tui.harmless import harmless
 from tui.output import say
 from tui.people import USUAL_KIT
-from tui.plate_lines import hear, machine_of, plate_lines, raw_of
+from tui.plate_lines import hear, machine_of, plate_lines, raw_of, usual_choice
 from tui.talk import Back, Left, ask, ask_choice, ask_several, ask_yes, tell
 
 if TYPE_CHECKING:
@@ -100,6 +100,8 @@ def _machine(book: Casebook, begun: Begun, drafts: Drafts) -> Raw:
             if is_kept:
                 begun.lines[line.field] = text
                 drafts.save(begun.name, begun.kept())
+                if usual_choice(line, text):
+                    tell(f"{line.word}: {said}.")
                 break
             begun.lines.pop(line.field, None)
             tell(said)

@@ -23,6 +23,8 @@ _SIGNS: Final = {
     "y": "star", "d": "delta", "yy": "double_star", "dd": "double_delta", "wye": "star", "δ": "delta",
 }  # fmt: skip
 """How plates write a connection."""
+_USUAL: Final = {"pump": "pump_centrifugal"}
+"""What is meant by a load that is named in part only."""
 
 
 class PlateLine(NamedTuple):
@@ -124,6 +126,10 @@ def hear(line: PlateLine, text: str) -> tuple[str, bool]:
         kept = keep(line, text)
     except ValueTextError as error:
         return error.allowed, False
+    if usual := usual_choice(line, text):
+        others = [name for name in line.choices if name.startswith(_id(text)) and name != usual]
+        said = f"{line.choices[usual]}; else write {' or '.join(others)}"
+        return said.replace("_", " "), True
     return (" / ".join(kept) if isinstance(kept, list) else kept).replace("_", " "), True
 
 
@@ -163,17 +169,30 @@ def _share(text: str) -> bool:
 
 def _choice(line: PlateLine, text: str) -> str:
     """Return the choice that a text means: its sign, or its beginning."""
-    typed = text.lower().replace("-", "_").replace(" ", "_")
+    typed = _id(text)
     if line.choices is words.CONNECTIONS and typed in _SIGNS:
         return _SIGNS[typed]
     if typed in line.choices:
         return typed
-    found = [choice for choice in line.choices if choice.startswith(typed)]
+    if usual := usual_choice(line, text):
+        return usual
+    named = [choice for choice, name in line.choices.items() if _id(name).startswith(typed)]
+    found = [choice for choice in line.choices if choice.startswith(typed)] or named
     if len(found) != 1:
         raise ValueTextError(
             text, "one of: " + ", ".join(choice.replace("_", " ") for choice in line.choices)
         )
     return found[0]
+
+
+def usual_choice(line: PlateLine, text: str) -> str:
+    """Return the choice that is meant as a rule by a load named in part only, or nothing."""
+    return _USUAL.get(_id(text), "") if line.choices is words.LOADS else ""
+
+
+def _id(text: str) -> str:
+    """Return words as a choice spells them."""
+    return text.strip().lower().replace("-", "_").replace(" ", "_")
 
 
 def machine_of(kind: str, tag: str, typed: dict[str, str]) -> Raw:

@@ -158,6 +158,13 @@ CASES = [
     ),
     ("starter: direct", "starter: dircet", "machine.starter", "dircet", "did you mean direct"),
     ("brake: no", "brake: maybe", "machine.brake", "maybe", "yes or no"),
+    (
+        "load: {type: pump_centrifugal}",
+        "load: {type: pump}",
+        "machine.load.type",
+        "pump",
+        "did you mean pump_centrifugal or pump_positive?",
+    ),
     ("load: {type: pump_centrifugal}", "load: pump", "machine.load", "pump", "{type: conveyor}"),
     ("method: four_wire", "method: kelvin", "readings[3].method", "kelvin", "one of: four_wire"),
     ("shaft_turns_freely: yes", "shaft_turns_freely: 7", "observations.shaft_turns_freely", "7", "yes or no"),

@@ -60,6 +60,17 @@ async def test_enter_stays_on_a_line_that_is_not_understood_and_says_why(tmp_pat
         assert page.texts["power"] == "7,5 kW"
 
 
+async def test_a_pump_is_understood_as_the_usual_one_in_words(tmp_path: Path):
+    app = new_app(tmp_path)
+    async with app.run_test(size=SMALL) as pilot:
+        page = await to_plate(pilot, app, "induction_3ph")
+        page.go_to("type")
+        await keys(pilot, *"pump")
+        await until(pilot, "centrifugal pump; else write pump positive")
+        await keys(pilot, "enter")
+        assert page.line.name == "mount"
+
+
 async def test_down_leaves_a_line_that_is_not_understood_as_it_stands(tmp_path: Path):
     app = new_app(tmp_path)
     async with app.run_test(size=SMALL) as pilot:

@@ -52,6 +52,13 @@ def test_a_machine_that_is_new_is_asked_for_line_by_line(talk, kit, casebook):
     assert case.complaint == "runs_hot"
 
 
+def test_a_pump_is_taken_as_the_usual_one_and_that_is_said(talk, kit, casebook):
+    lines = ["pump" if line.word == "LOAD" else "" for line in plate_lines("induction_3ph")]
+    done = talk("Ines", "WP-9", "induction_3ph", *lines, "runs_hot")
+    assert "LOAD: centrifugal pump; else write pump positive." in " ".join(done.out.split())
+    assert newest(casebook).machine.load_type == "pump_centrifugal"
+
+
 def test_a_case_is_not_opened_until_everything_is_asked(talk, kit, casebook):
     talk("Ines", "WP-9", "induction_3ph", "7.5 kW")
     with open_casebook(casebook) as book:

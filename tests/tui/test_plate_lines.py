@@ -26,6 +26,8 @@ def line(field: str, kind: str = "induction_3ph"):
         ("code_letter", "g", "G"),
         ("brake", "n", "no"),
         ("type", "pump c", "pump centrifugal"),
+        ("type", "pump_positive", "pump positive"),
+        ("type", "centrifugal pump", "pump centrifugal"),
     ],
 )
 def test_a_line_is_understood_as_people_type_it(field: str, typed: str, kept: str):
@@ -34,12 +36,19 @@ def test_a_line_is_understood_as_people_type_it(field: str, typed: str, kept: st
 
 @pytest.mark.parametrize(
     ("field", "typed"),
-    [("power", "7.5"), ("current", "14.9 V"), ("connection", "mesh"), ("type", "pump"), ("speed", "fast")],
+    [("power", "7.5"), ("current", "14.9 V"), ("connection", "mesh"), ("type", "co"), ("speed", "fast")],
 )
 def test_what_can_be_read_in_two_ways_or_not_at_all_is_refused_with_what_is_allowed(field: str, typed: str):
     said, fine = hear(line(field), typed)
     assert not fine
     assert said
+
+
+def test_a_pump_of_no_named_kind_is_the_usual_one_and_that_is_said_with_the_other():
+    said, fine = hear(line("type"), "Pump")
+    assert fine
+    assert said == "centrifugal pump; else write pump positive"
+    assert machine_of("induction_3ph", "", {"type": "Pump"})["load"] == {"type": "pump_centrifugal"}
 
 
 def test_two_ratings_become_a_list_with_the_one_in_use():
