@@ -152,6 +152,8 @@ class Complaint(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):
     """Comes before everything else; nothing energised is read."""
     first: str = ""
     """What to do first, in one sentence."""
+    also: tuple[str, ...] = ()
+    """Other words by which it is looked for."""
 
 
 class Hazard(Entry, frozen=True, kw_only=True, forbid_unknown_fields=True):

@@ -176,7 +176,14 @@ async def pick_complaint(app: PlatesideApp, begun: Begun, kind: str) -> str | No
     fitting = [c for c in complaints if not kind or {"any", kind} & set(c.kinds)]
     fitting.sort(key=lambda complaint: not complaint.stop)
     choices = [
-        Choice(c.id, c.name, word="STOP" if c.stop else "", style="bold" if c.stop else "") for c in fitting
+        Choice(
+            c.id,
+            c.name,
+            word="STOP" if c.stop else "",
+            style="bold" if c.stop else "",
+            also=" ".join(c.also),
+        )
+        for c in fitting
     ]
     page = Pick(
         *tagged(begun.tag or "", "What is wrong?"),

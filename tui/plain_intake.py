@@ -113,7 +113,7 @@ def _complaint(kind: str, knowledge: Knowledge) -> str:
     fitting = [one for one in knowledge.complaints.values() if "any" in one.kinds or kind in one.kinds]
     fitting.sort(key=lambda complaint: not complaint.stop)
     names = {one.id: f"STOP: {one.name}" if one.stop else one.name for one in fitting}
-    return ask_choice("What is wrong", names)
+    return ask_choice("What is wrong", names, also={one.id: " ".join(one.also) for one in fitting})
 
 
 def _kit(drafts: Drafts, knowledge: Knowledge) -> list[str]:

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING, Final
 from tui.columns import paragraph
 from tui.harmless import harmless
 from tui.output import say
+from tui.searching import found as searched
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
@@ -67,8 +68,11 @@ def ask_yes(prompt: str) -> bool:
         say("Answer yes or no.")
 
 
-def ask_choice(prompt: str, choices: Mapping[str, str]) -> str:
-    """Show numbered choices and return the id of the one that is named by number, id or unique beginning."""
+def ask_choice(prompt: str, choices: Mapping[str, str], *, also: Mapping[str, str] | None = None) -> str:
+    """Show numbered choices and return the id of the one that is named by number, id or unique beginning.
+
+    What names none of them is looked for among ``also``, other words for each; that is said.
+    """
     ids = list(choices)
     say(f"{place:>3}  {choices[one]}" for place, one in enumerate(ids, 1))
     while True:
@@ -78,6 +82,10 @@ def ask_choice(prompt: str, choices: Mapping[str, str]) -> str:
             if answer.isdecimal() and 0 < int(answer) <= len(ids)
             else match(answer, choices)
         )
+        if not found and also:
+            found = searched(answer, [(one, f"{one} {choices[one]} {also[one]}") for one in ids])
+            if len(found) == 1:
+                tell(f"Taken: {choices[found[0]]}.")
         if len(found) == 1:
             return found[0]
         tell(f"Which one: {', '.join(found)}?" if found else "Give a number from the list, or its name.")

@@ -59,6 +59,13 @@ def test_a_pump_is_taken_as_the_usual_one_and_that_is_said(talk, kit, casebook):
     assert newest(casebook).machine.load_type == "pump_centrifugal"
 
 
+def test_a_complaint_is_found_by_other_words_and_said_or_asked_about(talk, known, kit, casebook):
+    done = talk(*OPEN_CASE[:-1], "overlod relay", "overhaeted thermistor")
+    assert "Which one: trips_at_start, trips_under_load?" in done.out
+    assert "Taken: runs hot." in done.out
+    assert newest(casebook).complaint == "runs_hot"
+
+
 def test_a_case_is_not_opened_until_everything_is_asked(talk, kit, casebook):
     talk("Ines", "WP-9", "induction_3ph", "7.5 kW")
     with open_casebook(casebook) as book:

@@ -12,6 +12,7 @@ from textual.widgets.option_list import Option
 from tui.keys import bindings
 from tui.look import FAINT, PLAIN
 from tui.screens.page import Page
+from tui.searching import nearly_begins, words_of
 from tui.widgets.lines import Lines
 from tui.widgets.ruled import INDENT, Ruled, pad, row, rows
 from tui.widgets.typed import TypedLine
@@ -28,29 +29,41 @@ Draft = tuple[str, dict[str, Any]]
 
 @dataclass(frozen=True)
 class Choice:
-    """One line to pick: what comes back, what is shown, and words that find it."""
+    """One line to pick: what comes back, what is shown, and words that find it.
+
+    ``also`` are other words for it, not shown. Only a line that has such forgives a slip of the keys:
+    a tag that is nearly another one is another machine.
+    """
 
     key: str
     text: str
     word: str = ""
     more: str = ""
     style: str = PLAIN
+    also: str = ""
 
     def matches(self, words: Sequence[str]) -> bool:
         """Whether every typed word begins a word of the line."""
         parts = f"{self.text} {self.more} {self.key}".lower().replace("_", " ").replace("-", " ").split()
+        parts += words_of(self.also)
         whole = f"{self.text} {self.key}".lower()
         return all(
             word in whole or word == self.word.lower() or any(part.startswith(word) for part in parts)
             for word in words
         )
 
+    def nearly_matches(self, words: Sequence[str]) -> bool:
+        """Whether every typed word, a slip of the keys forgiven, begins a word of a line with other words."""
+        return bool(self.also) and nearly_begins(words, f"{self.text} {self.key} {self.also}")
+
     def rank(self, words: Sequence[str]) -> int:
-        """Return how well typed words fit: 0 the line begins so, 1 its words begin so, 2 they stand in it."""
+        """Return how well typed words fit: 0 the line begins so, 1 its words do, 2 it holds them, 3 else."""
         parts = f"{self.text} {self.key}".lower().replace("_", " ").replace("-", " ").split()
         if " ".join(parts).startswith(" ".join(words)):
             return 0
-        return 1 if all(any(part.startswith(word) for part in parts) for word in words) else 2
+        if all(any(part.startswith(word) for part in parts) for word in words):
+            return 1
+        return 2 if all(word in " ".join(parts) for word in words) else 3
 
 
 class Pick(Page[str]):
@@ -113,6 +126,7 @@ class Pick(Page[str]):
         self.narrowed_by = text
         words = text.lower().replace("-", " ").split()
         self.shown = [choice for choice in self.choices if choice.matches(words)]
+        self.shown = self.shown or [choice for choice in self.choices if choice.nearly_matches(words)]
         self.shown.sort(key=lambda choice: choice.rank(words))
         made = self.fresh(text.strip())
         if made is not None and all(choice.key != made.key for choice in self.shown):
