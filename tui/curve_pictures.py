@@ -14,9 +14,8 @@ from tui.words import measure_name, plain
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
+    from calc.curve_bands import SpeedCurves
     from calc.dc.model import DcTwin
-    from calc.induction_1ph.curves import SpeedCurves as OnePhaseCurves
-    from calc.induction_3ph.curves import SpeedCurves
     from calc.sheet import CaseSheet
     from casebook.fold import Case
     from casebook.history import Point, Series
@@ -109,7 +108,7 @@ def machine_pictures(sheet: CaseSheet) -> list[Picture]:
         from calc.induction_1ph.curves import speed_curves as one_phase_curves
 
         drawn = one_phase_curves(twin)
-        return speed_pictures(drawn, sheet, switch_rpm=drawn.switch_rpm)
+        return speed_pictures(drawn, sheet)
     return emf_pictures(twin, sheet) if isinstance(twin, DcTwin) else []
 
 
@@ -148,16 +147,14 @@ def spun_readings(sheet: CaseSheet) -> Curve:
     )
 
 
-def speed_pictures(
-    drawn: SpeedCurves | OnePhaseCurves, sheet: CaseSheet, *, switch_rpm: float | None = None
-) -> list[Picture]:
+def speed_pictures(drawn: SpeedCurves, sheet: CaseSheet) -> list[Picture]:
     """Return torque and current over speed, with the rated point and the currents that were read."""
     speed = drawn.speed_rpm.tolist()
     low, middle, high = ([max(value, 0.0) for value in values] for values in drawn.torque_nm)
     rated = Curve(x=[drawn.rated_speed_rpm], y=[drawn.rated_torque_nm], mark="R", joined=False, name="rated")
     torque = Picture(
         title="torque over speed at rated volts",
-        curves=(Curve(x=speed, y=middle, name="middle"), rated, *_switch(switch_rpm)),
+        curves=(Curve(x=speed, y=middle, name="middle"), rated, *_switch(drawn.switch_rpm)),
         bands=(Band(x=speed, low=low, high=high, name=NINE_IN_TEN),),
         x_label="rpm",
         y_label="N m",

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from typing import Final
 
 import numpy as np
 
-from calc.curve_bands import ROWS, band
+from calc.curve_bands import ROWS, SpeedCurves, band
 from calc.induction_1ph import priors
 from calc.induction_1ph.machine import connect, run_at
 from calc.induction_1ph.model import SinglePhaseTwin
@@ -18,20 +18,6 @@ POINTS: Final = 61
 SWITCH_OPENS: Final = 0.75
 """Share of the synchronous speed at which a start switch opens; 0.70 to 0.80 is usual (common practice)."""
 _ROUNDS: Final = 3
-
-
-@dataclass(frozen=True)
-class SpeedCurves:
-    """Shaft torque and line current at rated volts and frequency; each array has one entry per speed."""
-
-    speed_rpm: Floats
-    torque_nm: tuple[Floats, Floats, Floats]
-    """Low, middle and high."""
-    current_a: tuple[Floats, Floats, Floats]
-    rated_speed_rpm: float
-    rated_torque_nm: float
-    switch_rpm: float | None
-    """Where the start switch opens; None where the motor most likely has none."""
 
 
 def speed_curves(twin: SinglePhaseTwin, *, seed: int = 1) -> SpeedCurves:

@@ -3,29 +3,16 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 
 import numpy as np
 
-from calc.curve_bands import ROWS, band
+from calc.curve_bands import ROWS, SpeedCurves, band
 from calc.induction_3ph.equivalent import Circuit, circuit
 from calc.induction_3ph.model import InductionTwin
 from calc.induction_3ph.plate import LATENTS
 from calc.twin import Floats
 
 POINTS = 61
-
-
-@dataclass(frozen=True)
-class SpeedCurves:
-    """Shaft torque and line current at rated volts and frequency; each array has one entry per speed."""
-
-    speed_rpm: Floats
-    torque_nm: tuple[Floats, Floats, Floats]
-    """Low, middle and high."""
-    current_a: tuple[Floats, Floats, Floats]
-    rated_speed_rpm: float
-    rated_torque_nm: float
 
 
 def speed_curves(twin: InductionTwin, *, seed: int = 1) -> SpeedCurves:

@@ -5,7 +5,8 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from calc.induction_1ph.curves import SpeedCurves, speed_curves
+from calc.curve_bands import SpeedCurves
+from calc.induction_1ph.curves import speed_curves
 from calc.induction_1ph.model import fit
 
 from .plates import ALL, machine

@@ -5,7 +5,8 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from calc.induction_3ph.curves import SpeedCurves, speed_curves
+from calc.curve_bands import SpeedCurves
+from calc.induction_3ph.curves import speed_curves
 from calc.kinds import twin_of
 from calc.sheet_io import sheet_from_plain
 
