@@ -38,7 +38,7 @@ class _Search:
     y: Floats
     plate: Floats
     dy: Floats
-    """Slopes by the active latents, (modes, m, active); taken at ``z`` where ``fresh``."""
+    """Slopes by the active latents, (modes, m, active); fine ones taken at ``z`` where ``fresh``."""
     dp: Floats
     fresh: NDArray[np.bool_]
 
@@ -129,7 +129,7 @@ def _refresh(
         return
     picked = [modes[int(i)] for i in stale]
     _, search.dy[stale], _, search.dp[stale] = fitter.slopes(picked, search.z[stale], active, step)
-    search.fresh[stale] = True
+    search.fresh[stale] = step == _FINE
 
 
 def _improve(
@@ -160,7 +160,7 @@ def _improve(
     pick = np.argmin(value, axis=1)
     row = np.arange(len(chosen))
     better = value[row, pick] < search.value[chosen]
-    search.fresh[chosen] = better & (pick == 0)
+    search.fresh[chosen[better]] = pick[better] == 0
     whole = chosen[better & (pick == 0)]
     place = row[better & (pick == 0)]
     search.dy[whole] = ((y[place, tries:] - y[place, :1]) / way[place, :, None]).transpose(0, 2, 1)
